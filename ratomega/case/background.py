@@ -1,0 +1,53 @@
+"""The Omega-background: eps1, eps2 and the path on which the limit point is approached."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from ratomega.case.affine import Affine
+from ratomega.errors import InputError
+from ratomega.exact.path import Linear
+from ratomega.exact.rational import ONE, Rational
+
+__all__ = ["Background"]
+
+
+@dataclass(frozen=True, slots=True)
+class Background:
+    """eps1 and eps2 as linear forms in t. Build it with ``Background.make``."""
+
+    eps1: Linear
+    eps2: Linear
+
+    @classmethod
+    def make(cls, eps1: Affine, eps2: Affine) -> Background:
+        """Where no t occurs, the path is eps2 + t. Raises ``InputError`` when eps1 or eps2 is zero at the limit.
+
+        >>> str(Background.make(Affine(ONE), Affine(ONE)).eps2)
+        '1 + t'
+        """
+        for name, value in (("eps1", eps1), ("eps2", eps2)):
+            if value.eps1 != 0 or value.eps2 != 0:
+                raise InputError.single("in eps1 and eps2 themselves only t may occur", name)
+            if value.constant == 0:
+                raise InputError.single(
+                    f"{name} is zero at the limit point; there every weight diverges on its own and no cluster is "
+                    "compact, so this limit (Nekrasov-Shatashvili) is not treated; choose a non-zero value",
+                    name,
+                )
+        slope2 = ONE if eps1.t == 0 and eps2.t == 0 else eps2.t
+        return cls(Linear(eps1.constant, eps1.t), Linear(eps2.constant, slope2))
+
+    @property
+    def ratio(self) -> Rational:
+        """eps2 / eps1 at the limit point."""
+        return self.eps2.constant / self.eps1.constant
+
+    @property
+    def steps(self) -> tuple[int, int]:
+        """(alpha, beta): eps1 : eps2 in lowest terms, alpha > 0; beta has the sign of the ratio.
+
+        >>> Background.make(Affine(Rational(2)), Affine(Rational(-3))).steps
+        (2, -3)
+        """
+        return int(self.ratio.q), int(self.ratio.p)

@@ -1,0 +1,1 @@
+"""Young diagrams and tuples of them: pure combinatorics, no numbers of the theory."""

@@ -1,0 +1,1 @@
+"""Exact arithmetic. python-flint is imported in this folder and nowhere else in the package."""

@@ -1,0 +1,143 @@
+"""Exact truncated Laurent series in one small parameter.
+
+A series is ``t^valuation * (c_0 + c_1 t + ...) + O(t^precision)``. The precision is data that travels with the series;
+there is no global setting. Built on ``fmpq_poly`` because ``fmpq_series`` obeys a process-wide cap.
+
+Canonical form: ``poly`` has a non-zero constant term, or is zero with ``valuation == precision``.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Mapping
+from dataclasses import dataclass
+
+from flint import fmpq_poly
+
+from ratomega.errors import PrecisionError
+from ratomega.exact.rational import ZERO, Rational
+
+__all__ = ["Laurent"]
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class Laurent:
+    """An exact Laurent series known up to, not including, the power ``precision``.
+
+    >>> x = Laurent.from_coefficients(-1, [1, 1], precision=3)      # 1/t + 1 + O(t^3)
+    >>> (x * x).coefficient(-2), (x * x).precision
+    (1, 2)
+    >>> x.inverse().coefficients()
+    {1: 1, 2: -1, 3: 1, 4: -1}
+    """
+
+    valuation: int
+    poly: fmpq_poly
+    precision: int
+
+    @classmethod
+    def make(cls, valuation: int, poly: fmpq_poly, precision: int) -> Laurent:
+        """The checking constructor: truncates at ``precision`` and shifts out leading zeros."""
+        if precision <= valuation:
+            return cls(precision, fmpq_poly(), precision)
+        if poly.length() > precision - valuation:
+            poly = poly.truncate(precision - valuation)
+        if poly.is_zero():
+            return cls(precision, fmpq_poly(), precision)
+        shift = 0
+        while poly[shift] == 0:
+            shift += 1
+        return cls(valuation + shift, poly.right_shift(shift) if shift else poly, precision)
+
+    @classmethod
+    def from_coefficients(cls, valuation: int, coefficients: Iterable[Rational | int], *, precision: int) -> Laurent:
+        return cls.make(valuation, fmpq_poly(list(coefficients)), precision)
+
+    @classmethod
+    def constant(cls, value: Rational | int, *, precision: int) -> Laurent:
+        return cls.make(0, fmpq_poly([value]), precision)
+
+    @classmethod
+    def zero(cls, *, precision: int) -> Laurent:
+        return cls(precision, fmpq_poly(), precision)
+
+    def is_zero(self) -> bool:
+        """No non-zero coefficient is known (the series may differ from zero beyond its precision)."""
+        return self.poly.is_zero()
+
+    def coefficient(self, power: int) -> Rational:
+        """The coefficient of ``t**power``; ``PrecisionError`` when it is not known."""
+        if power >= self.precision:
+            raise PrecisionError(f"the coefficient of t^{power} is not known: the series stops at t^{self.precision}")
+        return self.poly[power - self.valuation] if power >= self.valuation else ZERO
+
+    def coefficients(self) -> dict[int, Rational]:
+        """The known non-zero coefficients, by power."""
+        return {self.valuation + n: c for n, c in enumerate(self.poly.coeffs()) if c != 0}
+
+    def truncated(self, precision: int) -> Laurent:
+        return self if precision >= self.precision else Laurent.make(self.valuation, self.poly, precision)
+
+    def shifted(self, power: int) -> Laurent:
+        """The series times ``t**power``."""
+        return Laurent(self.valuation + power, self.poly, self.precision + power)
+
+    def __add__(self, other: Laurent) -> Laurent:
+        low = min(self.valuation, other.valuation)
+        poly = self.poly.left_shift(self.valuation - low) + other.poly.left_shift(other.valuation - low)
+        return Laurent.make(low, poly, min(self.precision, other.precision))
+
+    def __neg__(self) -> Laurent:
+        return Laurent(self.valuation, -self.poly, self.precision)
+
+    def __sub__(self, other: Laurent) -> Laurent:
+        return self + (-other)
+
+    def __mul__(self, other: Laurent) -> Laurent:
+        precision = min(self.precision + other.valuation, other.precision + self.valuation)
+        valuation = self.valuation + other.valuation
+        return Laurent.make(valuation, self.poly.mul_low(other.poly, max(precision - valuation, 0)), precision)
+
+    def scaled(self, factor: Rational | int) -> Laurent:
+        return Laurent.make(self.valuation, self.poly * factor, self.precision)
+
+    def inverse(self) -> Laurent:
+        """1 / series; ``ZeroDivisionError`` when no non-zero coefficient is known. Quadratic in the length."""
+        if self.is_zero():
+            raise ZeroDivisionError("the series has no known non-zero coefficient")
+        length = self.precision - self.valuation
+        known = self.poly.coeffs()
+        lead = known[0]
+        result = [1 / lead]
+        for n in range(1, length):
+            total = ZERO
+            for k in range(1, min(n, len(known) - 1) + 1):
+                total += known[k] * result[n - k]
+            result.append(-total / lead)
+        return Laurent.make(-self.valuation, fmpq_poly(result), length - self.valuation)
+
+    def __truediv__(self, other: Laurent) -> Laurent:
+        return self * other.inverse()
+
+    def agrees_with(self, other: Laurent) -> bool:
+        """Equal as far as both are known (the precisions may differ)."""
+        return (self - other).is_zero()
+
+    def __eq__(self, other: object) -> bool:
+        if not isinstance(other, Laurent):
+            return NotImplemented
+        return (self.valuation, self.precision) == (other.valuation, other.precision) and self.poly == other.poly
+
+    def __hash__(self) -> int:
+        return hash((self.valuation, self.precision, tuple(str(c) for c in self.poly.coeffs())))
+
+    def __str__(self) -> str:
+        terms = [f"{c}*t^{n}" for n, c in self.coefficients().items()]
+        return " + ".join([*terms, f"O(t^{self.precision})"])
+
+
+def total(series: Mapping[object, Laurent], *, precision: int) -> Laurent:
+    """The sum of several series, to ``precision``."""
+    result = Laurent.zero(precision=precision)
+    for one in series.values():
+        result = result + one
+    return result
