@@ -10,6 +10,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable
 from dataclasses import dataclass
+from typing import Self
 
 __all__ = ["InputError", "PathError", "PrecisionError", "Problem", "RatomegaError"]
 
@@ -49,7 +50,7 @@ class InputError(RatomegaError):
         super().__init__("\n".join(problem.text() for problem in self.problems))
 
     @classmethod
-    def single(cls, message: str, where: str = "") -> InputError:
+    def single(cls, message: str, where: str = "") -> Self:
         return cls([Problem(message, where)])
 
 

@@ -171,7 +171,7 @@ def probe_setting(case: Case, number: int) -> Setting:
 
 
 def resonances(setting: Setting, charge: Sequence[int]) -> Iterator[tuple[int, int, int, int, int]]:
-    """(node, alpha, beta, m, n), m, n >= 1, m n <= charge of the node, with a_alpha - a_beta = m eps1 + n eps2 at t = 0.
+    """(node, alpha, beta, m, n) with a_alpha - a_beta = m eps1 + n eps2 at t = 0, m, n >= 1, m n <= charge of the node.
 
     Colours count from 0 and come in both orders. Empty exactly when every component of the fixed locus at this charge
     is compact.

@@ -10,7 +10,16 @@ from itertools import product
 
 from ratomega.diagrams.young import Diagram, diagrams_of_size
 
-__all__ = ["Charge", "Configuration", "charges_up_to", "configurations", "coloured_partitions", "count_all", "count_configurations", "splittings"]
+__all__ = [
+    "Charge",
+    "Configuration",
+    "charges_up_to",
+    "coloured_partitions",
+    "configurations",
+    "count_all",
+    "count_configurations",
+    "splittings",
+]
 
 NodeDiagrams = tuple[Diagram, ...]
 Configuration = tuple[NodeDiagrams, ...]

@@ -25,7 +25,7 @@ ONE = fmpq(1)
 LONGEST_TEXT = 2000
 LARGEST_EXPONENT = 400
 
-_NUMBER = re.compile(r"(?P<whole>\d+)(?:\.(?P<decimals>\d*))?(?:[eE](?P<exponent>[+-]?\d+))?|\.(?P<bare>\d+)(?:[eE](?P<power>[+-]?\d+))?")
+_NUMBER = re.compile(r"(?:(?P<whole>\d+)(?:\.(?P<decimals>\d*))?|\.(?P<bare>\d+))(?:[eE](?P<exponent>[+-]?\d+))?")
 _RATIONAL = re.compile(r"\s*(?P<sign>[+-]?)\s*(?P<top>[^/\s]+)\s*(?:/\s*(?P<bottom>[^/\s]+)\s*)?")
 
 
@@ -33,7 +33,7 @@ def as_rational(value: object, where: str = "") -> Rational:
     """Return ``value`` as an exact rational.
 
     Accepted: ``int``, ``fractions.Fraction``, ``flint.fmpq`` and ``fmpz``, exact sympy numbers, and text such as
-    ``"3/11"``, ``"-2"``, ``"0.25"``, ``"1e-3"`` (decimals are read exactly). Floats are refused, because 0.1 is not 1/10.
+    ``"3/11"``, ``"-2"``, ``"0.25"``, ``"1e-3"`` (decimals are read exactly). Floats are refused: 0.1 is not 1/10.
 
     Raises ``InputError`` naming ``where``. Cost: linear in the length of the text, which is bounded.
 
@@ -91,7 +91,7 @@ def unsigned(text: str, where: str = "") -> Rational:
         raise InputError.single(f'"{text}" is not an exact number; write for example "3/11" or "0.25"', where)
     whole = match["whole"] or "0"
     decimals = match["decimals"] or match["bare"] or ""
-    exponent_text = match["exponent"] or match["power"] or "0"
+    exponent_text = match["exponent"] or "0"
     if len(exponent_text) > 5 or abs(int(exponent_text)) > LARGEST_EXPONENT:
         raise InputError.single(f'the exponent in "{text}" is beyond {LARGEST_EXPONENT}', where)
     exponent = int(exponent_text) - len(decimals)
