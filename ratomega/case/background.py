@@ -5,7 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 from ratomega.case.affine import Affine
-from ratomega.errors import InputError
+from ratomega.errors import InputError, Problem
 from ratomega.exact.path import Linear
 from ratomega.exact.rational import ONE, Rational
 
@@ -26,15 +26,20 @@ class Background:
         >>> str(Background.make(Affine(ONE), Affine(ONE)).eps2)
         '1 + t'
         """
+        problems = []
         for name, value in (("eps1", eps1), ("eps2", eps2)):
             if value.eps1 != 0 or value.eps2 != 0:
-                raise InputError.single("in eps1 and eps2 themselves only t may occur", name)
-            if value.constant == 0:
-                raise InputError.single(
-                    f"{name} is zero at the limit point; there every weight diverges on its own and no cluster is "
-                    "compact, so this limit (Nekrasov-Shatashvili) is not treated; choose a non-zero value",
-                    name,
+                problems.append(Problem("in eps1 and eps2 themselves only t may occur", name))
+            elif value.constant == 0:
+                problems.append(
+                    Problem(
+                        f"{name} is zero at the limit point; there every weight diverges on its own and no cluster is "
+                        "compact, so this limit (Nekrasov-Shatashvili) is not treated; choose a non-zero value",
+                        name,
+                    )
                 )
+        if problems:
+            raise InputError(problems)
         slope2 = ONE if eps1.t == 0 and eps2.t == 0 else eps2.t
         return cls(Linear(eps1.constant, eps1.t), Linear(eps2.constant, slope2))
 

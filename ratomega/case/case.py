@@ -9,13 +9,16 @@ from dataclasses import dataclass, replace
 
 from ratomega.case.background import Background
 from ratomega.case.theory import Theory
+from ratomega.case.wording import kind, quoted, shortened
 from ratomega.diagrams.tuples import Charge, charges_up_to
-from ratomega.errors import InputError
+from ratomega.errors import InputError, Problem
+from ratomega.exact.rational import Rational, exact_text
 
 __all__ = ["HIGHEST_CHARGE", "Case"]
 
 # A first bound on what is read: counting the configurations costs charge^2, so the exact count comes after this.
 HIGHEST_CHARGE = 500
+LONGEST_TITLE = 200
 
 
 @dataclass(frozen=True, slots=True)
@@ -31,8 +34,8 @@ class Case:
     def make(
         cls, theory: Theory, background: Background, charge: int | Sequence[int], title: str = ""
     ) -> Case:
-        """The checking constructor. Raises ``InputError`` for a bad charge."""
-        return cls(title, theory, background, checked_charge(charge, len(theory.nodes)))
+        """The checking constructor. Raises ``InputError`` for a bad charge or title."""
+        return cls(checked_title(title), theory, background, checked_charge(charge, len(theory.nodes)))
 
     def with_charge(self, charge: int | Sequence[int]) -> Case:
         return replace(self, charge=checked_charge(charge, len(self.theory.nodes)))
@@ -58,25 +61,37 @@ class Case:
         return hashlib.sha256(self.key().encode()).hexdigest()[:16]
 
 
+def checked_title(title: str) -> str:
+    """``title`` when it is one printable line of bounded length; ``InputError`` otherwise."""
+    if len(title) > LONGEST_TITLE or not title.isprintable():
+        message = f"the title {quoted(title)} is not one line of at most {LONGEST_TITLE} printable characters"
+        raise InputError.single(message, "title")
+    return title
+
+
 def checked_charge(charge: object, nodes: int) -> int | tuple[int, ...]:
     """``charge`` as an integer or a tuple with one bound per node; ``InputError`` otherwise."""
-    if isinstance(charge, int) and not isinstance(charge, bool):
-        bounds: tuple[object, ...] = (charge,)
-    elif isinstance(charge, Sequence) and not isinstance(charge, str):
-        bounds = tuple(charge)
-        if len(bounds) != nodes:
-            message = f"a list of charges gives one bound per node: {nodes} expected, {len(bounds)} given"
+    if isinstance(charge, Sequence) and not isinstance(charge, (str, bytes)):
+        if len(charge) != nodes:
+            message = f"a list of charges gives one bound per node: {nodes} expected, {len(charge)} given"
             raise InputError.single(message, "charge")
-    else:
-        message = f"expected an integer or a list of integers, not {type(charge).__name__}"
+        bounds = tuple(charge)
+        mistakes = [(_charge_mistake(bound), f"charge[{number}]") for number, bound in enumerate(bounds, 1)]
+        problems = [Problem(message, where) for message, where in mistakes if message]
+        if problems:
+            raise InputError(problems)
+        return bounds
+    if message := _charge_mistake(charge):
         raise InputError.single(message, "charge")
-    checked: list[int] = []
-    for bound in bounds:
-        if not isinstance(bound, int) or isinstance(bound, bool):
-            raise InputError.single(f"a charge is an integer, not {bound!r}", "charge")
-        if bound < 0:
-            raise InputError.single(f"a charge is zero or more, not {bound}", "charge")
-        if bound > HIGHEST_CHARGE:
-            raise InputError.single(f"the charge {bound} is beyond {HIGHEST_CHARGE}", "charge")
-        checked.append(bound)
-    return checked[0] if isinstance(charge, int) else tuple(checked)
+    assert isinstance(charge, int)
+    return charge
+
+
+def _charge_mistake(bound: object) -> str:
+    if not isinstance(bound, int) or isinstance(bound, bool):
+        return f"a charge is an integer, or a list with one integer per node, not {kind(bound)}"
+    if bound < 0:
+        return f"a charge is zero or more, not {shortened(exact_text(Rational(bound)))}"
+    if bound > HIGHEST_CHARGE:
+        return f"the charge {shortened(exact_text(Rational(bound)))} is beyond {HIGHEST_CHARGE}"
+    return ""

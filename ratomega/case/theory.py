@@ -7,15 +7,23 @@ loop into an adjoint, so that the theory has one form.
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Iterator
 from dataclasses import dataclass, replace
 
 import networkx
 
 from ratomega.case.affine import Affine
-from ratomega.errors import InputError
+from ratomega.case.wording import quoted
+from ratomega.errors import InputError, Problem
 
-__all__ = ["Edge", "Node", "Theory"]
+__all__ = ["HIGHEST_RANK", "MOST_EDGES", "MOST_MASSES", "MOST_NODES", "Edge", "Node", "Theory"]
+
+# Bounds on what is taken on: far beyond every sum that can be done, small enough to be read at once.
+MOST_NODES = 16
+HIGHEST_RANK = 64
+MOST_MASSES = 256
+MOST_EDGES = 256
+LONGEST_NAME = 64
 
 
 @dataclass(frozen=True, slots=True)
@@ -53,27 +61,23 @@ class Theory:
     def make(cls, nodes: Iterable[Node], edges: Iterable[Edge] = ()) -> Theory:
         """The checking constructor: at least one node, no empty rank, unique names, edges between nodes that exist.
 
+        Raises ``InputError`` with every mistake; ``where`` counts nodes and edges from 1.
+
         >>> zero = Affine()
         >>> Theory.make([Node("g", (zero,))], [Edge(0, 0, zero)]) == Theory.make([Node("g", (zero,), adjoint=(zero,))])
         True
         """
         nodes, edges = list(nodes), list(edges)
-        if not nodes:
-            raise InputError.single("a theory needs at least one gauge node")
-        names = [node.name for node in nodes]
-        for node in nodes:
-            if not node.coulomb:
-                raise InputError.single("a node needs at least one Coulomb parameter", f"node {node.name}")
-            if names.count(node.name) > 1:
-                raise InputError.single(f'the name "{node.name}" is used twice', f"node {node.name}")
-        for edge in edges:
-            if not (0 <= edge.source < len(nodes) and 0 <= edge.target < len(nodes)):
-                raise InputError.single(f"an edge joins nodes {edge.source} and {edge.target}; there are {len(nodes)}")
-            if edge.source == edge.target:
-                node = nodes[edge.source]
-                nodes[edge.source] = replace(node, adjoint=(*node.adjoint, edge.mass))
-        proper = tuple(edge for edge in edges if edge.source != edge.target)
-        return cls(tuple(nodes), proper)
+        problems = [*_bad_edges(edges, len(nodes))]
+        if not problems:
+            for edge in edges:
+                if edge.source == edge.target:
+                    node = nodes[edge.source]
+                    nodes[edge.source] = replace(node, adjoint=(*node.adjoint, edge.mass))
+        problems = [*_bad_nodes(nodes), *problems]
+        if problems:
+            raise InputError(problems)
+        return cls(tuple(nodes), tuple(edge for edge in edges if edge.source != edge.target))
 
     @property
     def ranks(self) -> tuple[int, ...]:
@@ -104,3 +108,53 @@ class Theory:
             for node in self.nodes
         ]
         return [nodes, sorted([e.source, e.target, e.mass.key()] for e in self.edges)]
+
+
+def _bad_edges(edges: list[Edge], nodes: int) -> Iterator[Problem]:
+    if len(edges) > MOST_EDGES:
+        yield Problem(f"a quiver has at most {MOST_EDGES} edges", "edge")
+        return
+    for number, edge in enumerate(edges, 1):
+        for end in (edge.source, edge.target):
+            if not 0 <= end < nodes:
+                message = f"there is no node number {end}; the theory has {nodes}, counted from 0"
+                yield Problem(message, f"edge[{number}]")
+
+
+def _bad_nodes(nodes: list[Node]) -> Iterator[Problem]:
+    if not nodes:
+        yield Problem("a theory needs at least one gauge node", "node")
+    if len(nodes) > MOST_NODES:
+        yield Problem(f"a quiver has at most {MOST_NODES} nodes", "node")
+        return
+    first: dict[str, int] = {}
+    for number, node in enumerate(nodes, 1):
+        here = f"node[{number}]"
+        bad = name_mistake(node.name)
+        if bad:
+            yield Problem(bad, f"{here}.name")
+        elif first.setdefault(node.name, number) != number:
+            yield Problem(f"node[{first[node.name]}] is already called {quoted(node.name)}", f"{here}.name")
+        if not node.coulomb:
+            yield Problem("a node needs at least one Coulomb parameter; their number is the rank", f"{here}.coulomb")
+        if node.rank > HIGHEST_RANK:
+            yield Problem(f"a node has at most {HIGHEST_RANK} Coulomb parameters", f"{here}.coulomb")
+        masses = {"antifundamental": node.antifundamental, "fundamental": node.fundamental, "adjoint": node.adjoint}
+        for key, values in masses.items():
+            if len(values) > MOST_MASSES:
+                yield Problem(f"a node has at most {MOST_MASSES} masses of one kind", f"{here}.{key}")
+
+
+def name_mistake(name: str) -> str:
+    """What is wrong with the name of a node; empty when nothing is.
+
+    >>> name_mistake("left"), name_mistake("")
+    ('', 'a name has at least one character')
+    """
+    if not name:
+        return "a name has at least one character"
+    if len(name) > LONGEST_NAME:
+        return f"the name {quoted(name)} has {len(name)} characters; at most {LONGEST_NAME} are read"
+    if not name.isprintable() or name != name.strip():
+        return f"the name {quoted(name)} is not plain printable text without spaces at its ends"
+    return ""

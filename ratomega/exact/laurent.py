@@ -8,7 +8,7 @@ Canonical form: ``poly`` has a non-zero constant term, or is zero with ``valuati
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Mapping
+from collections.abc import Iterable
 from dataclasses import dataclass
 
 from flint import fmpq_poly
@@ -16,7 +16,7 @@ from flint import fmpq_poly
 from ratomega.errors import PrecisionError
 from ratomega.exact.rational import ZERO, Rational
 
-__all__ = ["Laurent"]
+__all__ = ["Laurent", "total"]
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -135,9 +135,9 @@ class Laurent:
         return " + ".join([*terms, f"O(t^{self.precision})"])
 
 
-def total(series: Mapping[object, Laurent], *, precision: int) -> Laurent:
+def total(series: Iterable[Laurent], *, precision: int) -> Laurent:
     """The sum of several series, to ``precision``."""
     result = Laurent.zero(precision=precision)
-    for one in series.values():
+    for one in series:
         result = result + one
     return result

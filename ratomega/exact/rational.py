@@ -15,7 +15,17 @@ from flint import fmpq, fmpz
 
 from ratomega.errors import InputError
 
-__all__ = ["ONE", "ZERO", "Rational", "as_fraction", "as_rational", "common_denominator", "decimal_text", "exact_text"]
+__all__ = [
+    "ONE",
+    "ZERO",
+    "Rational",
+    "as_fraction",
+    "as_rational",
+    "common_denominator",
+    "decimal_text",
+    "exact_text",
+    "from_exact_text",
+]
 
 Rational = fmpq
 ZERO = fmpq(0)
@@ -26,6 +36,7 @@ LONGEST_TEXT = 2000
 LARGEST_EXPONENT = 400
 
 _NUMBER = re.compile(r"(?:(?P<whole>\d+)(?:\.(?P<decimals>\d*))?|\.(?P<bare>\d+))(?:[eE](?P<exponent>[+-]?\d+))?")
+_EXACT = re.compile(r"(?P<top>0|-?[1-9][0-9]*)(?:/(?P<bottom>[1-9][0-9]*))?")
 _RATIONAL = re.compile(r"\s*(?P<sign>[+-]?)\s*(?P<top>[^/\s]+)\s*(?:/\s*(?P<bottom>[^/\s]+)\s*)?")
 
 
@@ -95,7 +106,7 @@ def unsigned(text: str, where: str = "") -> Rational:
     if len(exponent_text) > 5 or abs(int(exponent_text)) > LARGEST_EXPONENT:
         raise InputError.single(f'the exponent in "{text}" is beyond {LARGEST_EXPONENT}', where)
     exponent = int(exponent_text) - len(decimals)
-    digits = fmpz(int(whole + decimals))
+    digits = fmpz(whole + decimals)
     power = fmpz(10) ** abs(exponent)
     return fmpq(digits * power) if exponent >= 0 else fmpq(digits, power)
 
@@ -107,6 +118,22 @@ def exact_text(value: Rational) -> str:
     ('-3/2', '7')
     """
     return str(value)
+
+
+def from_exact_text(text: str) -> Rational:
+    """Read back what ``exact_text`` wrote, of any length and in that form only. Raises ``ValueError``.
+
+    >>> from_exact_text("-3/2")
+    -3/2
+    """
+    match = _EXACT.fullmatch(text)
+    if match is None:
+        raise ValueError(f'"{text[:40]}" is not an exact number "num/den" or "num"')
+    bottom = fmpz(match["bottom"] or "1")
+    value = fmpq(fmpz(match["top"]), bottom)
+    if value.q != bottom:
+        raise ValueError(f'"{text[:40]}" is not in lowest terms')
+    return value
 
 
 def as_fraction(value: Rational) -> Fraction:

@@ -1,0 +1,47 @@
+"""Exact limits of instanton partition functions on rational Omega-backgrounds.
+
+    >>> import ratomega
+    >>> case = ratomega.load_case({
+    ...     "charge": 2,
+    ...     "background": {"eps1": "1", "eps2": "1"},
+    ...     "node": [{"coulomb": ["1/3", "-1/3"]}],
+    ... })
+    >>> [str(coefficient.value) for coefficient in ratomega.limit(case)]
+    ['1', '9/16', '5373/43120']
+
+The public API in one screen; nothing is defined here.
+"""
+
+from ratomega.case.bundled import bundled_names
+from ratomega.case.case import Case
+from ratomega.case.reading import load_case
+from ratomega.documents import load_result, to_json
+from ratomega.errors import InputError, PathError, Problem, RatomegaError
+from ratomega.pipeline import clusters, detect, limit, validate
+from ratomega.results import Coefficient, DetectResult, LimitResult, ValidateResult
+from ratomega.validator.verdict import Check, Kind, Verdict
+from ratomega.version import VERSION as __version__
+
+__all__ = [
+    "Case",
+    "Check",
+    "Coefficient",
+    "DetectResult",
+    "InputError",
+    "Kind",
+    "LimitResult",
+    "PathError",
+    "Problem",
+    "RatomegaError",
+    "ValidateResult",
+    "Verdict",
+    "__version__",
+    "bundled_names",
+    "clusters",
+    "detect",
+    "limit",
+    "load_case",
+    "load_result",
+    "to_json",
+    "validate",
+]

@@ -1,0 +1,250 @@
+"""The command line: ``ratomega detect | limit | validate CASE`` and ``ratomega cases``.
+
+Results go to standard output, everything else to standard error. Exit status: 0 done; 1 a pole survives, a limit is
+path-dependent or a check is refuted; 2 the input is wrong; 3 finiteness or path-independence stayed undecided; 130
+interrupted, after printing the finished charges.
+"""
+
+from __future__ import annotations
+
+import json
+import os
+import re
+import sys
+from collections.abc import Callable, Iterable, Sequence
+from typing import Any, NoReturn, TypeVar
+
+import click
+
+from ratomega.case.bundled import bundled_names, bundled_text
+from ratomega.case.case import Case
+from ratomega.case.reading import case_from_mapping, case_to_mapping, load_case
+from ratomega.desk.text import charge_word, detect_text, limit_text, table, theory_text, validate_text
+from ratomega.diagrams.tuples import Charge
+from ratomega.documents import Result, error_document, to_json
+from ratomega.errors import InputError
+from ratomega.exact.rational import exact_text
+from ratomega.pipeline import (
+    DEFAULT_PROBES,
+    MOST_CONFIGURATIONS,
+    Job,
+    checked_terms,
+    detect_result,
+    limit_result,
+    validate_result,
+)
+from ratomega.version import VERSION
+
+__all__ = ["main"]
+
+INTERRUPTED = 130
+_CHARGE = re.compile(r"[+-]?\d{1,9}(,[+-]?\d{1,9})*")
+
+Item = TypeVar("Item")
+
+
+@click.group(context_settings={"help_option_names": ["-h", "--help"], "max_content_width": 100})
+@click.version_option(VERSION, message="ratomega %(version)s")
+def cli() -> None:
+    """Exact limits of instanton partition functions on rational Omega-backgrounds.
+
+    CASE is a TOML file, or the name of a bundled case (`ratomega cases` lists them).
+    """
+
+
+def _common(function: Callable[..., Any]) -> Callable[..., Any]:
+    """The argument and the options that every command on a case shares."""
+    for decorate in (
+        click.option("--json", "as_json", is_flag=True, help="One JSON document on standard output."),
+        click.option(
+            "--most-configurations",
+            type=click.IntRange(1),
+            default=MOST_CONFIGURATIONS,
+            show_default=True,
+            help="Refuse a charge with more configurations than this.",
+        ),
+        click.option("--no-tilt", is_flag=True, help="Refuse, instead of tilting, resonant Coulomb parameters."),
+        click.option("--eps2", metavar="EXPR", help="Replace eps2 of the case; t may occur."),
+        click.option("--eps1", metavar="EXPR", help="Replace eps1 of the case; t may occur."),
+        click.option("--charge", metavar="K", help="Highest total charge, or one bound a node: 2,1."),
+        click.argument("case"),
+    ):
+        function = decorate(function)
+    return function
+
+
+_probes = click.option(
+    "--probes",
+    type=int,
+    default=DEFAULT_PROBES,
+    show_default=True,
+    help="How many further paths are tried.",
+)
+
+
+@cli.command()
+@_common
+@click.option(
+    "--exchanges",
+    type=click.IntRange(0),
+    default=0,
+    metavar="N",
+    help="Show which boxes are exchanged inside clusters of at most N members.",
+)
+def detect(exchanges: int, as_json: bool, **case_options: Any) -> int:
+    """List the singular configurations, the guilty factors and the clusters.
+
+    Example: ratomega detect u2-pure-b1 --charge 3
+    """
+    job = _job(**case_options)
+    found, interrupted = _collect(job, job.scans(exchanges=exchanges), lambda report: report.charge)
+    return _finish(detect_result(job, found, partial=interrupted), detect_text, as_json, interrupted)
+
+
+@cli.command()
+@_common
+@_probes
+@click.option("--terms", type=int, metavar="N", help="Also the expansion in t up to t^N.")
+def limit(probes: int, terms: int | None, as_json: bool, **case_options: Any) -> int:
+    """Take the limit of every coefficient exactly, with a certificate.
+
+    Example: ratomega limit b1-four-flavours --charge 2
+    """
+    last = checked_terms(terms)
+    job = _job(**case_options)
+    found, interrupted = _collect(job, job.limits(probes=probes, last=last), lambda one: one.charge)
+    return _finish(limit_result(job, found, terms=terms, partial=interrupted), limit_text, as_json, interrupted)
+
+
+@cli.command()
+@_common
+@_probes
+def validate(probes: int, as_json: bool, **case_options: Any) -> int:
+    """Check finiteness, further paths, and closed forms where one applies.
+
+    Example: ratomega validate b1-four-flavours --charge 2
+    """
+    job = _job(**case_options)
+    limits = job.limits(probes=probes, always_probe=True)
+    found, interrupted = _collect(job, limits, lambda one: one.charge)
+    return _finish(validate_result(job, found, partial=interrupted), validate_text, as_json, interrupted)
+
+
+@cli.command()
+@click.argument("name", required=False)
+@click.option("--json", "as_json", is_flag=True, help="One JSON document on standard output.")
+def cases(name: str | None, as_json: bool) -> int:
+    """List the bundled demo cases, or print the file of one: a start for your own.
+
+    Example: ratomega cases b1-four-flavours
+    """
+    if name is not None:
+        text = bundled_text(name)
+        click.echo(json.dumps({"name": name, "text": text}, indent=1) if as_json else text.rstrip("\n"))
+        return 0
+    listed = [(bundled, load_case(bundled)) for bundled in bundled_names()]
+    if as_json:
+        rows = [
+            {
+                "name": bundled,
+                "title": case.title,
+                "ratio": exact_text(case.background.ratio),
+                "charge": case.charge if isinstance(case.charge, int) else list(case.charge),
+                "theory": theory_text(case),
+            }
+            for bundled, case in listed
+        ]
+        click.echo(json.dumps({"version": VERSION, "cases": rows}, indent=1, ensure_ascii=False))
+        return 0
+    lines = [
+        [bundled, exact_text(case.background.ratio), _charge_bound(case), case.title] for bundled, case in listed
+    ]
+    click.echo("\n".join(table(["name", "eps2/eps1", "charge", "title"], lines, left=[0, 3])))
+    return 0
+
+
+def _charge_bound(case: Case) -> str:
+    return str(case.charge) if isinstance(case.charge, int) else charge_word(case.charge)
+
+
+def _job(
+    case: str,
+    charge: str | None,
+    eps1: str | None,
+    eps2: str | None,
+    no_tilt: bool,
+    most_configurations: int,
+) -> Job:
+    loaded = load_case(case)
+    if eps1 is not None or eps2 is not None:
+        mapping = case_to_mapping(loaded)
+        given = {"eps1": eps1, "eps2": eps2}
+        mapping["background"] |= {key: value for key, value in given.items() if value is not None}
+        loaded = case_from_mapping(mapping, where="command line")
+    if charge is not None:
+        loaded = loaded.with_charge(_charge(charge))
+    return Job.prepare(loaded, allow_tilt=not no_tilt, most_configurations=most_configurations)
+
+
+def _charge(text: str) -> int | list[int]:
+    if not _CHARGE.fullmatch(text):
+        message = f'"{text[:40]}" is not a charge; write an integer, or one integer a node such as 2,1'
+        raise InputError.single(message, "--charge")
+    bounds = [int(word) for word in text.split(",")]
+    return bounds if "," in text else bounds[0]
+
+
+def _collect(job: Job, items: Iterable[Item], charge_of: Callable[[Item], Charge]) -> tuple[list[Item], bool]:
+    """Everything that was finished, and whether Ctrl-C came in between. Shows progress on a terminal."""
+    found: list[Item] = []
+    watched = sys.stderr.isatty()
+    total = len(job.case.charges)
+    try:
+        for item in items:
+            found.append(item)
+            if watched:
+                click.echo(f"\rcharge {charge_word(charge_of(item))}: {len(found)} of {total} ", err=True, nl=False)
+    except KeyboardInterrupt:
+        click.echo(f"\ninterrupted: {len(found)} of {total} charges were finished and are printed", err=True)
+        return found, True
+    if watched:
+        click.echo("\r" + " " * 40 + "\r", err=True, nl=False)
+    return found, False
+
+
+ResultType = TypeVar("ResultType", bound=Result)
+
+
+def _finish(result: ResultType, write: Callable[[ResultType], str], as_json: bool, interrupted: bool) -> int:
+    click.echo(to_json(result) if as_json else write(result), nl=False)
+    return INTERRUPTED if interrupted else result.exit_status
+
+
+def _fail(error: InputError, as_json: bool) -> int:
+    if as_json:
+        click.echo(json.dumps(error_document(error), indent=1, ensure_ascii=False))
+    for problem in error.problems:
+        click.echo(f"ratomega: {problem.text()}", err=True)
+    return error.exit_status
+
+
+def main(arguments: Sequence[str] | None = None) -> NoReturn:
+    """Run the command line and exit with its status."""
+    words = list(sys.argv[1:] if arguments is None else arguments)
+    as_json = "--json" in words
+    try:
+        status = cli.main(args=words, prog_name="ratomega", standalone_mode=False)
+        sys.stdout.flush()
+    except InputError as error:
+        status = _fail(error, as_json)
+    except click.ClickException as error:
+        where = error.ctx.command_path if isinstance(error, click.UsageError) and error.ctx is not None else ""
+        status = _fail(InputError.single(error.format_message(), where.removeprefix("ratomega ")), as_json)
+    except click.Abort:
+        click.echo("interrupted before the first charge was finished", err=True)
+        status = INTERRUPTED
+    except BrokenPipeError:
+        # The reader of our output went away (for example `| head`): nothing is left to say.
+        os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+        status = 0
+    sys.exit(status if isinstance(status, int) else 0)

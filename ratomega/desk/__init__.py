@@ -1,0 +1,1 @@
+"""The desk: what a person sees."""

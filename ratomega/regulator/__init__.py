@@ -1,0 +1,1 @@
+"""The regulator: limits taken exactly, cluster by cluster."""

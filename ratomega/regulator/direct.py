@@ -1,0 +1,98 @@
+"""The direct sum: all weights of one charge as exact Laurent series in t, cluster by cluster.
+
+Every weight is expanded to exactly the depth that its own pole and the wanted last power need.
+Cost: one product of linear factors and one short series division a configuration.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass
+
+from ratomega.detector.geometry import is_sink
+from ratomega.diagrams.tuples import Charge, configurations
+from ratomega.exact.laurent import Laurent, total
+from ratomega.weights import Weights
+
+__all__ = ["ChargeSum", "ClusterSum", "direct_sum", "direct_total"]
+
+ClusterKey = tuple[tuple[int, ...], ...]
+
+
+@dataclass(frozen=True, slots=True)
+class ClusterSum:
+    """The sum over one cluster.
+
+    ``lowest_order`` and ``order`` are the least and the greatest order among the members (equal, if all is well);
+    ``singular_members`` counts those that diverge on the path; ``has_sink`` is None where it was not asked for.
+    """
+
+    size: int
+    order: int
+    lowest_order: int
+    singular_members: int
+    has_sink: bool | None
+    series: Laurent
+
+
+@dataclass(frozen=True, slots=True)
+class ChargeSum:
+    """Z at one charge on one path, to ``precision``, with the clusters it is made of and the counts on the way."""
+
+    charge: Charge
+    series: Laurent
+    clusters: Mapping[ClusterKey, ClusterSum]
+    configurations: int
+    singular: int
+    indeterminate: int
+    worst_order: int
+
+
+def direct_sum(weights: Weights, charge: Charge, *, last: int = 0, sinks: bool = False) -> ChargeSum:
+    """Sum the weights of one charge, all powers of t up to ``last``.
+
+    With ``sinks`` the singular clusters are searched for a sink, which decides their compactness.
+    """
+    precision = last + 1
+    sums: dict[ClusterKey, Laurent] = {}
+    books: dict[ClusterKey, list[int]] = {}
+    found_sink: dict[ClusterKey, bool] = {}
+    count = singular = indeterminate = worst = 0
+    for configuration in configurations(weights.setting.ranks, charge):
+        weight = weights.weight(configuration)
+        key = weights.contents(configuration)
+        order, dead = weight.order, weight.dead
+        count += 1
+        diverges = order > 0 and not dead
+        if diverges:
+            singular += 1
+            worst = max(worst, order)
+        elif weight.vanishing_denominators:
+            indeterminate += 1
+        if sinks and order > 0 and not found_sink.get(key, False):
+            found_sink[key] = is_sink(weights, configuration)
+        series = weight.laurent(last)
+        book = books.get(key)
+        if book is None:
+            books[key] = [1, order, order, int(diverges)]
+            sums[key] = series
+        else:
+            book[0] += 1
+            book[1] = max(book[1], order)
+            book[2] = min(book[2], order)
+            book[3] += diverges
+            sums[key] = sums[key] + series
+    clusters = {
+        key: ClusterSum(book[0], book[1], book[2], book[3], found_sink.get(key), sums[key])
+        for key, book in books.items()
+    }
+    series = total(sums.values(), precision=precision)
+    return ChargeSum(charge, series, clusters, count, singular, indeterminate, worst)
+
+
+def direct_total(weights: Weights, charge: Charge, *, last: int = 0) -> Laurent:
+    """The sum of the weights of one charge alone, without clusters: what a further path needs."""
+    result = Laurent.zero(precision=last + 1)
+    for configuration in configurations(weights.setting.ranks, charge):
+        result = result + weights.weight(configuration).laurent(last)
+    return result

@@ -1,0 +1,70 @@
+"""The limit at one charge: the own path in full, further paths where compactness does not decide."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+
+from ratomega.case.setting import resonances
+from ratomega.detector.geometry import resonance_text
+from ratomega.diagrams.tuples import Charge
+from ratomega.exact.rational import Rational
+from ratomega.regulator.direct import ChargeSum, ClusterSum, direct_sum, direct_total
+from ratomega.regulator.outcome import Outcome, PathValue, judge, leading
+from ratomega.weights import Weights
+
+__all__ = ["ChargeLimit", "charge_limit"]
+
+
+@dataclass(frozen=True, slots=True)
+class ChargeLimit:
+    """Everything that was computed at one charge.
+
+    ``compact``: every component of the fixed locus at this charge is compact, by the parameters; otherwise
+    ``resonance`` names a Coulomb difference that may prevent it. ``further`` holds the probed paths, if any.
+    """
+
+    sum: ChargeSum
+    compact: bool
+    resonance: str
+    own: PathValue
+    further: tuple[PathValue, ...]
+    outcome: Outcome
+
+    @property
+    def charge(self) -> Charge:
+        return self.sum.charge
+
+    def is_compact(self, cluster: ClusterSum) -> bool:
+        """Is this cluster's component compact? Isolated points are; otherwise the parameters or a sink decide."""
+        return self.compact or cluster.order <= 0 or cluster.has_sink is True
+
+    @property
+    def failing_compact_clusters(self) -> int:
+        """Compact clusters whose sum keeps a negative power of t (a theorem says that there are none)."""
+        return sum(1 for c in self.sum.clusters.values() if self.is_compact(c) and c.series.valuation < 0)
+
+    @property
+    def uneven_clusters(self) -> int:
+        """Clusters whose members differ in order (there should be none)."""
+        return sum(1 for c in self.sum.clusters.values() if c.order != c.lowest_order)
+
+    def terms(self, last: int) -> tuple[tuple[int, Rational], ...]:
+        """(power, coefficient) of the own path's expansion from the lowest power, at most 0, to ``last``."""
+        lowest = min(0, self.sum.series.valuation)
+        return tuple((n, self.sum.series.coefficient(n)) for n in range(lowest, last + 1))
+
+
+def charge_limit(
+    weights: Weights, charge: Charge, probes: Sequence[Weights] = (), *, last: int = 0, always_probe: bool = False
+) -> ChargeLimit:
+    """The limit at one charge. ``probes`` are the further paths; they are summed only where compactness does not
+    prove that the limit is the same on every path, or with ``always_probe``."""
+    resonance = next(resonances(weights.setting, charge), None)
+    compact = resonance is None
+    own_sum = direct_sum(weights, charge, last=last, sinks=not compact)
+    own = leading(weights.setting.text(), own_sum.series)
+    needed = probes if always_probe or not compact else ()
+    further = tuple(leading(probe.setting.text(), direct_total(probe, charge)) for probe in needed)
+    why = "" if resonance is None else resonance_text(weights.setting, resonance)
+    return ChargeLimit(own_sum, compact, why, own, further, judge(own, further, compact=compact))

@@ -1,0 +1,50 @@
+"""Small builders for the tests: cases from plain text, settings as plain theories for ``plain``."""
+
+from __future__ import annotations
+
+import plain
+
+import ratomega
+from ratomega.case.setting import Setting
+
+
+def make_case(eps1, eps2, nodes, *, charge=2, edges=()):
+    """A case from text expressions: ``nodes`` are mappings with coulomb, antifundamental, ...; edges (from, to, mass)."""
+    mapping = {
+        "charge": charge,
+        "background": {"eps1": eps1, "eps2": eps2},
+        "node": [{"name": f"n{v}", **node} for v, node in enumerate(nodes, 1)],
+        "edge": [{"from": f"n{a}", "to": f"n{b}", "mass": mass} for a, b, mass in edges],
+    }
+    return ratomega.load_case(mapping)
+
+
+def plain_theory(setting: Setting):
+    """The same theory as a dictionary of ``plain.Line`` for the plain reference."""
+
+    def line(value):
+        return plain.Line(value.constant, value.slope)
+
+    return {
+        "eps1": line(setting.eps1),
+        "eps2": line(setting.eps2),
+        "nodes": [
+            {
+                "coulomb": [line(x) for x in node.coulomb],
+                "antifundamental": [line(x) for x in node.antifundamental],
+                "fundamental": [line(x) for x in node.fundamental],
+                "adjoint": [line(x) for x in node.adjoint],
+            }
+            for node in setting.nodes
+        ],
+        "edges": [(a, b, line(m)) for a, b, m in setting.edges],
+    }
+
+
+def plain_values(setting: Setting):
+    """The theory at the limit point itself as plain rationals."""
+
+    theory = plain_theory(setting)
+    nodes = [{key: [x.c for x in values] for key, values in node.items()} for node in theory["nodes"]]
+    edges = [(a, b, m.c) for a, b, m in theory["edges"]]
+    return {"eps1": theory["eps1"].c, "eps2": theory["eps2"].c, "nodes": nodes, "edges": edges}

@@ -1,0 +1,267 @@
+"""The commands as a person types them: output, exit statuses, errors, interruption."""
+
+from __future__ import annotations
+
+import json
+import os
+import signal
+import subprocess
+import sys
+
+import pytest
+
+import ratomega
+
+CASE = """
+title = "{title}"
+charge = {charge}
+
+[background]
+eps1 = "{eps1}"
+eps2 = "{eps2}"
+
+[[node]]
+coulomb = {coulomb}
+antifundamental = {antifundamental}
+"""
+
+
+def run(*words, cwd=None):
+    done = subprocess.run(
+        [sys.executable, "-m", "ratomega", *words], capture_output=True, text=True, encoding="utf-8", cwd=cwd, check=False
+    )
+    assert "Traceback" not in done.stderr, done.stderr
+    return done
+
+
+def write_case(folder, name="case.toml", **fields):
+    defaults = {
+        "title": "a test",
+        "charge": "2",
+        "eps1": "1",
+        "eps2": "1",
+        "coulomb": '["1/3", "-1/3"]',
+        "antifundamental": "[]",
+    }
+    path = folder / name
+    path.write_text(CASE.format(**defaults | fields), encoding="utf-8")
+    return path
+
+
+@pytest.mark.parametrize("command", ["detect", "limit", "validate"])
+@pytest.mark.parametrize("form", ["table", "json"])
+def test_every_command_runs_on_a_bundled_case(command, form):
+    done = run(command, "b1-four-flavours", "--charge", "2", *(["--json"] if form == "json" else []))
+    assert (done.returncode, done.stderr) == (0, "")
+    if form == "json":
+        document = json.loads(done.stdout)
+        assert document["case"]["charge"] == 2
+        assert {"version", "path", "hash", "warnings"} <= set(document)
+    else:
+        assert "eps1 = 1; eps2 = 1 + t" in done.stdout
+
+
+def test_cases_lists_every_bundled_case_and_prints_one(tmp_path):
+    listed = run("cases").stdout
+    names = ratomega.bundled_names()
+    assert len(names) >= 12
+    assert all(name in listed for name in names)
+    assert [row["name"] for row in json.loads(run("cases", "--json").stdout)["cases"]] == list(names)
+    (tmp_path / "mine.toml").write_text(run("cases", names[0]).stdout, encoding="utf-8")
+    assert ratomega.load_case(tmp_path / "mine.toml") == ratomega.load_case(names[0])
+
+
+# U(1) without matter is exp(q/(eps1 eps2)) (Nekrasov, Okounkov hep-th/0306238).
+def test_negative_rationals_are_option_values(tmp_path):
+    path = write_case(tmp_path, coulomb='["0"]', charge="3")
+    done = run("limit", str(path), "--eps2", "-3/4", "--eps1", "-1", "--json")
+    values = [c["value"] for c in json.loads(done.stdout)["coefficients"]]
+    assert values == ["1", "4/3", "8/9", "32/81"]
+    done = run("limit", str(path), "--eps1=-1/2", "--charge", "1", "--json")
+    assert json.loads(done.stdout)["coefficients"][1]["value"] == "-2"
+
+
+POLE = {"eps1": "2", "coulomb": '["3/2 + t/7", "-3/2 - t/7"]', "antifundamental": '["7/2", "5/2"]'}
+
+
+def test_a_surviving_pole_exits_1(tmp_path):
+    path = write_case(tmp_path, charge="1", **POLE)
+    done = run("limit", str(path), "--json")
+    coefficient = json.loads(done.stdout)["coefficients"][1]
+    assert done.returncode == 1
+    assert (coefficient["status"], coefficient["order"], coefficient["leading"]) == ("pole", 1, "7/15")
+    assert coefficient["values"][0]["value"] == "7/15"
+    assert len(coefficient["values"]) > 1
+    table = run("limit", str(path))
+    assert table.returncode == 1
+    assert "pole t^-1" in table.stdout
+    assert run("validate", str(path)).returncode == 1
+    assert run("detect", str(path)).returncode == 0
+
+
+def test_a_path_dependent_limit_exits_1(tmp_path):
+    path = write_case(tmp_path, charge="2", **POLE)
+    done = run("limit", str(path), "--json")
+    coefficient = json.loads(done.stdout)["coefficients"][2]
+    assert done.returncode == 1
+    assert coefficient["status"] == "path-dependent"
+    assert coefficient["values"][0]["value"] == "-403/1680"
+    assert "value" not in coefficient
+
+
+def test_without_probes_independence_is_undecided_and_exits_3(tmp_path):
+    path = write_case(
+        tmp_path,
+        eps1="4",
+        eps2="-3",
+        coulomb='["(eps1+eps2)/2", "-(eps1+eps2)/2"]',
+        antifundamental='["3*eps1/2 + 5*eps2/2", "(eps1+eps2)/2", "3*eps1/2 + 5*eps2/2", "(eps1+eps2)/2"]',
+    )
+    assert run("limit", str(path)).returncode == 0
+    done = run("limit", str(path), "--probes", "0", "--json")
+    assert done.returncode == 3
+    assert json.loads(done.stdout)["coefficients"][1]["independence"] == "undecided"
+    assert run("validate", str(path), "--probes", "0").returncode == 3
+
+
+def test_no_tilt_names_a_factor_and_a_cure(tmp_path):
+    path = write_case(tmp_path, coulomb='["0", "0"]')
+    assert "were tilted" in run("limit", str(path)).stdout
+    done = run("limit", str(path), "--no-tilt")
+    assert done.returncode == 2
+    assert "vanishes identically" in done.stderr
+    assert "coulomb = [" in done.stderr
+
+
+def bad(tmp_path, text):
+    path = tmp_path / "bad.toml"
+    path.write_text(text, encoding="utf-8")
+    return run("limit", str(path), "--json")
+
+
+GOOD = CASE.format(
+    title="x", charge=1, eps1="1", eps2="1", coulomb='["1/3", "-1/3"]', antifundamental="[]"
+)
+
+
+@pytest.mark.parametrize(
+    ("old", "new", "said"),
+    [
+        ('["1/3", "-1/3"]', "[3/2]", "quoted"),
+        ('["1/3", "-1/3"]', "[0.5]", "0.5"),
+        ('["1/3", "-1/3"]', '["1/0"]', "zero"),
+        ('["1/3", "-1/3"]', '["eps1*eps2"]', "number"),
+        ('["1/3", "-1/3"]', '["9**9**9"]', "power"),
+        ('["1/3", "-1/3"]', '["2eps1"]', "2*eps1"),
+        ('["1/3", "-1/3"]', '["epsilon"]', "eps1"),
+        ('["1/3", "-1/3"]', '["sin(1)"]', "function"),
+        ('["1/3", "-1/3"]', "[]", "Coulomb"),
+        ('["1/3", "-1/3"]', '["' + "1+" * 50_000 + '1"]', "characters"),
+        ('["1/3", "-1/3"]', '["' + "(" * 500 + "1" + ")" * 500 + '"]', "nest"),
+        ('eps1 = "1"', 'eps1 = "0"', "zero"),
+        ('eps1 = "1"', 'eps1 = "eps2"', "only t"),
+        ("charge = 1", "charge = -1", "zero or more"),
+        ("charge = 1", "charge = 400", "configurations"),
+        ("charge = 1", "charge = 10000000000", "beyond"),
+        ("[[node]]", "[[nodes]]", "node"),
+        ("antifundamental", "antifundamentals", "antifundamental"),
+        ("[[node]]", '[[edge]]\nfrom = "gauge"\nto = "nowhere"\nmass = "0"\n[[node]]', "nowhere"),
+        ('eps2 = "1"', 'eps2 = "1"\neps3 = "1"', "eps3"),
+        ("charge = 1", "charge = [1, 2]", "one bound per node"),
+        ("title", "title = = ", "TOML"),
+    ],
+)
+def test_bad_input_is_one_clear_sentence(tmp_path, old, new, said):
+    assert old in GOOD
+    done = bad(tmp_path, GOOD.replace(old, new))
+    error = json.loads(done.stdout)["error"]
+    assert done.returncode == 2
+    assert said in error["message"], error
+    assert "bad.toml" in error["where"] or error["where"] in ("charge", "")
+    assert error["all"][0] == {"message": error["message"], "where": error["where"]}
+    assert len(done.stderr) < 2000
+    assert done.stderr.startswith("ratomega: ")
+
+
+def test_all_mistakes_at_once(tmp_path):
+    done = bad(tmp_path, GOOD.replace('eps1 = "1"', 'eps1 = "0"').replace('"1/3", "-1/3"', '"1/0", "x"') + "colour = 1\n")
+    assert len(json.loads(done.stdout)["error"]["all"]) == 4
+
+
+def test_files_that_are_none(tmp_path):
+    assert "absent.toml" in run("limit", "absent.toml", cwd=tmp_path).stderr
+    (tmp_path / "folder.toml").mkdir()
+    assert "folder" in run("limit", "folder.toml", cwd=tmp_path).stderr
+    (tmp_path / "latin.toml").write_bytes(b'title = "\xe9"\n')
+    assert "UTF-8" in run("limit", "latin.toml", cwd=tmp_path).stderr
+    done = run("limit", "b1-four-flavour")
+    assert done.returncode == 2
+    assert "b1-four-flavours" in done.stderr
+    assert run("limit", "absent.toml", cwd=tmp_path).returncode == 2
+
+
+@pytest.mark.parametrize(
+    "words",
+    [
+        ["limit"],
+        ["limit", "b1-four-flavours", "--colour"],
+        ["limit", "b1-four-flavours", "--charge", "x"],
+        ["limit", "b1-four-flavours", "--charge", "1,2"],
+        ["limit", "b1-four-flavours", "--charge", "-1"],
+        ["limit", "b1-four-flavours", "--eps2", "0"],
+        ["limit", "b1-four-flavours", "--terms", "-1"],
+        ["limit", "b1-four-flavours", "--probes", "1000"],
+        ["limit", "b1-four-flavours", "--most-configurations", "3"],
+        ["cases", "nothing"],
+        ["nothing"],
+    ],
+)
+def test_wrong_words_exit_2(words):
+    done = run(*words)
+    assert done.returncode == 2
+    assert done.stderr.startswith("ratomega: ")
+    assert done.stderr.count("\n") == 1
+
+
+def test_the_limit_on_configurations_can_be_raised():
+    words = ["limit", "b1-four-flavours", "--charge", "3"]
+    assert run(*words, "--most-configurations", "17").returncode == 2
+    assert run(*words, "--most-configurations", "18").returncode == 0
+
+
+INTERRUPT = """
+import os, signal, sys
+from ratomega import pipeline
+from ratomega.cli.main import main
+plain = pipeline.charge_limit
+def stopping(weights, charge, *rest, **options):
+    if sum(charge) == 2:
+        os.kill(os.getpid(), signal.SIGINT)
+    return plain(weights, charge, *rest, **options)
+pipeline.charge_limit = stopping
+main(["limit", "b1-four-flavours", "--json"])
+"""
+
+
+def test_an_interrupted_run_keeps_what_it_has():
+    done = subprocess.run([sys.executable, "-c", INTERRUPT], capture_output=True, text=True, check=False)
+    document = json.loads(done.stdout)
+    assert done.returncode == 130
+    assert document["partial"] is True
+    assert [c["charge"] for c in document["coefficients"]] == [[0], [1]]
+    assert "interrupted" in done.stderr
+
+
+def test_a_reader_that_goes_away_is_no_error(tmp_path):
+    command = f"{sys.executable} -m ratomega detect b1-four-flavours --charge 4 --json | head -c 10"
+    done = subprocess.run(["bash", "-c", command], capture_output=True, text=True, check=False)
+    assert "Traceback" not in done.stderr
+    assert done.returncode == 0
+
+
+def test_output_names_no_folder_and_no_host(tmp_path):
+    path = write_case(tmp_path)
+    text = run("limit", str(path), "--json").stdout
+    assert str(tmp_path) not in text
+    assert os.uname().nodename not in text or len(os.uname().nodename) < 4
+    assert signal.SIGINT.name not in text

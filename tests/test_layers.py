@@ -1,0 +1,98 @@
+"""The layer rule: imports point down, flint stays in one room, an independent route never imports what it checks."""
+
+from __future__ import annotations
+
+import ast
+from pathlib import Path
+
+import pytest
+
+import ratomega
+
+ROOT = Path(ratomega.__file__).parent
+LAYERS = [
+    {"version", "errors"},
+    {"exact"},
+    {"diagrams"},
+    {"case"},
+    {"weights"},
+    {"detector"},
+    {"regulator"},
+    {"validator"},
+    {"results"},
+    {"pipeline"},
+    {"documents"},
+    {"desk"},
+    {"cli"},
+    {"__init__", "__main__"},
+]
+LEVEL = {room: level for level, rooms in enumerate(LAYERS) for room in rooms}
+MODULES = sorted(ROOT.rglob("*.py"))
+
+
+def imported(path):
+    """(module, names) of every import statement, also those inside functions."""
+    for node in ast.walk(ast.parse(path.read_text(encoding="utf-8"))):
+        if isinstance(node, ast.Import):
+            for alias in node.names:
+                yield alias.name
+        elif isinstance(node, ast.ImportFrom):
+            assert node.level == 0, f"{path}: relative import"
+            yield node.module
+
+
+def room(path):
+    return path.relative_to(ROOT).parts[0].removesuffix(".py")
+
+
+def test_every_module_has_a_room():
+    assert {room(path) for path in MODULES} == set(LEVEL)
+
+
+@pytest.mark.parametrize("path", MODULES, ids=lambda p: str(p.relative_to(ROOT)))
+def test_imports_point_down(path):
+    for name in imported(path):
+        if name == "ratomega" or name.startswith("ratomega."):
+            target = name.split(".")[1] if "." in name else "__init__"
+            assert LEVEL[target] <= LEVEL[room(path)], f"{path} imports {name}"
+
+
+@pytest.mark.parametrize("path", MODULES, ids=lambda p: str(p.relative_to(ROOT)))
+def test_flint_is_imported_in_exact_alone(path):
+    uses_flint = any(name.split(".")[0] == "flint" for name in imported(path))
+    assert not uses_flint or room(path) == "exact"
+
+
+def reached(start):
+    """Every module of the package that ``start`` imports, directly or not."""
+    found, todo = set(), [start]
+    while todo:
+        for name in imported(todo.pop()):
+            if not name.startswith("ratomega."):
+                continue
+            base = ROOT.joinpath(*name.split(".")[1:])
+            path = base.with_suffix(".py") if base.with_suffix(".py").exists() else base / "__init__.py"
+            if path not in found:
+                found.add(path)
+                todo.append(path)
+    return {room(path) for path in found}
+
+
+@pytest.mark.parametrize("path", sorted(ROOT.glob("validator/closed_forms*.py")), ids=lambda p: p.name)
+def test_closed_forms_share_no_code_with_the_sum(path):
+    assert not reached(path) & {"weights", "detector", "regulator", "pipeline"}
+
+
+def test_the_plain_reference_imports_nothing_from_the_package():
+    plain = Path(__file__).with_name("plain.py")
+    assert not any(name.split(".")[0] == "ratomega" for name in imported(plain))
+
+
+@pytest.mark.parametrize("path", MODULES, ids=lambda p: str(p.relative_to(ROOT)))
+def test_no_star_import_and_no_eval(path):
+    tree = ast.parse(path.read_text(encoding="utf-8"))
+    for node in ast.walk(tree):
+        assert not (isinstance(node, ast.ImportFrom) and any(a.name == "*" for a in node.names))
+        if isinstance(node, ast.Call) and isinstance(node.func, ast.Name):
+            assert node.func.id not in {"eval", "exec", "compile", "__import__"}
+    assert not any(name.split(".")[0] in {"pickle", "marshal", "shelve"} for name in imported(path))
