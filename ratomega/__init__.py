@@ -7,7 +7,7 @@
     ...     "node": [{"coulomb": ["1/3", "-1/3"]}],
     ... })
     >>> [str(coefficient.value) for coefficient in ratomega.limit(case)]
-    ['1', '9/16', '5373/43120']
+    ['1', '9/16', '23409/189728']
 
 The public API in one screen; nothing is defined here.
 """

@@ -12,7 +12,8 @@ and with contents phi(s) = a + (i - 1) eps1 + (j - 1) eps2 and eps = eps1 + eps2
     antifundamental   prod over boxes                                  phi + m
     fundamental       prod over boxes                                  phi - m + eps
 
-There is no extra sign. Reversing an edge with m -> eps - m changes q of its source by (-1)^(rank of its target).
+There is no extra sign. Reversing an edge with m -> eps - m flips the sign of every factor of N: q of the source changes
+by (-1)^(rank of the target), and q of the target by (-1)^(rank of the source).
 Source: Nekrasov hep-th/0206161; Flume, Poghossian hep-th/0208176; Bruzzo, Fucito, Morales, Tanzini hep-th/0211108.
 
 Every factor is root + p eps1 + q eps2 with integers p, q; the list of (p, q) depends on the diagrams alone.

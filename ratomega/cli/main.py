@@ -94,7 +94,7 @@ _probes = click.option(
 def detect(exchanges: int, as_json: bool, **case_options: Any) -> int:
     """List the singular configurations, the guilty factors and the clusters.
 
-    Example: ratomega detect u2-pure-b1 --charge 3
+    Example: ratomega detect u2-pure --charge 3
     """
     job = _job(**case_options)
     found, interrupted = _collect(job, job.scans(exchanges=exchanges), lambda report: report.charge)

@@ -43,7 +43,7 @@ def theory_text(case: Case) -> str:
     parts = []
     for node in case.theory.nodes:
         matter = [
-            f"{len(masses)} {name}"
+            f"{len(masses)} {name}{'s' if len(masses) > 1 else ''}"
             for name, masses in (
                 ("antifundamental", node.antifundamental),
                 ("fundamental", node.fundamental),

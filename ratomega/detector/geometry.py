@@ -61,7 +61,7 @@ def cluster_compactness(
         return Compactness(True, "an isolated point")
     found = list(resonances(weights.setting, charge))
     if not found:
-        return Compactness(True, "no Coulomb difference equals m*eps1 + n*eps2 with m, n >= 1 and m*n <= charge")
+        return Compactness(True, "no resonance m*eps1 + n*eps2 with m, n >= 1, m*n <= charge")
     if any(is_sink(weights, member) for member in members):
         return Compactness(True, "a member is a sink: all tangent weights of the component are negative there")
     return Compactness(False, f"no member is a sink; {resonance_text(weights.setting, found[0])}")

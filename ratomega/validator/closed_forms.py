@@ -100,7 +100,7 @@ def _product_form(
     if values:
         yield ClosedForm(
             "product over the parts of the quiver",
-            "Z is the product of the closed forms of the parts of the quiver that no edge joins.",
+            "Z is the product of the closed forms of the parts of the quiver that no edge joins",
             "elementary: every factor of a weight belongs to one part",
             values,
         )

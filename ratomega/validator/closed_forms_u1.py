@@ -71,11 +71,11 @@ def _chain_words(length: int, ends: Sequence[Rational | None]) -> tuple[str, str
     present = sum(end is not None for end in ends)
     if length == 1:
         return (
-            ("U(1) without matter", "Z = exp(q/(eps1 eps2)).", _NO_MATTER),
-            ("U(1) with one flavour", "Z = exp(q (a+m)/(eps1 eps2)), flavour factor phi + m.", _VERTEX_OPERATORS),
+            ("U(1) without matter", "Z = exp(q/(eps1 eps2))", _NO_MATTER),
+            ("U(1) with one flavour", "Z = exp(q (a+m)/(eps1 eps2)), flavour factor phi + m", _VERTEX_OPERATORS),
             (
                 "U(1) with two flavours",
-                "Z = (1+q)^((a+m1)(a+m2)/(eps1 eps2)), flavour factors phi + m1 and phi + m2.",
+                "Z = (1+q)^((a+m1)(a+m2)/(eps1 eps2)), flavour factors phi + m1 and phi + m2",
                 _VERTEX_OPERATORS,
             ),
         )[present]
@@ -89,7 +89,7 @@ def _chain_words(length: int, ends: Sequence[Rational | None]) -> tuple[str, str
         f"U(1) linear quiver of {length} nodes",
         "Z = prod over i <= j of (1 + s_i q_i...q_j)^(l_i r_j/(eps1 eps2)), s_1 = 1, else -1, l_1 = a_1 + M, "
         "l_i = a_i - a_(i-1) + m_(i-1), r_j = a_j - a_(j+1) + eps - m_j, r_n = a_n + M', "
-        f"edges i -> i+1 of mass m_i, flavour factors phi + M and phi + M' at the ends{heavy}.",
+        f"edges i -> i+1 of mass m_i, flavour factors phi + M and phi + M' at the ends{heavy}",
         _VERTEX_OPERATORS,
     )
 
@@ -132,7 +132,7 @@ def necklace_forms(point: LimitPoint, charges: Sequence[Charge]) -> Iterator[Clo
     if length == 1:
         words = (
             "U(1) with an adjoint",
-            "Z = prod over n >= 1 of (1 - q^n)^(-(m-eps1)(m-eps2)/(eps1 eps2)).",
+            "Z = prod over n >= 1 of (1 - q^n)^(-(m-eps1)(m-eps2)/(eps1 eps2))",
             "N. Nekrasov, A. Okounkov, arXiv hep-th/0306238 (eps1 = -eps2); " + _VERTEX_OPERATORS,
         )
     else:
@@ -140,7 +140,7 @@ def necklace_forms(point: LimitPoint, charges: Sequence[Charge]) -> Iterator[Clo
             f"U(1) necklace of {length} nodes",
             "Z = prod over arcs of (1 - q_arc)^(l_i r_j/(eps1 eps2)) times prod over k >= 1 of 1/(1 - Q^k), arcs i...j "
             "of every length, windings included, Q = q_1...q_n, l_i = a_i - a_(i-1) + m_(i-1), "
-            "r_j = a_j - a_(j+1) + eps - m_j, edges i -> i+1 of mass m_i.",
+            "r_j = a_j - a_(j+1) + eps - m_j, edges i -> i+1 of mass m_i",
             _VERTEX_OPERATORS,
         )
     yield ClosedForm(*words, total.with_signs(signs).coefficients)

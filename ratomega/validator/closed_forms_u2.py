@@ -55,7 +55,7 @@ def four_flavour_forms(point: LimitPoint, charges: Sequence[Charge]) -> Iterator
         "U(2) with four flavours, elementary block",
         "Z = (16 q_e/q)^(-a^2/(eps1 eps2)) (1-q)^((sum mu + eps)^2/(4 eps1 eps2)) "
         "theta_3^((2 sum mu^2 - eps^2)/(eps1 eps2)) where mu = m - eps/2 are 0, ±eps1/2, ±eps2/2, ±eps1/2±eps2/2, "
-        "q_e the nome of modulus q, theta_3 = sum_n q_e^(n^2).",
+        "q_e the nome of modulus q, theta_3 = sum_n q_e^(n^2)",
         "V. Fateev, A. Litvinov, A. Neveu, E. Onofri, arXiv 0902.1331; Al. Zamolodchikov 1986 (c = 1); "
         "R. Poghossian, arXiv 0909.3412",
         {charge: series.coefficients[charge[0]] for charge in charges},
@@ -73,7 +73,7 @@ def low_charge_forms(point: LimitPoint, charges: Sequence[Charge]) -> Iterator[C
         even, odd = _even_and_odd(masses, a_squared)
         yield ClosedForm(
             "U(2) at charge 1",
-            "Z_1 = (eps O - 2 E)/(eps1 eps2 (4a^2 - eps^2)) where prod_f (a + m_f) = E + a O, E and O even in a.",
+            "Z_1 = (eps O - 2 E)/(eps1 eps2 (4a^2 - eps^2)) where prod_f (a + m_f) = E + a O, E and O even in a",
             _SUM_OF_BOXES,
             {(1,): (eps * odd - 2 * even) / (scale * gap)},
         )
@@ -82,7 +82,7 @@ def low_charge_forms(point: LimitPoint, charges: Sequence[Charge]) -> Iterator[C
         value = 2 * (m - point.eps1) * (m - point.eps2) / scale * (1 + m * (eps - m) / gap)
         yield ClosedForm(
             "U(2) with an adjoint at charge 1",
-            "Z_1 = 2 (m-eps1)(m-eps2)/(eps1 eps2) (1 + m (eps-m)/(4a^2 - eps^2)).",
+            "Z_1 = 2 (m-eps1)(m-eps2)/(eps1 eps2) (1 + m (eps-m)/(4a^2 - eps^2))",
             _SUM_OF_BOXES,
             {(1,): value},
         )
@@ -92,7 +92,7 @@ def low_charge_forms(point: LimitPoint, charges: Sequence[Charge]) -> Iterator[C
         yield ClosedForm(
             "U(2) without matter at charge 2",
             "Z_2 = (8a^2 - 8 eps^2 - eps1 eps2)/(eps1^2 eps2^2 (4a^2 - eps^2)(4a^2 - (2 eps1 + eps2)^2)"
-            "(4a^2 - (eps1 + 2 eps2)^2)).",
+            "(4a^2 - (eps1 + 2 eps2)^2))",
             _SUM_OF_BOXES,
             {(2,): upper / lower},
         )

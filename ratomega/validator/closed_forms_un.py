@@ -32,14 +32,14 @@ def adjoint_forms(point: LimitPoint, charges: Sequence[Charge]) -> Iterator[Clos
     if mass in (0, point.eps):
         yield ClosedForm(
             f"U({node.rank}) with an adjoint of mass 0 or eps",
-            f"Z = prod over n >= 1 of (1 - q^n)^(-{node.rank}): Euler numbers of the moduli spaces.",
+            f"Z = prod over n >= 1 of (1 - q^n)^(-{node.rank}): Euler numbers of the moduli spaces",
             "C. Vafa, E. Witten, arXiv hep-th/9408074",
             _values(euler_product(Rational(-node.rank), order), charges),
         )
     elif mass in (point.eps1, point.eps2):
         yield ClosedForm(
             f"U({node.rank}) with an adjoint of mass eps1 or eps2",
-            "Z = 1: for every diagram a corner box makes a factor vanish.",
+            "Z = 1: for every diagram a corner box makes a factor vanish",
             "common practice",
             _values(Series.one(order), charges),
         )
@@ -51,7 +51,7 @@ def vanishing_forms(point: LimitPoint, charges: Sequence[Charge]) -> Iterator[Cl
     if len(point.nodes) == 1 and _without(node.flavours, [-a for a in node.coulomb]) is not None:
         yield ClosedForm(
             f"U({node.rank}) with flavours of masses -a",
-            "Z = 1 where the flavours contain phi - a for every colour: the first box of any diagram gives zero.",
+            "Z = 1 where every colour has its flavour factor phi - a: the first box of any diagram gives zero",
             "common practice",
             _values(Series.one(max(charge[0] for charge in charges)), charges),
         )
@@ -84,10 +84,10 @@ def truncation_forms(point: LimitPoint, charges: Sequence[Charge]) -> Iterator[C
                 order,
             )
             yield ClosedForm(
-                f"U({node.rank}) truncated to a hypergeometric series along {step_name}",
+                f"U({node.rank}) truncated to a hypergeometric series along {step_name}, colour {colour + 1}",
                 f"With flavours -a_1-{name}, -a_b (b > 1) and p further masses m_j, "
                 f"Z = pF(N-1)((a_1+m_j)/{step_name}; 1+(a_1-a_b+{name})/{step_name}; "
-                f"(-1)^N {step_name}^(p-N) q); here a_1 is the Coulomb parameter {first}, p = {len(rest)}.",
+                f"(-1)^N {step_name}^(p-N) q); here a_1 = {first}, p = {len(rest)}",
                 "common practice: the masses leave the one-row diagrams of one colour",
                 _values(series, charges),
             )

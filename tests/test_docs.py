@@ -1,0 +1,72 @@
+"""The documentation cannot rot: README's files are written, its commands run, its output compared."""
+
+from __future__ import annotations
+
+import doctest
+import re
+import shlex
+import subprocess
+import sys
+from pathlib import Path
+
+import pytest
+
+import ratomega
+from ratomega.cli.main import cli
+
+ROOT = Path(__file__).resolve().parent.parent
+README = (ROOT / "README.md").read_text(encoding="utf-8")
+FILES = re.findall(r"<!-- file: (\S+) -->\n```toml\n(.*?)```", README, re.DOTALL)
+CONSOLE = re.findall(r"```console\n\$ (.*?)\n(.*?)```", README, re.DOTALL)
+
+
+def run(command, folder):
+    words = shlex.split(command)
+    assert words[0] == "ratomega"
+    return subprocess.run(
+        [sys.executable, "-m", *words], capture_output=True, text=True, encoding="utf-8", cwd=folder, check=False
+    )
+
+
+@pytest.fixture
+def folder(tmp_path):
+    for name, text in FILES:
+        (tmp_path / name).write_text(text, encoding="utf-8")
+    return tmp_path
+
+
+def test_the_readme_has_examples():
+    assert FILES
+    assert len(CONSOLE) >= 2
+
+
+@pytest.mark.parametrize(("command", "output"), CONSOLE, ids=[command for command, _ in CONSOLE])
+def test_console_examples_print_what_the_readme_shows(command, output, folder):
+    assert run(command, folder).stdout == output
+
+
+def test_python_examples():
+    found = doctest.testfile(str(ROOT / "README.md"), module_relative=False, encoding="utf-8")
+    assert found.attempted > 5
+    assert found.failed == 0
+
+
+@pytest.mark.parametrize("name", sorted(cli.commands))
+def test_the_example_in_every_help_text_runs(name, tmp_path):
+    help_text = run(f"ratomega {name} --help", tmp_path).stdout
+    example = re.search(r"Example: (ratomega .*)", help_text)
+    assert example, help_text
+    assert run(example[1], tmp_path).returncode == 0
+
+
+def test_the_first_command_line_is_in_the_readme_and_names_a_bundled_case():
+    block = re.search(r"```sh\n(python3 -m venv .*?)\n```", README)
+    assert block
+    last = block[1].split("&& ")[-1]
+    assert last.split()[:2] == ["ratomega", "limit"]
+    assert last.split()[2] in ratomega.bundled_names()
+
+
+def test_every_option_is_documented():
+    options = {o for command in cli.commands.values() for p in command.params for o in p.opts if o.startswith("--")}
+    assert all(option in README for option in options), options
