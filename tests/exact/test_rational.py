@@ -129,7 +129,7 @@ def test_any_text_is_a_number_or_refused(text):
     assert as_fraction(value) == Fraction(text.replace(" ", "")) if "/" not in text else value.q >= 1
 
 
-NOT_EXACT = ["2/4", "1/1", "1/0", "1/-2", "+1", "1.0", " 1", "", "-", "/", "x", "1/", "0/5", "-0", "01", "1/02", "٣", "1\n"]
+NOT_EXACT = ["2/4", "1/1", "1/0", "1/-2", "+1", "1.0", " 1", "", "-", "/", "x", "1/", "0/5", "-0", "01", "٣", "1\n"]
 
 
 @pytest.mark.parametrize("text", NOT_EXACT)
