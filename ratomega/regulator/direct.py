@@ -3,7 +3,7 @@
 Every weight is expanded to exactly the depth that its own pole and the wanted last power need.
 Cost: one product of linear factors and one short series division a configuration.
 
-The sum can be taken in parts, over ranges of the configurations in their order; ``merged`` puts the parts together again.
+The sum can be taken in parts, over ranges of the configurations in their order; ``merged`` puts the parts together.
 """
 
 from __future__ import annotations
