@@ -85,7 +85,7 @@ def configurations(ranks: Sequence[int], charge: Charge, *, start: int = 0) -> I
     >>> len(list(configurations([2], (3,)))), next(configurations([1, 1], (1, 2)))
     (10, (((1,),), ((2,),)))
     >>> next(configurations([2], (3,), start=7))
-    (((2, 1), ()),)
+    (((3,), ()),)
     """
     later = [tuple(node_diagrams(rank, k)) for rank, k in zip(ranks[1:], charge[1:], strict=True)]
     first, rest = divmod(start, prod(len(node) for node in later))

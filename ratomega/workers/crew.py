@@ -152,10 +152,10 @@ class Crew:
     def __enter__(self) -> Self:
         return self
 
-    def __exit__(self, kind: type[BaseException] | None, *_: object) -> None:
-        self.close(now=kind is not None or bool(self._under_way))
+    def __exit__(self, *_: object) -> None:
+        self.close()
 
-    def close(self, *, now: bool = True) -> None:
+    def close(self) -> None:
         """Stop. Results that came back meanwhile are still taken in."""
         try:
             back = {f for f in self._under_way if f.done() and not f.cancelled() and f.exception() is None}
@@ -163,7 +163,7 @@ class Crew:
             self._keep()
         finally:
             self._under_way.clear()
-            self._hands.close(now=now)
+            self._hands.close()
             if self._store is not None:
                 self._store.close()
 

@@ -45,8 +45,8 @@ class Hands(Protocol):
 
     def lost(self, future: Future[str], error: Exception) -> Fate: ...
 
-    def close(self, *, now: bool) -> None:
-        """The end; with ``now`` what is under way is given up. May be called more than once."""
+    def close(self) -> None:
+        """The end; what is under way is given up. May be called more than once."""
         ...
 
 
@@ -69,7 +69,7 @@ class ThisProcess:
     def lost(self, future: Future[str], error: Exception) -> Fate:
         raise error
 
-    def close(self, *, now: bool) -> None:
+    def close(self) -> None:
         pass
 
 
@@ -107,7 +107,7 @@ class LentExecutor:
         self._under_way.discard(future)
         raise _failure(error) from error
 
-    def close(self, *, now: bool) -> None:
+    def close(self) -> None:
         for future in self._under_way:
             future.cancel()
         self._under_way.clear()

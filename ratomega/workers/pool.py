@@ -50,9 +50,7 @@ class OwnPool:
 
     def submit(self, chunk: Chunk) -> Future[str] | None:
         while self.room():
-            if len(self._lanes) < self._workers:
-                self._lanes.append(_Lane())
-            lane = min((lane for lane in self._lanes if lane.room()), key=lambda lane: len(lane.queue))
+            lane = self._freest()
             try:
                 future = lane.submit(chunk)
             except BrokenExecutor:
@@ -61,6 +59,15 @@ class OwnPool:
             self._lane_of[future] = lane
             return future
         return None
+
+    def _freest(self) -> _Lane:
+        """A lane that is idle, a new one, or the shortest queue; there is room."""
+        lane = min((lane for lane in self._lanes if lane.room()), key=lambda lane: len(lane.queue), default=None)
+        if len(self._lanes) < self._workers and (lane is None or lane.queue):
+            lane = _Lane()
+            self._lanes.append(lane)
+        assert lane is not None
+        return lane
 
     def _refused(self, lane: _Lane) -> None:
         """The process of the lane is dead. What it still had is on its way to ``lost``; without that it died idle."""
@@ -86,7 +93,7 @@ class OwnPool:
 
     def _drop(self, lane: _Lane) -> None:
         lane.dead = True
-        lane.close(now=True)
+        lane.close()
         self._lanes.remove(lane)
 
     @property
@@ -99,11 +106,12 @@ class OwnPool:
             'if __name__ == "__main__":, because every worker process imports it'
         )
 
-    def close(self, *, now: bool) -> None:
+    def close(self) -> None:
+        # First all leashes, so that the workers end at the same time.
         for lane in self._lanes:
-            lane.end(now=now)
+            lane.let_go()
         for lane in self._lanes:
-            lane.close(now=now)
+            lane.close()
         self._lanes.clear()
         self._lane_of.clear()
 
@@ -140,15 +148,14 @@ class _Lane:
         self.queue.append(future)
         return future
 
-    def end(self, *, now: bool) -> None:
-        if now:
-            self._our_end.close()
-        self._executor.shutdown(wait=False, cancel_futures=True)
-
-    def close(self, *, now: bool) -> None:
-        self.end(now=now)
-        self._executor.shutdown(wait=True)
+    def let_go(self) -> None:
+        """Let the process end, whatever it has in hand."""
         self._our_end.close()
+
+    def close(self) -> None:
+        """Let the process end, and wait for that."""
+        self.let_go()
+        self._executor.shutdown(wait=True, cancel_futures=True)
         self._their_end.close()
 
 

@@ -1,8 +1,8 @@
 """The store of finished chunks: one SQLite file for one case, filled as results arrive.
 
 A file is taken when it is new or empty, or a sound store of the same case, program and scheme. Any other is refused
-with a reason and left as it is. Results stand compressed, each with a checksum over its key and text, all checked before
-any work is done. Two runs of one case may use a store at the same time: equal keys have equal results.
+with a reason and left as it is. Results stand compressed, each with a checksum over its key and text; all are checked
+before any work is done. Two runs of one case may use a store at the same time: equal keys have equal results.
 """
 
 from __future__ import annotations
