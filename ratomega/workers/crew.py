@@ -91,6 +91,8 @@ class Crew:
     def _advance(self) -> list[int]:
         """Give out what there is room for, wait until something comes back; the numbers of what arrived."""
         self._give_out()
+        if not self._under_way:
+            raise RuntimeError("hands that have nothing in hand took no chunk")
         back, _ = wait(self._under_way, return_when=FIRST_COMPLETED)
         return self._collect(back)
 

@@ -25,6 +25,8 @@ __all__ = ["OwnPool"]
 # One chunk in hand and one that waits, so that a worker never waits for us.
 DEPTH = 2
 MOST_IDLE_DEATHS = 10
+# In a row, without any chunk done in between.
+MOST_FAILED_STARTS = 5
 _ONE_THREAD = (
     "OMP_NUM_THREADS",
     "OPENBLAS_NUM_THREADS",
@@ -43,7 +45,7 @@ class OwnPool:
         self._lanes: list[_Lane] = []
         self._lane_of: dict[Future[str], _Lane] = {}
         self._idle_deaths = 0
-        self._ever_settled = False
+        self._failed_starts = 0
 
     def room(self) -> bool:
         return len(self._lanes) < self._workers or any(lane.room() for lane in self._lanes)
@@ -70,7 +72,8 @@ class OwnPool:
         return lane
 
     def _refused(self, lane: _Lane) -> None:
-        """The process of the lane is dead. What it still had is on its way to ``lost``; without that it died idle."""
+        """The process of the lane is dead. What it still had comes to ``settled`` or ``lost``; then, at the latest, the
+        lane goes. When nothing was lost it died idle."""
         lane.dead = True
         if not lane.queue:
             self._drop(lane)
@@ -79,16 +82,28 @@ class OwnPool:
                 raise WorkerError(f"{self._idle_deaths} worker processes died without work in hand")
 
     def settled(self, future: Future[str]) -> None:
-        self._ever_settled = True
-        self._lane_of.pop(future).queue.remove(future)
+        self._failed_starts = 0
+        lane = self._lane_of.pop(future)
+        lane.queue.remove(future)
+        if lane.dead:
+            self._refused(lane)
 
     def lost(self, future: Future[str], error: Exception) -> Fate:
         if not isinstance(error, BrokenExecutor):
             raise error
         lane = self._lane_of.pop(future)
-        if lane.suspect is None:
-            lane.suspect = lane.queue[0]
+        if not lane.judged:
+            lane.judged = True
+            if lane.ready():
+                lane.suspect = lane.queue[0]
+            else:
+                self._failed_starts += 1
             self._drop(lane)
+            if self._failed_starts >= MOST_FAILED_STARTS:
+                raise WorkerError(
+                    f"{self._failed_starts} worker processes ended before they were ready; a script that asks for "
+                    'workers must do so below if __name__ == "__main__":, because every worker process imports it'
+                )
         return Fate.SUSPECT if future is lane.suspect else Fate.BYSTANDER
 
     def _drop(self, lane: _Lane) -> None:
@@ -96,15 +111,7 @@ class OwnPool:
         lane.close()
         self._lanes.remove(lane)
 
-    @property
-    def advice(self) -> str:
-        """What to add to a complaint about workers that die."""
-        if self._ever_settled:
-            return "memory may be short"
-        return (
-            "no worker ever finished one; a script that asks for workers must do so below "
-            'if __name__ == "__main__":, because every worker process imports it'
-        )
+    advice = "memory may be short"
 
     def close(self) -> None:
         # First all leashes, so that the workers end at the same time.
@@ -125,11 +132,11 @@ class _Lane:
 
     def __init__(self) -> None:
         self.queue: list[Future[str]] = []
-        self.dead = False
+        self.dead = self.judged = False
         self.suspect: Future[str] | None = None
         # A fresh process, not a fork: a fork copies the locks of our threads in whatever state they are.
         context = multiprocessing.get_context("spawn")
-        self._their_end, self._our_end = context.Pipe(duplex=False)
+        self._their_end, self._our_end = context.Pipe()
         self._executor = ProcessPoolExecutor(1, context, initializer=_settle_in, initargs=(self._their_end,))
         self._started = False
 
@@ -147,6 +154,13 @@ class _Lane:
             self._started = True
         self.queue.append(future)
         return future
+
+    def ready(self) -> bool:
+        """Did the process, which is dead by now, ever get so far as to take chunks?"""
+        try:
+            return self._our_end.poll() and bool(self._our_end.recv_bytes())
+        except (EOFError, OSError):
+            return False
 
     def let_go(self) -> None:
         """Let the process end, whatever it has in hand."""
@@ -182,8 +196,9 @@ def _surroundings_of_a_worker() -> Iterator[None]:
 
 
 def _settle_in(leash: Connection) -> None:
-    """In the worker, before its first chunk."""
+    """In the worker, before its first chunk. Its last words are that it is ready."""
     signal.signal(signal.SIGINT, signal.SIG_IGN)
+    leash.send_bytes(b"ready")
     threading.Thread(target=_exit_with, args=(leash,), daemon=True).start()
 
 

@@ -63,6 +63,8 @@ class Store:
         except (sqlite3.Error, ValueError) as error:
             raise _refusal(f"the store cannot be opened: {error}", label) from None
         try:
+            # A file from elsewhere may bring triggers and views along.
+            connection.execute("PRAGMA trusted_schema = OFF")
             # Exclusive, so that of two runs that find it empty one makes it and the other sees it made.
             connection.execute("BEGIN EXCLUSIVE")
             _make_or_check(connection, identity(case), label)

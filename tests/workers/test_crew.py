@@ -101,13 +101,14 @@ def test_a_worker_that_dies_idle_costs_nothing(folder):
     with Crew(OwnPool(1)) as crew:
         results = crew.results(chunks)
         found = [next(results)]
+        # It did all that it had; the next chunk is given to a process that is dead already.
         until(lambda: len(traces(folder)) == 2)
-        # Both that it had are done; the next is given to a process that is dead already.
         (process,) = multiprocessing.active_children()
         os.kill(process.pid, signal.SIGKILL)
         process.join()
         found += results
     assert found == expected(chunks)
+    assert [name for _, name in traces(folder)] == [chunk.name for chunk in chunks]
 
 
 def test_a_chunk_that_always_kills_ends_in_an_error(folder):
