@@ -16,7 +16,7 @@ from ratomega.case.bundled import bundled_names
 from ratomega.case.case import Case
 from ratomega.case.reading import load_case
 from ratomega.documents import load_result, to_json
-from ratomega.errors import InputError, PathError, Problem, RatomegaError
+from ratomega.errors import InputError, PathError, Problem, RatomegaError, WorkerError
 from ratomega.pipeline import clusters, detect, limit, validate
 from ratomega.results import Coefficient, DetectResult, LimitResult, ValidateResult
 from ratomega.validator.verdict import Check, Kind, Verdict
@@ -35,6 +35,7 @@ __all__ = [
     "RatomegaError",
     "ValidateResult",
     "Verdict",
+    "WorkerError",
     "__version__",
     "bundled_names",
     "clusters",

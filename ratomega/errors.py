@@ -3,6 +3,7 @@
 ``RatomegaError``
     ├── ``InputError``        the input is wrong (exit status 2); carries one ``Problem`` per mistake
     ├── ``PathError``         the chosen path cannot be used (exit status 2)
+    ├── ``WorkerError``       the worker processes or the executor failed (exit status 4)
     └── ``PrecisionError``    a coefficient was asked beyond the known precision of a series
 """
 
@@ -12,7 +13,7 @@ from collections.abc import Iterable
 from dataclasses import dataclass
 from typing import Self
 
-__all__ = ["InputError", "PathError", "PrecisionError", "Problem", "RatomegaError"]
+__all__ = ["InputError", "PathError", "PrecisionError", "Problem", "RatomegaError", "WorkerError"]
 
 
 @dataclass(frozen=True, slots=True)
@@ -49,6 +50,10 @@ class InputError(RatomegaError):
             raise ValueError("an InputError needs at least one problem")
         super().__init__("\n".join(problem.text() for problem in self.problems))
 
+    def __reduce__(self) -> tuple[type[Self], tuple[tuple[Problem, ...]]]:
+        # An exception is pickled by its text unless told otherwise; this one crosses processes with its problems.
+        return type(self), (self.problems,)
+
     @classmethod
     def single(cls, message: str, where: str = "") -> Self:
         return cls([Problem(message, where)])
@@ -56,6 +61,12 @@ class InputError(RatomegaError):
 
 class PathError(InputError):
     """The path to the limit point cannot be used: it stays on the ratio, or needs a tilt that was forbidden."""
+
+
+class WorkerError(RatomegaError):
+    """The work could not be brought to its end by the workers; the message says what was kept."""
+
+    exit_status = 4
 
 
 class PrecisionError(RatomegaError):

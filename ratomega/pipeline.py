@@ -7,6 +7,8 @@ from __future__ import annotations
 
 import os
 from collections.abc import Callable, Iterator, Mapping
+from concurrent.futures import Executor
+from contextlib import nullcontext
 from dataclasses import dataclass
 
 import networkx
@@ -39,12 +41,18 @@ from ratomega.validator.comparison import check_adjoint_clusters, check_closed_f
 from ratomega.validator.finiteness import certificate, check_orders
 from ratomega.version import VERSION
 from ratomega.weights import Factor, Weights
+from ratomega.workers.charges import charge_cost, charge_limits, cut
+from ratomega.workers.crew import Crew
+from ratomega.workers.hands import Hands, LentExecutor, ThisProcess
+from ratomega.workers.pool import OwnPool
+from ratomega.workers.store import Store
 
 __all__ = ["DEFAULT_PROBES", "MOST_CONFIGURATIONS", "Job", "clusters", "detect", "limit", "validate"]
 
 MOST_CONFIGURATIONS = 1_000_000
 DEFAULT_PROBES = 3
 MOST_TERMS = 60
+MOST_WORKERS = 1024
 
 CaseSource = str | os.PathLike[str] | Mapping[str, object] | Case
 Watcher = Callable[[Charge], None]
@@ -92,17 +100,57 @@ class Job:
             raise InputError.single(message, "probes")
         return tuple(Weights(probe_setting(self.case, n)) for n in range(1, number + 1))
 
-    def limits(self, *, probes: int, last: int = 0, always_probe: bool = False) -> Iterator[ChargeLimit]:
-        """The limits charge by charge."""
+    def limits(
+        self, *, probes: int, last: int = 0, always_probe: bool = False, crew: Crew | None = None
+    ) -> Iterator[ChargeLimit]:
+        """The limits charge by charge; computed here, or in chunks by a crew. They do not depend on which."""
         further = self.probes(probes)
+        if crew is not None:
+            chunks = cut(self.case, self.setting, last=last, probes=probes, always_probe=always_probe)
+            yield from charge_limits(self.setting, [p.setting for p in further], chunks, crew.results(chunks))
+            return
         for charge in self.case.charges:
             yield charge_limit(self.weights, charge, further, last=last, always_probe=always_probe)
+
+    def cost(self, charge: Charge) -> float:
+        """About how long one charge takes on one path, in seconds of some machine: for estimates of what is left."""
+        return charge_cost(self.case.theory, charge)
 
     def scans(self, *, exchanges: int = 0) -> Iterator[ChargeReport]:
         """The detector's reports charge by charge; exchange edges in clusters of at most ``exchanges`` members."""
         for charge in self.case.charges:
             found = tuple(scan(self.weights, charge))
             yield _charge_report(self.weights, charge, found, exchanges)
+
+
+    def crew(
+        self,
+        *,
+        workers: int | None = None,
+        executor: Executor | LentExecutor | None = None,
+        keep: str | os.PathLike[str] | None = None,
+    ) -> Crew | None:
+        """Who does the work, by the options of ``limit``; None when it is done here and nothing is kept."""
+        if workers is not None and not (_is_whole(workers) and 1 <= workers <= MOST_WORKERS):
+            raise InputError.single(f"the number of workers is between 1 and {MOST_WORKERS}, not {workers}", "workers")
+        if executor is not None and not isinstance(executor, (Executor, LentExecutor)):
+            message = f"an executor is a concurrent.futures.Executor, not {type(executor).__name__}"
+            raise InputError.single(message, "executor")
+        if workers is None and executor is None and keep is None:
+            return None
+        store = None if keep is None else Store.open(keep, self.case)
+        hands: Hands
+        if isinstance(executor, LentExecutor):
+            hands = executor
+        elif executor is not None:
+            hands = LentExecutor(executor, None if workers is None else lambda: workers)
+        else:
+            hands = ThisProcess() if workers is None else OwnPool(workers)
+        return Crew(hands, store)
+
+
+def _is_whole(value: object) -> bool:
+    return isinstance(value, int) and not isinstance(value, bool)
 
 
 def path_record(setting: Setting) -> PathRecord:
@@ -118,12 +166,20 @@ def limit(
     allow_tilt: bool = True,
     most_configurations: int = MOST_CONFIGURATIONS,
     watch: Watcher | None = None,
+    workers: int | None = None,
+    executor: Executor | None = None,
+    keep: str | os.PathLike[str] | None = None,
 ) -> LimitResult:
     """The exact limit of every coefficient of Z up to the case's charge, with its certificate.
 
     ``source`` is a case, a mapping, a file or the name of a bundled case. ``terms=n`` adds the expansion on the own
     path up to t^n. ``probes`` further paths are tried where compactness does not prove path-independence. ``watch`` is
     called with every finished charge. Raises ``InputError`` for bad input; a surviving pole is a result, not an error.
+
+    ``workers=n`` does the sum in n processes, which are started again when they die; ``executor`` does it in one of the
+    caller's, which stays the caller's (``workers`` then says how many workers it has, if that is to be known). ``keep``
+    names a file in which finished parts are kept, so that a run which was ended goes on from there. The result is the
+    same with all of them. Raises ``WorkerError`` when workers or executor fail for good.
 
     Cost: one pass over all configurations, and one more for every further path where paths are probed.
 
@@ -134,10 +190,11 @@ def limit(
     job = Job.prepare(source, allow_tilt=allow_tilt, most_configurations=most_configurations)
     last = checked_terms(terms)
     found = []
-    for one in job.limits(probes=probes, last=last):
-        found.append(one)
-        if watch is not None:
-            watch(one.charge)
+    with job.crew(workers=workers, executor=executor, keep=keep) or nullcontext() as crew:
+        for one in job.limits(probes=probes, last=last, crew=crew):
+            found.append(one)
+            if watch is not None:
+                watch(one.charge)
     return limit_result(job, found, terms=terms)
 
 
@@ -223,17 +280,22 @@ def validate(
     allow_tilt: bool = True,
     most_configurations: int = MOST_CONFIGURATIONS,
     watch: Watcher | None = None,
+    workers: int | None = None,
+    executor: Executor | None = None,
+    keep: str | os.PathLike[str] | None = None,
 ) -> ValidateResult:
     """Every check that applies to the case: finiteness, further paths, equal orders, closed forms.
 
     Further paths are run here also where compactness proves the outcome. A check that does not apply is left out.
+    ``workers``, ``executor`` and ``keep`` are those of ``limit``.
     """
     job = Job.prepare(source, allow_tilt=allow_tilt, most_configurations=most_configurations)
     found = []
-    for one in job.limits(probes=probes, always_probe=True):
-        found.append(one)
-        if watch is not None:
-            watch(one.charge)
+    with job.crew(workers=workers, executor=executor, keep=keep) or nullcontext() as crew:
+        for one in job.limits(probes=probes, always_probe=True, crew=crew):
+            found.append(one)
+            if watch is not None:
+                watch(one.charge)
     return validate_result(job, found)
 
 

@@ -20,6 +20,7 @@ LAYERS = [
     {"regulator"},
     {"validator"},
     {"results"},
+    {"workers"},
     {"pipeline"},
     {"documents"},
     {"desk"},

@@ -1,8 +1,8 @@
 """The command line: ``ratomega detect | limit | validate CASE`` and ``ratomega cases``.
 
 Results go to standard output, everything else to standard error. Exit status: 0 done; 1 a pole survives, a limit is
-path-dependent or a check is refuted; 2 the input is wrong; 3 finiteness or path-independence stayed undecided; 130
-interrupted, after printing the finished charges.
+path-dependent or a check is refuted; 2 the input is wrong; 3 finiteness or path-independence stayed undecided; 4 the
+workers failed; 130 interrupted, after printing the finished charges.
 """
 
 from __future__ import annotations
@@ -11,7 +11,9 @@ import json
 import os
 import re
 import sys
-from collections.abc import Callable, Iterable, Sequence
+import time
+from collections.abc import Callable, Iterable, Iterator, Sequence
+from contextlib import contextmanager, nullcontext
 from typing import Any, NoReturn, TypeVar
 
 import click
@@ -22,7 +24,7 @@ from ratomega.case.reading import case_from_mapping, case_to_mapping, load_case
 from ratomega.desk.text import charge_word, detect_text, limit_text, table, theory_text, validate_text
 from ratomega.diagrams.tuples import Charge
 from ratomega.documents import Result, error_document, to_json
-from ratomega.errors import InputError
+from ratomega.errors import InputError, RatomegaError, WorkerError
 from ratomega.exact.rational import exact_text
 from ratomega.pipeline import (
     DEFAULT_PROBES,
@@ -34,6 +36,8 @@ from ratomega.pipeline import (
     validate_result,
 )
 from ratomega.version import VERSION
+from ratomega.workers.cluster import cluster_hands
+from ratomega.workers.crew import Crew, Progress
 
 __all__ = ["main"]
 
@@ -82,6 +86,17 @@ _probes = click.option(
 )
 
 
+def _workers(function: Callable[..., Any]) -> Callable[..., Any]:
+    """The options that say who does the work."""
+    for decorate in (
+        click.option("--keep", metavar="FILE", help="Keep finished parts in FILE, and go on from what is there."),
+        click.option("--cluster", metavar="ADDRESS", help="Work on the dask cluster with this scheduler."),
+        click.option("--workers", type=int, metavar="N", help="Work in N processes."),
+    ):
+        function = decorate(function)
+    return function
+
+
 @cli.command()
 @_common
 @click.option(
@@ -104,29 +119,44 @@ def detect(exchanges: int, as_json: bool, **case_options: Any) -> int:
 @cli.command()
 @_common
 @_probes
+@_workers
 @click.option("--terms", type=int, metavar="N", help="Also the expansion in t up to t^N.")
-def limit(probes: int, terms: int | None, as_json: bool, **case_options: Any) -> int:
+def limit(
+    probes: int,
+    terms: int | None,
+    workers: int | None,
+    cluster: str | None,
+    keep: str | None,
+    as_json: bool,
+    **case_options: Any,
+) -> int:
     """Take the limit of every coefficient exactly, with a certificate.
 
     Example: ratomega limit b1-four-flavours --charge 2
     """
     last = checked_terms(terms)
     job = _job(**case_options)
-    found, interrupted = _collect(job, job.limits(probes=probes, last=last), lambda one: one.charge)
+    with _crew(job, workers, cluster, keep) as crew:
+        limits = job.limits(probes=probes, last=last, crew=crew)
+        found, interrupted = _collect(job, limits, lambda one: one.charge, crew)
     return _finish(limit_result(job, found, terms=terms, partial=interrupted), limit_text, as_json, interrupted)
 
 
 @cli.command()
 @_common
 @_probes
-def validate(probes: int, as_json: bool, **case_options: Any) -> int:
+@_workers
+def validate(
+    probes: int, workers: int | None, cluster: str | None, keep: str | None, as_json: bool, **case_options: Any
+) -> int:
     """Check finiteness, further paths, and closed forms where one applies.
 
     Example: ratomega validate b1-four-flavours --charge 2
     """
     job = _job(**case_options)
-    limits = job.limits(probes=probes, always_probe=True)
-    found, interrupted = _collect(job, limits, lambda one: one.charge)
+    with _crew(job, workers, cluster, keep) as crew:
+        limits = job.limits(probes=probes, always_probe=True, crew=crew)
+        found, interrupted = _collect(job, limits, lambda one: one.charge, crew)
     return _finish(validate_result(job, found, partial=interrupted), validate_text, as_json, interrupted)
 
 
@@ -194,22 +224,84 @@ def _charge(text: str) -> int | list[int]:
     return bounds if "," in text else bounds[0]
 
 
-def _collect(job: Job, items: Iterable[Item], charge_of: Callable[[Item], Charge]) -> tuple[list[Item], bool]:
+@contextmanager
+def _crew(job: Job, workers: int | None, cluster: str | None, keep: str | None) -> Iterator[Crew | None]:
+    """Who does the work, by the options; None when it is done here and nothing is kept."""
+    if cluster is None:
+        crew = job.crew(workers=workers, keep=keep)
+        with crew or nullcontext():
+            yield crew
+        return
+    if workers is not None:
+        raise InputError.single("a cluster has its own workers; leave one of --workers and --cluster out", "--workers")
+    with cluster_hands(cluster) as hands:
+        crew = job.crew(executor=hands, keep=keep)
+        with crew or nullcontext():
+            yield crew
+
+
+def _collect(
+    job: Job, items: Iterable[Item], charge_of: Callable[[Item], Charge], crew: Crew | None = None
+) -> tuple[list[Item], bool]:
     """Everything that was finished, and whether Ctrl-C came in between. Shows progress on a terminal."""
     found: list[Item] = []
-    watched = sys.stderr.isatty()
+    line = _Line()
     total = len(job.case.charges)
+    costs = [job.cost(charge) for charge in job.case.charges]
+    start = time.monotonic()
+    if crew is not None:
+        crew.watch = lambda progress: line.show(_chunks_text(progress))
     try:
         for item in items:
             found.append(item)
-            if watched:
-                click.echo(f"\rcharge {charge_word(charge_of(item))}: {len(found)} of {total} ", err=True, nl=False)
+            if crew is None:
+                done = sum(costs[: len(found)])
+                left = (time.monotonic() - start) * (sum(costs) - done) / done
+                line.show(f"charge {charge_word(charge_of(item))}: {len(found)} of {total}{_left_text(left)}")
     except KeyboardInterrupt:
-        click.echo(f"\ninterrupted: {len(found)} of {total} charges were finished and are printed", err=True)
+        kept = ""
+        if crew is not None:
+            crew.close()
+            kept = f"; {crew.kept_text()}"
+        line.clear()
+        click.echo(f"interrupted: {len(found)} of {total} charges were finished and are printed{kept}", err=True)
         return found, True
-    if watched:
-        click.echo("\r" + " " * 40 + "\r", err=True, nl=False)
+    line.clear()
     return found, False
+
+
+def _chunks_text(progress: Progress) -> str:
+    left = "" if progress.seconds_left is None else _left_text(progress.seconds_left)
+    return f"chunk {progress.done} of {progress.total}{left}"
+
+
+def _left_text(seconds: float) -> str:
+    """How long it will still take, in words; nothing where that is next to nothing."""
+    whole = round(seconds)
+    if whole < 2:
+        return ""
+    if whole < 120:
+        return f", about {whole} s left"
+    minutes = round(seconds / 60)
+    return f", about {minutes} min left" if minutes < 120 else f", about {round(seconds / 3600)} h left"
+
+
+class _Line:
+    """One line on standard error that is written over and over; nothing unless that is a terminal."""
+
+    def __init__(self) -> None:
+        self._on = sys.stderr.isatty()
+        self._width = 0
+
+    def show(self, text: str) -> None:
+        if self._on:
+            click.echo("\r" + text.ljust(self._width), err=True, nl=False)
+            self._width = len(text)
+
+    def clear(self) -> None:
+        if self._width:
+            click.echo("\r" + " " * self._width + "\r", err=True, nl=False)
+            self._width = 0
 
 
 ResultType = TypeVar("ResultType", bound=Result)
@@ -220,10 +312,11 @@ def _finish(result: ResultType, write: Callable[[ResultType], str], as_json: boo
     return INTERRUPTED if interrupted else result.exit_status
 
 
-def _fail(error: InputError, as_json: bool) -> int:
+def _fail(error: RatomegaError, as_json: bool) -> int:
+    given = error if isinstance(error, InputError) else InputError.single(str(error))
     if as_json:
-        click.echo(json.dumps(error_document(error), indent=1, ensure_ascii=False))
-    for problem in error.problems:
+        click.echo(json.dumps(error_document(given), indent=1, ensure_ascii=False))
+    for problem in given.problems:
         click.echo(f"ratomega: {problem.text()}", err=True)
     return error.exit_status
 
@@ -235,7 +328,7 @@ def main(arguments: Sequence[str] | None = None) -> NoReturn:
     try:
         status = cli.main(args=words, prog_name="ratomega", standalone_mode=False)
         sys.stdout.flush()
-    except InputError as error:
+    except (InputError, WorkerError) as error:
         status = _fail(error, as_json)
     except click.ClickException as error:
         where = error.ctx.command_path if isinstance(error, click.UsageError) and error.ctx is not None else ""

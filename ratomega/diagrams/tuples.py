@@ -6,7 +6,9 @@ A configuration is a tuple over nodes of tuples over colours of diagrams.
 from __future__ import annotations
 
 from collections.abc import Iterator, Sequence
-from itertools import product
+from functools import lru_cache
+from itertools import islice, product
+from math import prod
 
 from ratomega.diagrams.young import Diagram, diagrams_of_size
 
@@ -44,20 +46,53 @@ def splittings(n: int, parts: int) -> Iterator[tuple[int, ...]]:
             yield (first, *rest)
 
 
-def node_diagrams(rank: int, charge: int) -> Iterator[NodeDiagrams]:
-    """All tuples of ``rank`` diagrams with ``charge`` boxes in total."""
-    pool = {n: tuple(diagrams_of_size(n)) for n in range(charge + 1)}
+def node_diagrams(rank: int, charge: int, *, start: int = 0) -> Iterator[NodeDiagrams]:
+    """All tuples of ``rank`` diagrams with ``charge`` boxes in total, from number ``start`` on."""
+    if rank == 1:
+        yield from ((diagram,) for diagram in diagrams_of_size(charge, start=start))
+        return
     for sizes in splittings(charge, rank):
-        yield from product(*(pool[n] for n in sizes))
+        pools = [_pool(n) for n in sizes]
+        here = prod(len(diagrams) for diagrams in pools)
+        if start >= here:
+            start -= here
+            continue
+        yield from _product_from(pools, start)
+        start = 0
 
 
-def configurations(ranks: Sequence[int], charge: Charge) -> Iterator[Configuration]:
-    """All configurations of the given charge, in a fixed order.
+@lru_cache(maxsize=64)
+def _pool(n: int) -> tuple[Diagram, ...]:
+    return tuple(diagrams_of_size(n))
+
+
+def _product_from(pools: Sequence[Sequence[Diagram]], start: int) -> Iterator[NodeDiagrams]:
+    """``itertools.product`` from number ``start`` on, reached without walking there."""
+    if start == 0:
+        yield from product(*pools)
+        return
+    first, rest = divmod(start, prod(len(pool) for pool in pools[1:]))
+    for tail in _product_from(pools[1:], rest):
+        yield (pools[0][first], *tail)
+    yield from product(pools[0][first + 1 :], *pools[1:])
+
+
+def configurations(ranks: Sequence[int], charge: Charge, *, start: int = 0) -> Iterator[Configuration]:
+    """All configurations of the given charge, in a fixed order, from number ``start`` on.
+
+    Cost of the start: whole splittings of the first node are passed over by their counts, nothing is walked through.
 
     >>> len(list(configurations([2], (3,)))), next(configurations([1, 1], (1, 2)))
     (10, (((1,),), ((2,),)))
+    >>> next(configurations([2], (3,), start=7))
+    (((3,), ()),)
     """
-    yield from product(*(tuple(node_diagrams(rank, k)) for rank, k in zip(ranks, charge, strict=True)))
+    later = [tuple(node_diagrams(rank, k)) for rank, k in zip(ranks[1:], charge[1:], strict=True)]
+    first, rest = divmod(start, prod(len(node) for node in later))
+    for head in node_diagrams(ranks[0], charge[0], start=first):
+        for tail in islice(product(*later), rest, None):
+            yield (head, *tail)
+        rest = 0
 
 
 def coloured_partitions(rank: int, charge: int) -> list[int]:

@@ -2,19 +2,22 @@
 
 Every weight is expanded to exactly the depth that its own pole and the wanted last power need.
 Cost: one product of linear factors and one short series division a configuration.
+
+The sum can be taken in parts, over ranges of the configurations in their order; ``merged`` puts the parts together.
 """
 
 from __future__ import annotations
 
-from collections.abc import Mapping
-from dataclasses import dataclass
+from collections.abc import Iterator, Mapping, Sequence
+from dataclasses import dataclass, replace
+from itertools import islice
 
 from ratomega.detector.geometry import is_sink
-from ratomega.diagrams.tuples import Charge, configurations
+from ratomega.diagrams.tuples import Charge, Configuration, configurations
 from ratomega.exact.laurent import Laurent, total
 from ratomega.weights import Weights
 
-__all__ = ["ChargeSum", "ClusterSum", "direct_sum", "direct_total"]
+__all__ = ["ChargeSum", "ClusterSum", "direct_sum", "direct_total", "merged"]
 
 ClusterKey = tuple[tuple[int, ...], ...]
 
@@ -48,8 +51,17 @@ class ChargeSum:
     worst_order: int
 
 
-def direct_sum(weights: Weights, charge: Charge, *, last: int = 0, sinks: bool = False) -> ChargeSum:
-    """Sum the weights of one charge, all powers of t up to ``last``.
+def _part(weights: Weights, charge: Charge, part: range | None) -> Iterator[Configuration]:
+    """The configurations of a charge, or those whose numbers lie in ``part`` (of step 1)."""
+    if part is None:
+        return configurations(weights.setting.ranks, charge)
+    return islice(configurations(weights.setting.ranks, charge, start=part.start), len(part))
+
+
+def direct_sum(
+    weights: Weights, charge: Charge, *, last: int = 0, sinks: bool = False, part: range | None = None
+) -> ChargeSum:
+    """Sum the weights of one charge, all powers of t up to ``last``; of the configurations in ``part`` if it is given.
 
     With ``sinks`` the singular clusters are searched for a sink, which decides their compactness.
     """
@@ -58,7 +70,7 @@ def direct_sum(weights: Weights, charge: Charge, *, last: int = 0, sinks: bool =
     books: dict[ClusterKey, list[int]] = {}
     found_sink: dict[ClusterKey, bool] = {}
     count = singular = indeterminate = worst = 0
-    for configuration in configurations(weights.setting.ranks, charge):
+    for configuration in _part(weights, charge, part):
         weight = weights.weight(configuration)
         key = weights.contents(configuration)
         order, dead = weight.order, weight.dead
@@ -90,9 +102,44 @@ def direct_sum(weights: Weights, charge: Charge, *, last: int = 0, sinks: bool =
     return ChargeSum(charge, series, clusters, count, singular, indeterminate, worst)
 
 
-def direct_total(weights: Weights, charge: Charge, *, last: int = 0) -> Laurent:
+def direct_total(weights: Weights, charge: Charge, *, last: int = 0, part: range | None = None) -> Laurent:
     """The sum of the weights of one charge alone, without clusters: what a further path needs."""
     result = Laurent.zero(precision=last + 1)
-    for configuration in configurations(weights.setting.ranks, charge):
+    for configuration in _part(weights, charge, part):
         result = result + weights.weight(configuration).laurent(last)
     return result
+
+
+def merged(parts: Sequence[ChargeSum]) -> ChargeSum:
+    """The sum over several disjoint parts of one charge, exactly; a cluster may be spread over any of them.
+
+    Parts that cover a charge in order give what ``direct_sum`` gives without parts, the order of the clusters included.
+    """
+    if len(parts) == 1:
+        return parts[0]
+    clusters: dict[ClusterKey, ClusterSum] = {}
+    for part in parts:
+        for key, cluster in part.clusters.items():
+            known = clusters.get(key)
+            clusters[key] = cluster if known is None else _joined(known, cluster)
+    return replace(
+        parts[0],
+        series=total((part.series for part in parts), precision=parts[0].series.precision),
+        clusters=clusters,
+        configurations=sum(part.configurations for part in parts),
+        singular=sum(part.singular for part in parts),
+        indeterminate=sum(part.indeterminate for part in parts),
+        worst_order=max(part.worst_order for part in parts),
+    )
+
+
+def _joined(one: ClusterSum, two: ClusterSum) -> ClusterSum:
+    sinks = [found for found in (one.has_sink, two.has_sink) if found is not None]
+    return ClusterSum(
+        one.size + two.size,
+        max(one.order, two.order),
+        min(one.lowest_order, two.lowest_order),
+        one.singular_members + two.singular_members,
+        any(sinks) if sinks else None,
+        one.series + two.series,
+    )

@@ -5,15 +5,16 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass
 
-from ratomega.case.setting import resonances
-from ratomega.detector.geometry import resonance_text
+from ratomega.case.setting import Setting, resonances
+from ratomega.detector.geometry import compact_by_parameters, resonance_text
 from ratomega.diagrams.tuples import Charge
+from ratomega.exact.laurent import Laurent
 from ratomega.exact.rational import Rational
 from ratomega.regulator.direct import ChargeSum, ClusterSum, direct_sum, direct_total
 from ratomega.regulator.outcome import Outcome, PathValue, judge, leading
 from ratomega.weights import Weights
 
-__all__ = ["ChargeLimit", "charge_limit"]
+__all__ = ["ChargeLimit", "charge_limit", "charge_limit_of"]
 
 
 @dataclass(frozen=True, slots=True)
@@ -60,11 +61,18 @@ def charge_limit(
 ) -> ChargeLimit:
     """The limit at one charge. ``probes`` are the further paths; they are summed only where compactness does not
     prove that the limit is the same on every path, or with ``always_probe``."""
-    resonance = next(resonances(weights.setting, charge), None)
-    compact = resonance is None
+    compact = compact_by_parameters(weights.setting, charge)
     own_sum = direct_sum(weights, charge, last=last, sinks=not compact)
-    own = leading(weights.setting.text(), own_sum.series)
     needed = probes if always_probe or not compact else ()
-    further = tuple(leading(probe.setting.text(), direct_total(probe, charge)) for probe in needed)
-    why = "" if resonance is None else resonance_text(weights.setting, resonance)
-    return ChargeLimit(own_sum, compact, why, own, further, judge(own, further, compact=compact))
+    return charge_limit_of(weights.setting, own_sum, [(p.setting, direct_total(p, charge)) for p in needed])
+
+
+def charge_limit_of(setting: Setting, own_sum: ChargeSum, further: Sequence[tuple[Setting, Laurent]]) -> ChargeLimit:
+    """The limit at one charge from the sums themselves, wherever they were taken: the own path in full, then the
+    further paths."""
+    resonance = next(resonances(setting, own_sum.charge), None)
+    compact = resonance is None
+    own = leading(setting.text(), own_sum.series)
+    found = tuple(leading(path.text(), series) for path, series in further)
+    why = "" if resonance is None else resonance_text(setting, resonance)
+    return ChargeLimit(own_sum, compact, why, own, found, judge(own, found, compact=compact))

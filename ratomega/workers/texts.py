@@ -1,0 +1,114 @@
+"""Sums as text and back, exactly: how the results of chunks travel and are kept.
+
+Numbers are "num/den"; everything else is JSON integers and lists. Reading checks every part and raises ``ValueError``:
+a text may come from a file that somebody else wrote.
+"""
+
+from __future__ import annotations
+
+import json
+from collections.abc import Sequence
+from typing import TypeGuard
+
+from ratomega.diagrams.tuples import Charge
+from ratomega.exact.laurent import Laurent
+from ratomega.exact.rational import exact_text, from_exact_text
+from ratomega.regulator.direct import ChargeSum, ClusterSum
+
+__all__ = ["read_list", "series_data", "series_from", "sum_data", "sum_from", "written"]
+
+
+def written(data: object) -> str:
+    """Canonical JSON text.
+
+    >>> written([1, None, ["1/2"]])
+    '[1,null,["1/2"]]'
+    """
+    return json.dumps(data, separators=(",", ":"))
+
+
+def read_list(text: str) -> list[object]:
+    """The list that ``written`` wrote. Raises ``ValueError``."""
+    try:
+        data = json.loads(text)
+    except RecursionError as error:
+        raise ValueError("the text nests too deeply") from error
+    return _list(data)
+
+
+def series_data(series: Laurent) -> list[object]:
+    """A Laurent series as valuation, precision and coefficients from the first that is not zero.
+
+    >>> series_data(Laurent.from_coefficients(-1, [1, 0, 2], precision=3))
+    [-1, 3, ['1', '0', '2']]
+    """
+    return [series.valuation, series.precision, [exact_text(c) for c in series.poly.coeffs()]]
+
+
+def series_from(data: object) -> Laurent:
+    """Read back what ``series_data`` gave.
+
+    >>> series_from([-1, 3, ["1", "0", "2"]]).coefficients()
+    {-1: 1, 1: 2}
+    """
+    valuation, precision, coefficients = _items(data, 3)
+    numbers = [from_exact_text(_text(c)) for c in _list(coefficients)]
+    series = Laurent.from_coefficients(_whole(valuation), numbers, precision=_whole(precision))
+    if series_data(series) != data:
+        raise ValueError("a series is not in its canonical form")
+    return series
+
+
+def sum_data(one: ChargeSum) -> list[object]:
+    """The sum at one charge, or a part of it, with its clusters in their order; the charge itself is left out."""
+    clusters = [
+        [key, c.size, c.order, c.lowest_order, c.singular_members, c.has_sink, series_data(c.series)]
+        for key, c in one.clusters.items()
+    ]
+    counts = [one.configurations, one.singular, one.indeterminate, one.worst_order]
+    return [*counts, series_data(one.series), clusters]
+
+
+def sum_from(data: object, charge: Charge) -> ChargeSum:
+    """Read back what ``sum_data`` gave."""
+    configurations, singular, indeterminate, worst, series, clusters = _items(data, 6)
+    found: dict[tuple[tuple[int, ...], ...], ClusterSum] = {}
+    for entry in _list(clusters):
+        key, size, order, lowest, members, sink, own = _items(entry, 7)
+        contents = tuple(tuple(_whole(x) for x in _list(node)) for node in _list(key))
+        if sink is not None and not isinstance(sink, bool):
+            raise ValueError("a cluster has a sink, has none, or was not asked")
+        found[contents] = ClusterSum(
+            _whole(size), _whole(order), _whole(lowest), _whole(members), sink, series_from(own)
+        )
+    counts = (_whole(configurations), _whole(singular), _whole(indeterminate), _whole(worst))
+    return ChargeSum(charge, series_from(series), found, *counts)
+
+
+def _is_list(value: object) -> TypeGuard[list[object]]:
+    return isinstance(value, list)
+
+
+def _list(value: object) -> list[object]:
+    if not _is_list(value):
+        raise ValueError("a list is expected")
+    return value
+
+
+def _items(value: object, number: int) -> Sequence[object]:
+    items = _list(value)
+    if len(items) != number:
+        raise ValueError(f"a list of {number} entries is expected, not of {len(items)}")
+    return items
+
+
+def _whole(value: object) -> int:
+    if not isinstance(value, int) or isinstance(value, bool):
+        raise ValueError("an integer is expected")
+    return value
+
+
+def _text(value: object) -> str:
+    if not isinstance(value, str):
+        raise ValueError("a text is expected")
+    return value
