@@ -1,0 +1,78 @@
+"""All coefficients of one node with two or three colours at a rational ratio, exactly, from residues.
+
+``applies`` says whether the fast sums serve a setting; ``fast_sum`` computes. Where no single weight diverges up to
+the charge the weights are summed at the limit point (``fast_generic``), otherwise the limit is taken
+(``fast_limit``). The answer carries the bits that confirm it (``fast_collect``).
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass
+
+from ratomega.case.setting import Setting
+from ratomega.errors import InputError
+from ratomega.exact.rational import ONE, Rational
+from ratomega.exact.residues import Floats, Moduli
+from ratomega.regulator.fast_collect import Collected, bits_needed, collect
+from ratomega.regulator.fast_generic import two_colours
+from ratomega.regulator.fast_layout import Layout
+from ratomega.regulator.fast_limit import two_colours_limit
+from ratomega.regulator.fast_setup import FastSetup, applies, prepare
+from ratomega.regulator.fast_tables import Forest
+from ratomega.regulator.fast_three import three_colours, three_colours_limit
+
+__all__ = ["FastSum", "applies", "fast_sum"]
+
+# Single products leave room below 2^53; sums of products and unreduced power sums want smaller primes.
+PRODUCT_BITS = 26
+MATRIX_BITS = 25
+LIMIT_BITS = 23
+# Below this charge a rehearsal costs more than some superfluous primes.
+REHEARSAL_FROM = 6
+
+
+@dataclass(frozen=True, slots=True)
+class FastSum:
+    """Z_0 ... Z_K. ``spare_bits[k]``: bits of the modulus beyond what Z_k needed; ``primes``: how many were used."""
+
+    coefficients: tuple[Rational, ...]
+    spare_bits: tuple[int, ...]
+    primes: int
+
+
+def fast_sum(setting: Setting, charge: int) -> FastSum:
+    """The coefficients up to ``charge`` at the limit point.
+
+    Normalised as the general engine: Z_0 = 1, one weight per configuration. Raises ``InputError`` with the reason when
+    the fast sums do not apply. Cost: see ``fast_generic`` and ``fast_limit``, times the number of primes, which grows
+    with the digits of the answer.
+    """
+    reason = applies(setting, charge)
+    if reason is not None:
+        raise InputError.single(reason)
+    setup = prepare(setting)
+    if charge >= REHEARSAL_FROM:
+        # A third of the charge shows how long the numbers are going to be, and takes no time.
+        done = _collected(setup, charge, _collected(setup, charge // 3).coefficients)
+    else:
+        done = _collected(setup, charge)
+    return FastSum(done.coefficients, done.spare_bits, done.primes)
+
+
+def _collected(setup: FastSetup, charge: int, known: tuple[Rational, ...] = (ONE,)) -> Collected:
+    residues, bits = _method(setup, charge)
+    return collect(setup, charge, residues, bits=bits, estimate=bits_needed(setup, charge, known))
+
+
+def _method(setup: FastSetup, charge: int) -> tuple[Callable[[Moduli], Floats], int]:
+    threshold = setup.singular_from()
+    if threshold is None or threshold > charge:
+        forest = Forest.make(charge)
+        if setup.rank == 2:
+            return (lambda moduli: two_colours(setup, forest, moduli)), PRODUCT_BITS
+        return (lambda moduli: three_colours(setup, forest, moduli)), MATRIX_BITS
+    layout = Layout.make(setup, charge)
+    if setup.rank == 2:
+        return (lambda moduli: two_colours_limit(setup, layout, moduli)), LIMIT_BITS
+    return (lambda moduli: three_colours_limit(setup, layout, moduli)), LIMIT_BITS
