@@ -11,6 +11,7 @@ from collections.abc import Callable
 from dataclasses import dataclass
 
 from ratomega.case.setting import Setting
+from ratomega.diagrams.tuples import count_all
 from ratomega.errors import InputError
 from ratomega.exact.rational import ONE, Rational
 from ratomega.exact.residues import Floats, Moduli
@@ -27,6 +28,9 @@ __all__ = ["FastSum", "applies", "fast_sum"]
 # Single products leave room below 2^53; sums of products and unreduced power sums want smaller primes.
 PRODUCT_BITS = 26
 MATRIX_BITS = 25
+# More primes at once gain nothing but memory. Three colours keep matrices over pairs of diagrams.
+LARGEST_BATCH = 64
+MATRIX_ENTRIES = 2**22
 LIMIT_BITS = 23
 # Below this charge a rehearsal costs more than some superfluous primes.
 REHEARSAL_FROM = 6
@@ -61,18 +65,34 @@ def fast_sum(setting: Setting, charge: int) -> FastSum:
 
 
 def _collected(setup: FastSetup, charge: int, known: tuple[Rational, ...] = (ONE,)) -> Collected:
-    residues, bits = _method(setup, charge)
-    return collect(setup, charge, residues, bits=bits, estimate=bits_needed(setup, charge, known))
+    method = _method(setup, charge)
+    estimate = bits_needed(setup, charge, known)
+    return collect(setup, charge, method.residues, bits=method.bits, estimate=estimate, batch=method.batch)
 
 
-def _method(setup: FastSetup, charge: int) -> tuple[Callable[[Moduli], Floats], int]:
+@dataclass(frozen=True, slots=True, eq=False)
+class _Method:
+    """How residues are computed, the size of the primes, and how many of them the memory takes at once."""
+
+    residues: Callable[[Moduli], Floats]
+    bits: int
+    batch: int
+
+
+def _method(setup: FastSetup, charge: int) -> _Method:
     threshold = setup.singular_from()
-    if threshold is None or threshold > charge:
+    singular = threshold is not None and threshold <= charge
+    if setup.rank == 2 and not singular:
         forest = Forest.make(charge)
-        if setup.rank == 2:
-            return (lambda moduli: two_colours(setup, forest, moduli)), PRODUCT_BITS
-        return (lambda moduli: three_colours(setup, forest, moduli)), MATRIX_BITS
-    layout = Layout.make(setup, charge)
+        return _Method(lambda moduli: two_colours(setup, forest, moduli), PRODUCT_BITS, LARGEST_BATCH)
     if setup.rank == 2:
-        return (lambda moduli: two_colours_limit(setup, layout, moduli)), LIMIT_BITS
-    return (lambda moduli: three_colours_limit(setup, layout, moduli)), LIMIT_BITS
+        layout = Layout.make(setup, charge)
+        return _Method(lambda moduli: two_colours_limit(setup, layout, moduli), LIMIT_BITS, LARGEST_BATCH)
+    if not singular:
+        forest = Forest.make(charge)
+        batch = max(4, min(LARGEST_BATCH, MATRIX_ENTRIES // len(forest) ** 2))
+        return _Method(lambda moduli: three_colours(setup, forest, moduli), MATRIX_BITS, batch)
+    layout = Layout.make(setup, charge)
+    entries = layout.depth * count_all([2], charge)
+    batch = max(4, min(LARGEST_BATCH, MATRIX_ENTRIES // entries))
+    return _Method(lambda moduli: three_colours_limit(setup, layout, moduli), LIMIT_BITS, batch)

@@ -25,7 +25,6 @@ __all__ = ["SPARE_BITS", "Collected", "bits_needed", "collect", "new_poles"]
 
 # A wrong fraction passes with a probability of about 2^-45 per coefficient, and then meets one more prime.
 SPARE_BITS = 45
-LARGEST_BATCH = 64
 # Of some thousand factors about one in 2^22 vanishes modulo a prime by chance.
 MOST_BAD_PRIMES = 100
 
@@ -112,13 +111,14 @@ def collect(
     *,
     bits: int,
     estimate: int,
+    batch: int = 64,
     most_primes: int = 4000,
 ) -> Collected:
     """The coefficients Z_0 ... Z_charge of the setting, from residues modulo primes of ``bits`` bits.
 
     ``residues`` gives the coefficients of the integer parameters modulo a batch of primes (prime axis last) or raises
-    ``BadPrimes``; ``estimate`` is the expected size in bits of the last one. Raises ``RatomegaError`` when
-    ``most_primes`` do not suffice.
+    ``BadPrimes``; at most ``batch`` primes are handed over at once. ``estimate`` is the expected size in bits of the
+    last one. Raises ``RatomegaError`` when ``most_primes`` do not suffice.
     """
     source = PrimeSource(bits)
     primes: list[int] = []
@@ -129,8 +129,8 @@ def collect(
     while len(found) <= charge:
         if len(primes) + wanted > most_primes:
             raise RatomegaError(f"{most_primes} primes do not determine the coefficients up to charge {charge}")
-        for batch, values in _batches(source, wanted, residues):
-            primes.extend(batch)
+        for taken, values in _batches(source, wanted, batch, residues):
+            primes.extend(taken)
             columns.append(values)
         table = np.concatenate(columns, axis=1)
         if len(primes) >= 2:
@@ -140,10 +140,10 @@ def collect(
 
 
 def _batches(
-    source: PrimeSource, count: int, residues: Callable[[Moduli], Floats]
+    source: PrimeSource, count: int, largest: int, residues: Callable[[Moduli], Floats]
 ) -> list[tuple[tuple[int, ...], Floats]]:
     """Residues for ``count`` further primes, bad ones replaced."""
-    pieces = -(-count // LARGEST_BATCH)
+    pieces = -(-count // largest)
     done = []
     replaced = 0
     for n in range(pieces):

@@ -31,37 +31,45 @@ PIECE = 16384
 def three_colours(setup: FastSetup, forest: Forest, moduli: Moduli) -> Floats:
     """Z_0 ... Z_K of the integer parameters modulo every prime: shape (K + 1, primes).
 
-    Raises ``BadPrimes`` when a denominator vanishes modulo a prime. Cost: one multiplication and addition per triple
-    of diagrams, one product per pair and size of the third diagram.
+    Raises ``BadPrimes`` when a denominator vanishes modulo a prime. Cost: for every third diagram a multiplication and
+    addition per pair of diagrams that fit beside it one by one, for every size one product per pair that fit together.
     """
     charge = forest.charge
     total = np.zeros((charge + 1, len(moduli)))
     if charge == 0:
         return total + 1.0
     parameters = Parameters.make(setup, moduli)
-    bench = Bench.make(moduli, len(forest))
+    bench = Bench.make(moduli, max(len(forest), 2 * PIECE // len(moduli)))
     flat = Moduli.make(moduli.primes)
-    parts = one_colour(setup, forest, parameters, bench)
-    pairs = [_pair_products(setup, a, b, forest, parameters, bench) for a, b in PAIRS]
-    m12, m13, m23 = ([_primes_first(m) for m in pair] for pair in pairs)
-    d1, d2, d3 = (_primes_first(part) for part in parts)
-    start = np.array(forest.start)
+    d1, d2, d3 = one_colour(setup, forest, parameters, bench)
+    m12, m13, m23 = (_pair_products(setup, a, b, forest, parameters, bench) for a, b in PAIRS)
+    one, two, starts, place = _pairs_by_charge(forest)
+    # The pair of the first two colours with everything that does not involve the third.
+    first_two = np.concatenate([m.reshape(-1, len(moduli)) for m in m12])[place]
+    bench.multiply(bench.multiply(first_two, d1[one], first_two), d2[two], first_two)
+    weights = _primes_first(first_two)
     for third in range(charge + 1):
         here = forest.sizes(third, third)
-        # Rows: diagrams of the third colour; columns: of the first and of the second.
-        one = flat.multiply(m13[third], d3[:, here, None])
-        two = m23[third]
-        for first in range(charge - third + 1):
-            left = charge - third - first
-            mine = forest.sizes(first, first)
-            seen = forest.start[left + 1]
-            both = _dot(one[:, :, mine].transpose(0, 2, 1), two[:, :, :seen], flat)
-            block = np.concatenate([m12[n][:, :, mine].transpose(0, 2, 1) for n in range(left + 1)], axis=2)
-            both = flat.multiply(both, block)
-            by_second = flat.multiply(_dot(d1[:, None, mine], both, flat)[:, 0], d2[:, :seen])
-            by_size = flat.reduce(np.add.reduceat(by_second, start[: left + 1], axis=1))
-            total[third + first :] += by_size.T
+        seen = forest.start[charge - third + 1]
+        left = _primes_first(bench.multiply(m13[third], d3[here, None])).transpose(0, 2, 1)
+        both = _dot(left, _primes_first(m23[third]), flat).reshape(len(moduli), -1)
+        count = starts[charge - third + 1]
+        summed = flat.multiply(both[:, one[:count] * seen + two[:count]], weights[:, :count])
+        total[third:] += flat.reduce(np.add.reduceat(summed, starts[: charge - third + 1], axis=1)).T
     return moduli.reduce(total)
+
+
+def _pairs_by_charge(forest: Forest) -> tuple[Integers, Integers, Integers, Integers]:
+    """(one, two, starts, place): all pairs by their charge, where each charge begins (and the end), and the place of
+    each in the order of the second diagram, then the first."""
+    seen = np.array([forest.start[forest.charge - sum(diagram) + 1] for diagram in forest.diagrams])
+    two = np.repeat(np.arange(len(forest)), seen)
+    one = np.concatenate([np.arange(n) for n in seen])
+    size = np.array([sum(diagram) for diagram in forest.diagrams])
+    charges = size[one] + size[two]
+    place = np.argsort(charges, kind="stable")
+    starts = np.searchsorted(charges[place], np.arange(forest.charge + 2))
+    return one[place], two[place], starts, place
 
 
 def _primes_first(x: Floats) -> Floats:
@@ -75,7 +83,7 @@ def _dot(left: Floats, right: Floats, flat: Moduli) -> Floats:
     total = flat.reduce(left[..., :step] @ right[:, :step])
     for low in range(step, right.shape[1], step):
         total += flat.reduce(left[..., low : low + step] @ right[:, low : low + step])
-    return flat.reduce(total)
+    return total if right.shape[1] <= step else flat.reduce(total)
 
 
 def _pair_products(
@@ -201,14 +209,11 @@ def _triples(layout: Layout) -> Iterator[tuple[int, Integers, Integers]]:
     """(order, charges, triples), by charge, one order at a time; first diagrams of zero weight are left out."""
     forest, charge, order = layout.forest, layout.charge, layout.clusters.order
     size = np.array([sum(diagram) for diagram in forest.diagrams])
-    firsts = np.flatnonzero(layout.weight)
-    found = []
-    for three in range(len(forest)):
-        left = charge - int(size[three])
-        for two in range(forest.start[left + 1]):
-            one = firsts[: int(np.searchsorted(firsts, forest.start[left - int(size[two]) + 1]))]
-            found.append(np.stack([one, np.full_like(one, two), np.full_like(one, three)]))
-    triples = np.concatenate(found, axis=1)
+    one, two, starts, _ = _pairs_by_charge(forest)
+    counts = starts[charge - size + 1]
+    pairs = np.concatenate([np.arange(count) for count in counts])
+    triples = np.stack([one[pairs], two[pairs], np.repeat(np.arange(len(forest)), counts)])
+    triples = triples[:, layout.weight[triples[0]] > 0]
     orders, charges = order[triples].sum(axis=0), size[triples].sum(axis=0)
     for d in np.unique(orders).tolist():
         chosen = np.flatnonzero(orders == d)
