@@ -12,7 +12,7 @@ from __future__ import annotations
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from itertools import combinations
-from math import ceil, lgamma, log, log2
+from math import ceil, lgamma, log, log2, prod
 
 import numpy as np
 
@@ -21,7 +21,7 @@ from ratomega.exact.rational import ONE, Rational
 from ratomega.exact.residues import BadPrimes, Floats, Moduli, PrimeSource, combine, reconstruct, residues_of
 from ratomega.regulator.fast_setup import FastSetup
 
-__all__ = ["SPARE_BITS", "Collected", "bits_needed", "collect", "new_poles"]
+__all__ = ["SPARE_BITS", "Collected", "bits_needed", "collect", "new_poles", "residues_beyond"]
 
 # A wrong fraction passes with a probability of about 2^-45 per coefficient, and then meets one more prime.
 SPARE_BITS = 45
@@ -137,6 +137,23 @@ def collect(
             _extend(setup, charge, table, primes, found, spare)
         wanted = max(2, len(primes) // 8)
     return Collected(tuple(found), tuple(spare), len(primes))
+
+
+def residues_beyond(
+    residues: Callable[[Moduli], Floats], size: int, *, bits: int, batch: int = 64
+) -> tuple[tuple[int, ...], Floats]:
+    """Primes whose product exceeds ``size``, and the residues of the coefficients: (coefficients, primes)."""
+    source = PrimeSource(bits)
+    primes: list[int] = []
+    columns: list[Floats] = []
+    product = 1
+    while product <= size:
+        missing = (size.bit_length() - product.bit_length()) // bits + 1
+        for taken, values in _batches(source, missing, batch, residues):
+            primes.extend(taken)
+            columns.append(values)
+            product *= prod(taken)
+    return tuple(primes), np.concatenate(columns, axis=1)
 
 
 def _batches(

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections import Counter
 from fractions import Fraction
 from math import comb, factorial
 
@@ -13,7 +14,9 @@ from census import Entry, census
 from flint import fmpq, fmpq_poly
 
 from ratomega.case.setting import own_setting
-from ratomega.errors import InputError
+from ratomega.diagrams.tuples import configurations
+from ratomega.diagrams.young import diagrams_of_size, transpose
+from ratomega.errors import InputError, RatomegaError
 from ratomega.exact.rational import Rational
 from ratomega.exact.residues import Moduli
 from ratomega.regulator import fast, fast_clusters, fast_collect, fast_generic, fast_layout, fast_limit, fast_three
@@ -21,7 +24,8 @@ from ratomega.regulator.direct import direct_total
 from ratomega.regulator.fast import applies, fast_sum
 from ratomega.regulator.fast_bell import exponential
 from ratomega.regulator.fast_factors import Bench
-from ratomega.weights import Weights
+from ratomega.regulator.fast_proof import multiplicity, proof_bound
+from ratomega.weights import Weights, pair_points
 
 TOP = {1: 3, 2: 5, 3: 3}
 MATTER = {
@@ -383,3 +387,59 @@ def test_exchanging_the_diagrams_is_no_symmetry(monkeypatch) -> None:
     monkeypatch.setattr(fast_generic, "_pass", doubled)
     assert list(fast_sum(setting, 1).coefficients) != plain_limits(setting, 1)
 
+
+
+# ---- proof
+
+
+@pytest.mark.parametrize("charge", range(1, 7))
+def test_multiplicities_are_upper_bounds(charge) -> None:
+    """Enumeration: no pair of diagrams holds a form more often, and the bound is met somewhere."""
+    most: dict[tuple[int, int], int] = {}
+    for ((lam, mu),) in configurations([2], (charge,)):
+        counts = Counter(pair_points(lam, mu, transpose(lam), transpose(mu)))
+        for point, count in counts.items():
+            most[point] = max(most.get(point, 0), count)
+    assert all(count <= multiplicity(*point, charge) for point, count in most.items())
+    assert all(multiplicity(p, q, charge) == 0 for p in range(-9, 10) for q in range(-9, 10) if (p, q) not in most)
+    assert any(count > 1 for count in most.values()) or charge < 4
+    # One diagram against itself: hooks.
+    for diagram in diagrams_of_size(charge):
+        columns = transpose(diagram)
+        for (p, q), count in Counter(pair_points(diagram, diagram, columns, columns)).items():
+            hook = q - p if q >= 1 else p - q
+            assert count <= charge // hook
+
+
+@pytest.mark.parametrize("ratio", ["1", "2", "-1", "103/71"])
+@pytest.mark.parametrize("coulomb", [("3/11", "-3/11"), ("3/11", "-2/7", "1/13")])
+@pytest.mark.parametrize("matter", ["none", "one and one", "adjoint"])
+def test_certified(ratio, coulomb, matter) -> None:
+    setting = setting_of(ratio, coulomb, **MATTER[matter])
+    top = 4 if len(coulomb) == 2 else 2
+    answer = fast_sum(setting, top, certify=True)
+    assert answer.proved
+    assert list(answer.coefficients) == plain_limits(setting, top)
+    setup = fast.prepare(setting)
+    for k, value in enumerate(answer.coefficients):
+        bound = proof_bound(setup, k, moving=ratio in {"1", "2"})
+        whole = value / setup.rescaled(Rational(1), k) * bound.multiple
+        assert whole.q == 1
+        assert abs(whole.p) <= bound.size
+
+
+@pytest.mark.parametrize("ratio", ["1", "103/71"])
+def test_certification_refutes_a_wrong_coefficient(ratio, monkeypatch) -> None:
+    """A wrong reconstruction that passed: off by little, off by much, with a foreign denominator."""
+    setting = setting_of(ratio)
+    right = fast._collected
+    for k, change in ((1, Rational(1)), (3, Rational(10) ** 4000), (2, Rational(1, 10007))):
+
+        def wrong(*given, k=k, change=change):
+            found = right(*given)
+            values = [z + change * (n == k) for n, z in enumerate(found.coefficients)]
+            return fast_collect.Collected(tuple(values), found.spare_bits, found.primes)
+
+        monkeypatch.setattr(fast, "_collected", wrong)
+        with pytest.raises(RatomegaError, match=f"charge {k}"):
+            fast_sum(setting, 4, certify=True)
