@@ -10,8 +10,10 @@ tables and reconstruction. Every time is a median of at least three; baseline an
 
 from __future__ import annotations
 
-import benchmarks.one_core  # noqa: I001  (before anything that imports numpy)
+# isort: off
+import benchmarks.one_core  # before anything that imports numpy
 
+# isort: on
 import json
 import os
 import platform
@@ -198,7 +200,8 @@ def main(words: Sequence[str]) -> None:
     bounds = [16] if quick else [16, 20]
     print(", ".join(f"{key} {value}" for key, value in environment().items()))
     print(f"plain reference at eps2/eps1 = {NON_SINGULAR} against the engine; medians, one core\n")
-    print(f"{'theory':<20} {'charges':<6} {'eps2':>7} {'weights':>8} {'plain':>11} {'engine':>10} {'ratio':>7}  primes  spare")
+    print(f"{'theory':<20} {'charges':<6} {'eps2':>7} {'weights':>8} {'plain':>11} {'engine':>10} {'ratio':>7}", end="")
+    print(" primes  spare")
     rows = []
     for name, coulomb, flavours, tops in (
         ("U(2), no matter", TWO, [], bounds),
@@ -210,11 +213,13 @@ def main(words: Sequence[str]) -> None:
             rows.append(row)
     points = []
     if not quick:
-        print(f"\ngrowth, U(2) without matter\n{'eps2':>7} {'charge':>6} {'weights':>8} {'seconds':>9} primes {'peak MiB':>9}")
+        print("\ngrowth, U(2) without matter; every point in a process of its own")
+        print(f"{'eps2':>7} {'charge':>6} {'weights':>8} {'seconds':>9} primes {'peak MiB':>9}")
         for eps2 in (NON_SINGULAR, "1", "2"):
             series = [growth(eps2, charge) for charge in (8, 12, 16, 20, 24)]
             for p in series:
-                print(f"{p.eps2:>7} {p.charge:>6} {p.configurations:>8} {p.seconds:>9.3f} {p.primes:>6} {p.peak_mib:>9.0f}")
+                print(f"{p.eps2:>7} {p.charge:>6} {p.configurations:>8} {p.seconds:>9.3f}", end="")
+                print(f" {p.primes:>6} {p.peak_mib:>9.0f}")
             print(f"{'':>7} seconds ~ weights^{exponent(series[2:]):.2f} from charge 16 on", flush=True)
             points += series
     if "--json" in words:

@@ -25,7 +25,7 @@ from ratomega.regulator.fast_setup import FastSetup, applies, prepare
 from ratomega.regulator.fast_tables import Forest
 from ratomega.regulator.fast_three import three_colours, three_colours_limit
 
-__all__ = ["FastSum", "applies", "fast_sum"]
+__all__ = ["FastSum", "applies", "fast_sum", "worthwhile"]
 
 # Single products leave room below 2^53; sums of products and unreduced power sums want smaller primes.
 PRODUCT_BITS = 26
@@ -34,6 +34,8 @@ MATRIX_BITS = 25
 LARGEST_BATCH = 64
 MATRIX_ENTRIES = 2**22
 LIMIT_BITS = 23
+# With fewer configurations the general engine is done before the tables stand.
+FEWEST_CONFIGURATIONS = 150
 # Below this charge a rehearsal costs more than some superfluous primes.
 REHEARSAL_FROM = 6
 
@@ -49,6 +51,13 @@ class FastSum:
     spare_bits: tuple[int, ...]
     primes: int
     proved: bool
+
+
+def worthwhile(setting: Setting, charge: int) -> bool:
+    """Does a fixed rule prefer the fast sums: they apply, and there are enough configurations? Never a timing."""
+    if applies(setting, charge) is not None:
+        return False
+    return count_all(setting.ranks, charge) >= FEWEST_CONFIGURATIONS
 
 
 def fast_sum(setting: Setting, charge: int, *, certify: bool = False) -> FastSum:

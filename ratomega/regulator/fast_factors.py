@@ -29,27 +29,37 @@ __all__ = ["Bench", "Parameters", "box_factors", "diagram_factors", "differences
 
 @dataclass(frozen=True, slots=True, eq=False)
 class Bench:
-    """A batch of primes with room for intermediate results: products are formed in place."""
+    """A batch of primes with room for intermediate results: products are formed in place.
+
+    The primes and their reciprocals are repeated over the whole room: loops over long contiguous arrays take two
+    thirds of the time of loops over short rows.
+    """
 
     moduli: Moduli
     scratch: Floats
+    reciprocals: Floats
+    primes: Floats
 
     @classmethod
     def make(cls, moduli: Moduli, entries: int) -> Bench:
         """Room for arrays of ``entries`` residues per prime."""
-        return cls(moduli, np.empty(entries * len(moduli)))
+        room = np.empty(entries * len(moduli))
+        return cls(moduli, room, np.tile(moduli.reciprocal, entries), np.tile(moduli.p, entries))
 
     def reduce(self, x: Floats) -> Floats:
         """``x`` reduced in place, piece by piece where it is larger than the scratch."""
         if x.size > self.scratch.size:
+            if len(x) == 1:
+                self.reduce(x[0])
+                return x
             step = max(1, self.scratch.size * len(x) // x.size)
             for low in range(0, len(x), step):
                 self.reduce(x[low : low + step])
             return x
         quotient = self.scratch[: x.size].reshape(x.shape)
-        np.multiply(x, self.moduli.reciprocal, out=quotient)
+        np.multiply(x, self.reciprocals[: x.size].reshape(x.shape), out=quotient)
         np.rint(quotient, out=quotient)
-        quotient *= self.moduli.p
+        quotient *= self.primes[: x.size].reshape(x.shape)
         x -= quotient
         return x
 

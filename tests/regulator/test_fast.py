@@ -21,7 +21,7 @@ from ratomega.exact.rational import Rational
 from ratomega.exact.residues import Moduli
 from ratomega.regulator import fast, fast_clusters, fast_collect, fast_generic, fast_layout, fast_limit, fast_three
 from ratomega.regulator.direct import direct_total
-from ratomega.regulator.fast import applies, fast_sum
+from ratomega.regulator.fast import applies, fast_sum, worthwhile
 from ratomega.regulator.fast_bell import exponential
 from ratomega.regulator.fast_factors import Bench
 from ratomega.regulator.fast_proof import multiplicity, proof_bound
@@ -443,3 +443,26 @@ def test_certification_refutes_a_wrong_coefficient(ratio, monkeypatch) -> None:
         monkeypatch.setattr(fast, "_collected", wrong)
         with pytest.raises(RatomegaError, match=f"charge {k}"):
             fast_sum(setting, 4, certify=True)
+
+
+# ---- the choice
+
+
+def test_small_cases_stay_with_the_engine() -> None:
+    assert not worthwhile(setting_of("1"), 5)
+    assert worthwhile(setting_of("1"), 8)
+    assert worthwhile(setting_of("1", ("3/11", "-2/7", "1/13")), 5)
+    assert not worthwhile(setting_of("1", ("1/3", "-2/3")), 8)
+
+
+def test_charge_zero() -> None:
+    for coulomb in (("3/11", "-3/11"), ("3/11", "-2/7", "1/13")):
+        assert list(fast_sum(setting_of("1", coulomb), 0, certify=True).coefficients) == [1]
+
+
+def test_large_arrays_are_reduced_in_pieces() -> None:
+    moduli = Moduli.make([101, 103], last=True)
+    bench = Bench.make(moduli, 3)
+    for shape in ((1, 1, 50, 2), (50, 2), (7, 9, 2)):
+        values = np.arange(np.prod(shape), dtype=np.float64).reshape(shape) * 1000
+        assert np.array_equal(bench.reduce(values.copy()), moduli.reduce(values))
