@@ -1,9 +1,9 @@
 """Exact numbers through many primes at once: residues in float64, and the way back to fractions.
 
 A residue is a float64 integer in the balanced range |x| <= p/2. Products and sums of products are exact while they
-stay below 2^53, so matrix products of residues may go through ordinary floating-point linear algebra; one ``reduce``
-afterwards brings them back. Each prime stands alone along the prime axis, which is the first axis of every array
-here (one matrix per prime lies together in memory), or the last one if ``Moduli.make`` was told so.
+stay a little below 2^53, so matrix products of residues may go through ordinary floating-point linear algebra; one
+``reduce`` afterwards brings them back. Each prime stands alone along the prime axis, which is the first axis of every
+array here (one matrix per prime lies together in memory), or the last one if ``Moduli.make`` was told so.
 
 Primes are taken downwards from 2^PRIME_BITS, always the same ones. A prime that divides a number which must be
 inverted is bad; ``BadPrimes`` names it and the caller takes the next (``PrimeSource.take``).
@@ -42,10 +42,11 @@ __all__ = [
 
 Floats = NDArray[np.float64]
 
-# Balanced residues of 22-bit primes: 2048 products of two residues can be summed before a reduction is due.
-PRIME_BITS = 22
-EXACT_LIMIT = 2**53
-LEAST_PRIME = 2**20
+# Balanced residues of 21-bit primes: 8192 products of two residues can be summed before a reduction is due.
+PRIME_BITS = 21
+# Reduction subtracts a multiple of p that can exceed the number itself by p/2 and must be exact as well.
+EXACT_LIMIT = 2**53 - 2**26
+LEAST_PRIME = 2**19
 
 
 class BadPrimes(RatomegaError):
@@ -59,11 +60,11 @@ class BadPrimes(RatomegaError):
 class PrimeSource:
     """The primes below 2^bits, downwards, each handed out once.
 
-    Raises ``RatomegaError`` when they run out above 2^20 (more than 200,000 primes of 22 bits).
+    Raises ``RatomegaError`` when they run out at 2^19 (there are 110,000 above).
 
     >>> source = PrimeSource()
     >>> source.take(2), source.take(1)
-    ((4194301, 4194287), (4194277,))
+    ((2097143, 2097133), (2097131,))
     """
 
     def __init__(self, bits: int = PRIME_BITS) -> None:
@@ -98,12 +99,12 @@ def _small_primes(limit: int) -> list[int]:
 
 
 def longest_dot(left: float, right: float) -> int:
-    """How many products of numbers with |x| <= left and |y| <= right sum exactly in float64.
+    """How many products of integers with |x| <= left and |y| <= right may be summed in float64 and then reduced.
 
     >>> longest_dot(2**21, 2**21)
     2047
     """
-    return int((EXACT_LIMIT - 1) // (left * right))
+    return int(EXACT_LIMIT // (left * right))
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -139,7 +140,7 @@ class Moduli:
         return vector if self.last else vector.reshape(-1, *(1,) * (ndim - 1))
 
     def reduce(self, x: Floats, *, out: Floats | None = None, work: Floats | None = None) -> Floats:
-        """The balanced residues of exact integers |x| < 2^53; ``out=x`` works in place, ``work`` saves an allocation.
+        """The balanced residues of integers |x| <= 2^53 - 2^26; ``out=x`` works in place, ``work`` saves an allocation.
 
         The result obeys |r| <= p/2 + 1: the rounded quotient may fall to the far side of a tie.
         """
@@ -154,7 +155,12 @@ class Moduli:
         return self.reduce(product, out=product)
 
     def integers(self, values: NDArray[np.int64]) -> Floats:
-        """The residues of small integers (|n| < 2^53), the same for every prime: adds the prime axis."""
+        """The residues of small integers, the same for every prime: adds the prime axis.
+
+        Raises ``ValueError`` for an integer beyond 2^53 - 2^26, where float64 is no longer safe.
+        """
+        if values.size and max(int(values.max()), -int(values.min())) > EXACT_LIMIT:
+            raise ValueError("integers beyond 2^53 - 2^26 cannot be reduced exactly in float64")
         plain = values.astype(np.float64)
         shape = (*values.shape, len(self)) if self.last else (len(self), *values.shape)
         return self.reduce(np.broadcast_to(plain[..., None] if self.last else plain, shape))
@@ -249,7 +255,7 @@ def reconstruct(residue: int, modulus: int, *, spare_bits: int) -> Reconstructio
     >>> m = 1000003 * 1000033 * 1000037
     >>> reconstruct(355 * pow(113, -1, m) % m, m, spare_bits=30)
     Reconstruction(value=355/113, spare_bits=44)
-    >>> reconstruct(m // 3, m, spare_bits=40) is None
+    >>> reconstruct(31415926535897932, m, spare_bits=30) is None
     True
     """
     if spare_bits < 1:

@@ -31,7 +31,7 @@ __all__ = ["FastSum", "applies", "fast_sum", "worthwhile"]
 PRODUCT_BITS = 26
 MATRIX_BITS = 25
 # More primes at once gain nothing but memory. Three colours keep matrices over pairs of diagrams.
-LARGEST_BATCH = 64
+LARGEST_BATCH = 96
 MATRIX_ENTRIES = 2**22
 LIMIT_BITS = 23
 # With fewer configurations the general engine is done before the tables stand.
@@ -82,8 +82,9 @@ def fast_sum(setting: Setting, charge: int, *, certify: bool = False) -> FastSum
         raise InputError.single(reason)
     setup = prepare(setting)
     if charge >= REHEARSAL_FROM:
-        # A third of the charge shows how long the numbers are going to be, and takes no time.
-        done = _collected(setup, charge, _collected(setup, charge // 3).coefficients)
+        # The numbers at a fraction of the charge show how long they are going to be, and take no time.
+        rehearsal = _collected(setup, max(3, charge // 3))
+        done = _collected(setup, charge, rehearsal.coefficients)
     else:
         done = _collected(setup, charge)
     primes = _certify(setup, charge, done.coefficients) if certify else done.primes

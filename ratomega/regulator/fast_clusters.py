@@ -96,7 +96,7 @@ def pair_constants(
     # Contents are multiples of the unit: p alpha + q beta = delta has a solution in integers for every delta.
     p = delta * pow(setup.alpha, -1, setup.beta)
     q = (delta - setup.alpha * p) // setup.beta
-    table = pair_factors(setup, root, p, q, parameters, moduli)
+    table = pair_factors(setup, [root], p, q, parameters, moduli)[0]
     grown = np.ones((top + 1, start[charge] if charge else 1, len(moduli)))
     against = np.arange(top + 1)[:, None]
     for n in range(1, charge):

@@ -16,6 +16,7 @@ They follow from the character of the tangent space (Nekrasov hep-th/0206161; Na
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -119,14 +120,17 @@ def differences(charge: int) -> tuple[Integers, Integers, Integers]:
 
 
 def pair_factors(
-    setup: FastSetup, root: int, i: Integers, j: Integers, parameters: Parameters, moduli: Moduli
+    setup: FastSetup, roots: Sequence[int], i: Integers, j: Integers, parameters: Parameters, moduli: Moduli
 ) -> Floats:
-    """S(root + i eps1 + j eps2), adjoints included. Raises ``BadPrimes`` when a denominator vanishes."""
+    """S(root + i eps1 + j eps2), adjoints included: shape (roots, points, primes).
+
+    Raises ``BadPrimes`` when a denominator vanishes. Cost: one inverse per root and point.
+    """
 
     def square(x: Floats) -> Floats:
         return moduli.multiply(x, x)
 
-    y2 = square(forms(root, i, j, parameters, moduli))
+    y2 = square(np.stack([forms(root, i, j, parameters, moduli) for root in roots]))
     e1, e2 = parameters.eps1, parameters.eps2
 
     def beside(shift: Floats) -> Floats:
@@ -142,23 +146,25 @@ def pair_factors(
 
 
 def box_factors(
-    setup: FastSetup, colour: int, i: Integers, j: Integers, parameters: Parameters, moduli: Moduli
+    setup: FastSetup, i: Integers, j: Integers, parameters: Parameters, moduli: Moduli
 ) -> Floats:
-    """V against every other colour times the flavours, for boxes (i, j) of one colour."""
+    """V against every other colour times the flavours, for boxes (i, j) of every colour: (colours, boxes, primes)."""
     eps = parameters.eps
-    up = np.ones((len(i), len(moduli)))
-    down = np.ones((len(i), len(moduli)))
-    for other, b in enumerate(setup.coulomb):
-        if other == colour:
-            continue
-        y = forms(setup.coulomb[colour] - b, i, j, parameters, moduli)
-        down = moduli.multiply(down, moduli.multiply(-y, moduli.reduce(y + eps)))
-        for mass in setup.adjoints:
-            m = whole(mass, moduli)
-            up = moduli.multiply(up, moduli.multiply(moduli.reduce(y + eps - m), moduli.reduce(-y - m)))
-    for root in setup.flavours[colour]:
-        up = moduli.multiply(up, forms(root, i, j, parameters, moduli))
-    return moduli.multiply(up, moduli.inverses(down))
+    ups, downs = [], []
+    for colour, a in enumerate(setup.coulomb):
+        up = np.ones((len(i), len(moduli)))
+        down = np.ones((len(i), len(moduli)))
+        for b in (*setup.coulomb[:colour], *setup.coulomb[colour + 1 :]):
+            y = forms(a - b, i, j, parameters, moduli)
+            down = moduli.multiply(down, moduli.multiply(-y, moduli.reduce(y + eps)))
+            for mass in setup.adjoints:
+                m = whole(mass, moduli)
+                up = moduli.multiply(up, moduli.multiply(moduli.reduce(y + eps - m), moduli.reduce(-y - m)))
+        for root in setup.flavours[colour]:
+            up = moduli.multiply(up, forms(root, i, j, parameters, moduli))
+        ups.append(up)
+        downs.append(down)
+    return moduli.multiply(np.stack(ups), moduli.inverses(np.stack(downs)))
 
 
 def hook_forms(charge: int) -> tuple[Integers, Integers, Integers]:
@@ -203,10 +209,10 @@ def hook_values(setup: FastSetup, charge: int, parameters: Parameters, moduli: M
 
 
 def tree_products(boxes: Floats, where: Integers, forest: Forest, bench: Bench) -> Floats:
-    """The product of ``boxes[where[i, j]]`` over the boxes of every diagram."""
-    result = np.ones((len(forest), len(bench.moduli)))
+    """The product of ``boxes[colour, where[i, j]]`` over the boxes of every diagram: (colours, diagrams, primes)."""
+    result = np.ones((len(boxes), len(forest), len(bench.moduli)))
     for n in range(1, forest.charge + 1):
         part = forest.sizes(n, n)
-        factor = boxes[where[forest.row[part], forest.column[part]]]
-        bench.multiply(result[forest.parent[part]], factor, result[part])
+        factor = boxes[:, where[forest.row[part], forest.column[part]]]
+        bench.multiply(result[:, forest.parent[part]], factor, result[:, part])
     return result

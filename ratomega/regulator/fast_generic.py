@@ -26,8 +26,8 @@ from ratomega.regulator.fast_tables import Forest, Integers, box_arrays, box_lis
 __all__ = ["one_colour", "two_colours"]
 
 
-def one_colour(setup: FastSetup, forest: Forest, parameters: Parameters, bench: Bench) -> list[Floats]:
-    """For every colour the one-colour part of the weight of every diagram: D, V and the flavours."""
+def one_colour(setup: FastSetup, forest: Forest, parameters: Parameters, bench: Bench) -> Floats:
+    """The one-colour part of the weight of every diagram: D, V and the flavours. Shape (colours, diagrams, primes)."""
     hooks, place = hook_values(setup, forest.charge, parameters, bench.moduli)
     alone = diagram_factors(hooks, place, forest, bench)
     boxes = box_list(forest.charge)
@@ -35,12 +35,8 @@ def one_colour(setup: FastSetup, forest: Forest, parameters: Parameters, bench: 
     for n, box in enumerate(boxes):
         where[box] = n
     i, j = box_arrays(boxes)
-    parts = []
-    for colour in range(setup.rank):
-        table = box_factors(setup, colour, i, j, parameters, bench.moduli)
-        part = tree_products(table, where, forest, bench)
-        parts.append(bench.multiply(part, alone, part))
-    return parts
+    parts = tree_products(box_factors(setup, i, j, parameters, bench.moduli), where, forest, bench)
+    return bench.multiply(parts, alone, parts)
 
 
 def two_colours(setup: FastSetup, forest: Forest, moduli: Moduli) -> Floats:
@@ -57,7 +53,8 @@ def two_colours(setup: FastSetup, forest: Forest, moduli: Moduli) -> Floats:
     parts = one_colour(setup, forest, parameters, bench)
     i, j, place = differences(charge)
     difference = setup.coulomb[0] - setup.coulomb[1]
-    table = pair_factors(setup, difference, i, j, parameters, moduli) if charge > 1 else np.ones((1, len(moduli)))
+    # At charge 1 no two diagrams meet.
+    table = pair_factors(setup, [difference], i, j, parameters, moduli)[0] if charge > 1 else total[:1]
     # S is even: for colour 2 the difference (i, j) of colour 1 less colour 2 changes sign, nothing else.
     for big, small, sign in ((parts[0], parts[1], 1), (parts[1], parts[0], -1)):
         _pass(big, small, table, sign, place, forest, bench, total)

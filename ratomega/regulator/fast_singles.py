@@ -72,11 +72,10 @@ def singles(setup: FastSetup, layout: Layout, parameters: Parameters, bench: Ben
         rows = np.nonzero(layout.need > n)[0]
         alone_sum[rows] = layout.hooks[rows] @ hook_powers[n]
         alone_sums.append(alone_sum)
+    constants = tree_products(box_factors(setup, i, j, parameters, moduli), layout.where, forest, bench)
+    bench.multiply(constants, alone, constants)
     result = []
-    for colour in range(setup.rank):
-        table = box_factors(setup, colour, i, j, parameters, moduli)
-        constant = tree_products(table, layout.where, forest, bench)
-        bench.multiply(constant, alone, constant)
+    for colour, constant in enumerate(constants):
         box_powers = power_sums(box_shifts(setup, colour), i, j, depth, setup, parameters, moduli)
         powers = [alone_sum.copy() for alone_sum in alone_sums]
         for n, power in enumerate(powers):

@@ -42,17 +42,18 @@ def three_colours(setup: FastSetup, forest: Forest, moduli: Moduli) -> Floats:
     bench = Bench.make(moduli, max(len(forest), 2 * PIECE // len(moduli)))
     flat = Moduli.make(moduli.primes)
     d1, d2, d3 = one_colour(setup, forest, parameters, bench)
-    m12, m13, m23 = (_pair_products(setup, a, b, forest, parameters, bench) for a, b in PAIRS)
+    pairs = _pair_products(setup, forest, parameters, bench)
     one, two, starts, place = _pairs_by_charge(forest)
     # The pair of the first two colours with everything that does not involve the third.
-    first_two = np.concatenate([m.reshape(-1, len(moduli)) for m in m12])[place]
+    first_two = np.concatenate([pair[0].reshape(-1, len(moduli)) for pair in pairs])[place]
     bench.multiply(bench.multiply(first_two, d1[one], first_two), d2[two], first_two)
     weights = _primes_first(first_two)
     for third in range(charge + 1):
         here = forest.sizes(third, third)
+        _, m13, m23 = pairs[third]
         seen = forest.start[charge - third + 1]
-        left = _primes_first(bench.multiply(m13[third], d3[here, None])).transpose(0, 2, 1)
-        both = _dot(left, _primes_first(m23[third]), flat).reshape(len(moduli), -1)
+        left = _primes_first(bench.multiply(m13, d3[here, None])).transpose(0, 2, 1)
+        both = _dot(left, _primes_first(m23), flat).reshape(len(moduli), -1)
         count = starts[charge - third + 1]
         summed = flat.multiply(both[:, one[:count] * seen + two[:count]], weights[:, :count])
         total[third:] += flat.reduce(np.add.reduceat(summed, starts[: charge - third + 1], axis=1)).T
@@ -86,37 +87,36 @@ def _dot(left: Floats, right: Floats, flat: Moduli) -> Floats:
     return total if right.shape[1] <= step else flat.reduce(total)
 
 
-def _pair_products(
-    setup: FastSetup, a: int, b: int, forest: Forest, parameters: Parameters, bench: Bench
-) -> list[Floats]:
-    """The product of S over pairs of boxes; the n-th entry: (diagrams of size n, of colour b; of colour a; primes)."""
+def _pair_products(setup: FastSetup, forest: Forest, parameters: Parameters, bench: Bench) -> list[Floats]:
+    """The product of S over pairs of boxes, for every pair of colours.
+
+    The n-th entry has shape (pairs of colours; diagrams of size n, of the later colour; of the earlier one; primes).
+    """
     charge, moduli = forest.charge, bench.moduli
-    i, j, place = differences(charge)
-    root = setup.coulomb[a] - setup.coulomb[b]
-    products = [np.ones((1, len(forest), len(moduli)))]
+    products = [np.ones((len(PAIRS), 1, len(forest), len(moduli)))]
     if charge == 1:
-        return [*products, np.ones((1, 1, len(moduli)))]
-    table = pair_factors(setup, root, i, j, parameters, moduli)
+        return [*products, np.ones((len(PAIRS), 1, 1, len(moduli)))]
+    i, j, place = differences(charge)
+    roots = [setup.coulomb[a] - setup.coulomb[b] for a, b in PAIRS]
+    table = pair_factors(setup, roots, i, j, parameters, moduli)
     boxes = box_list(charge)
     number = np.full((charge + 1, charge + 1), -1)
     for n, box in enumerate(boxes):
         number[box] = n
     row, column = box_arrays(boxes)
     area = (row + 1) * (column + 1)
-    grown = np.ones((len(boxes), forest.start[charge], len(moduli)))
+    grown = np.ones((len(PAIRS), len(boxes), forest.start[charge], len(moduli)))
     for n in range(1, charge):
         part = forest.sizes(n, n)
         count = int(np.searchsorted(area, charge - n, side="right"))
-        codes = place[
-            forest.row[part] - row[:count, None], forest.column[part] - column[:count, None]
-        ]
-        factor = table[codes]
-        grown[:count, part] = bench.multiply(grown[:count, forest.parent[part]], factor, factor)
+        codes = place[forest.row[part] - row[:count, None], forest.column[part] - column[:count, None]]
+        factor = table[:, codes]
+        grown[:, :count, part] = bench.multiply(grown[:, :count, forest.parent[part]], factor, factor)
     for n in range(1, charge + 1):
         part = forest.sizes(n, n)
         seen = forest.start[charge - n + 1]
-        before = products[-1][forest.parent[part] - forest.start[n - 1], :seen]
-        products.append(bench.multiply(before, grown[number[forest.row[part], forest.column[part]], :seen]))
+        before = products[-1][:, forest.parent[part] - forest.start[n - 1], :seen]
+        products.append(bench.multiply(before, grown[:, number[forest.row[part], forest.column[part]], :seen]))
     return products
 
 

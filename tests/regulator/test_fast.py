@@ -118,6 +118,27 @@ def test_negative_and_long_parameters() -> None:
         assert list(fast_sum(setting, 4).coefficients) == plain_limits(setting, 4)
 
 
+def test_coefficients_that_vanish() -> None:
+    """U(2) with an adjoint of mass eps1: Z = 1."""
+    setting = setting_of("-1", adjoint=["eps1"])
+    assert list(fast_sum(setting, 7, certify=True).coefficients) == [1, *[0] * 7]
+
+
+def test_more_flavours_than_the_colours_carry() -> None:
+    masses = ["1/3", "2/5", "3/7", "1/2", "-1/9"]
+    for ratio in ("1", "-2/3"):
+        setting = setting_of(ratio, antifundamental=masses)
+        assert list(fast_sum(setting, 4).coefficients) == plain_limits(setting, 4)
+    setting = setting_of("2", antifundamental=masses)
+    expected = [direct_total(Weights(setting), (k,)).coefficient(0) for k in range(8)]
+    assert list(fast_sum(setting, 7).coefficients) == expected
+
+
+def test_charge_zero() -> None:
+    for coulomb in (("3/11", "-3/11"), ("3/11", "-2/7", "1/13")):
+        assert list(fast_sum(setting_of("1", coulomb), 0, certify=True).coefficients) == [1]
+
+
 # ---- where it does not apply
 
 
@@ -453,11 +474,6 @@ def test_small_cases_stay_with_the_engine() -> None:
     assert worthwhile(setting_of("1"), 8)
     assert worthwhile(setting_of("1", ("3/11", "-2/7", "1/13")), 5)
     assert not worthwhile(setting_of("1", ("1/3", "-2/3")), 8)
-
-
-def test_charge_zero() -> None:
-    for coulomb in (("3/11", "-3/11"), ("3/11", "-2/7", "1/13")):
-        assert list(fast_sum(setting_of("1", coulomb), 0, certify=True).coefficients) == [1]
 
 
 def test_large_arrays_are_reduced_in_pieces() -> None:
