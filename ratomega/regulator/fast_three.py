@@ -55,7 +55,9 @@ def three_colours(setup: FastSetup, forest: Forest, moduli: Moduli) -> Floats:
         left = _primes_first(bench.multiply(m13, d3[here, None])).transpose(0, 2, 1)
         both = _dot(left, _primes_first(m23), flat).reshape(len(moduli), -1)
         count = starts[charge - third + 1]
-        summed = flat.multiply(both[:, one[:count] * seen + two[:count]], weights[:, :count])
+        # Only pairs that fit beside the third diagram are worth a reduction.
+        chosen = flat.reduce(np.take(both, one[:count] * seen + two[:count], axis=1))
+        summed = flat.multiply(chosen, weights[:, :count])
         total[third:] += flat.reduce(np.add.reduceat(summed, starts[: charge - third + 1], axis=1)).T
     return moduli.reduce(total)
 
@@ -78,13 +80,17 @@ def _primes_first(x: Floats) -> Floats:
 
 
 def _dot(left: Floats, right: Floats, flat: Moduli) -> Floats:
-    """The matrix product of residues, prime by prime, in pieces that stay exact."""
+    """The matrix product of residues, prime by prime, exact but not reduced where one piece suffices."""
     half = max(flat.primes) / 2 + 1
     step = longest_dot(half, half)
-    total = flat.reduce(left[..., :step] @ right[:, :step])
-    for low in range(step, right.shape[1], step):
+    inner = right.shape[1]
+    if inner <= step:
+        product: Floats = left @ right
+        return product
+    total = np.zeros((len(flat), left.shape[1], right.shape[2]))
+    for low in range(0, inner, step):
         total += flat.reduce(left[..., low : low + step] @ right[:, low : low + step])
-    return total if right.shape[1] <= step else flat.reduce(total)
+    return total
 
 
 def _pair_products(setup: FastSetup, forest: Forest, parameters: Parameters, bench: Bench) -> list[Floats]:
