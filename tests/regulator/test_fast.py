@@ -482,3 +482,38 @@ def test_large_arrays_are_reduced_in_pieces() -> None:
     for shape in ((1, 1, 50, 2), (50, 2), (7, 9, 2)):
         values = np.arange(np.prod(shape), dtype=np.float64).reshape(shape) * 1000
         assert np.array_equal(bench.reduce(values.copy()), moduli.reduce(values))
+
+
+@pytest.mark.parametrize(
+    ("ratio", "coulomb", "top"),
+    [("1", ("3/11", "-3/11"), 12), ("1/2", ("3/11", "-3/11"), 9), ("1", ("3/11", "2/7", "1/5"), 6)],
+)
+def test_power_sums_keep_their_bound(ratio, coulomb, top, monkeypatch) -> None:
+    """Exactness rests on the bound that the exponential is told; no result would show a small excess."""
+    largest = []
+
+    def watched(sums, bound, half, bench):
+        size = max(float(np.abs(one).max()) for one in sums)
+        assert size <= bound
+        largest.append(size / bound)
+        assert half >= max(bench.moduli.primes) / 2
+        return exponential(sums, bound, half, bench)
+
+    for module in (fast_limit, fast_three):
+        monkeypatch.setattr(module, "exponential", watched)
+    fast_sum(setting_of(ratio, coulomb), top)
+    # The bound is no idle one.
+    assert max(largest) > 0.3
+
+
+def test_the_prime_that_is_kept_out_must_agree() -> None:
+    setup = fast.prepare(setting_of("103/71"))
+    primes = list(fast_collect.PrimeSource(26).take(12))
+    table = fast_generic.two_colours(setup, fast_layout.Forest.make(3), Moduli.make(primes, last=True))
+    found: list[Rational] = []
+    fast_collect._extend(setup, 3, table, primes, found, [])
+    assert len(found) == 4
+    table[2, -1] += 1
+    found.clear()
+    fast_collect._extend(setup, 3, table, primes, found, [])
+    assert len(found) == 2
