@@ -1,6 +1,6 @@
 """Diagrams at a rational ratio: orders, clusters, and the constants of pairs of clusters.
 
-One diagram alone: its order is the number of boxes factors of D that vanish at the limit point. Diagrams with the same
+The order of a diagram is the number of factors of D that vanish at the limit point. Diagrams with the same
 multiset of limiting contents alpha i + beta j form a cluster; all its members have the same order, and a product of S
 over the boxes of two diagrams takes the same value at t = 0 for all members of two clusters.
 """
