@@ -1,0 +1,264 @@
+"""The pole recursion modulo batches of primes, in matrix products of float64 residues.
+
+``PoleSolver.solve`` runs the schedule: it keeps, for every group of columns, the coefficients V[c, j, e] placed at the
+order j + m n where they are read, and adds block after block of orders to the sums that are pending. The arrays of one
+batch serve the next one again: the same places are written every time.
+
+With a mirror symmetry the columns (m, n) and (n, m) are read together: V of the second is V of the first with t -> -t,
+so even and odd powers of V see the sum and the difference of two kernels.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.lib.stride_tricks import as_strided
+
+from ratomega.exact.rational import Rational
+from ratomega.exact.residues import Floats, Moduli, longest_dot, residues_of
+from ratomega.regulator.pole_kernel import Kernel
+from ratomega.regulator.pole_lattice import PolePath
+from ratomega.regulator.pole_plan import Windows
+from ratomega.regulator.pole_problem import PoleProblem
+from ratomega.regulator.pole_residues import ResidueLattice
+from ratomega.regulator.pole_schedule import Group, Schedule, Step
+from ratomega.regulator.pole_scratch import Scratch
+
+__all__ = ["ConsistencyError", "PoleEngine", "PoleSolver"]
+
+
+class ConsistencyError(ArithmeticError):
+    """Singular parts that have to cancel did not: the windows or the arithmetic are at fault."""
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class PoleEngine:
+    """One problem, planned to a charge."""
+
+    lattice: ResidueLattice
+    schedule: Schedule
+    square: Rational
+
+    @classmethod
+    def make(cls, problem: PoleProblem, charge: int) -> PoleEngine:
+        """Exact integer planning; assumes ``problem.pole(charge) is None``."""
+        lattice = ResidueLattice.make(problem.matter, PolePath.towards(problem.steps), charge)
+        return cls(lattice, Schedule.make(Windows.make(lattice)), problem.square)
+
+    @property
+    def bytes_per_prime(self) -> int:
+        """Memory for one prime, near enough to choose the size of a batch."""
+        parities = 2 if self.lattice.path.mirror else 1
+        return 8 * (parities * self.schedule.table_size + self.schedule.size)
+
+
+class PoleSolver:
+    """An engine with the arrays for batches of ``size`` primes."""
+
+    def __init__(self, engine: PoleEngine, size: int) -> None:
+        self.engine, self.size = engine, size
+        self.schedule, self.windows = engine.schedule, engine.schedule.windows
+        self.path = engine.lattice.path
+        groups = self.schedule.groups
+        deepest = max([g.highest for g in groups], default=0)
+        self.length = max(deepest, -int(self.windows.valuation.min(initial=0))) + 3
+        self.scratch = Scratch()
+        self.copies = np.zeros((size, self.schedule.size))
+        self.ring = max([g.block for g in groups], default=1)
+        height = self.schedule.last - self.schedule.first + 1
+        self.pending = np.zeros((size, self.ring, height, len(self.windows.pairs)))
+        orders = self.windows.charge + 1
+        self.tables = [
+            _Table(self, group, self.copies[:, begin : begin + orders * group.cells])
+            for group, begin in zip(groups, self.schedule.offsets, strict=True)
+        ]
+
+    def solve(self, moduli: Moduli) -> Floats:
+        """W_0 ... W_charge modulo every prime: shape (primes, charge + 1).
+
+        Raises ``BadPrimes`` when a prime divides a denominator, ``ConsistencyError`` when singular parts survive, and
+        ``ValueError`` for a batch of more than ``size`` primes.
+        """
+        if len(moduli) > self.size:
+            raise ValueError(f"this solver takes {self.size} primes at a time, not {len(moduli)}")
+        if not self.tables:
+            answer = np.zeros((len(moduli), self.windows.charge + 1))
+            answer[:, 0] = 1.0
+            return answer
+        strength = self.engine.lattice.series(moduli, self.length)
+        for table in self.tables:
+            table.fill(moduli, strength)
+        self._recursion(moduli)
+        return self._answer(moduli, strength)
+
+    def _recursion(self, moduli: Moduli) -> None:
+        """Fill the copies of V, order by order."""
+        windows, schedule = self.windows, self.schedule
+        sums = _Sums(moduli, self.pending[: len(moduli)], schedule.first, self.path.mirror)
+        powers = np.arange(schedule.first, schedule.last + 1)[:, None]
+        for order, (source, target) in enumerate(schedule.moves):
+            for table in self.tables:
+                if order % table.group.block == 0:
+                    table.feed(moduli, order, sums)
+            rows = windows.rows(order)
+            value = self.scratch(0, (len(moduli), len(powers), rows))
+            sums.take(order, value, self.scratch(1, value.shape))
+            if order == 0:
+                value[:, -schedule.first] += 1.0
+            low, need = windows.low[:rows, order], windows.need[:rows, order]
+            # Products were started at the lowest power of all rows: from there on, the sums are complete.
+            cancelled = (powers < low) & (powers >= low.min(initial=0)) & (powers <= need)
+            if value[:, cancelled].any():
+                raise ConsistencyError(f"terms below the lower end of a window do not cancel at order {order}")
+            self.copies[: len(moduli), target] = value.reshape(len(moduli), -1)[:, source]
+
+    def _answer(self, moduli: Moduli, strength: Floats) -> Floats:
+        """The coefficients of t^0 of W, after those of the next lower power were seen to vanish."""
+        total = np.zeros((len(moduli), self.windows.charge + 1, 2))
+        # With a mirror symmetry odd powers cancel between (m, n) and (n, m) of themselves.
+        lower = -2 if self.path.mirror else -1
+        series = self._final_series(moduli, strength)
+        for table in self.tables:
+            reach = np.arange(table.group.start, table.group.stop)
+            final = np.zeros((len(moduli), len(reach), table.size, 2))
+            for power, weights in ((0, final[..., 0]), (lower, final[..., 1])):
+                place = power - reach
+                good = (place >= 0) & (place < series.shape[1])
+                weights[:, good] = series[:, place[good]][:, :, table.group.columns]
+            total += table.weighted(moduli, final)
+        answer = moduli.reduce(total)
+        if answer[:, :, 1].any():
+            raise ConsistencyError(f"the coefficient of t^{lower} of W does not vanish")
+        answer[:, 0, 0] += 1.0
+        return answer[:, :, 0]
+
+    def _final_series(self, moduli: Moduli, strength: Floats) -> Floats:
+        """2 R_c t^-v / ((m eps1 + n eps2)^2 - square), counted twice where (n, m) is left out."""
+        forms = np.array([self.path.form(*pair) for pair in self.windows.pairs], dtype=np.int64)
+        c, s = forms[:, 0], forms[:, 1]
+        square = residues_of([self.engine.square], moduli)
+        inverse = moduli.inverses(moduli.reduce(moduli.integers(c * c) - square))
+        one = moduli.multiply(moduli.integers(-2 * c * s), inverse)
+        two = moduli.multiply(moduli.integers(-s * s), inverse)
+        series = np.zeros_like(strength)
+        for power in range(series.shape[1]):
+            total = strength[:, power] * inverse
+            if power >= 1:
+                total += one * series[:, power - 1]
+            if power >= 2:
+                total += two * series[:, power - 2]
+            series[:, power] = moduli.reduce(total)
+        return moduli.reduce(series * np.array([1.0 + (self.path.mirror and m != n) for m, n in self.windows.pairs]))
+
+
+def _longest_sum(moduli: Moduli, *, mirror: bool) -> int:
+    """How many products of a kernel and a value can be summed: with a mirror kernels are sums of two residues."""
+    largest = float(moduli.p.max()) / 2 + 2
+    return longest_dot(2 * largest if mirror else largest, largest)
+
+
+class _Sums:
+    """Sums of products for the orders that are under way: exact, and reduced only when 2^53 comes near.
+
+    ``values`` has shape (primes, orders in a ring, powers, rows).
+    """
+
+    def __init__(self, moduli: Moduli, values: Floats, first: int, mirror: bool) -> None:
+        self.moduli, self.values, self.first = moduli, values, first
+        self.limit = _longest_sum(moduli, mirror=mirror)
+        self.longest = self.limit // 2
+        self.values[...] = 0.0
+        # How many products are summed at most, by order and power.
+        self.summed = np.zeros(values.shape[1:3], dtype=np.int64)
+
+    def add(self, step: Step, product: Floats, length: int) -> None:
+        """Add a product (primes, orders x powers, rows), each entry a sum of ``length`` products."""
+        begin, place = step.begin % self.values.shape[1], step.first - self.first
+        orders = slice(begin, begin + step.end - step.begin)
+        powers = slice(place, place + (step.count - 1) * step.stride + 1, step.stride)
+        summed = self.summed[orders, powers]
+        if summed.max() + length > self.limit:
+            waiting = self.values[:, orders, powers]
+            waiting[...] = self.moduli.reduce(waiting)
+            summed[...] = 1
+        summed += length
+        target = self.values[:, orders, powers, : step.rows]
+        target += product.reshape(target.shape)
+
+    def take(self, order: int, out: Floats, work: Floats) -> None:
+        """The residues of one finished order, whose place in the ring is then empty again."""
+        place = order % self.values.shape[1]
+        self.moduli.reduce(self.values[:, place, :, : out.shape[2]], out=out, work=work)
+        self.values[:, place] = 0.0
+        self.summed[place] = 0
+
+
+class _Table:
+    """The kernel of one group, and the copies of V that it multiplies."""
+
+    def __init__(self, solver: PoleSolver, group: Group, copies: Floats) -> None:
+        windows, path = solver.windows, solver.path
+        self.group, self.mirror, self.scratch = group, path.mirror, solver.scratch
+        self.first, self.size = solver.schedule.first, len(group.columns)
+        self.copies = copies.reshape(solver.size, windows.charge + 1, group.stop - group.start, self.size)
+        pairs = [windows.pairs[c] for c in group.columns]
+        near = [path.form(m, -n) for m, n in windows.pairs[: group.rows]]
+        self.straight = Kernel.make([path.form(m, n) for m, n in pairs], near)
+        self.swapped = Kernel.make([path.form(n, m) for m, n in pairs], near) if path.mirror else None
+        self.alone = [m == n for m, n in pairs]
+        # One table for even and one for odd powers of the result if there is a mirror; powers run downwards, so that
+        # powers and columns together are one axis of the matrix product.
+        shape = (solver.size, len(group.depth), self.size, group.rows)
+        self.kernels = [np.zeros(shape) for _ in range(2 if path.mirror else 1)]
+
+    def fill(self, moduli: Moduli, strength: Floats) -> None:
+        group, kernels = self.group, [kernel[: len(moduli)] for kernel in self.kernels]
+        if group.rows == 0:
+            return
+        own = strength[:, :, group.columns]
+        straight = self.straight.powers(moduli, own, group.lowest, group.depth, self.scratch.part(1))
+        if self.swapped is None:
+            for index, piece in enumerate(straight):
+                kernels[0][:, -1 - index, :, : piece.shape[2]] = piece
+            return
+        turned = own * ((-1.0) ** np.arange(own.shape[1]))[None, :, None]
+        swapped = self.swapped.powers(moduli, turned, group.lowest, group.depth, self.scratch.part(2))
+        for index, (one, other) in enumerate(zip(straight, swapped, strict=True)):
+            other[:, self.alone] = 0.0
+            plus, minus = kernels if (group.lowest + index) % 2 == 0 else kernels[::-1]
+            np.add(one, other, out=plus[:, -1 - index, :, : one.shape[2]])
+            np.subtract(one, other, out=minus[:, -1 - index, :, : one.shape[2]])
+
+    def feed(self, moduli: Moduli, begin: int, sums: _Sums) -> None:
+        """Add what this group contributes to the block of orders that begins here."""
+        for step in self.group.steps.get(begin, ()):
+            self._product(moduli, step, sums)
+
+    def _product(self, moduli: Moduli, step: Step, sums: _Sums) -> None:
+        group, size = self.group, self.size
+        primes, orders = len(moduli), step.end - step.begin
+        kernel = self.kernels[step.first % 2 if self.mirror else 0][:primes].reshape(primes, -1, group.rows)
+        top = (group.highest - step.deepest) * size
+        length = (step.deepest - group.lowest + 1) * size
+        # Row (order, power) of the left factor is a run of V; neighbouring powers overlap.
+        anchor = self.copies[:primes, step.begin :, step.low - (step.count - 1) * step.stride - group.start :]
+        sp, sj, se, sc = anchor.strides
+        left = self.scratch(0, (primes, orders, step.count, length))
+        left[...] = as_strided(anchor, left.shape, (sp, sj, step.stride * se, sc), writeable=False)
+        left = left.reshape(primes, orders * step.count, length)
+        product = self.scratch(1, (primes, orders * step.count, step.rows))
+        for cut in range(0, length, sums.longest):
+            end = min(cut + sums.longest, length)
+            np.matmul(left[:, :, cut:end], kernel[:, top + cut : top + end, : step.rows], out=product)
+            sums.add(step, product, end - cut)
+
+    def weighted(self, moduli: Moduli, final: Floats) -> Floats:
+        """sum over powers and columns of V times ``final`` (primes, powers, columns, kinds), for every order."""
+        primes, orders = len(moduli), self.copies.shape[1]
+        flat, weights = self.copies[:primes].reshape(primes, orders, -1), final.reshape(primes, -1, final.shape[3])
+        total = np.zeros((primes, orders, final.shape[3]))
+        limit = _longest_sum(moduli, mirror=False)
+        for cut in range(0, flat.shape[2], limit):
+            total += moduli.reduce(np.matmul(flat[:, :, cut : cut + limit], weights[:, cut : cut + limit]))
+        return total
