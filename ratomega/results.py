@@ -13,7 +13,7 @@ import networkx
 from ratomega.case.case import Case
 from ratomega.detector.clusters import add_exchanges
 from ratomega.diagrams.tuples import Charge, Configuration
-from ratomega.exact.rational import Rational
+from ratomega.exact.quadratic import Number
 from ratomega.regulator.outcome import PathValue
 from ratomega.validator.finiteness import CANCELLATION, PATHS
 from ratomega.validator.verdict import Check, Verdict
@@ -69,12 +69,12 @@ class Coefficient:
 
     charge: Charge
     status: str
-    value: Rational | None
+    value: Number | None
     order: int
-    leading: Rational | None
+    leading: Number | None
     values: tuple[PathValue, ...]
     independence: str | None
-    terms: tuple[tuple[int, Rational], ...] | None
+    terms: tuple[tuple[int, Number], ...] | None
     configurations: int
     singular: int
     indeterminate: int

@@ -1,4 +1,5 @@
-"""Affine expressions in eps1, eps2 and t with exact coefficients: what every parameter of a case is.
+"""Affine expressions in eps1, eps2 and t with exact coefficients (rational or of a quadratic field): what every
+parameter of a case is.
 
 ``Affine`` is a value; ``case.expression`` reads it from text. ``str`` writes the canonical text, which reads back
 to the same value. On a path, ``Affine.on`` turns the expression into ``c + d t``.
@@ -8,8 +9,9 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 
-from ratomega.exact.path import Linear
-from ratomega.exact.rational import ONE, ZERO, Rational, exact_text
+from ratomega.exact.path import Linear, sum_text, term_text
+from ratomega.exact.quadratic import Number, number_text
+from ratomega.exact.rational import ONE, ZERO
 
 __all__ = ["Affine"]
 
@@ -18,6 +20,7 @@ __all__ = ["Affine"]
 class Affine:
     """``constant + eps1*E1 + eps2*E2 + t*T`` with exact coefficients.
 
+    >>> from ratomega.exact.rational import Rational
     >>> x = Affine(constant=Rational(1, 2), eps2=Rational(2), t=Rational(-1, 7))
     >>> str(x), str(-x)
     ('1/2 + 2*eps2 - t/7', '-1/2 - 2*eps2 + t/7')
@@ -25,10 +28,10 @@ class Affine:
     '5/2 + 13*t/7'
     """
 
-    constant: Rational = ZERO
-    eps1: Rational = ZERO
-    eps2: Rational = ZERO
-    t: Rational = ZERO
+    constant: Number = ZERO
+    eps1: Number = ZERO
+    eps2: Number = ZERO
+    t: Number = ZERO
 
     def __add__(self, other: Affine) -> Affine:
         return Affine(
@@ -41,7 +44,7 @@ class Affine:
     def __sub__(self, other: Affine) -> Affine:
         return self + (-other)
 
-    def times(self, factor: Rational) -> Affine:
+    def times(self, factor: Number) -> Affine:
         return Affine(self.constant * factor, self.eps1 * factor, self.eps2 * factor, self.t * factor)
 
     def is_number(self) -> bool:
@@ -55,21 +58,17 @@ class Affine:
             self.eps1 * eps1.slope + self.eps2 * eps2.slope + self.t,
         )
 
+    def numbers(self) -> tuple[Number, ...]:
+        """All coefficients."""
+        return self.constant, self.eps1, self.eps2, self.t
+
     def key(self) -> tuple[str, str, str, str]:
         """Hashable canonical form (``fmpq`` hashes, but text is stable across processes)."""
-        return exact_text(self.constant), exact_text(self.eps1), exact_text(self.eps2), exact_text(self.t)
+        return number_text(self.constant), number_text(self.eps1), number_text(self.eps2), number_text(self.t)
 
     def __str__(self) -> str:
-        terms = [exact_text(self.constant)] if self.constant != 0 else []
+        terms = [number_text(self.constant)] if self.constant != 0 else []
         for coefficient, name in ((self.eps1, "eps1"), (self.eps2, "eps2"), (self.t, "t")):
             if coefficient != 0:
-                terms.append(_term(coefficient, name))
-        if not terms:
-            return "0"
-        return terms[0] + "".join(f" - {x[1:]}" if x.startswith("-") else f" + {x}" for x in terms[1:])
-
-
-def _term(coefficient: Rational, name: str) -> str:
-    top, bottom = coefficient.p, coefficient.q
-    head = name if top == 1 else f"-{name}" if top == -1 else f"{top}*{name}"
-    return head if bottom == 1 else f"{head}/{bottom}"
+                terms.append(term_text(coefficient, name))
+        return sum_text(terms)

@@ -12,6 +12,7 @@ from ratomega.case.theory import Theory
 from ratomega.case.wording import kind, quoted, shortened
 from ratomega.diagrams.tuples import Charge, charges_up_to
 from ratomega.errors import InputError, Problem
+from ratomega.exact.quadratic import is_quadratic, two_fields
 from ratomega.exact.rational import Rational, exact_text
 
 __all__ = ["HIGHEST_CHARGE", "Case"]
@@ -34,7 +35,8 @@ class Case:
     def make(
         cls, theory: Theory, background: Background, charge: int | Sequence[int], title: str = ""
     ) -> Case:
-        """The checking constructor. Raises ``InputError`` for a bad charge or title."""
+        """The checking constructor. Raises ``InputError`` for a bad charge or title, or numbers of two fields."""
+        _check_field(theory)
         return cls(checked_title(title), theory, background, checked_charge(charge, len(theory.nodes)))
 
     def with_charge(self, charge: int | Sequence[int]) -> Case:
@@ -59,6 +61,16 @@ class Case:
     def hash(self) -> str:
         """SHA-256 of ``key``, the first 16 hexadecimal digits."""
         return hashlib.sha256(self.key().encode()).hexdigest()[:16]
+
+
+def _check_field(theory: Theory) -> None:
+    """Refuse the first parameter that leaves the quadratic field of those before it."""
+    field = 0
+    for where, parameter in theory.parameters():
+        for d in {x.d for x in parameter.numbers() if is_quadratic(x)}:
+            if field not in (0, d):
+                raise InputError.single(two_fields(field, d), where)
+            field = d
 
 
 def checked_title(title: str) -> str:

@@ -99,7 +99,10 @@ def case_from_mapping(data: Mapping[str, object], *, where: str = "case") -> Cas
     reader.finish()
     assert background is not None
     assert theory is not None
-    return Case.make(theory, background, charge, title)
+    case = reader.attempt(lambda: Case.make(theory, background, charge, title))
+    reader.finish()
+    assert case is not None
+    return case
 
 
 def case_to_mapping(case: Case) -> dict[str, Any]:

@@ -96,6 +96,15 @@ class Theory:
             graph.add_edge(self.nodes[edge.source].name, self.nodes[edge.target].name, mass=str(edge.mass))
         return graph
 
+    def parameters(self) -> Iterator[tuple[str, Affine]]:
+        """Every Coulomb parameter and every mass, each with its place."""
+        for number, node in enumerate(self.nodes, 1):
+            for key in ("coulomb", "antifundamental", "fundamental", "adjoint"):
+                for position, value in enumerate(getattr(node, key), 1):
+                    yield f"node[{number}].{key}[{position}]", value
+        for number, edge in enumerate(self.edges, 1):
+            yield f"edge[{number}].mass", edge.mass
+
     def key(self) -> list[object]:
         """The physics in canonical form: node and colour order kept, masses sorted, names left out."""
         nodes = [

@@ -6,7 +6,7 @@ from collections.abc import Iterable, Sequence
 
 from ratomega.case.case import Case
 from ratomega.diagrams.tuples import Charge, Configuration
-from ratomega.exact.rational import decimal_text, exact_text
+from ratomega.exact.quadratic import approximate_text, number_text
 from ratomega.results import ChargeReport, Coefficient, DetectResult, FactorReport, Header, LimitResult, ValidateResult
 from ratomega.validator.verdict import Check
 
@@ -65,7 +65,7 @@ def _heading(header: Header, partial: bool) -> list[str]:
     lines += [
         f"theory   {theory_text(case)}",
         f"path     {header.path.text()}; t -> 0",
-        f"ratio    eps2/eps1 = {exact_text(ratio)}",
+        f"ratio    eps2/eps1 = {number_text(ratio)}",
         f"hash     {header.hash}",
     ]
     lines += [f"warning  {warning}" for warning in header.warnings]
@@ -93,13 +93,13 @@ def limit_text(result: LimitResult) -> str:
             lines += ["", f"charge {charge_word(c.charge)}, path by path (the case's own path first)"]
             lines += table(
                 ["order", "value", "path"],
-                [[str(v.order), exact_text(v.value), v.path] for v in c.values],
+                [[str(v.order), number_text(v.value), v.path] for v in c.values],
                 left=[1, 2],
             )
     for c in result.coefficients:
         if c.terms is not None:
             lines += ["", f"charge {charge_word(c.charge)}, expansion in t on the case's own path"]
-            lines += table(["power", "coefficient"], [[str(n), exact_text(v)] for n, v in c.terms], left=[1])
+            lines += table(["power", "coefficient"], [[str(n), number_text(v)] for n, v in c.terms], left=[1])
     lines += ["", "certificate", *_checks(result.checks)]
     return "\n".join(lines) + "\n"
 
@@ -114,7 +114,7 @@ def _limit_row(c: Coefficient) -> list[str]:
     else:
         shown = c.values[0].value
     independence = c.independence or "paths differ"
-    return [charge_word(c.charge), *counts, status, independence, f"~{decimal_text(shown)}", exact_text(shown)]
+    return [charge_word(c.charge), *counts, status, independence, f"~{approximate_text(shown)}", number_text(shown)]
 
 
 def validate_text(result: ValidateResult) -> str:

@@ -12,11 +12,11 @@ from dataclasses import dataclass
 from ratomega.detector.geometry import is_sink
 from ratomega.diagrams.tuples import Charge, configurations
 from ratomega.exact.laurent import Laurent, total
-from ratomega.weights import Weights
+from ratomega.weights import ContentsKey, Weights
 
 __all__ = ["ChargeSum", "ClusterSum", "direct_sum", "direct_total"]
 
-ClusterKey = tuple[tuple[int, ...], ...]
+ClusterKey = ContentsKey
 
 
 @dataclass(frozen=True, slots=True)
