@@ -37,6 +37,7 @@ __all__ = ["DEEPEST_NESTING", "LONGEST_EXPRESSION", "MOST_DIGITS", "SYMBOLS", "a
 
 SYMBOLS = ("eps1", "eps2", "t")
 IMAGINARY, ROOT = "i", "sqrt"
+_UNITS = {"eps1": Affine(eps1=ONE), "eps2": Affine(eps2=ONE), "t": Affine(t=ONE)}
 
 LONGEST_EXPRESSION = 2000
 DEEPEST_NESTING = 50
@@ -72,14 +73,17 @@ def as_affine(value: object, *, symbols: Collection[str] = SYMBOLS, where: str =
     for name in SYMBOLS:
         if name not in symbols and getattr(result, name) != 0:
             raise InputError.single(_not_here(quoted(str(result)), name, symbols), where)
+    for name, _ in result.symbols:
+        if name not in symbols:
+            raise InputError.single(_not_here(quoted(str(result)), name, symbols), where)
     if _too_long(result):
         raise InputError.single(_too_many_digits("a number"), where)
     return result
 
 
 def parse_affine(text: str, *, symbols: Collection[str] = SYMBOLS, where: str = "") -> Affine:
-    """Read an affine expression in ``symbols`` (some of eps1, eps2, t); coefficients are rational or of one quadratic
-    field.
+    """Read an affine expression in ``symbols`` (some of eps1, eps2, t, and free parameters of any other name);
+    coefficients are rational or of one quadratic field.
 
     ``parse_affine(str(x)) == x`` for every expression within the bounds. Raises ``InputError`` naming ``where``, with
     one sentence about the first mistake of the text.
@@ -255,9 +259,12 @@ class _Parser:
         if name == IMAGINARY:
             return Affine(self.of_field(-1))
         if name in self.symbols:
-            return Affine(**{name: ONE})
+            return _UNITS[name] if name in _UNITS else Affine(symbols=((name, ONE),))
         if name in SYMBOLS:
             raise InputError.single(_not_here(self.shown, name, self.symbols), self.where)
+        if set(self.symbols) == {"t"}:
+            message = f"contains the unknown name {quoted(name)}; only t may occur in eps1 and eps2 themselves"
+            raise self.mistake(message)
         if name in ("I", "j", "J"):
             raise self.mistake(f"contains the unknown name {quoted(name)}; the imaginary unit is written i")
         hint = nearest(name, self.symbols) or f"; the names known here: {', '.join([*self.symbols, IMAGINARY])}"

@@ -28,7 +28,6 @@ from ratomega.pipeline import (
     DEFAULT_PROBES,
     MOST_CONFIGURATIONS,
     Job,
-    checked_terms,
     detect_result,
     limit_result,
     validate_result,
@@ -110,9 +109,8 @@ def limit(probes: int, terms: int | None, as_json: bool, **case_options: Any) ->
 
     Example: ratomega limit b1-four-flavours --charge 2
     """
-    last = checked_terms(terms)
     job = _job(**case_options)
-    found, interrupted = _collect(job, job.limits(probes=probes, last=last), lambda one: one.charge)
+    found, interrupted = _collect(job, job.limits(probes=probes, terms=terms), lambda one: one.charge)
     return _finish(limit_result(job, found, terms=terms, partial=interrupted), limit_text, as_json, interrupted)
 
 

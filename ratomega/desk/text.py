@@ -6,7 +6,9 @@ from collections.abc import Iterable, Sequence
 
 from ratomega.case.case import Case
 from ratomega.diagrams.tuples import Charge, Configuration
+from ratomega.exact.function_text import function_text
 from ratomega.exact.quadratic import approximate_text, number_text
+from ratomega.exact.rational_function import RationalFunction
 from ratomega.results import ChargeReport, Coefficient, DetectResult, FactorReport, Header, LimitResult, ValidateResult
 from ratomega.validator.verdict import Check
 
@@ -65,6 +67,7 @@ def _heading(header: Header, partial: bool) -> list[str]:
     lines += [
         f"theory   {theory_text(case)}",
         f"path     {header.path.text()}; t -> 0",
+        *([f"symbols  {', '.join(case.symbols)}"] if case.symbols else []),
         f"ratio    eps2/eps1 = {number_text(ratio)}",
         f"hash     {header.hash}",
     ]
@@ -107,6 +110,9 @@ def limit_text(result: LimitResult) -> str:
 def _limit_row(c: Coefficient) -> list[str]:
     counts = [str(n) for n in (c.configurations, c.singular, c.worst_order, c.singular_clusters)]
     status = f"pole t^-{c.order}" if c.status == "pole" else c.status
+    if isinstance(c.value, RationalFunction):
+        function = c.value
+        return [charge_word(c.charge), *counts, status, c.independence or "", "function", function_text(function)]
     if c.value is not None:
         shown = c.value
     elif c.leading is not None:

@@ -195,6 +195,11 @@ def as_number(value: object, where: str = "") -> Number:
     if isinstance(value, complex):
         message = f'the complex {value!r} is not exact; write it as text, for example "1/3 + i/2"'
         raise InputError.single(message, where)
+    if isinstance(value, str) and "sqrt" in value:
+        try:
+            return from_number_text(value)
+        except ValueError as error:
+            raise InputError.single(str(error), where) from error
     if type(value).__module__.startswith("sympy.") and not getattr(value, "is_Rational", True):
         return _from_sympy(value, where)
     return as_rational(value, where)
