@@ -17,6 +17,8 @@ from ratomega.case.case import Case
 from ratomega.case.reading import load_case
 from ratomega.documents import load_result, to_json
 from ratomega.errors import InputError, PathError, Problem, RatomegaError, WorkerError
+from ratomega.exact.quadratic import Quadratic
+from ratomega.exact.rational_function import RationalFunction
 from ratomega.pipeline import clusters, detect, limit, validate
 from ratomega.results import Coefficient, DetectResult, LimitResult, ValidateResult
 from ratomega.validator.verdict import Check, Kind, Verdict
@@ -32,6 +34,8 @@ __all__ = [
     "LimitResult",
     "PathError",
     "Problem",
+    "Quadratic",
+    "RationalFunction",
     "RatomegaError",
     "ValidateResult",
     "Verdict",

@@ -1,4 +1,5 @@
-"""Results as JSON and back: exact numbers travel as "num/den" or "num", diagrams as lists of rows by node name.
+"""Results as JSON and back: exact numbers travel as "num/den", "num" or "x + y*sqrt(d)", functions of
+symbols in Python syntax, diagrams as lists of rows by node name.
 
 ``load_result(to_json(result)) == result``, and writing again gives the same bytes. Host names, folders and times stay
 out: the same case gives the same document everywhere.
@@ -16,7 +17,9 @@ from ratomega.case.case import Case
 from ratomega.case.reading import case_from_mapping, case_to_mapping
 from ratomega.diagrams.tuples import Configuration
 from ratomega.errors import InputError
-from ratomega.exact.rational import Rational, exact_text, from_exact_text
+from ratomega.exact.function_text import function_text, parse_function
+from ratomega.exact.quadratic import Number, from_number_text, number_text
+from ratomega.exact.rational_function import RationalFunction
 from ratomega.regulator.outcome import PathValue
 from ratomega.results import (
     ChargeReport,
@@ -103,7 +106,7 @@ def _from_document(document: Document) -> Result:
     partial = _flag(document["partial"])
     kind = document["result"]
     if kind == "limit":
-        coefficients = tuple(_read_coefficient(c) for c in document["coefficients"])
+        coefficients = tuple(_read_coefficient(c, header.case.symbols) for c in document["coefficients"])
         return LimitResult(header, coefficients, tuple(_read_check(c) for c in document["checks"]), partial)
     if kind == "detect":
         return DetectResult(header, tuple(_read_charge(c, header.case) for c in document["charges"]), partial)
@@ -133,8 +136,16 @@ def _word(value: object) -> str:
     return value
 
 
-def _rational(value: object) -> Rational:
-    return from_exact_text(_word(value))
+def _exact(value: object) -> Number:
+    return from_number_text(_word(value))
+
+
+def _value_text(value: Number | RationalFunction) -> str:
+    return function_text(value) if isinstance(value, RationalFunction) else number_text(value)
+
+
+def _read_value(value: object, symbols: tuple[str, ...]) -> Number | RationalFunction:
+    return parse_function(_word(value), symbols) if symbols else _exact(value)
 
 
 def _each(read: Callable[[Any], Any], values: Sequence[Any]) -> tuple[Any, ...]:
@@ -189,20 +200,20 @@ def _read_check(d: Document) -> Check:
 
 
 def _path_value(value: PathValue) -> Document:
-    return {"path": value.path, "value": exact_text(value.value), "order": value.order}
+    return {"path": value.path, "value": number_text(value.value), "order": value.order}
 
 
 def _coefficient(c: Coefficient) -> Document:
     document: Document = {"charge": list(c.charge), "status": c.status}
     if c.value is not None:
-        document["value"] = exact_text(c.value)
+        document["value"] = _value_text(c.value)
     if c.leading is not None:
-        document |= {"order": c.order, "leading": exact_text(c.leading)}
+        document |= {"order": c.order, "leading": number_text(c.leading)}
     if c.values:
         document["values"] = [_path_value(v) for v in c.values]
     document["independence"] = c.independence
     if c.terms is not None:
-        document["terms"] = [{"power": power, "value": exact_text(value)} for power, value in c.terms]
+        document["terms"] = [{"power": power, "value": number_text(value)} for power, value in c.terms]
     document["configurations"] = c.configurations
     document["singular"] = c.singular
     document["indeterminate"] = c.indeterminate
@@ -212,18 +223,18 @@ def _coefficient(c: Coefficient) -> Document:
     return document
 
 
-def _read_coefficient(d: Document) -> Coefficient:
+def _read_coefficient(d: Document, symbols: tuple[str, ...]) -> Coefficient:
     return Coefficient(
         charge=_each(_number, d["charge"]),
         status=_word(d["status"]),
-        value=_rational(d["value"]) if "value" in d else None,
+        value=_read_value(d["value"], symbols) if "value" in d else None,
         order=_number(d.get("order", 0)),
-        leading=_rational(d["leading"]) if "leading" in d else None,
+        leading=_exact(d["leading"]) if "leading" in d else None,
         values=tuple(
-            PathValue(_word(v["path"]), _rational(v["value"]), _number(v["order"])) for v in d.get("values", [])
+            PathValue(_word(v["path"]), _exact(v["value"]), _number(v["order"])) for v in d.get("values", [])
         ),
         independence=None if d["independence"] is None else _word(d["independence"]),
-        terms=tuple((_number(t["power"]), _rational(t["value"])) for t in d["terms"]) if "terms" in d else None,
+        terms=tuple((_number(t["power"]), _exact(t["value"])) for t in d["terms"]) if "terms" in d else None,
         configurations=_number(d["configurations"]),
         singular=_number(d["singular"]),
         indeterminate=_number(d["indeterminate"]),

@@ -1,18 +1,21 @@
 """From a case to a result: the only place where the chain is spelt out.
 
     case -> own path (tilted if need be) -> weights -> detector / regulator -> validator -> result
+
+A case with symbols is put on its path at a generic point; beside what is found there, its coefficients are functions.
 """
 
 from __future__ import annotations
 
 import os
-from collections.abc import Callable, Iterator, Mapping
+from collections.abc import Callable, Iterator, Mapping, Sequence
 from concurrent.futures import Executor
 from contextlib import nullcontext
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import networkx
 
+from ratomega.case.affine import Affine
 from ratomega.case.case import Case
 from ratomega.case.reading import load_case
 from ratomega.case.setting import MOST_PROBES, Setting, own_setting, probe_setting
@@ -22,6 +25,7 @@ from ratomega.detector.zeros import Zeros, guilty_factors, scan
 from ratomega.diagrams.tuples import Charge, Configuration, count_all
 from ratomega.errors import InputError
 from ratomega.exact.path import SMALL_PARAMETERS
+from ratomega.exact.rational import ZERO
 from ratomega.regulator.limits import ChargeLimit, charge_limit
 from ratomega.regulator.outcome import FiniteLimit, PathDependent, Pole
 from ratomega.results import (
@@ -37,8 +41,11 @@ from ratomega.results import (
     SingularReport,
     ValidateResult,
 )
+from ratomega.symbolic.certificate import check_functions
+from ratomega.symbolic.functions import Functions, SymbolicLimit
 from ratomega.validator.comparison import check_adjoint_clusters, check_closed_forms
 from ratomega.validator.finiteness import certificate, check_orders
+from ratomega.validator.verdict import Check
 from ratomega.version import VERSION
 from ratomega.weights import Factor, Weights
 from ratomega.workers.charges import charge_cost, charge_limits, cut
@@ -56,16 +63,22 @@ MOST_WORKERS = 1024
 
 CaseSource = str | os.PathLike[str] | Mapping[str, object] | Case
 Watcher = Callable[[Charge], None]
+Found = ChargeLimit | SymbolicLimit
 
 
 @dataclass(frozen=True, slots=True)
 class Job:
-    """A case made ready: checked for size and path, put on its own path. Build it with ``Job.prepare``."""
+    """A case made ready: checked for size and path, put on its own path. Build it with ``Job.prepare``.
+
+    ``sample`` is the case at numbers: the case itself, or at a generic point where it has symbols (then ``functions``).
+    """
 
     case: Case
+    sample: Case
     setting: Setting
     weights: Weights
     header: Header
+    functions: Functions | None = None
 
     @classmethod
     def prepare(
@@ -80,9 +93,11 @@ class Job:
                 "lower the charge or raise the limit (--most-configurations, most_configurations=)",
                 "charge",
             )
-        setting = own_setting(case, allow_tilt=allow_tilt)
+        functions = Functions(case, most_configurations=most_configurations) if case.symbols else None
+        sample = case.at(**functions.generic_point) if functions is not None else case
+        setting = own_setting(sample, allow_tilt=allow_tilt)
         check_path(setting, case.bounds)
-        warnings = [*dead_colours(setting), *frozen_number_warnings(case, setting)]
+        warnings = [*dead_colours(setting), *frozen_number_warnings(sample, setting)]
         if setting.tilted:
             names = ", ".join(name for name, _ in setting.tilts)
             warnings.insert(
@@ -90,27 +105,40 @@ class Job:
                 f"the Coulomb parameters of {names} were tilted, because a difference is an integer combination of "
                 f"eps1 and eps2 all along the path: {setting.text()}",
             )
-        header = Header(VERSION, case, path_record(setting), case.hash, tuple(warnings))
-        return cls(case, setting, Weights(setting), header)
+        path = path_record(setting)
+        if functions is not None:
+            path = symbolic_path(case, setting)
+            point = ", ".join(f"{name} = {value}" for name, value in functions.generic_point.items())
+            warnings.append(f"weights, singular terms, orders and clusters are those at the generic point {point}")
+        header = Header(VERSION, case, path, case.hash, tuple(warnings))
+        return cls(case, sample, setting, Weights(setting), header, functions)
 
     def probes(self, number: int) -> tuple[Weights, ...]:
         """The weights on the first ``number`` further paths."""
         if not 0 <= number <= MOST_PROBES:
             message = f"the number of further paths is between 0 and {MOST_PROBES}, not {number}"
             raise InputError.single(message, "probes")
-        return tuple(Weights(probe_setting(self.case, n)) for n in range(1, number + 1))
+        return tuple(Weights(probe_setting(self.sample, n)) for n in range(1, number + 1))
 
     def limits(
-        self, *, probes: int, last: int = 0, always_probe: bool = False, crew: Crew | None = None
-    ) -> Iterator[ChargeLimit]:
-        """The limits charge by charge; computed here, or in chunks by a crew. They do not depend on which."""
+        self, *, probes: int, terms: int | None = None, always_probe: bool = False, crew: Crew | None = None
+    ) -> Iterator[Found]:
+        """The limits charge by charge, to t^terms; computed here, or in chunks by a crew: they do not depend on which.
+
+        Raises ``InputError`` for terms of a case with symbols.
+        """
+        last = checked_terms(terms)
+        if self.functions is not None and terms is not None:
+            message = "the expansion in t belongs to a case without symbols; give numbers for them"
+            raise InputError.single(message, "terms")
         further = self.probes(probes)
         if crew is not None:
             chunks = cut(self.case, self.setting, last=last, probes=probes, always_probe=always_probe)
             yield from charge_limits(self.setting, [p.setting for p in further], chunks, crew.results(chunks))
             return
         for charge in self.case.charges:
-            yield charge_limit(self.weights, charge, further, last=last, always_probe=always_probe)
+            one = charge_limit(self.weights, charge, further, last=last, always_probe=always_probe)
+            yield one if self.functions is None else SymbolicLimit(one, self.functions.at(charge))
 
     def cost(self, charge: Charge) -> float:
         """About how long one charge takes on one path, in seconds of some machine: for estimates of what is left."""
@@ -158,6 +186,19 @@ def path_record(setting: Setting) -> PathRecord:
     return PathRecord(SMALL_PARAMETERS, str(setting.eps1), str(setting.eps2), coulomb, setting.tilted)
 
 
+def symbolic_path(case: Case, setting: Setting) -> PathRecord:
+    """The path of a case with symbols; ``setting`` is the same path at the generic point."""
+    tilts = dict(setting.tilts)
+    coulomb = []
+    for node in case.theory.nodes:
+        texts = []
+        for a, tilt in zip(node.coulomb, tilts.get(node.name, (ZERO,) * node.rank), strict=True):
+            on_path = replace(a, symbols=()).on(setting.eps1, setting.eps2)
+            texts.append(str(Affine(on_path.constant, t=on_path.slope + tilt, symbols=a.symbols)))
+        coulomb.append((node.name, tuple(texts)))
+    return PathRecord(SMALL_PARAMETERS, str(setting.eps1), str(setting.eps2), tuple(coulomb), setting.tilted)
+
+
 def limit(
     source: CaseSource,
     *,
@@ -186,12 +227,17 @@ def limit(
     >>> result = limit({"charge": 2, "background": {"eps1": 1, "eps2": -1}, "node": [{"coulomb": ["0"]}]})
     >>> [str(c.value) for c in result]            # exp(q/(eps1 eps2)) = exp(-q)
     ['1', '-1', '1/2']
+
+    With symbols the values are functions, found from limits at many points.
+
+    >>> case = {"charge": 1, "symbols": ["a"], "background": {"eps1": 1, "eps2": 1}, "node": [{"coulomb": ["a", "-a"]}]}
+    >>> str(limit(case)[1].value)
+    '-1/(2*(a + 1)*(a - 1))'
     """
     job = Job.prepare(source, allow_tilt=allow_tilt, most_configurations=most_configurations)
-    last = checked_terms(terms)
     found = []
     with job.crew(workers=workers, executor=executor, keep=keep) or nullcontext() as crew:
-        for one in job.limits(probes=probes, last=last, crew=crew):
+        for one in job.limits(probes=probes, terms=terms, crew=crew):
             found.append(one)
             if watch is not None:
                 watch(one.charge)
@@ -206,13 +252,25 @@ def checked_terms(terms: int | None) -> int:
     return terms
 
 
-def limit_result(job: Job, found: list[ChargeLimit], *, terms: int | None = None, partial: bool = False) -> LimitResult:
+def limit_result(job: Job, found: Sequence[Found], *, terms: int | None = None, partial: bool = False) -> LimitResult:
     """The result of the charges found so far."""
     coefficients = tuple(_coefficient(one, terms) for one in found)
-    return LimitResult(job.header, coefficients, certificate(found), partial)
+    return LimitResult(job.header, coefficients, (*certificate(samples(found)), *_function_checks(job, found)), partial)
 
 
-def _coefficient(one: ChargeLimit, terms: int | None) -> Coefficient:
+def samples(found: Sequence[Found]) -> list[ChargeLimit]:
+    """The limits at numbers: the limits themselves, or those at the generic point."""
+    return [one.sample if isinstance(one, SymbolicLimit) else one for one in found]
+
+
+def _function_checks(job: Job, found: Sequence[Found]) -> tuple[Check, ...]:
+    functions = [one.found for one in found if isinstance(one, SymbolicLimit)]
+    return (check_functions(job.case.symbols, functions),) if functions else ()
+
+
+def _coefficient(one: Found, terms: int | None) -> Coefficient:
+    if isinstance(one, SymbolicLimit):
+        return replace(_coefficient(one.sample, None), value=one.found.function)
     outcome, charge_sum = one.outcome, one.sum
     independence = None if isinstance(outcome, PathDependent) else outcome.independence
     return Coefficient(
@@ -299,10 +357,12 @@ def validate(
     return validate_result(job, found)
 
 
-def validate_result(job: Job, found: list[ChargeLimit], *, partial: bool = False) -> ValidateResult:
-    """The checks for the charges found so far."""
-    checks = [*certificate(found), check_orders(found), *check_closed_forms(job.case, job.setting, found)]
-    adjoint = check_adjoint_clusters(job.setting, found)
+def validate_result(job: Job, found: Sequence[Found], *, partial: bool = False) -> ValidateResult:
+    """The checks for the charges found so far; with symbols all but the last are made at the generic point."""
+    limits = samples(found)
+    checks = [*certificate(limits), check_orders(limits), *check_closed_forms(job.sample, job.setting, limits)]
+    checks += _function_checks(job, found)
+    adjoint = check_adjoint_clusters(job.setting, limits)
     return ValidateResult(job.header, (*checks, adjoint) if adjoint is not None else tuple(checks), partial)
 
 

@@ -13,7 +13,8 @@ import networkx
 from ratomega.case.case import Case
 from ratomega.detector.clusters import add_exchanges
 from ratomega.diagrams.tuples import Charge, Configuration
-from ratomega.exact.rational import Rational
+from ratomega.exact.quadratic import Number
+from ratomega.exact.rational_function import RationalFunction
 from ratomega.regulator.outcome import PathValue
 from ratomega.validator.finiteness import CANCELLATION, PATHS
 from ratomega.validator.verdict import Check, Verdict
@@ -65,16 +66,19 @@ class Coefficient:
     ``status`` is "finite" (then ``value``), "pole" (then ``order`` and ``leading``) or "path-dependent" (then
     ``values``, the case's own path first). ``independence`` is "theorem", "agreement" (of probed paths), "undecided"
     (none was probed), or None where paths differ. ``terms`` are (power of t, coefficient) on the own path.
+
+    In a case with symbols ``value`` is a ``RationalFunction`` of them, the limit is finite by theorem away from its
+    poles, and the counts belong to a generic point.
     """
 
     charge: Charge
     status: str
-    value: Rational | None
+    value: Number | RationalFunction | None
     order: int
-    leading: Rational | None
+    leading: Number | None
     values: tuple[PathValue, ...]
     independence: str | None
-    terms: tuple[tuple[int, Rational], ...] | None
+    terms: tuple[tuple[int, Number], ...] | None
     configurations: int
     singular: int
     indeterminate: int

@@ -27,14 +27,17 @@ from dataclasses import dataclass
 from ratomega.case.setting import Setting
 from ratomega.diagrams.tuples import Configuration
 from ratomega.diagrams.young import Box, Diagram, boxes, transpose
-from ratomega.exact.factored import Factored, Form, expand, integer_form, linear_factors
+from ratomega.exact.factored import Factored, Form, Whole, expand, integer_form, linear_factors, rational_form
 from ratomega.exact.laurent import Laurent
 from ratomega.exact.path import Linear
-from ratomega.exact.rational import ONE, Rational, common_denominator
+from ratomega.exact.quadratic import Number, Quadratic, one_field, rational_parts
+from ratomega.exact.rational import ONE, common_denominator
 
-__all__ = ["Factor", "Weight", "Weights", "pair_points"]
+__all__ = ["ContentsKey", "Factor", "Weight", "Weights", "pair_points"]
 
 Point = tuple[int, int]
+ContentsKey = tuple[tuple[int, ...] | tuple[tuple[int, int], ...], ...]
+"""Node by node the sorted contents: integers, or over a quadratic field pairs of integers."""
 
 
 def pair_points(lam: Diagram, mu: Diagram, lam_columns: Diagram, mu_columns: Diagram) -> list[Point]:
@@ -106,7 +109,7 @@ class Weight:
         """The expansion in t, all powers up to ``last``."""
         return expand(self.parts, last)
 
-    def factors(self) -> dict[tuple[Rational, Rational], int]:
+    def factors(self) -> dict[tuple[Number, Number], int]:
         """The linear factors: {(c, d): exponent} for c + d t, cancelled ones left out."""
         return linear_factors(self.parts)
 
@@ -137,10 +140,14 @@ class Weights:
         values = [setting.eps1, setting.eps2, *(mass for _, _, mass in setting.edges)]
         for node in setting.nodes:
             values += [*node.coulomb, *node.antifundamental, *node.fundamental, *node.adjoint]
-        self.scale = common_denominator([x for value in values for x in (value.constant, value.slope)])
-        self.eps1 = integer_form(setting.eps1, self.scale)
-        self.eps2 = integer_form(setting.eps2, self.scale)
+        numbers = [x for value in values for x in (value.constant, value.slope)]
+        self.radicand = one_field(numbers)
+        self.scale = common_denominator([part for x in numbers for part in rational_parts(x)])
+        # The background is rational: of a factor root + p eps1 + q eps2 only the root can lie beyond Q.
+        self.eps1 = rational_form(setting.eps1, self.scale)
+        self.eps2 = rational_form(setting.eps2, self.scale)
         self.coulomb = tuple(integer_form(setting.nodes[v].coulomb[c], self.scale) for v, c in self.slots)
+        self._starts = [c if isinstance(c, int) else 0 for c, _ in self.coulomb]
         self._contents, self._pairs = self._links()
         # Pair parts are met again only where a third colour varies beside them.
         self._keep_pairs = len(self.slots) > 2
@@ -223,7 +230,7 @@ class Weights:
             columns = self.columns(diagram)
             up, down = self._forms(self._pairs[slot, slot], pair_points(diagram, diagram, columns, columns))
             more, _ = self._forms(self._contents[slot], [(i - 1, j - 1) for i, j in boxes(diagram)])
-            part = self._single[slot, diagram] = Factored.of(up + more, down, self.scale)
+            part = self._single[slot, diagram] = Factored.of(up + more, down, self.scale, self.radicand)
         return part
 
     def _two(self, first: int, second: int, lam: Diagram, mu: Diagram) -> Factored:
@@ -232,7 +239,7 @@ class Weights:
         if part is None:
             points = pair_points(lam, mu, self.columns(lam), self.columns(mu))
             up, down = self._forms(self._pairs[first, second], points)
-            part = Factored.of(up, down, self.scale)
+            part = Factored.of(up, down, self.scale, self.radicand)
             if self._keep_pairs:
                 self._double[key] = part
         return part
@@ -248,20 +255,36 @@ class Weights:
                 parts.append(self._two(first, second, flat[first], flat[second]))
         return Weight(tuple(parts))
 
-    def contents(self, configuration: Configuration) -> tuple[tuple[int, ...], ...]:
+    def contents(self, configuration: Configuration) -> ContentsKey:
         """Node by node the sorted limiting contents of all boxes, in units of 1/scale: the key of the cluster."""
+        if self.radicand:
+            return self._paired_contents(configuration)
         c1, c2 = self.eps1[0], self.eps2[0]
-        key = []
+        key: list[tuple[int, ...]] = []
         slot = 0
         for node in configuration:
             found: list[int] = []
             for diagram in node:
-                start = self.coulomb[slot][0]
+                start = self._starts[slot]
                 for i, row in enumerate(diagram):
                     found.extend(start + i * c1 + j * c2 for j in range(row))
                 slot += 1
             found.sort()
             key.append(tuple(found))
+        return tuple(key)
+
+    def _paired_contents(self, configuration: Configuration) -> ContentsKey:
+        c1, c2 = self.eps1[0], self.eps2[0]
+        key: list[tuple[tuple[int, int], ...]] = []
+        slot = 0
+        for node in configuration:
+            found: list[tuple[int, int]] = []
+            for diagram in node:
+                x, y = _integer_parts(self.coulomb[slot][0])
+                for i, row in enumerate(diagram):
+                    found.extend((x + i * c1 + j * c2, y) for j in range(row))
+                slot += 1
+            key.append(tuple(sorted(found)))
         return tuple(key)
 
     def named_factors(self, configuration: Configuration) -> Iterator[Factor]:
@@ -286,7 +309,7 @@ class Weights:
         s = link.root[1] + p * self.eps1[1] + q * self.eps2[1]
         unit = ONE / self.scale
         form = _sum_text(link.label, p, q)
-        value = Linear(c * unit, s * unit)
+        value = Linear(unit * c, unit * s)
         return Factor(link.multiplet, link.place, link.colours, box, arm, leg, form, value, link.exponent)
 
     def tangent_points(self, configuration: Configuration) -> Iterator[tuple[int, int, int, int]]:
@@ -309,6 +332,10 @@ class Weights:
                     one, two, pp, qq = (second, first, 1 - p, 1 - q) if link.reverse else (first, second, p, q)
                     if link.root[0] + pp * c1 + qq * c2 == 0:
                         yield one, two, pp, qq
+
+
+def _integer_parts(value: Whole) -> tuple[int, int]:
+    return (int(value.x.p), int(value.y.p)) if isinstance(value, Quadratic) else (value, 0)
 
 
 def _sum_text(label: str, p: int, q: int) -> str:

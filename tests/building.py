@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import plain
+from flint import fmpq
 
 import ratomega
 from ratomega.case.setting import Setting
@@ -19,11 +20,26 @@ def make_case(eps1, eps2, nodes, *, charge=2, edges=()):
     return ratomega.load_case(mapping)
 
 
+def plain_number(value):
+    """A number of the package as one of ``plain``, from its text."""
+    text = str(value)
+    if "sqrt" not in text:
+        return value
+    x, sign, y = ("0", "+", text) if " " not in text else text.split(" ")
+    y, _, d = y.removesuffix(")").partition("*sqrt(")
+    return plain.Pair(fraction(x), fraction(y) * (-1 if sign == "-" else 1), int(d))
+
+
+def fraction(text):
+    top, _, bottom = text.partition("/")
+    return fmpq(int(top), int(bottom or 1))
+
+
 def plain_theory(setting: Setting):
     """The same theory as a dictionary of ``plain.Line`` for the plain reference."""
 
     def line(value):
-        return plain.Line(value.constant, value.slope)
+        return plain.Line(plain_number(value.constant), plain_number(value.slope))
 
     return {
         "eps1": line(setting.eps1),

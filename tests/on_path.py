@@ -9,13 +9,16 @@ from __future__ import annotations
 import re
 
 import plain
+from building import plain_number
 from flint import fmpq
 
 NUMBER = re.compile(r"-?\d+(?:/\d+)?")
-MOVING = re.compile(r"(?:(?P<constant>\S+) (?P<sign>[+-]) |(?P<minus>-)?)(?:(?P<top>\d+)\*)?t(?:/(?P<bottom>\d+))?")
+MOVING = re.compile(r"(?:(?P<constant>.+) (?P<sign>[+-]) |(?P<minus>-)?)(?:(?P<top>\d+)\*)?t(?:/(?P<bottom>\d+))?")
 
 
 def number(text: str) -> fmpq:
+    if "sqrt" in text:
+        return plain_number(text)
     assert NUMBER.fullmatch(text), text
     top, _, bottom = text.partition("/")
     return fmpq(int(top), int(bottom or 1))
@@ -40,8 +43,8 @@ def theory_on(case, path: str):
         coulomb[name] = [line(x) for x in values.removeprefix("(").removesuffix(")").split(", ")]
 
     def mass(expression):
-        moving = eps1 * expression.eps1 + eps2 * expression.eps2
-        return plain.Line(expression.constant, expression.t) + moving
+        constant, first, second, slope = (plain_number(x) for x in expression.numbers())
+        return plain.Line(constant, slope) + eps1 * first + eps2 * second
 
     return {
         "eps1": eps1,

@@ -7,8 +7,9 @@ Nothing is imported from the package.  A theory is a dictionary of plain numbers
      "edges": [(source, target, mass)]}
 
 Every number is a ``flint.fmpq`` (``weight``) or a pair of them standing for c + d t
-(``laurent_weight``).  The formulas are written box by box, exactly as they are printed in the
-literature (Nekrasov hep-th/0206161; Flume, Poghossian hep-th/0208176 for the product over boxes).
+(``laurent_weight``).  Beyond Q a number is a ``Pair`` x + y sqrt(d).
+The formulas are written box by box, exactly as they are printed in the literature (Nekrasov
+hep-th/0206161; Flume, Poghossian hep-th/0208176 for the product over boxes).
 No caching, no shared tables, no cancellation of factors.
 """
 
@@ -114,11 +115,55 @@ def coefficient(theory, charges):
     return sum((weight(theory, c) for c in configurations(ranks, charges)), fmpq(0))
 
 
+class Pair:
+    """x + y sqrt(d), as a pair of fmpq; mixes with plain numbers on either side."""
+
+    def __init__(self, x, y, d):
+        self.x, self.y, self.d = fmpq(x), fmpq(y), d
+
+    def lifted(self, other):
+        assert not isinstance(other, Pair) or other.d == self.d
+        return other if isinstance(other, Pair) else Pair(other, 0, self.d)
+
+    def __add__(self, other):
+        other = self.lifted(other)
+        return Pair(self.x + other.x, self.y + other.y, self.d)
+
+    def __mul__(self, other):
+        other = self.lifted(other)
+        return Pair(self.x * other.x + self.d * self.y * other.y, self.x * other.y + self.y * other.x, self.d)
+
+    def __truediv__(self, other):
+        other = self.lifted(other)
+        return self * Pair(other.x, -other.y, self.d) * (1 / (other.x**2 - self.d * other.y**2))
+
+    def __sub__(self, other):
+        return self + self.lifted(other) * -1
+
+    def __rsub__(self, other):
+        return self.lifted(other) - self
+
+    def __rtruediv__(self, other):
+        return self.lifted(other) / self
+
+    __radd__, __rmul__ = __add__, __mul__
+
+    def __eq__(self, other):
+        other = self.lifted(other)
+        return self.x == other.x and self.y == other.y
+
+    __hash__ = None
+
+
+def exact(number):
+    return number if isinstance(number, Pair) else fmpq(number)
+
+
 class Line:
     """c + d t, with the operations that the factors need."""
 
     def __init__(self, c, d=0):
-        self.c, self.d = fmpq(c), fmpq(d)
+        self.c, self.d = exact(c), exact(d)
 
     def __add__(self, other):
         return Line(self.c + other.c, self.d + other.d)

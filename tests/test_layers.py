@@ -19,6 +19,7 @@ LAYERS = [
     {"detector"},
     {"regulator"},
     {"validator"},
+    {"symbolic"},
     {"results"},
     {"workers"},
     {"pipeline"},

@@ -7,6 +7,7 @@ from dataclasses import dataclass
 from ratomega.case.affine import Affine
 from ratomega.errors import InputError, Problem
 from ratomega.exact.path import Linear
+from ratomega.exact.quadratic import is_quadratic, only_rational
 from ratomega.exact.rational import ONE, Rational
 
 __all__ = ["Background"]
@@ -30,6 +31,14 @@ class Background:
         for name, value in (("eps1", eps1), ("eps2", eps2)):
             if value.eps1 != 0 or value.eps2 != 0:
                 problems.append(Problem("in eps1 and eps2 themselves only t may occur", name))
+            elif is_quadratic(value.constant) or is_quadratic(value.t):
+                problems.append(
+                    Problem(
+                        f"{name} = {value} is not rational; i and sqrt(d) may stand in all other parameters, but "
+                        "eps1 and eps2 are rational (Z depends on ratios of parameters alone: divide all by eps1)",
+                        name,
+                    )
+                )
             elif value.constant == 0:
                 problems.append(
                     Problem(
@@ -46,7 +55,7 @@ class Background:
     @property
     def ratio(self) -> Rational:
         """eps2 / eps1 at the limit point."""
-        return self.eps2.constant / self.eps1.constant
+        return only_rational(self.eps2.constant / self.eps1.constant)
 
     @property
     def steps(self) -> tuple[int, int]:

@@ -1,29 +1,43 @@
-"""Affine expressions as text: "3/11", "eps1/2 + 2*eps2 - t/7", "0.25", "-(eps1+eps2)/2".
+"""Affine expressions as text: "3/11", "eps1/2 + 2*eps2 - t/7", "0.25", "-(eps1+eps2)/2", "1 + 2*i/3", "sqrt(21)/7".
 
 The grammar, read by recursive descent; nothing is ever evaluated by Python:
 
     expression = term { ("+" | "-") term }
     term       = factor { ("*" | "/") factor }
-    factor     = { "+" | "-" } ( number | name | "(" expression ")" )
+    factor     = { "+" | "-" } ( number | name | "i" | "sqrt" "(" expression ")" | "(" expression ")" )
 
-One side of a product is a number, and so is a divisor. Length, nesting and the size of the numbers are bounded, so
-that the cost is at most quadratic in a length of 2000 characters.
+One side of a product is a number, and so is a divisor. The number under a root is a squarefree integer, and one
+expression holds one root: its numbers lie in one quadratic field (i is sqrt(-1)). Length, nesting and the size of the
+numbers are bounded, so that the cost is at most quadratic in a length of 2000 characters.
 """
 
 from __future__ import annotations
 
 import re
 from collections.abc import Collection
-from dataclasses import dataclass, fields
+from dataclasses import dataclass
 
 from ratomega.case.affine import Affine
 from ratomega.case.wording import nearest, quoted, shortened
 from ratomega.errors import InputError
-from ratomega.exact.rational import ONE, Rational, as_rational, unsigned
+from ratomega.exact.quadratic import (
+    LARGEST_RADICAND,
+    Number,
+    as_integer,
+    as_number,
+    is_quadratic,
+    rational_parts,
+    split_square,
+    square_root,
+    two_fields,
+)
+from ratomega.exact.rational import ONE, Rational, unsigned
 
 __all__ = ["DEEPEST_NESTING", "LONGEST_EXPRESSION", "MOST_DIGITS", "SYMBOLS", "as_affine", "parse_affine"]
 
 SYMBOLS = ("eps1", "eps2", "t")
+IMAGINARY, ROOT = "i", "sqrt"
+_UNITS = {"eps1": Affine(eps1=ONE), "eps2": Affine(eps2=ONE), "t": Affine(t=ONE)}
 
 LONGEST_EXPRESSION = 2000
 DEEPEST_NESTING = 50
@@ -47,7 +61,7 @@ _INSTEAD = {"−": "-", "–": "-", "·": "*", "×": "*", "÷": "/", "ε": "eps"
 def as_affine(value: object, *, symbols: Collection[str] = SYMBOLS, where: str = "") -> Affine:
     """Return ``value`` as an affine expression: text is parsed, an exact number becomes a constant.
 
-    Accepted: text, everything that ``as_rational`` accepts, and ``Affine``. Floats are refused.
+    Accepted: text, everything that ``as_number`` accepts, and ``Affine``. Floats are refused.
     Raises ``InputError`` naming ``where``.
 
     >>> str(as_affine("2*eps1 - 0.5")), str(as_affine(3))
@@ -55,9 +69,12 @@ def as_affine(value: object, *, symbols: Collection[str] = SYMBOLS, where: str =
     """
     if isinstance(value, str):
         return parse_affine(value, symbols=symbols, where=where)
-    result = value if isinstance(value, Affine) else Affine(as_rational(value, where))
+    result = value if isinstance(value, Affine) else Affine(as_number(value, where))
     for name in SYMBOLS:
         if name not in symbols and getattr(result, name) != 0:
+            raise InputError.single(_not_here(quoted(str(result)), name, symbols), where)
+    for name, _ in result.symbols:
+        if name not in symbols:
             raise InputError.single(_not_here(quoted(str(result)), name, symbols), where)
     if _too_long(result):
         raise InputError.single(_too_many_digits("a number"), where)
@@ -65,13 +82,16 @@ def as_affine(value: object, *, symbols: Collection[str] = SYMBOLS, where: str =
 
 
 def parse_affine(text: str, *, symbols: Collection[str] = SYMBOLS, where: str = "") -> Affine:
-    """Read an affine expression with rational coefficients in ``symbols`` (some of eps1, eps2, t).
+    """Read an affine expression in ``symbols`` (some of eps1, eps2, t, and free parameters of any other name);
+    coefficients are rational or of one quadratic field.
 
     ``parse_affine(str(x)) == x`` for every expression within the bounds. Raises ``InputError`` naming ``where``, with
     one sentence about the first mistake of the text.
 
     >>> str(parse_affine("-(eps1 + eps2)/2 + 1e-1")), str(parse_affine("2*(t - 1/3)"))
     ('1/10 - eps1/2 - eps2/2', '-2/3 + 2*t')
+    >>> str(parse_affine("(1 + i)*(1 - 2*i)")), str(parse_affine("(eps1 - 1)/sqrt(5)"))
+    ('3 - 1*sqrt(-1)', '-1/5*sqrt(5) + 1/5*sqrt(5)*eps1')
     >>> parse_affine("eps1*eps2")
     Traceback (most recent call last):
     ...
@@ -88,7 +108,7 @@ def parse_affine(text: str, *, symbols: Collection[str] = SYMBOLS, where: str = 
 
 def _too_long(value: Affine) -> bool:
     bound = 10**MOST_DIGITS
-    numbers: list[Rational] = [getattr(value, field.name) for field in fields(value)]
+    numbers = [part for number in value.numbers() for part in rational_parts(number)]
     return any(abs(x.p) >= bound or x.q >= bound for x in numbers)
 
 
@@ -101,6 +121,17 @@ def _not_here(shown: str, name: str, symbols: Collection[str]) -> str:
         return f"{shown} contains {name}, but in eps1 and eps2 themselves only t may occur"
     allowed = ", ".join(symbols) or "no symbol at all"
     return f"{shown} contains {name}, but here only numbers and {allowed} may occur"
+
+
+def _root_of_fraction(value: Number) -> str:
+    """sqrt(p/q) = sqrt(p q)/q, in squarefree form."""
+    (x,) = rational_parts(value)
+    product, bottom = int(x.p) * int(x.q), int(x.q)
+    if abs(product) > LARGEST_RADICAND:
+        return "under a root stands an integer"
+    size, d = split_square(product)
+    factor = Rational(size, bottom)
+    return f"under a root stands an integer; write {factor}" + (f"*sqrt({d})" if d != 1 else "")
 
 
 @dataclass(frozen=True, slots=True)
@@ -119,6 +150,7 @@ class _Parser:
         self.shown = quoted(text)
         self.place = 0
         self.depth = 0
+        self.radicand = 0
         self.tokens = self.tokenized()
 
     def mistake(self, message: str) -> InputError:
@@ -219,14 +251,43 @@ class _Parser:
         return unsigned(text, self.where)
 
     def named(self, name: str) -> Affine:
-        if self.next.text == "(" and name not in SYMBOLS:
-            raise self.mistake(f"calls the function {quoted(name)}; functions are not read, only numbers and + - * /")
+        if name == ROOT:
+            return self.root()
+        if self.next.text == "(" and name not in (*SYMBOLS, IMAGINARY):
+            message = f"calls the function {quoted(name)}; functions are not read, only numbers, sqrt(d) and + - * /"
+            raise self.mistake(message)
+        if name == IMAGINARY:
+            return Affine(self.of_field(-1))
         if name in self.symbols:
-            return Affine(**{name: ONE})
+            return _UNITS[name] if name in _UNITS else Affine(symbols=((name, ONE),))
         if name in SYMBOLS:
             raise InputError.single(_not_here(self.shown, name, self.symbols), self.where)
-        hint = nearest(name, self.symbols) or f"; the names known here: {', '.join(self.symbols) or 'none'}"
+        if set(self.symbols) == {"t"}:
+            message = f"contains the unknown name {quoted(name)}; only t may occur in eps1 and eps2 themselves"
+            raise self.mistake(message)
+        if name in ("I", "j", "J"):
+            raise self.mistake(f"contains the unknown name {quoted(name)}; the imaginary unit is written i")
+        hint = nearest(name, self.symbols) or f"; the names known here: {', '.join([*self.symbols, IMAGINARY])}"
         raise self.mistake(f"contains the unknown name {quoted(name)}{hint}")
+
+    def of_field(self, d: int) -> Number:
+        """sqrt(d), d checked to be squarefree; all roots of one expression agree."""
+        result = square_root(d, self.where)
+        if self.radicand not in (0, d):
+            raise InputError.single(f"{self.shown}: {two_fields(self.radicand, d)}", self.where)
+        self.radicand = d
+        return result
+
+    def root(self) -> Affine:
+        if not self.takes("("):
+            raise self.mistake(f'has "{ROOT}" without "("; write for example "sqrt(2)"')
+        inside = self.parenthesis()
+        if not inside.is_number() or is_quadratic(inside.constant):
+            raise self.mistake(f"takes the root of {shortened(str(inside))}; under a root stands an integer")
+        d = as_integer(inside.constant)
+        if d is None:
+            raise self.mistake(f"takes the root of {shortened(str(inside))}; {_root_of_fraction(inside.constant)}")
+        return Affine(self.of_field(d))
 
     def parenthesis(self) -> Affine:
         self.depth += 1
@@ -249,7 +310,7 @@ class _Parser:
             raise self.mistake('contains "_" inside a number; write the digits alone')
         if before.kind == token.kind == "number":
             raise self.mistake(f"has {quoted(f'{before.text} {token.text}')} where one number is expected")
-        if token.kind == "name" and token.text not in self.symbols:
+        if token.kind == "name" and token.text not in (*self.symbols, IMAGINARY, ROOT):
             self.named(self.take().text)
         if token.kind in ("number", "name") or token.text == "(":
             right = "(...)" if token.text == "(" else token.text

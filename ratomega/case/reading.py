@@ -1,8 +1,9 @@
 """From TOML, or the same tables as Python objects, to a ``Case``; and back to tables.
 
-A case is a table with the keys ``title``, ``charge``, ``background`` (``eps1``, ``eps2``), ``node`` (a list of tables
-with ``name``, ``coulomb``, ``antifundamental``, ``fundamental``, ``adjoint``) and ``edge`` (a list of tables with
-``from``, ``to``, ``mass``). All mistakes of a case are collected and raised together; places count from 1.
+A case is a table with the keys ``title``, ``charge``, ``symbols`` (a list of names), ``background`` (``eps1``,
+``eps2``), ``node`` (a list of tables with ``name``, ``coulomb``, ``antifundamental``, ``fundamental``, ``adjoint``) and
+``edge`` (a list of tables with ``from``, ``to``, ``mass``). All mistakes of a case are collected and raised together;
+places count from 1.
 """
 
 from __future__ import annotations
@@ -14,7 +15,7 @@ from typing import Any, TypeGuard, TypeVar
 from ratomega.case.affine import Affine
 from ratomega.case.background import Background
 from ratomega.case.bundled import bundled_names, bundled_text
-from ratomega.case.case import Case, checked_charge, checked_title
+from ratomega.case.case import Case, checked_charge, checked_symbols, checked_title
 from ratomega.case.expression import SYMBOLS, as_affine
 from ratomega.case.tables import file_label, text_of_file, toml_tables
 from ratomega.case.theory import HIGHEST_RANK, MOST_EDGES, MOST_MASSES, MOST_NODES, Edge, Node, Theory
@@ -91,15 +92,20 @@ def case_from_mapping(data: Mapping[str, object], *, where: str = "case") -> Cas
     case: node[1].coulomb: a node needs at least one Coulomb parameter; their number is the rank
     """
     reader = _Reader(where)
-    reader.keys(data, "", ("title", "charge", "background", "node", "edge"), needed=("charge", "background", "node"))
+    known = ("title", "charge", "symbols", "background", "node", "edge")
+    reader.keys(data, "", known, needed=("charge", "background", "node"))
     title = reader.title(data)
+    reader.read_symbols(data)
     charge = reader.charge(data)
     background = reader.background(data)
     theory = reader.theory(data)
     reader.finish()
     assert background is not None
     assert theory is not None
-    return Case.make(theory, background, charge, title)
+    case = reader.attempt(lambda: Case.make(theory, background, charge, title, reader.free))
+    reader.finish()
+    assert case is not None
+    return case
 
 
 def case_to_mapping(case: Case) -> dict[str, Any]:
@@ -113,6 +119,7 @@ def case_to_mapping(case: Case) -> dict[str, Any]:
     return {
         "title": case.title,
         "charge": case.charge if isinstance(case.charge, int) else list(case.charge),
+        **({"symbols": list(case.symbols)} if case.symbols else {}),
         "background": {"eps1": str(case.background.eps1), "eps2": str(case.background.eps2)},
         "node": [
             {
@@ -146,6 +153,7 @@ class _Reader:
         self.where = where
         self.problems: list[Problem] = []
         self.unlisted = 0
+        self.free: tuple[str, ...] = ()
 
     def at(self, key: str) -> str:
         return ": ".join(part for part in (self.where, key) if part)
@@ -197,7 +205,16 @@ class _Reader:
             result.append(entry if isinstance(entry, Mapping) else None)
         return result
 
-    def affine(self, value: object, key: str, symbols: Collection[str] = SYMBOLS) -> Affine:
+    def read_symbols(self, data: Mapping[str, object]) -> None:
+        """The free parameters, which may occur in every expression but eps1 and eps2."""
+        value = data.get("symbols", ())
+        if not _is_list(value):
+            self.add(f'expected a list of names such as ["a"], not {kind(value)}', "symbols")
+            return
+        self.free = self.attempt(lambda: checked_symbols(value)) or ()  # type: ignore[arg-type]
+
+    def affine(self, value: object, key: str, symbols: Collection[str] | None = None) -> Affine:
+        symbols = (*SYMBOLS, *self.free) if symbols is None else symbols
         read = self.attempt(lambda: as_affine(value, symbols=symbols), key)
         return _PLACEHOLDER if read is None else read
 

@@ -19,6 +19,7 @@ from ratomega.case.affine import Affine
 from ratomega.case.case import Case
 from ratomega.errors import PathError
 from ratomega.exact.path import Linear, integer_combination, leaves_the_ratio
+from ratomega.exact.quadratic import as_integer
 from ratomega.exact.rational import ZERO, Rational
 
 __all__ = ["NodeSetting", "Setting", "own_setting", "probe_setting"]
@@ -226,6 +227,6 @@ def resonances(setting: Setting, charge: Sequence[int]) -> Iterator[tuple[int, i
                     continue
                 difference = node.coulomb[alpha].constant - node.coulomb[beta].constant
                 for m in range(1, charge[index] + 1):
-                    n = (difference - m * e1) / e2
-                    if n.q == 1 and n >= 1 and m * n <= charge[index]:
-                        yield index, alpha, beta, m, int(n.p)
+                    n = as_integer((difference - m * e1) / e2)
+                    if n is not None and n >= 1 and m * n <= charge[index]:
+                        yield index, alpha, beta, m, n

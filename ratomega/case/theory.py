@@ -7,7 +7,7 @@ loop into an adjoint, so that the theory has one form.
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Iterator
+from collections.abc import Iterable, Iterator, Mapping
 from dataclasses import dataclass, replace
 
 import networkx
@@ -97,6 +97,28 @@ class Theory:
         for edge in self.edges:
             graph.add_edge(self.nodes[edge.source].name, self.nodes[edge.target].name, mass=str(edge.mass))
         return graph
+
+    def parameters(self) -> Iterator[tuple[str, Affine]]:
+        """Every Coulomb parameter and every mass, each with its place."""
+        for number, node in enumerate(self.nodes, 1):
+            for key in ("coulomb", "antifundamental", "fundamental", "adjoint"):
+                for position, value in enumerate(getattr(node, key), 1):
+                    yield f"node[{number}].{key}[{position}]", value
+        for number, edge in enumerate(self.edges, 1):
+            yield f"edge[{number}].mass", edge.mass
+
+    def at(self, values: Mapping[str, Affine]) -> Theory:
+        """The theory with symbols replaced in every parameter."""
+
+        def each(parameters: Iterable[Affine]) -> tuple[Affine, ...]:
+            return tuple(x.at(values) for x in parameters)
+
+        nodes = (
+            Node(n.name, each(n.coulomb), each(n.antifundamental), each(n.fundamental), each(n.adjoint))
+            for n in self.nodes
+        )
+        edges = (replace(edge, mass=edge.mass.at(values)) for edge in self.edges)
+        return Theory(tuple(nodes), tuple(edges))
 
     def key(self) -> list[object]:
         """The physics in canonical form: node and colour order kept, masses sorted, names left out."""

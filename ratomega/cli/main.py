@@ -30,7 +30,6 @@ from ratomega.pipeline import (
     DEFAULT_PROBES,
     MOST_CONFIGURATIONS,
     Job,
-    checked_terms,
     detect_result,
     limit_result,
     validate_result,
@@ -134,10 +133,9 @@ def limit(
 
     Example: ratomega limit b1-four-flavours --charge 2
     """
-    last = checked_terms(terms)
     job = _job(**case_options)
     with _crew(job, workers, cluster, keep) as crew:
-        limits = job.limits(probes=probes, last=last, crew=crew)
+        limits = job.limits(probes=probes, terms=terms, crew=crew)
         found, interrupted = _collect(job, limits, lambda one: one.charge, crew)
     return _finish(limit_result(job, found, terms=terms, partial=interrupted), limit_text, as_json, interrupted)
 

@@ -6,7 +6,9 @@ from collections.abc import Iterable, Sequence
 
 from ratomega.case.case import Case
 from ratomega.diagrams.tuples import Charge, Configuration
-from ratomega.exact.rational import decimal_text, exact_text
+from ratomega.exact.function_text import function_text
+from ratomega.exact.quadratic import approximate_text, number_text
+from ratomega.exact.rational_function import RationalFunction
 from ratomega.results import ChargeReport, Coefficient, DetectResult, FactorReport, Header, LimitResult, ValidateResult
 from ratomega.validator.verdict import Check
 
@@ -65,7 +67,8 @@ def _heading(header: Header, partial: bool) -> list[str]:
     lines += [
         f"theory   {theory_text(case)}",
         f"path     {header.path.text()}; t -> 0",
-        f"ratio    eps2/eps1 = {exact_text(ratio)}",
+        *([f"symbols  {', '.join(case.symbols)}"] if case.symbols else []),
+        f"ratio    eps2/eps1 = {number_text(ratio)}",
         f"hash     {header.hash}",
     ]
     lines += [f"warning  {warning}" for warning in header.warnings]
@@ -94,13 +97,13 @@ def limit_text(result: LimitResult) -> str:
             lines += ["", f"charge {charge_word(c.charge)}, path by path (the case's own path first)"]
             lines += table(
                 ["order", "value", "path"],
-                [[str(v.order), exact_text(v.value), v.path] for v in c.values],
+                [[str(v.order), number_text(v.value), v.path] for v in c.values],
                 left=[1, 2],
             )
     for c in result.coefficients:
         if c.terms is not None:
             lines += ["", f"charge {charge_word(c.charge)}, expansion in t on the case's own path"]
-            lines += table(["power", "coefficient"], [[str(n), exact_text(v)] for n, v in c.terms], left=[1])
+            lines += table(["power", "coefficient"], [[str(n), number_text(v)] for n, v in c.terms], left=[1])
     lines += ["", "certificate", *_checks(result.checks)]
     return "\n".join(lines) + "\n"
 
@@ -108,6 +111,9 @@ def limit_text(result: LimitResult) -> str:
 def _limit_row(c: Coefficient) -> list[str]:
     counts = [str(n) for n in (c.configurations, c.singular, c.worst_order, c.singular_clusters)]
     status = f"pole t^-{c.order}" if c.status == "pole" else c.status
+    if isinstance(c.value, RationalFunction):
+        function = c.value
+        return [charge_word(c.charge), *counts, status, c.independence or "", "function", function_text(function)]
     if c.value is not None:
         shown = c.value
     elif c.leading is not None:
@@ -115,7 +121,7 @@ def _limit_row(c: Coefficient) -> list[str]:
     else:
         shown = c.values[0].value
     independence = c.independence or "paths differ"
-    return [charge_word(c.charge), *counts, status, independence, f"~{decimal_text(shown)}", exact_text(shown)]
+    return [charge_word(c.charge), *counts, status, independence, f"~{approximate_text(shown)}", number_text(shown)]
 
 
 def validate_text(result: ValidateResult) -> str:

@@ -14,7 +14,8 @@ from ratomega.case.case import Case
 from ratomega.case.setting import Setting
 from ratomega.errors import PathError
 from ratomega.exact.path import Linear, leaves_the_ratio
-from ratomega.exact.rational import ONE, Rational
+from ratomega.exact.quadratic import Number, as_integer, only_rational
+from ratomega.exact.rational import ONE
 
 __all__ = ["check_path", "dead_colours", "frozen_number_warnings", "smallest_pair"]
 
@@ -41,21 +42,21 @@ def smallest_single(p: int, q: int) -> int:
     return p - q if p >= 1 and q <= 0 else 0
 
 
-def _meetings(value: Rational, setting: Setting, bound: int) -> Iterator[tuple[int, int]]:
+def _meetings(value: Number, setting: Setting, bound: int) -> Iterator[tuple[int, int]]:
     """All (p, q) within reach of the bound with value + p eps1 + q eps2 = 0 at the limit point, |p| ascending."""
     e1, e2 = setting.eps1.constant, setting.eps2.constant
     for size in range(bound + 2):
         for p in {size, -size}:
-            q = -(value + p * e1) / e2
-            if q.q == 1 and abs(q.p) <= bound + 1:
-                yield p, int(q.p)
+            q = as_integer(-(value + p * e1) / e2)
+            if q is not None and abs(q) <= bound + 1:
+                yield p, q
 
 
 def check_path(setting: Setting, bounds: Sequence[int]) -> None:
     """Refuse a path that stays on the ratio while a denominator vanishes at the limit point. Raises ``PathError``."""
     if leaves_the_ratio(setting.eps1, setting.eps2):
         return
-    ratio = setting.eps2.constant / setting.eps1.constant
+    ratio = only_rational(setting.eps2.constant / setting.eps1.constant)
     for node, bound in zip(setting.nodes, bounds, strict=True):
         first = int(ratio.q) + int(ratio.p)
         guilty = ""

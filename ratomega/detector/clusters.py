@@ -16,7 +16,7 @@ from ratomega.detector.geometry import Compactness, cluster_compactness, compone
 from ratomega.detector.zeros import Zeros
 from ratomega.diagrams.tuples import Charge, Configuration
 from ratomega.diagrams.young import boxes
-from ratomega.weights import Weights
+from ratomega.weights import ContentsKey, Weights
 
 __all__ = ["Cluster", "TaggedBox", "add_exchanges", "cluster_graph", "find_clusters"]
 
@@ -47,7 +47,7 @@ class Cluster:
 
 def find_clusters(weights: Weights, charge: Charge, found: Iterable[Zeros]) -> tuple[Cluster, ...]:
     """Group the configurations of one charge, in the order of their first members."""
-    groups: dict[tuple[tuple[int, ...], ...], list[Zeros]] = {}
+    groups: dict[ContentsKey, list[Zeros]] = {}
     for zeros in found:
         groups.setdefault(weights.contents(zeros.configuration), []).append(zeros)
     clusters = []

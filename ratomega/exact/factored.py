@@ -3,6 +3,9 @@
 This module is the one place that says what a factor of a weight is: an integer linear form C + S t over a common
 scale D, that is (C + S t)/D. The limit point is t = 0. A factor with C = 0 vanishes there and contributes one power
 of t; with C = S = 0 it vanishes all along the path. Orders are counted from these exact zeros; nothing is evaluated.
+
+Over a quadratic field C and S lie in Z[sqrt(d)]: each is an ``int``, or a ``Quadratic`` with integer parts. Such a part
+carries its d as ``radicand`` (0 over the rationals), and products are pairs of integer polynomials.
 """
 
 from __future__ import annotations
@@ -14,23 +17,44 @@ from flint import fmpq, fmpq_poly, fmpz, fmpz_poly
 
 from ratomega.exact.laurent import Laurent
 from ratomega.exact.path import Linear
-from ratomega.exact.rational import Rational
+from ratomega.exact.quadratic import Number, Quadratic, is_whole
+from ratomega.exact.quadratic_poly import (
+    IntegerPair,
+    QuadraticPoly,
+    pair_low_product,
+    pair_norm_quotient,
+    pair_product,
+)
 
-__all__ = ["Factored", "Form", "expand", "integer_form"]
+__all__ = ["Factored", "Form", "Whole", "expand", "integer_form", "rational_form"]
 
-Form = tuple[int, int]
+Whole = int | Quadratic
+Form = tuple[Whole, Whole]
 
 
 def integer_form(value: Linear, scale: int) -> Form:
-    """``value`` times ``scale`` as a pair of integers; the scale must clear the denominators.
+    """``value`` times ``scale`` as a pair of integers of the field; the scale must clear the denominators.
 
+    >>> from ratomega.exact.rational import Rational
     >>> integer_form(Linear(Rational(1, 2), Rational(1, 3)), 6)
     (3, 2)
     """
     constant, slope = value.constant * scale, value.slope * scale
-    if constant.q != 1 or slope.q != 1:
+    if not (is_whole(constant) and is_whole(slope)):
         raise ValueError(f"the scale {scale} does not clear the denominators of {value}")
-    return int(constant.p), int(slope.p)
+    return _whole(constant), _whole(slope)
+
+
+def rational_form(value: Linear, scale: int) -> tuple[int, int]:
+    """``integer_form`` of a rational value. Raises ``ValueError`` for another."""
+    constant, slope = integer_form(value, scale)
+    if isinstance(constant, Quadratic) or isinstance(slope, Quadratic):
+        raise ValueError(f"{value} is not rational")
+    return constant, slope
+
+
+def _whole(value: Number) -> Whole:
+    return value if isinstance(value, Quadratic) else int(value.p)
 
 
 @dataclass(slots=True, eq=False)
@@ -54,10 +78,12 @@ class Factored:
     vanishing_down: int
     dead: bool
     undefined: bool
+    radicand: int = 0
     _products: tuple[fmpz_poly, fmpz_poly] | None = None
+    _pairs: tuple[IntegerPair, IntegerPair] | None = None
 
     @classmethod
-    def of(cls, up: Iterable[Form], down: Iterable[Form], scale: int) -> Factored:
+    def of(cls, up: Iterable[Form], down: Iterable[Form], scale: int, radicand: int = 0) -> Factored:
         up, down = tuple(up), tuple(down)
         return cls(
             up,
@@ -67,6 +93,7 @@ class Factored:
             sum(1 for c, _ in down if c == 0),
             (0, 0) in up,
             (0, 0) in down,
+            radicand,
         )
 
     @property
@@ -77,11 +104,39 @@ class Factored:
     def products(self) -> tuple[fmpz_poly, fmpz_poly]:
         """Numerator and denominator as integer polynomials in t, without the powers of t and the scale."""
         if self._products is None:
-            self._products = (_product(self.up), _product(self.down))
+            self._products = (_product(self.up), _product(self.down))  # type: ignore[arg-type]
         return self._products
 
+    def pairs(self) -> tuple[IntegerPair, IntegerPair]:
+        """The same over Z[sqrt(radicand)], each as a pair (P, Q) for P + Q sqrt(radicand)."""
+        if self._pairs is None:
+            self._pairs = (_pair_product(self.up, self.radicand), _pair_product(self.down, self.radicand))
+        return self._pairs
 
-def _product(forms: Sequence[Form]) -> fmpz_poly:
+
+def _pair_product(forms: Sequence[Form], radicand: int) -> IntegerPair:
+    """Rational forms are multiplied as such; only the others need pairs."""
+    plain = [(c, s) for c, s in forms if isinstance(c, int) and isinstance(s, int)]
+    result: IntegerPair = (_product(plain), fmpz_poly())
+    layer = [_pair_form(c, s) for c, s in forms if isinstance(c, Quadratic) or isinstance(s, Quadratic)]
+    while len(layer) > 1:
+        paired = [pair_product(layer[n], layer[n + 1], radicand) for n in range(0, len(layer) - 1, 2)]
+        if len(layer) % 2:
+            paired.append(layer[-1])
+        layer = paired
+    return pair_product(result, layer[0], radicand) if layer else result
+
+
+def _pair_form(c: Whole, s: Whole) -> IntegerPair:
+    both = [_two(c), _two(s)] if c != 0 else [_two(s)]
+    return fmpz_poly([x for x, _ in both]), fmpz_poly([y for _, y in both])
+
+
+def _two(value: Whole) -> tuple[int, int]:
+    return (int(value.x.p), int(value.y.p)) if isinstance(value, Quadratic) else (value, 0)
+
+
+def _product(forms: Sequence[tuple[int, int]]) -> fmpz_poly:
     """The product of the forms, each form that vanishes at t = 0 divided by t; balanced, so that sizes stay equal."""
     layer = [fmpz_poly([c, s]) if c else fmpz_poly([s]) for c, s in forms]
     if not layer:
@@ -109,6 +164,8 @@ def expand(parts: Sequence[Factored], last: int) -> Laurent:
     length = precision + order
     if length <= 0 or any(part.dead for part in parts):
         return Laurent.zero(precision=precision)
+    if parts and parts[0].radicand:
+        return _expand_pairs(parts, order, length, precision)
     up, down = fmpz_poly([1]), fmpz_poly([1])
     exponent = 0
     scale = 1
@@ -121,6 +178,21 @@ def expand(parts: Sequence[Factored], last: int) -> Laurent:
     if length == 1:
         return Laurent.make(-order, fmpq_poly([factor * up[0] / down[0]]), precision)
     return Laurent.make(-order, _quotient(up, down, length) * factor, precision)
+
+
+def _expand_pairs(parts: Sequence[Factored], order: int, length: int, precision: int) -> Laurent:
+    """The same over Z[sqrt(d)], all parts of one field."""
+    d, one = parts[0].radicand, (fmpz_poly([1]), fmpz_poly())
+    up, down = one, one
+    exponent = 0
+    for part in parts:
+        part_up, part_down = part.pairs()
+        up, down = pair_low_product(up, part_up, d, length), pair_low_product(down, part_down, d, length)
+        exponent += len(part.down) - len(part.up)
+    factor = fmpq(parts[0].scale) ** exponent
+    (rational, irrational), norm = pair_norm_quotient(up, down, d, length)
+    x, y = (_quotient(part, norm, length) * factor for part in (rational, irrational))
+    return Laurent.make(-order, QuadraticPoly.make(x, y, d), precision)
 
 
 def _quotient(up: fmpz_poly, down: fmpz_poly, length: int) -> fmpq_poly:
@@ -139,12 +211,13 @@ def _quotient(up: fmpz_poly, down: fmpz_poly, length: int) -> fmpq_poly:
     return fmpq_poly([fmpq(integer, powers[n + 1]) for n, integer in enumerate(integers)])
 
 
-def linear_factors(parts: Iterable[Factored]) -> dict[tuple[Rational, Rational], int]:
+def linear_factors(parts: Iterable[Factored]) -> dict[tuple[Number, Number], int]:
     """The linear factors (c, d) of c + d t with their exponents, equal ones collected, cancelled ones left out."""
-    exponents: dict[tuple[Rational, Rational], int] = {}
+    exponents: dict[tuple[Number, Number], int] = {}
     for part in parts:
+        unit = fmpq(1, part.scale)
         for forms, sign in ((part.up, 1), (part.down, -1)):
             for c, s in forms:
-                key = (fmpq(c, part.scale), fmpq(s, part.scale))
+                key = (c * unit, s * unit)
                 exponents[key] = exponents.get(key, 0) + sign
     return {key: exponent for key, exponent in exponents.items() if exponent}

@@ -1,7 +1,8 @@
 """Exact truncated Laurent series in one small parameter.
 
 A series is ``t^valuation * (c_0 + c_1 t + ...) + O(t^precision)``. The precision is data that travels with the series;
-there is no global setting. Built on ``fmpq_poly`` because ``fmpq_series`` obeys a process-wide cap.
+there is no global setting. Built on ``fmpq_poly`` because ``fmpq_series`` obeys a process-wide cap; coefficients of a
+quadratic field make a pair of them (``QuadraticPoly``).
 
 Canonical form: ``poly`` has a non-zero constant term, or is zero with ``valuation == precision``.
 """
@@ -14,7 +15,9 @@ from dataclasses import dataclass
 from flint import fmpq_poly
 
 from ratomega.errors import PrecisionError
-from ratomega.exact.rational import ZERO, Rational
+from ratomega.exact.quadratic import Number
+from ratomega.exact.quadratic_poly import Poly, low_product, poly_of
+from ratomega.exact.rational import ZERO
 
 __all__ = ["Laurent", "total"]
 
@@ -31,11 +34,11 @@ class Laurent:
     """
 
     valuation: int
-    poly: fmpq_poly
+    poly: Poly
     precision: int
 
     @classmethod
-    def make(cls, valuation: int, poly: fmpq_poly, precision: int) -> Laurent:
+    def make(cls, valuation: int, poly: Poly, precision: int) -> Laurent:
         """The checking constructor: truncates at ``precision`` and shifts out leading zeros."""
         if precision <= valuation:
             return cls(precision, fmpq_poly(), precision)
@@ -49,12 +52,12 @@ class Laurent:
         return cls(valuation + shift, poly.right_shift(shift) if shift else poly, precision)
 
     @classmethod
-    def from_coefficients(cls, valuation: int, coefficients: Iterable[Rational | int], *, precision: int) -> Laurent:
-        return cls.make(valuation, fmpq_poly(list(coefficients)), precision)
+    def from_coefficients(cls, valuation: int, coefficients: Iterable[Number | int], *, precision: int) -> Laurent:
+        return cls.make(valuation, poly_of(coefficients), precision)
 
     @classmethod
-    def constant(cls, value: Rational | int, *, precision: int) -> Laurent:
-        return cls.make(0, fmpq_poly([value]), precision)
+    def constant(cls, value: Number | int, *, precision: int) -> Laurent:
+        return cls.make(0, poly_of([value]), precision)
 
     @classmethod
     def zero(cls, *, precision: int) -> Laurent:
@@ -64,13 +67,13 @@ class Laurent:
         """No non-zero coefficient is known (the series may differ from zero beyond its precision)."""
         return self.poly.is_zero()
 
-    def coefficient(self, power: int) -> Rational:
+    def coefficient(self, power: int) -> Number:
         """The coefficient of ``t**power``; ``PrecisionError`` when it is not known."""
         if power >= self.precision:
             raise PrecisionError(f"the coefficient of t^{power} is not known: the series stops at t^{self.precision}")
         return self.poly[power - self.valuation] if power >= self.valuation else ZERO
 
-    def coefficients(self) -> dict[int, Rational]:
+    def coefficients(self) -> dict[int, Number]:
         """The known non-zero coefficients, by power."""
         return {self.valuation + n: c for n, c in enumerate(self.poly.coeffs()) if c != 0}
 
@@ -95,25 +98,26 @@ class Laurent:
     def __mul__(self, other: Laurent) -> Laurent:
         precision = min(self.precision + other.valuation, other.precision + self.valuation)
         valuation = self.valuation + other.valuation
-        return Laurent.make(valuation, self.poly.mul_low(other.poly, max(precision - valuation, 0)), precision)
+        return Laurent.make(valuation, low_product(self.poly, other.poly, max(precision - valuation, 0)), precision)
 
-    def scaled(self, factor: Rational | int) -> Laurent:
-        return Laurent.make(self.valuation, self.poly * factor, self.precision)
+    def scaled(self, factor: Number | int) -> Laurent:
+        poly = low_product(self.poly, poly_of([factor]), self.poly.length())
+        return Laurent.make(self.valuation, poly, self.precision)
 
     def inverse(self) -> Laurent:
         """1 / series; ``ZeroDivisionError`` when no non-zero coefficient is known. Quadratic in the length."""
         if self.is_zero():
             raise ZeroDivisionError("the series has no known non-zero coefficient")
         length = self.precision - self.valuation
-        known = self.poly.coeffs()
+        known: list[Number] = list(self.poly.coeffs())
         lead = known[0]
-        result = [1 / lead]
+        result: list[Number] = [1 / lead]
         for n in range(1, length):
-            total = ZERO
+            total: Number = ZERO
             for k in range(1, min(n, len(known) - 1) + 1):
-                total += known[k] * result[n - k]
+                total = total + known[k] * result[n - k]
             result.append(-total / lead)
-        return Laurent.make(-self.valuation, fmpq_poly(result), length - self.valuation)
+        return Laurent.make(-self.valuation, poly_of(result), length - self.valuation)
 
     def __truediv__(self, other: Laurent) -> Laurent:
         return self * other.inverse()

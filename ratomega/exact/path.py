@@ -6,11 +6,13 @@ path parameters, the first taken to zero last; one is implemented.
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import dataclass
 
-from ratomega.exact.rational import ZERO, Rational, exact_text
+from ratomega.exact.quadratic import Number, Quadratic, as_integer, number_text, only_rational
+from ratomega.exact.rational import ZERO
 
-__all__ = ["SMALL_PARAMETERS", "Linear", "integer_combination", "leaves_the_ratio"]
+__all__ = ["SMALL_PARAMETERS", "Linear", "integer_combination", "leaves_the_ratio", "sum_text", "term_text"]
 
 SMALL_PARAMETERS = ("t",)
 
@@ -19,13 +21,14 @@ SMALL_PARAMETERS = ("t",)
 class Linear:
     """The exact linear form ``constant + slope t``.
 
+    >>> from ratomega.exact.rational import Rational
     >>> x = Linear(Rational(1, 2), Rational(1))
     >>> str(x + x), (x - x).is_zero()
     ('1 + 2*t', True)
     """
 
-    constant: Rational
-    slope: Rational = ZERO
+    constant: Number
+    slope: Number = ZERO
 
     def __add__(self, other: Linear) -> Linear:
         return Linear(self.constant + other.constant, self.slope + other.slope)
@@ -36,7 +39,7 @@ class Linear:
     def __neg__(self) -> Linear:
         return Linear(-self.constant, -self.slope)
 
-    def scaled(self, factor: Rational | int) -> Linear:
+    def scaled(self, factor: Number | int) -> Linear:
         return Linear(self.constant * factor, self.slope * factor)
 
     def is_zero(self) -> bool:
@@ -44,18 +47,37 @@ class Linear:
         return self.constant == 0 and self.slope == 0
 
     def __str__(self) -> str:
-        if self.slope == 0:
-            return exact_text(self.constant)
-        top, bottom = abs(self.slope.p), self.slope.q
-        term = ("t" if top == 1 else f"{top}*t") + ("" if bottom == 1 else f"/{bottom}")
-        if self.constant == 0:
-            return f"-{term}" if self.slope < 0 else term
-        return f"{exact_text(self.constant)} {'-' if self.slope < 0 else '+'} {term}"
+        terms = [number_text(self.constant)] if self.constant != 0 else []
+        if self.slope != 0:
+            terms.append(term_text(self.slope, "t"))
+        return sum_text(terms)
+
+
+def term_text(coefficient: Number, name: str) -> str:
+    """A coefficient times a name, as it is read back.
+
+    >>> from ratomega.exact.rational import Rational
+    >>> term_text(Rational(-3, 2), "t"), term_text(Quadratic(ZERO, Rational(1, 2), 5), "t")
+    ('-3*t/2', '1/2*sqrt(5)*t')
+    """
+    if isinstance(coefficient, Quadratic):
+        return f"{coefficient}*{name}" if coefficient.x == 0 else f"({coefficient})*{name}"
+    top, bottom = coefficient.p, coefficient.q
+    head = name if top == 1 else f"-{name}" if top == -1 else f"{top}*{name}"
+    return head if bottom == 1 else f"{head}/{bottom}"
+
+
+def sum_text(terms: Sequence[str]) -> str:
+    """Terms joined by their signs; "0" when there is none."""
+    if not terms:
+        return "0"
+    return terms[0] + "".join(f" - {x[1:]}" if x.startswith("-") else f" + {x}" for x in terms[1:])
 
 
 def leaves_the_ratio(eps1: Linear, eps2: Linear) -> bool:
     """Does the path leave the ratio eps2/eps1 of its end point to first order?
 
+    >>> from ratomega.exact.rational import Rational
     >>> leaves_the_ratio(Linear(Rational(1)), Linear(Rational(1), Rational(1)))
     True
     >>> leaves_the_ratio(Linear(Rational(1), Rational(2)), Linear(Rational(1), Rational(2)))
@@ -69,6 +91,7 @@ def integer_combination(form: Linear, eps1: Linear, eps2: Linear) -> tuple[int, 
 
     On a path that stays on the ratio many pairs can qualify; the one with the smallest |m| + |n| is returned.
 
+    >>> from ratomega.exact.rational import Rational
     >>> one = Linear(Rational(1)); moving = Linear(Rational(1), Rational(1))
     >>> integer_combination(Linear(Rational(2)), one, moving), integer_combination(Linear(Rational(1, 2)), one, moving)
     ((2, 0), None)
@@ -77,15 +100,16 @@ def integer_combination(form: Linear, eps1: Linear, eps2: Linear) -> tuple[int, 
     if determinant != 0:
         m = (form.constant * eps2.slope - eps2.constant * form.slope) / determinant
         n = (eps1.constant * form.slope - form.constant * eps1.slope) / determinant
-        return (int(m.p), int(n.p)) if m.q == 1 and n.q == 1 else None
+        whole_m, whole_n = as_integer(m), as_integer(n)
+        return None if whole_m is None or whole_n is None else (whole_m, whole_n)
     if form.constant * eps1.slope != form.slope * eps1.constant:
         return None
-    ratio = eps2.constant / eps1.constant
-    target = form.constant / eps1.constant * ratio.q
-    if target.q != 1:
+    ratio = only_rational(eps2.constant / eps1.constant)
+    whole = as_integer(form.constant / eps1.constant * int(ratio.q))
+    if whole is None:
         return None
     # m alpha + n beta = target in coprime integers: one residue class of n, and |m| + |n| is convex along it.
-    alpha, beta, whole = int(ratio.q), int(ratio.p), int(target.p)
+    alpha, beta = int(ratio.q), int(ratio.p)
     first = whole * pow(beta, -1, alpha) % alpha if alpha > 1 else 0
     centre = whole // beta
     near = [first + alpha * (x // alpha + shift) for x in (-first, centre - first) for shift in (-1, 0, 1)]

@@ -15,11 +15,11 @@ from itertools import islice
 from ratomega.detector.geometry import is_sink
 from ratomega.diagrams.tuples import Charge, Configuration, configurations
 from ratomega.exact.laurent import Laurent, total
-from ratomega.weights import Weights
+from ratomega.weights import ContentsKey, Weights
 
 __all__ = ["ChargeSum", "ClusterSum", "direct_sum", "direct_total", "merged"]
 
-ClusterKey = tuple[tuple[int, ...], ...]
+ClusterKey = ContentsKey
 
 
 @dataclass(frozen=True, slots=True)

@@ -9,7 +9,7 @@ from ratomega.case.setting import Setting, resonances
 from ratomega.detector.geometry import compact_by_parameters, resonance_text
 from ratomega.diagrams.tuples import Charge
 from ratomega.exact.laurent import Laurent
-from ratomega.exact.rational import Rational
+from ratomega.exact.quadratic import Number
 from ratomega.regulator.direct import ChargeSum, ClusterSum, direct_sum, direct_total
 from ratomega.regulator.outcome import Outcome, PathValue, judge, leading
 from ratomega.weights import Weights
@@ -50,7 +50,7 @@ class ChargeLimit:
         """Clusters whose members differ in order (there should be none)."""
         return sum(1 for c in self.sum.clusters.values() if c.order != c.lowest_order)
 
-    def terms(self, last: int) -> tuple[tuple[int, Rational], ...]:
+    def terms(self, last: int) -> tuple[tuple[int, Number], ...]:
         """(power, coefficient) of the own path's expansion from the lowest power, at most 0, to ``last``."""
         lowest = min(0, self.sum.series.valuation)
         return tuple((n, self.sum.series.coefficient(n)) for n in range(lowest, last + 1))

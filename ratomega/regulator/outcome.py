@@ -11,7 +11,7 @@ from dataclasses import dataclass
 from enum import Enum
 
 from ratomega.exact.laurent import Laurent
-from ratomega.exact.rational import Rational
+from ratomega.exact.quadratic import Number
 
 __all__ = ["FiniteLimit", "Independence", "Outcome", "PathDependent", "PathValue", "Pole", "judge"]
 
@@ -29,7 +29,7 @@ class PathValue:
     """The leading behaviour on one path: ``value * t^(-order)``; order 0 is a finite limit."""
 
     path: str
-    value: Rational
+    value: Number
     order: int
 
 
@@ -37,7 +37,7 @@ class PathValue:
 class FiniteLimit:
     """The limit exists and no path was found on which it differs."""
 
-    value: Rational
+    value: Number
     independence: Independence
 
     status = "finite"
@@ -48,7 +48,7 @@ class Pole:
     """A pole survives on the case's own path. ``values`` is empty unless the probed paths differ, own path first."""
 
     order: int
-    leading: Rational
+    leading: Number
     values: tuple[PathValue, ...]
     independence: Independence | None
 

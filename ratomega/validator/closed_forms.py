@@ -13,7 +13,8 @@ from dataclasses import replace
 
 from ratomega.case.case import Case
 from ratomega.case.setting import Setting, resonances
-from ratomega.exact.rational import ONE, Rational
+from ratomega.exact.quadratic import Number
+from ratomega.exact.rational import ONE
 from ratomega.validator.closed_forms_u1 import chain_forms, necklace_forms
 from ratomega.validator.closed_forms_u2 import four_flavour_forms, low_charge_forms
 from ratomega.validator.closed_forms_un import adjoint_forms, truncation_forms, vanishing_forms
@@ -44,6 +45,7 @@ def closed_forms(case: Case, setting: Setting) -> tuple[ClosedForm, ...]:
     >>> from ratomega.case.affine import Affine
     >>> from ratomega.case.background import Background
     >>> from ratomega.case.setting import own_setting
+    >>> from ratomega.exact.rational import Rational
     >>> from ratomega.case.theory import Node, Theory
     >>> theory = Theory.make([Node("gauge", (Affine(Rational(1, 3)),))])
     >>> case = Case.make(theory, Background.make(Affine(ONE), Affine(Rational(2))), 2)
@@ -53,11 +55,11 @@ def closed_forms(case: Case, setting: Setting) -> tuple[ClosedForm, ...]:
     point = limit_point(setting)
     compact = [charge for charge in case.charges if not any(True for _ in resonances(setting, charge))]
     found: list[ClosedForm] = []
-    known: list[dict[Charge, Rational]] = []
+    known: list[dict[Charge, Number]] = []
     parts = point.components()
     for nodes in parts:
         inside = [charge for charge in compact if charge == _at(charge, nodes)]
-        table: dict[Charge, Rational] = {}
+        table: dict[Charge, Number] = {}
         for form in _part_forms(point.part(nodes), [tuple(charge[node] for node in nodes) for charge in inside]):
             values = {_spread(charge, nodes, len(point.nodes)): value for charge, value in form.values.items()}
             if any(any(charge) for charge in values):
@@ -86,17 +88,17 @@ def _part_forms(part: LimitPoint, charges: Sequence[Charge]) -> Iterator[ClosedF
 
 
 def _product_form(
-    parts: Sequence[tuple[int, ...]], known: Sequence[dict[Charge, Rational]], charges: Sequence[Charge]
+    parts: Sequence[tuple[int, ...]], known: Sequence[dict[Charge, Number]], charges: Sequence[Charge]
 ) -> Iterator[ClosedForm]:
     """Z of a quiver that falls apart, at charges that do not vanish in at least two of its parts."""
-    values: dict[Charge, Rational] = {}
+    values: dict[Charge, Number] = {}
     for charge in charges:
         pieces = [_at(charge, nodes) for nodes in parts]
         charged = [(piece, table) for piece, table in zip(pieces, known, strict=True) if any(piece)]
         if len(charged) > 1 and all(piece in table for piece, table in charged):
             values[charge] = ONE
             for piece, table in charged:
-                values[charge] *= table[piece]
+                values[charge] = values[charge] * table[piece]
     if values:
         yield ClosedForm(
             "product over the parts of the quiver",

@@ -13,6 +13,7 @@ from __future__ import annotations
 from collections.abc import Iterator, Sequence
 from itertools import pairwise
 
+from ratomega.exact.quadratic import Number
 from ratomega.exact.rational import ONE, ZERO, Rational
 from ratomega.validator.limit_point import Charge, ClosedForm, LimitPoint
 from ratomega.validator.qseries import Multiseries, Series, binomial, euler_product, exponential, fits
@@ -30,7 +31,7 @@ def chain_forms(point: LimitPoint, charges: Sequence[Charge]) -> Iterator[Closed
         return
     length = len(order)
     flavours = [point.nodes[node].flavours for node in order]
-    ends: list[Rational | None] = [None, None]
+    ends: list[Number | None] = [None, None]
     if length == 1:
         if len(flavours[0]) > 2:
             return
@@ -41,9 +42,9 @@ def chain_forms(point: LimitPoint, charges: Sequence[Charge]) -> Iterator[Closed
         ends = [flavours[0][0] if flavours[0] else None, flavours[-1][0] if flavours[-1] else None]
     masses, signs = _along(point, order)
     a = [point.nodes[node].coulomb[0] for node in order]
-    left: list[Rational | None] = [None if ends[0] is None else a[0] + ends[0]]
+    left: list[Number | None] = [None if ends[0] is None else a[0] + ends[0]]
     left += [a[i] - a[i - 1] + masses[i - 1] for i in range(1, length)]
-    right: list[Rational | None] = [a[j] - a[j + 1] + point.eps - masses[j] for j in range(length - 1)]
+    right: list[Number | None] = [a[j] - a[j + 1] + point.eps - masses[j] for j in range(length - 1)]
     right.append(None if ends[1] is None else a[-1] + ends[1])
 
     scale = point.eps1 * point.eps2
@@ -57,16 +58,15 @@ def chain_forms(point: LimitPoint, charges: Sequence[Charge]) -> Iterator[Closed
     yield ClosedForm(*_chain_words(length, ends), total.with_signs(signs).coefficients)
 
 
-def _arc(slope: Rational, left: Rational | None, right: Rational | None, scale: Rational, depth: int) -> Series:
+def _arc(slope: Rational, left: Number | None, right: Number | None, scale: Rational, depth: int) -> Series:
     """(1 + slope x)^(left right / scale); an end without a flavour (None) is the limit of a heavy one."""
     if left is not None and right is not None:
         return binomial(slope, left * right / scale, depth)
-    rate = ONE if left is None else left
-    rate *= ONE if right is None else right
+    rate = (ONE if left is None else left) * (ONE if right is None else right)
     return exponential(slope * rate / scale, depth)
 
 
-def _chain_words(length: int, ends: Sequence[Rational | None]) -> tuple[str, str, str]:
+def _chain_words(length: int, ends: Sequence[Number | None]) -> tuple[str, str, str]:
     """Name, statement and source."""
     present = sum(end is not None for end in ends)
     if length == 1:
@@ -178,7 +178,7 @@ def _chain_order(point: LimitPoint) -> list[int] | None:
     return order
 
 
-def _along(point: LimitPoint, order: Sequence[int]) -> tuple[list[Rational], list[int]]:
+def _along(point: LimitPoint, order: Sequence[int]) -> tuple[list[Number], list[int]]:
     """Masses and signs of a chain with its edges turned to run along ``order``."""
     number = {frozenset(edge[:2]): index for index, edge in enumerate(point.edges)}
     return _turned(point, [(number[frozenset(pair)], pair[0]) for pair in pairwise(order)])
@@ -200,9 +200,9 @@ def _circle_order(point: LimitPoint) -> tuple[list[int], list[tuple[int, int]]] 
     return order, used
 
 
-def _turned(point: LimitPoint, steps: Sequence[tuple[int, int]]) -> tuple[list[Rational], list[int]]:
+def _turned(point: LimitPoint, steps: Sequence[tuple[int, int]]) -> tuple[list[Number], list[int]]:
     """Masses along the steps and the sign of q at every node, edges that run backwards being reversed."""
-    masses: list[Rational] = []
+    masses: list[Number] = []
     signs = [1] * len(point.nodes)
     for edge, start in steps:
         source, target, mass = point.edges[edge]

@@ -8,7 +8,8 @@ from __future__ import annotations
 from collections.abc import Iterator, Sequence
 from itertools import product
 
-from ratomega.exact.rational import ONE, ZERO, Rational
+from ratomega.exact.quadratic import Number, Quadratic
+from ratomega.exact.rational import ONE, ZERO
 from ratomega.validator.limit_point import Charge, ClosedForm, LimitPoint
 from ratomega.validator.qseries import binomial, nome_over_modulus, theta3_of_modulus
 
@@ -17,7 +18,7 @@ __all__ = ["four_flavour_forms", "low_charge_forms"]
 _SUM_OF_BOXES = "N. Nekrasov, arXiv hep-th/0206161; R. Flume, R. Poghossian, arXiv hep-th/0208176"
 
 
-def _centred(point: LimitPoint) -> tuple[Rational, list[Rational]]:
+def _centred(point: LimitPoint) -> tuple[Number, list[Number]]:
     """(a^2, flavour masses) after the Coulomb parameters are shifted to (a, -a)."""
     node = point.nodes[0]
     first, second = node.coulomb
@@ -38,7 +39,7 @@ def four_flavour_forms(point: LimitPoint, charges: Sequence[Charge]) -> Iterator
     if not _is_one_u2(point) or point.nodes[0].adjoint or len(point.nodes[0].flavours) != 4:
         return
     a_squared, masses = _centred(point)
-    mu = [m - point.eps / 2 for m in masses]
+    mu = [m - point.eps / 2 for m in masses if not isinstance(m, Quadratic)]
     half1, half2 = point.eps1 / 2, point.eps2 / 2
     family = (sorted([ZERO, r * half1, s * half2, u * half1 + v * half2]) for r, s, u, v in product((1, -1), repeat=4))
     if sorted(mu) not in family:
@@ -98,13 +99,15 @@ def low_charge_forms(point: LimitPoint, charges: Sequence[Charge]) -> Iterator[C
         )
 
 
-def _even_and_odd(masses: Sequence[Rational], a_squared: Rational) -> tuple[Rational, Rational]:
+def _even_and_odd(masses: Sequence[Number], a_squared: Number) -> tuple[Number, Number]:
     """(E, O) with prod (a + m) = E + a O, both polynomials in a^2.
 
+    >>> from ratomega.exact.rational import Rational
     >>> _even_and_odd([Rational(2), Rational(3)], Rational(10))
     (16, 5)
     """
-    even, odd = ONE, ZERO
+    even: Number = ONE
+    odd: Number = ZERO
     for m in masses:
         even, odd = m * even + a_squared * odd, even + m * odd
     return even, odd

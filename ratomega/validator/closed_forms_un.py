@@ -12,6 +12,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator, Sequence
 
+from ratomega.exact.quadratic import Number
 from ratomega.exact.rational import Rational
 from ratomega.validator.limit_point import Charge, ClosedForm, LimitPoint
 from ratomega.validator.qseries import Series, euler_product, hypergeometric
@@ -19,7 +20,7 @@ from ratomega.validator.qseries import Series, euler_product, hypergeometric
 __all__ = ["adjoint_forms", "truncation_forms", "vanishing_forms"]
 
 
-def _values(series: Series, charges: Sequence[Charge]) -> dict[Charge, Rational]:
+def _values(series: Series, charges: Sequence[Charge]) -> dict[Charge, Number]:
     return {charge: series.coefficients[charge[0]] for charge in charges}
 
 
@@ -93,7 +94,7 @@ def truncation_forms(point: LimitPoint, charges: Sequence[Charge]) -> Iterator[C
             )
 
 
-def _without(masses: Sequence[Rational], needed: Sequence[Rational]) -> list[Rational] | None:
+def _without(masses: Sequence[Number], needed: Sequence[Number]) -> list[Number] | None:
     """``masses`` without ``needed``, as multisets; None where one of them is missing."""
     rest = list(masses)
     for mass in needed:

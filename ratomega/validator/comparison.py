@@ -6,7 +6,7 @@ from collections.abc import Sequence
 
 from ratomega.case.case import Case
 from ratomega.case.setting import Setting
-from ratomega.exact.rational import exact_text
+from ratomega.exact.quadratic import number_text
 from ratomega.regulator.limits import ChargeLimit
 from ratomega.regulator.outcome import FiniteLimit
 from ratomega.validator.closed_forms import ClosedForm, closed_forms
@@ -30,10 +30,10 @@ def compare(form: ClosedForm, limits: Sequence[ChargeLimit]) -> Check | None:
     for limit in compared:
         expected, outcome = form.values[limit.charge], limit.outcome
         if not isinstance(outcome, FiniteLimit) or outcome.value != expected:
-            found = exact_text(outcome.value) if isinstance(outcome, FiniteLimit) else outcome.status
+            found = number_text(outcome.value) if isinstance(outcome, FiniteLimit) else outcome.status
             evidence = (
                 f"{form.statement}; first difference at {charge_text(limit.charge)}: "
-                f"closed form {exact_text(expected)}, limit {found}"
+                f"closed form {number_text(expected)}, limit {found}"
             )
             return Check(form.name, Verdict.REFUTED, Kind.INDEPENDENT, evidence, form.source)
     last = charge_text(compared[-1].charge)
@@ -62,7 +62,7 @@ def check_adjoint_clusters(setting: Setting, limits: Sequence[ChargeLimit]) -> C
             clusters += 1
             if cluster.series.valuation < 0 or value != cluster.size:
                 where = charge_text(limit.charge)
-                evidence = f"{where}: a cluster of {cluster.size} members sums to {exact_text(value)}"
+                evidence = f"{where}: a cluster of {cluster.size} members sums to {number_text(value)}"
                 return Check(name, Verdict.REFUTED, Kind.INDEPENDENT, evidence, source)
     if clusters <= 1:
         return None

@@ -11,6 +11,7 @@ from collections.abc import Mapping
 from dataclasses import dataclass
 
 from ratomega.case.setting import Setting
+from ratomega.exact.quadratic import Number, only_rational
 from ratomega.exact.rational import Rational
 
 __all__ = ["Charge", "ClosedForm", "LimitPoint", "NodePoint", "limit_point"]
@@ -29,16 +30,16 @@ class ClosedForm:
     name: str
     statement: str
     source: str
-    values: Mapping[Charge, Rational]
+    values: Mapping[Charge, Number]
 
 
 @dataclass(frozen=True, slots=True)
 class NodePoint:
     """One node: Coulomb parameters, antifundamental masses of all its flavours, adjoint masses."""
 
-    coulomb: tuple[Rational, ...]
-    flavours: tuple[Rational, ...]
-    adjoint: tuple[Rational, ...]
+    coulomb: tuple[Number, ...]
+    flavours: tuple[Number, ...]
+    adjoint: tuple[Number, ...]
 
     @property
     def rank(self) -> int:
@@ -52,7 +53,7 @@ class LimitPoint:
     eps1: Rational
     eps2: Rational
     nodes: tuple[NodePoint, ...]
-    edges: tuple[tuple[int, int, Rational], ...]
+    edges: tuple[tuple[int, int, Number], ...]
 
     @property
     def eps(self) -> Rational:
@@ -75,7 +76,8 @@ class LimitPoint:
 
 def limit_point(setting: Setting) -> LimitPoint:
     """The values at t = 0 of everything on the path."""
-    eps = setting.eps1.constant + setting.eps2.constant
+    eps1, eps2 = only_rational(setting.eps1.constant), only_rational(setting.eps2.constant)
+    eps = eps1 + eps2
     nodes = tuple(
         NodePoint(
             tuple(a.constant for a in node.coulomb),
@@ -85,4 +87,4 @@ def limit_point(setting: Setting) -> LimitPoint:
         for node in setting.nodes
     )
     edges = tuple((source, target, mass.constant) for source, target, mass in setting.edges)
-    return LimitPoint(setting.eps1.constant, setting.eps2.constant, nodes, edges)
+    return LimitPoint(eps1, eps2, nodes, edges)

@@ -1,8 +1,9 @@
 """Exact power series in the counting parameters q: what the closed forms are made of.
 
-``Series`` is a truncated series in one q with exact coefficients; its length is its precision. ``Multiseries`` is a
-truncated series in one q per node, a table from charge to coefficient on a set of charges that is closed downwards.
-Nothing here knows of diagrams. Every operation costs at most (number of coefficients) x (order) exact operations.
+``Series`` is a truncated series in one q with exact coefficients, rational or of a quadratic field; its length is its
+precision. ``Multiseries`` is a truncated series in one q per node, a table from charge to coefficient on a set of
+charges that is closed downwards. Nothing here knows of diagrams. Every operation costs at most (number of coefficients)
+x (order) exact operations.
 """
 
 from __future__ import annotations
@@ -10,6 +11,7 @@ from __future__ import annotations
 from collections.abc import Callable, Iterable, Mapping, Sequence
 from dataclasses import dataclass
 
+from ratomega.exact.quadratic import Number
 from ratomega.exact.rational import ONE, ZERO, Rational
 
 __all__ = [
@@ -35,11 +37,11 @@ class Series:
     ((1, 1/2, -1/8, 1/16), (1, 1, 0, 0))
     """
 
-    coefficients: tuple[Rational, ...]
+    coefficients: tuple[Number, ...]
 
     @classmethod
-    def make(cls, coefficients: Iterable[Rational | int]) -> Series:
-        known = tuple(Rational(c) for c in coefficients)
+    def make(cls, coefficients: Iterable[Number | int]) -> Series:
+        known: tuple[Number, ...] = tuple(Rational(c) if isinstance(c, int) else c for c in coefficients)
         if not known:
             raise ValueError("a series needs at least its constant term")
         return cls(known)
@@ -61,10 +63,10 @@ class Series:
         length = min(len(left), len(right))
         return Series(tuple(sum((left[k] * right[n - k] for k in range(n + 1)), ZERO) for n in range(length)))
 
-    def scaled(self, factor: Rational) -> Series:
+    def scaled(self, factor: Number) -> Series:
         return Series(tuple(c * factor for c in self.coefficients))
 
-    def power(self, exponent: Rational) -> Series:
+    def power(self, exponent: Number) -> Series:
         """The series to a rational power, constant term 1. Raises ``ValueError`` for another constant term.
 
         From f g' = exponent f' g for g = f^exponent; works for every exponent, negative and zero included.
@@ -72,7 +74,7 @@ class Series:
         f = self.coefficients
         if f[0] != 1:
             raise ValueError("a rational power of a series needs the constant term 1")
-        g = [ONE]
+        g: list[Number] = [ONE]
         for n in range(1, len(f)):
             g.append(sum((((exponent + 1) * k - n) * f[k] * g[n - k] for k in range(1, n + 1)), ZERO) / n)
         return Series(tuple(g))
@@ -90,7 +92,7 @@ class Series:
         f = self.coefficients
         if f[0] != 0:
             raise ValueError("the exponential of a series needs the constant term 0")
-        g = [ONE]
+        g: list[Number] = [ONE]
         for n in range(1, len(f)):
             g.append(sum((k * f[k] * g[n - k] for k in range(1, n + 1)), ZERO) / n)
         return Series(tuple(g))
@@ -104,18 +106,18 @@ class Series:
         f = self.coefficients
         if f[0] != 1:
             raise ValueError("the logarithm of a series needs the constant term 1")
-        g = [ZERO]
+        g: list[Number] = [ZERO]
         for n in range(1, len(f)):
             g.append(f[n] - sum((k * g[k] * f[n - k] for k in range(1, n)), ZERO) / n)
         return Series(tuple(g))
 
 
-def exponential(rate: Rational, order: int) -> Series:
+def exponential(rate: Number, order: int) -> Series:
     """exp(rate q)."""
     return _from_ratios(lambda k: rate / (k + 1), order)
 
 
-def binomial(slope: Rational, exponent: Rational, order: int) -> Series:
+def binomial(slope: Number, exponent: Number, order: int) -> Series:
     """(1 + slope q)^exponent.
 
     >>> binomial(-ONE, -ONE, 3).coefficients
@@ -124,7 +126,7 @@ def binomial(slope: Rational, exponent: Rational, order: int) -> Series:
     return _from_ratios(lambda k: slope * (exponent - k) / (k + 1), order)
 
 
-def hypergeometric(upper: Sequence[Rational], lower: Sequence[Rational], argument: Rational, order: int) -> Series:
+def hypergeometric(upper: Sequence[Number], lower: Sequence[Number], argument: Number, order: int) -> Series:
     """sum_k prod (upper)_k / prod (lower)_k (argument q)^k / k!, with Pochhammer symbols (x)_k = x (x+1) ... (x+k-1).
 
     Raises ``ZeroDivisionError`` when a lower parameter reaches zero within ``order``: 0, -1, ..., 1 - order.
@@ -133,26 +135,26 @@ def hypergeometric(upper: Sequence[Rational], lower: Sequence[Rational], argumen
     (1, -1/2, 1/3, -1/4)
     """
 
-    def ratio(k: int) -> Rational:
-        value = argument / (k + 1)
+    def ratio(k: int) -> Number:
+        value: Number = argument / (k + 1)
         for x in upper:
-            value *= x + k
+            value = value * (x + k)
         for x in lower:
-            value /= x + k
+            value = value / (x + k)
         return value
 
     return _from_ratios(ratio, order)
 
 
-def _from_ratios(ratio: Callable[[int], Rational], order: int) -> Series:
+def _from_ratios(ratio: Callable[[int], Number], order: int) -> Series:
     """The series with constant term 1 whose coefficients k + 1 and k have the quotient ``ratio(k)``."""
-    terms = [ONE]
+    terms: list[Number] = [ONE]
     for k in range(order):
         terms.append(terms[-1] * ratio(k))
     return Series(tuple(terms))
 
 
-def euler_product(exponent: Rational, order: int) -> Series:
+def euler_product(exponent: Number, order: int) -> Series:
     """prod_{n >= 1} (1 - q^n)^exponent: a power of the Dedekind eta function without its q^(1/24).
 
     >>> euler_product(Rational(24), 4).coefficients      # Ramanujan's tau
@@ -202,7 +204,7 @@ class Multiseries:
     {(0, 0): 1, (1, 0): 5, (0, 1): 0, (1, 1): 7}
     """
 
-    coefficients: Mapping[tuple[int, ...], Rational]
+    coefficients: Mapping[tuple[int, ...], Number]
 
     @classmethod
     def one(cls, charges: Iterable[tuple[int, ...]]) -> Multiseries:
@@ -215,7 +217,7 @@ class Multiseries:
         """
         if not any(monomial):
             raise ValueError("the series is taken at a monomial that is not constant")
-        result: dict[tuple[int, ...], Rational] = {}
+        result: dict[tuple[int, ...], Number] = {}
         for charge in self.coefficients:
             depth = fits(monomial, charge)
             if depth > series.order:

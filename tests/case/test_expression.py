@@ -71,7 +71,29 @@ def test_what_is_read(text, constant, eps1, eps2, t):
         ("9**9**9", "power"),
         ("2^3", "power"),
         ("eps1**2", "power"),
-        ("sqrt(2)", 'calls the function "sqrt"'),
+        ("sqrt", 'has "sqrt" without "("'),
+        ("sqrt 2", 'has "sqrt" without "("'),
+        ("sqrt()", "nothing inside"),
+        ("sqrt(2", "never closed"),
+        ("sqrt(8)", "write 2*sqrt(2)"),
+        ("sqrt(-12)", "write 2*sqrt(-3)"),
+        ("sqrt(-4)", "write 2*sqrt(-1)"),
+        ("sqrt(49)", "write 7"),
+        ("sqrt(0)", "write 0"),
+        ("sqrt(1/2)", "write 1/2*sqrt(2)"),
+        ("sqrt(4/9)", "write 2/3"),
+        ("sqrt(eps1)", "takes the root of eps1"),
+        ("sqrt(sqrt(2))", "takes the root of 1*sqrt(2)"),
+        ("sqrt(10000000000001)", "numbers under a root go up to"),
+        ("sqrt(2) + sqrt(3)", "sqrt(2) and sqrt(3) occur together"),
+        ("i*sqrt(3)", "i and sqrt(3) occur together"),
+        ("2i", 'write "2*i"'),
+        ("2sqrt(2)", 'write "2*sqrt"'),
+        ("i(2)", 'write "i*(...)"'),
+        ("1 + I", "the imaginary unit is written i"),
+        ("2j", "the imaginary unit is written i"),
+        ("1/(i*i + 1)", "divides by zero"),
+        ("i*t/t", "divides by t"),
         ("2 + sin(t)", 'calls the function "sin"'),
         ("max(1,2)", 'calls the function "max"'),
         ("__import__('os').system('true')", 'calls the function "__import__"'),
@@ -122,6 +144,29 @@ def test_what_is_refused(text, said):
     assert problem.where == "demo.toml: node[1].coulomb[2]"
 
 
+@pytest.mark.parametrize(
+    ("text", "canonical"),
+    [
+        ("i", "1*sqrt(-1)"),
+        ("sqrt(-1)", "1*sqrt(-1)"),
+        ("1+2*i/3", "1 + 2/3*sqrt(-1)"),
+        ("i*i", "-1"),
+        ("sqrt(21)/7", "1/7*sqrt(21)"),
+        ("-sqrt(2)*(1 - sqrt(2)/4)", "1/2 - 1*sqrt(2)"),
+        ("1/(1 + sqrt(2))", "-1 + 1*sqrt(2)"),
+        ("sqrt(-7)*eps1 - eps2/2 + (1 + sqrt(-7))*t", "1*sqrt(-7)*eps1 - eps2/2 + (1 + 1*sqrt(-7))*t"),
+        ("sqrt(5)*eps1*sqrt(5)", "5*eps1"),
+        ("sqrt(3*7)", "1*sqrt(21)"),
+        ("-i*eps2", "-1*sqrt(-1)*eps2"),
+    ],
+)
+def test_numbers_of_a_quadratic_field_are_read_and_written(text, canonical):
+    expression = parse_affine(text)
+    assert str(expression) == canonical
+    assert parse_affine(canonical) == expression
+    assert sympy.simplify(sympy.sympify(canonical) - sympy.sympify(text.replace("i", "I"))) == 0
+
+
 def outcome(text, **options):
     """The expression, or the message of its refusal; anything but ``InputError`` goes through."""
     try:
@@ -164,6 +209,8 @@ def test_numbers_from_python():
     third = Affine(Rational(1, 3))
     for value in (Fraction(1, 3), flint.fmpq(1, 3), sympy.Rational(1, 3), "1/3", third):
         assert as_affine(value) == third
+    assert as_affine(sympy.I / 2 - 1) == as_affine("-1 + i/2")
+    assert as_affine(sympy.sqrt(-3)) == as_affine("sqrt(-3)")
     assert as_affine(7) == as_affine(flint.fmpz(7)) == as_affine(Decimal("7.0")) == Affine(Rational(7))
 
 
@@ -176,7 +223,10 @@ def test_numbers_from_python():
         (float("inf"), "not exact"),
         (True, "truth value"),
         (None, "NoneType"),
-        (1j, "complex"),
+        (1j, "the complex 1j is not exact"),
+        (sympy.pi, "not an exact number"),
+        (sympy.sqrt(2) + sympy.sqrt(3), "does not lie in one quadratic field"),
+        (sympy.root(2, 3), "not an exact number"),
         ([1], "list"),
         (sympy.Symbol("x"), "Symbol"),
         (sympy.Float(0.5), "Float"),

@@ -1,0 +1,1 @@
+"""Free parameters: coefficients as exact rational functions, by interpolation between exact limits."""

@@ -1,0 +1,130 @@
+"""One coefficient as a rational function: exact limits on the grid, interpolation, confirmation beside it.
+
+No second engine: every value comes from an evaluator, by default the direct sum over diagrams, at a point where every
+component is compact, so that the limit is finite and the same on every path by theorem.
+"""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Callable
+from dataclasses import dataclass
+from itertools import product
+
+from ratomega.case.case import Case
+from ratomega.case.setting import Setting, own_setting, resonances
+from ratomega.diagrams.tuples import Charge, count_configurations
+from ratomega.errors import InputError
+from ratomega.exact.interpolation import grid_polynomial
+from ratomega.exact.quadratic import only_rational
+from ratomega.exact.rational import Rational
+from ratomega.exact.rational_function import RationalFunction, function_of_planes
+from ratomega.regulator.direct import direct_total
+from ratomega.regulator.limits import ChargeLimit
+from ratomega.symbolic.grid import Grid, Point, choose_grid, denominator_value
+from ratomega.symbolic.structure import Structure, structure
+from ratomega.weights import Weights
+
+__all__ = ["Evaluator", "Functions", "SymbolicCharge", "SymbolicLimit", "direct_evaluator"]
+
+Values = Callable[[Charge], Rational]
+Evaluator = Callable[[Setting], Values]
+"""Takes a setting (one point) and gives the limit at any charge; work common to all charges is done once."""
+
+
+def direct_evaluator(setting: Setting) -> Values:
+    """The direct sum over diagrams."""
+    weights = Weights(setting)
+    return lambda charge: only_rational(direct_total(weights, charge).coefficient(0))
+
+
+@dataclass(frozen=True, slots=True)
+class SymbolicCharge:
+    """A coefficient as a function, the number of limits it was interpolated from, and the points that confirm it.
+
+    ``refuted`` are points beside the grid where function and limit differ: there should be none.
+    """
+
+    charge: Charge
+    function: RationalFunction
+    points: int
+    confirmed: tuple[Point, ...]
+    refuted: tuple[Point, ...]
+
+
+@dataclass(frozen=True, slots=True)
+class SymbolicLimit:
+    """A coefficient as a function, beside everything that was found at the generic point."""
+
+    sample: ChargeLimit
+    found: SymbolicCharge
+
+    @property
+    def charge(self) -> Charge:
+        return self.found.charge
+
+
+class Functions:
+    """All coefficients of a case with symbols, charge by charge; points are evaluated when a charge needs them.
+
+    Raises ``InputError`` when the case has no limit as a function of its symbols, or needs more work than
+    ``most_configurations`` weights.
+    """
+
+    def __init__(
+        self, case: Case, *, most_configurations: int, evaluator: Evaluator = direct_evaluator
+    ) -> None:
+        self.case = case
+        self.evaluator = evaluator
+        self.structures: dict[Charge, Structure] = {charge: structure(case, charge) for charge in case.charges}
+        work = sum(
+            count_configurations(case.theory.ranks, charge) * (math.prod(s.nodes) + 1)
+            for charge, s in self.structures.items()
+        )
+        if work > most_configurations:
+            raise InputError.single(
+                f"the functions of {', '.join(case.symbols)} need {work} weights, configurations times points, more "
+                f"than the limit of {most_configurations}; lower the charge, give numbers for symbols, or raise the "
+                "limit (--most-configurations, most_configurations=)",
+                "symbols",
+            )
+        self.grid: Grid = choose_grid(list(self.structures.values()))
+        self._known: dict[Point, Values] = {}
+
+    @property
+    def generic_point(self) -> dict[str, Rational]:
+        """The first witness: a point without anything special."""
+        return dict(zip(self.case.symbols, self.grid.witnesses[0], strict=True))
+
+    def value(self, charge: Charge, point: Point) -> Rational:
+        """The exact limit at one point."""
+        known = self._known.get(point)
+        if known is None:
+            setting = own_setting(self.case.at(**dict(zip(self.case.symbols, point, strict=True))))
+            if next(resonances(setting, self.case.bounds), None) is not None:
+                raise ValueError(f"the point {point} is a pole")
+            known = self._known[point] = self.evaluator(setting)
+        return known(charge)
+
+    def at(self, charge: Charge) -> SymbolicCharge:
+        """The function at one charge."""
+        shape = self.structures[charge]
+        axes = [axis[:size] for axis, size in zip(self.grid.axes, shape.nodes, strict=True)]
+        values = {}
+        for index in product(*(range(len(axis)) for axis in axes)):
+            point = tuple(axis[n] for axis, n in zip(axes, index, strict=True))
+            values[index] = self.value(charge, point) * denominator_value(shape.planes, point)
+        variables = [
+            [x * x for x in axis] if even else list(axis) for axis, even in zip(axes, shape.even, strict=True)
+        ]
+        coefficients = {
+            tuple(2 * e if even else e for e, even in zip(exponents, shape.even, strict=True)): value
+            for exponents, value in grid_polynomial(variables, values).items()
+        }
+        function = function_of_planes(coefficients, shape.planes, self.case.symbols)
+        agree: list[Point] = []
+        differ: list[Point] = []
+        for witness in self.grid.witnesses:
+            expected = function.at(**dict(zip(self.case.symbols, witness, strict=True)))
+            (agree if self.value(charge, witness) == expected else differ).append(witness)
+        return SymbolicCharge(charge, function, len(values), tuple(agree), tuple(differ))

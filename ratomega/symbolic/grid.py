@@ -1,0 +1,75 @@
+"""Where the limits are taken: a grid of small rational numbers that avoids every pole, and points beside it.
+
+The values of one symbol are j/p with a prime p of its own and j not divisible by p, so that they lie off the lattice of
+eps1 and eps2 for usual backgrounds; whether they really do is checked, and another prime is taken where not.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Sequence
+from dataclasses import dataclass
+from itertools import count, product
+
+from ratomega.errors import InputError
+from ratomega.exact.rational import ONE, ZERO, Rational
+from ratomega.symbolic.structure import Plane, Structure
+
+__all__ = ["Grid", "Point", "choose_grid", "plane_value"]
+
+Point = tuple[Rational, ...]
+
+_PRIMES = (3, 5, 7, 11, 13, 17, 19, 23, 29, 31, 37, 41, 43, 47)
+WITNESSES = 2
+
+
+@dataclass(frozen=True, slots=True)
+class Grid:
+    """Values of every symbol for the highest charge (a lower charge takes the first of them), and points beside.
+
+    ``witnesses`` are points of which no coordinate is on the axes: functions are confirmed there.
+    """
+
+    axes: tuple[tuple[Rational, ...], ...]
+    witnesses: tuple[Point, ...]
+
+
+def plane_value(plane: Plane, point: Sequence[Rational]) -> Rational:
+    return sum((c * x for c, x in zip(plane[1:], point, strict=True)), Rational(plane[0]))
+
+
+def choose_grid(structures: Sequence[Structure]) -> Grid:
+    """A grid on which no denominator of any of the charges vanishes, with its witnesses."""
+    sizes = [max(each) for each in zip(*(s.nodes for s in structures), strict=True)]
+    even = structures[0].even
+    planes = {plane for s in structures for plane, _ in s.planes}
+    number = len(sizes)
+    for start in range(len(_PRIMES) - 2 * number + 1):
+        primes, others = _PRIMES[start : start + number], _PRIMES[start + number : start + 2 * number]
+        axes = tuple(_axis(size, p, e) for size, p, e in zip(sizes, primes, even, strict=True))
+        witnesses = tuple(tuple(n + Rational(1, p) for p in others) for n in range(1, 1 + WITNESSES))
+        points = (*product(*axes), *witnesses)
+        if all(plane_value(plane, point) != 0 for plane in planes for point in points):
+            return Grid(axes, witnesses)
+    raise InputError.single(
+        "no grid of small numbers was found that avoids all poles in the symbols; rescale all parameters", "symbols"
+    )
+
+
+def _axis(size: int, prime: int, even: bool) -> tuple[Rational, ...]:
+    return tuple(x for x, _ in zip(_values(prime, even), range(size), strict=False))
+
+
+def _values(prime: int, even: bool) -> Iterator[Rational]:
+    for j in count(1):
+        if j % prime:
+            yield Rational(j, prime)
+            if not even:
+                yield Rational(-j, prime)
+
+
+def denominator_value(planes: Sequence[tuple[Plane, int]], point: Sequence[Rational]) -> Rational:
+    """The product of all linear factors at a point; zero only on a pole."""
+    value = ONE
+    for plane, times in planes:
+        value *= plane_value(plane, point) ** times
+    return value if value != 0 else ZERO
