@@ -17,6 +17,7 @@ from itertools import permutations
 from math import gcd
 
 from ratomega.case.setting import Setting
+from ratomega.exact.quadratic import Number, only_rational
 from ratomega.exact.rational import Rational, common_denominator
 
 __all__ = ["FastSetup", "applies", "prepare"]
@@ -62,13 +63,21 @@ class FastSetup:
         return value / power if self.degree > 0 else value * power
 
 
+def _limit_values(setting: Setting) -> list[Number]:
+    """Every parameter of the one node at t = 0."""
+    (node,) = setting.nodes
+    lines = [setting.eps1, setting.eps2, *node.coulomb, *node.antifundamental, *node.fundamental, *node.adjoint]
+    return [line.constant for line in lines]
+
+
 def prepare(setting: Setting) -> FastSetup:
     """The setting at t = 0 in integers. Assumes one node (``applies`` says so)."""
     (node,) = setting.nodes
-    eps1, eps2 = setting.eps1.constant, setting.eps2.constant
-    coulomb = [a.constant for a in node.coulomb]
-    anti, fund = [m.constant for m in node.antifundamental], [m.constant for m in node.fundamental]
-    adjoints = [m.constant for m in node.adjoint]
+    eps1, eps2 = only_rational(setting.eps1.constant), only_rational(setting.eps2.constant)
+    coulomb = [only_rational(a.constant) for a in node.coulomb]
+    anti = [only_rational(m.constant) for m in node.antifundamental]
+    fund = [only_rational(m.constant) for m in node.fundamental]
+    adjoints = [only_rational(m.constant) for m in node.adjoint]
     scale = common_denominator([eps1, eps2, *coulomb, *anti, *fund, *adjoints])
     inner = common_denominator([eps1, eps2, *(a - coulomb[0] for a in coulomb)])
 
@@ -105,6 +114,8 @@ def applies(setting: Setting, charge: int) -> str | None:
     rank = setting.nodes[0].rank
     if rank not in (2, 3):
         return f"the fast sums serve two and three colours, not {rank}"
+    if not all(isinstance(value, Rational) for value in _limit_values(setting)):
+        return "the fast sums take rational parameters"
     setup = prepare(setting)
     threshold = setup.singular_from()
     singular = threshold is not None and threshold <= charge

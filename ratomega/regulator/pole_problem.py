@@ -22,6 +22,7 @@ from math import isqrt, lcm
 from ratomega.case.case import Case
 from ratomega.case.setting import NodeSetting
 from ratomega.errors import InputError
+from ratomega.exact.quadratic import only_rational
 from ratomega.exact.rational import ONE, ZERO, Rational, common_denominator
 from ratomega.regulator.pole_dressing import Dressing, NomeExponents
 
@@ -266,6 +267,8 @@ def _structure(case: Case) -> str:
         return "the pole recursion covers one gauge node, and this quiver has several"
     node = case.theory.nodes[0]
     flavours = len(node.antifundamental) + len(node.fundamental)
+    if case.symbols:
+        return "the pole recursion takes numbers, and this case has symbols"
     if node.rank != 2:
         return f"the pole recursion covers U(2), and this node is U({node.rank})"
     if len(node.adjoint) > 1:
@@ -274,7 +277,34 @@ def _structure(case: Case) -> str:
         return "the pole recursion covers an adjoint or flavours, and this node has both"
     if flavours > MOST_FLAVOURS:
         return f"the pole recursion covers up to four flavours, and this node has {flavours}"
+    if _momenta(case) is None:
+        return "the pole recursion takes rational (a1 - a2)^2 and m + (a1 + a2)/2, and the adjoint's m rational"
     return ""
+
+
+@dataclass(frozen=True, slots=True)
+class _Momenta:
+    """What enters of a case: (a1-a2)^2/4, the mu of its flavours, and mu of its adjoint; all rational."""
+
+    square: Rational
+    mu: tuple[Rational, ...]
+    adjoint: Rational | None
+
+
+def _momenta(case: Case) -> _Momenta | None:
+    """None where one of them is not rational. A difference of Coulomb parameters may be: its square counts."""
+    node = _at_limit(case)
+    eps = case.background.eps1.constant + case.background.eps2.constant
+    first, second = node.coulomb[0].constant, node.coulomb[1].constant
+    half, shift = (first - second) / 2, (first + second) / 2
+    numbers = [half * half]
+    numbers += [m.constant + shift - eps / 2 for m in node.antifundamental]
+    numbers += [eps / 2 - m.constant + shift for m in node.fundamental]
+    adjoint = [m.constant - eps / 2 for m in node.adjoint]
+    rational = [x for x in numbers + adjoint if isinstance(x, Rational)]
+    if len(rational) != len(numbers) + len(adjoint):
+        return None
+    return _Momenta(rational[0], tuple(rational[1 : len(numbers)]), rational[-1] if adjoint else None)
 
 
 def applies(case: Case) -> RouteAnswer:
@@ -293,15 +323,13 @@ def case_problem(case: Case) -> PoleProblem:
     reason = _structure(case)
     if reason:
         raise InputError.single(reason)
-    node = _at_limit(case)
-    return gauge_problem(
-        case.background.eps1.constant,
-        case.background.eps2.constant,
-        (node.coulomb[0].constant, node.coulomb[1].constant),
-        antifundamental=[m.constant for m in node.antifundamental],
-        fundamental=[m.constant for m in node.fundamental],
-        adjoint=node.adjoint[0].constant if node.adjoint else None,
-    )
+    momenta = _momenta(case)
+    if momenta is None:
+        raise InputError.single("the pole recursion takes rational momenta")
+    eps1, eps2 = only_rational(case.background.eps1.constant), only_rational(case.background.eps2.constant)
+    if momenta.adjoint is not None:
+        return torus_problem(eps1, eps2, momenta.square, mu_square=momenta.adjoint**2)
+    return mixed_problem(eps1, eps2, momenta.square, mu=momenta.mu)
 
 
 def _at_limit(case: Case) -> NodeSetting:

@@ -15,6 +15,7 @@ from __future__ import annotations
 
 from ratomega.errors import PrecisionError
 from ratomega.exact.laurent import Laurent
+from ratomega.exact.quadratic import only_rational
 from ratomega.exact.rational import ONE, ZERO, Rational
 from ratomega.regulator.pole_lattice import (
     Form,
@@ -90,7 +91,7 @@ def _coefficient(
     limit = total.coefficient(0)
     if total.valuation < 0:
         raise ArithmeticError(f"the pole recursion left a singular part at charge {order}: {total}")
-    return limit
+    return only_rational(limit)
 
 
 def _linear(form: Form, length: int) -> Laurent:

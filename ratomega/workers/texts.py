@@ -12,8 +12,9 @@ from typing import TypeGuard
 
 from ratomega.diagrams.tuples import Charge
 from ratomega.exact.laurent import Laurent
-from ratomega.exact.rational import exact_text, from_exact_text
+from ratomega.exact.quadratic import from_number_text, number_text
 from ratomega.regulator.direct import ChargeSum, ClusterSum
+from ratomega.weights import ContentsKey
 
 __all__ = ["read_list", "series_data", "series_from", "sum_data", "sum_from", "written"]
 
@@ -42,7 +43,7 @@ def series_data(series: Laurent) -> list[object]:
     >>> series_data(Laurent.from_coefficients(-1, [1, 0, 2], precision=3))
     [-1, 3, ['1', '0', '2']]
     """
-    return [series.valuation, series.precision, [exact_text(c) for c in series.poly.coeffs()]]
+    return [series.valuation, series.precision, [number_text(c) for c in series.poly.coeffs()]]
 
 
 def series_from(data: object) -> Laurent:
@@ -52,7 +53,7 @@ def series_from(data: object) -> Laurent:
     {-1: 1, 1: 2}
     """
     valuation, precision, coefficients = _items(data, 3)
-    numbers = [from_exact_text(_text(c)) for c in _list(coefficients)]
+    numbers = [from_number_text(_text(c)) for c in _list(coefficients)]
     series = Laurent.from_coefficients(_whole(valuation), numbers, precision=_whole(precision))
     if series_data(series) != data:
         raise ValueError("a series is not in its canonical form")
@@ -72,10 +73,10 @@ def sum_data(one: ChargeSum) -> list[object]:
 def sum_from(data: object, charge: Charge) -> ChargeSum:
     """Read back what ``sum_data`` gave."""
     configurations, singular, indeterminate, worst, series, clusters = _items(data, 6)
-    found: dict[tuple[tuple[int, ...], ...], ClusterSum] = {}
+    found: dict[ContentsKey, ClusterSum] = {}
     for entry in _list(clusters):
         key, size, order, lowest, members, sink, own = _items(entry, 7)
-        contents = tuple(tuple(_whole(x) for x in _list(node)) for node in _list(key))
+        contents = tuple(_node_contents(node) for node in _list(key))
         if sink is not None and not isinstance(sink, bool):
             raise ValueError("a cluster has a sink, has none, or was not asked")
         found[contents] = ClusterSum(
@@ -83,6 +84,15 @@ def sum_from(data: object, charge: Charge) -> ChargeSum:
         )
     counts = (_whole(configurations), _whole(singular), _whole(indeterminate), _whole(worst))
     return ChargeSum(charge, series_from(series), found, *counts)
+
+
+def _node_contents(value: object) -> tuple[int, ...] | tuple[tuple[int, int], ...]:
+    """The contents of one node: integers, or pairs of them beyond Q."""
+    items = _list(value)
+    if items and _is_list(items[0]):
+        pairs = [_items(item, 2) for item in items]
+        return tuple((_whole(x), _whole(y)) for x, y in pairs)
+    return tuple(_whole(item) for item in items)
 
 
 def _is_list(value: object) -> TypeGuard[list[object]]:

@@ -1,0 +1,114 @@
+"""Which way to the coefficients: a fixed rule on the case, never a timing.
+
+*direct* sums over diagrams: cluster by cluster in exact Laurent series (``direct``), or, with many configurations and
+where they apply, by the fast sums from residues (``fast``). *poles* is the recursion of U(2) (``poles``), which shares
+no code with them above exact arithmetic. Both short cuts serve only charges at which every component is compact: there
+the limit is finite and the same on every path by theorem, and no cluster needs to be looked at.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass
+
+from ratomega.case.case import Case
+from ratomega.case.setting import Setting
+from ratomega.diagrams.tuples import Charge, count_all
+from ratomega.errors import InputError
+from ratomega.exact.quadratic import only_rational
+from ratomega.exact.rational import Rational
+from ratomega.regulator.direct import direct_total
+from ratomega.regulator.fast import applies as fast_applies
+from ratomega.regulator.fast import fast_sum, worthwhile
+from ratomega.regulator.pole_problem import applies as poles_apply
+from ratomega.regulator.pole_problem import case_problem
+from ratomega.regulator.poles import pole_coefficients
+from ratomega.weights import Weights
+
+__all__ = ["ROUTES", "Found", "Way", "choose", "point_values", "short_cut"]
+
+ROUTES = ("auto", "direct", "poles")
+# Up to here the sum is done cluster by cluster in about a second, and its certificate looks at every weight.
+CLUSTERWISE = 5_000
+# Beyond this charge the recursion takes many minutes and gigabytes.
+HIGHEST_POLE_CHARGE = 150
+
+
+@dataclass(frozen=True, slots=True)
+class Way:
+    """The way taken. ``short_cut`` is "" for the sum cluster by cluster, else "fast" or "poles"."""
+
+    route: str
+    short_cut: str
+    why: str
+
+
+@dataclass(frozen=True, slots=True)
+class Found:
+    """Z_0 ... Z_K by a short cut.
+
+    ``method`` is "exact", "residues" (confirmed by ``spare_bits`` at least for every coefficient) or "proved" (residues
+    beyond a proved bound); ``primes`` counts the primes used.
+    """
+
+    values: tuple[Rational, ...]
+    method: str
+    spare_bits: int | None
+    primes: int
+
+
+def choose(case: Case, setting: Setting, route: str = "auto", *, clusterwise: bool = False) -> Way:
+    """The way for a case. ``clusterwise``: something was asked for that only the sum cluster by cluster gives.
+
+    Raises ``InputError`` when the route does not exist, or was asked for and does not cover the case.
+    """
+    if route not in ROUTES:
+        raise InputError.single(f'"{route}" is not a route; the routes are {", ".join(ROUTES)}', "route")
+    refusal = "" if route == "direct" else _no_poles(case)
+    if route == "poles":
+        if clusterwise:
+            refusal = "an expansion in t or a case with symbols needs the direct sum"
+        if refusal:
+            raise InputError.single(refusal, "route")
+        return Way("poles", "poles", "asked for")
+    asked = "asked for; " if route == "direct" else ""
+    if clusterwise:
+        return Way("direct", "", f"{asked}cluster by cluster")
+    count = count_all(setting.ranks, case.charge)
+    if count <= CLUSTERWISE:
+        return Way("direct", "", f"{asked}{count} configurations, at most {CLUSTERWISE}: cluster by cluster")
+    if route == "auto" and not refusal:
+        return Way("poles", "poles", f"{count} configurations, more than {CLUSTERWISE}, and the pole recursion applies")
+    why = f"{asked}{count} configurations, more than {CLUSTERWISE}"
+    if isinstance(case.charge, int) and fast_applies(setting, case.charge) is None:
+        return Way("direct", "fast", f"{why}, and the fast sums apply")
+    return Way("direct", "", f"{why}, but no short cut applies: cluster by cluster")
+
+
+def _no_poles(case: Case) -> str:
+    """Why the recursion does not serve this case; empty when it does."""
+    if not isinstance(case.charge, int):
+        return "the pole recursion takes one bound on the charge, an integer"
+    if case.charge > HIGHEST_POLE_CHARGE:
+        return f"the pole recursion is limited to charge {HIGHEST_POLE_CHARGE}"
+    return poles_apply(case).reason
+
+
+def short_cut(way: Way, case: Case, setting: Setting, *, certify: bool = False) -> Found:
+    """All coefficients by the short cut of a way. Cost: see ``fast`` and ``poles``."""
+    charge = case.bounds[0]
+    if way.short_cut == "poles":
+        found = pole_coefficients(case_problem(case), charge, certify=certify)
+        method = "exact" if not found.primes else "proved" if found.certified else "residues"
+        return Found(found.coefficients, method, found.spare_bits, found.primes)
+    done = fast_sum(setting, charge, certify=certify)
+    return Found(done.coefficients, "proved" if done.proved else "residues", min(done.spare_bits), done.primes)
+
+
+def point_values(setting: Setting, charge: int | tuple[int, ...]) -> Callable[[Charge], Rational]:
+    """The limit at every charge within the bound, for a setting without resonances: what interpolation asks for."""
+    if isinstance(charge, int) and worthwhile(setting, charge):
+        coefficients = fast_sum(setting, charge).coefficients
+        return lambda wanted: coefficients[wanted[0]]
+    weights = Weights(setting)
+    return lambda wanted: only_rational(direct_total(weights, wanted).coefficient(0))
