@@ -345,14 +345,15 @@ class RationalFunction:
 
         names = [sympy.Symbol(name) for name in self.symbols]
         constant, factors = self.factors()
-        result = sympy.Rational(int(constant.p), int(constant.q))
+        parts = [sympy.Rational(int(constant.p), int(constant.q))] if constant != 1 or not factors else []
         for factor, exponent in factors:
             terms = (
                 sympy.Mul(sympy.Integer(int(c)), *(name ** int(e) for name, e in zip(names, powers, strict=True)))
                 for powers, c in factor.to_dict().items()
             )
-            result *= sympy.Add(*terms) ** exponent
-        return result
+            parts.append(sympy.Add(*terms) ** exponent)
+        # Evaluated, sympy would multiply the constant into a sum.
+        return sympy.Mul(*parts, evaluate=False)
 
     def latex(self) -> str:
         """The factored form in LaTeX."""

@@ -22,18 +22,21 @@ from ratomega.exact.rational_function import RationalFunction, function_of_plane
 from ratomega.regulator.direct import direct_total
 from ratomega.regulator.limits import ChargeLimit
 from ratomega.symbolic.grid import Grid, Point, choose_grid, denominator_value
-from ratomega.symbolic.structure import Structure, structure
+from ratomega.symbolic.structure import Structure, primes_of, structure
 from ratomega.weights import Weights
 
 __all__ = ["Evaluator", "Functions", "SymbolicCharge", "SymbolicLimit", "direct_evaluator"]
 
 Values = Callable[[Charge], Rational]
-Evaluator = Callable[[Setting], Values]
-"""Takes a setting (one point) and gives the limit at any charge; work common to all charges is done once."""
+Evaluator = Callable[[Setting, tuple[int, ...]], Values]
+"""Takes a setting (one point) and the highest charge of every node, and gives the limit at any charge within.
+
+Charges are asked for one by one; what is common to them may be done at the first.
+"""
 
 
-def direct_evaluator(setting: Setting) -> Values:
-    """The direct sum over diagrams."""
+def direct_evaluator(setting: Setting, highest: tuple[int, ...]) -> Values:
+    """The direct sum over diagrams: a charge costs what it costs alone, whatever the highest is."""
     weights = Weights(setting)
     return lambda charge: only_rational(direct_total(weights, charge).coefficient(0))
 
@@ -88,7 +91,7 @@ class Functions:
                 "limit (--most-configurations, most_configurations=)",
                 "symbols",
             )
-        self.grid: Grid = choose_grid(list(self.structures.values()))
+        self.grid: Grid = choose_grid(list(self.structures.values()), primes_of(case))
         self._known: dict[Point, Values] = {}
 
     @property
@@ -103,7 +106,7 @@ class Functions:
             setting = own_setting(self.case.at(**dict(zip(self.case.symbols, point, strict=True))))
             if next(resonances(setting, self.case.bounds), None) is not None:
                 raise ValueError(f"the point {point} is a pole")
-            known = self._known[point] = self.evaluator(setting)
+            known = self._known[point] = self.evaluator(setting, self.case.bounds)
         return known(charge)
 
     def at(self, charge: Charge) -> SymbolicCharge:

@@ -1,7 +1,8 @@
 """Where the limits are taken: a grid of small rational numbers that avoids every pole, and points beside it.
 
-The values of one symbol are j/p with a prime p of its own and j not divisible by p, so that they lie off the lattice of
-eps1 and eps2 for usual backgrounds; whether they really do is checked, and another prime is taken where not.
+The values of one symbol are j/p with a prime p of its own that occurs in no number of the case, and j not divisible by
+p: no factor with the symbol vanishes there by accident, in a numerator neither. That no denominator does is checked
+besides, and other primes are taken where one should.
 """
 
 from __future__ import annotations
@@ -18,7 +19,7 @@ __all__ = ["Grid", "Point", "choose_grid", "plane_value"]
 
 Point = tuple[Rational, ...]
 
-_PRIMES = (3, 5, 7, 11, 13, 17, 19, 23, 29, 31, 37, 41, 43, 47)
+_PRIMES = (3, 5, 7, 11, 13, 17, 19, 23, 29, 31, 37, 41, 43, 47, 53, 59, 61, 67, 71, 73, 79, 83, 89, 97)
 WITNESSES = 2
 
 
@@ -37,14 +38,15 @@ def plane_value(plane: Plane, point: Sequence[Rational]) -> Rational:
     return sum((c * x for c, x in zip(plane[1:], point, strict=True)), Rational(plane[0]))
 
 
-def choose_grid(structures: Sequence[Structure]) -> Grid:
-    """A grid on which no denominator of any of the charges vanishes, with its witnesses."""
+def choose_grid(structures: Sequence[Structure], avoid: int = 1) -> Grid:
+    """A grid on which no denominator of any of the charges vanishes, with its witnesses; no prime divides ``avoid``."""
     sizes = [max(each) for each in zip(*(s.nodes for s in structures), strict=True)]
     even = structures[0].even
     planes = {plane for s in structures for plane, _ in s.planes}
     number = len(sizes)
-    for start in range(len(_PRIMES) - 2 * number + 1):
-        primes, others = _PRIMES[start : start + number], _PRIMES[start + number : start + 2 * number]
+    usable = [p for p in _PRIMES if avoid % p]
+    for start in range(len(usable) - 2 * number + 1):
+        primes, others = usable[start : start + number], usable[start + number : start + 2 * number]
         axes = tuple(_axis(size, p, e) for size, p, e in zip(sizes, primes, even, strict=True))
         witnesses = tuple(tuple(n + Rational(1, p) for p in others) for n in range(1, 1 + WITNESSES))
         points = (*product(*axes), *witnesses)

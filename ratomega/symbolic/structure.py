@@ -29,7 +29,7 @@ from ratomega.exact.path import Linear
 from ratomega.exact.quadratic import only_rational
 from ratomega.exact.rational import ONE, Rational, common_denominator
 
-__all__ = ["Plane", "Structure", "even_symbols", "structure"]
+__all__ = ["Plane", "Structure", "even_symbols", "primes_of", "structure"]
 
 Plane = tuple[int, ...]
 """A linear form c_0 + c_1 s_1 + ...: coprime integers, the first of c_1, c_2, ... that is not 0 positive."""
@@ -125,6 +125,19 @@ def _growth(case: Case, charge: Charge, symbol: str) -> int:
                 brings[edge.source][first] += factors
                 brings[edge.target][second] += factors
     return sum(k * max(gains) for k, gains in zip(charge, brings, strict=True))
+
+
+def primes_of(case: Case) -> int:
+    """A number that contains every prime of the denominators of a case, and of the coefficients of its symbols."""
+    result = 1
+    backgrounds = (x for form in (case.background.eps1, case.background.eps2) for x in (form.constant, form.slope))
+    parameters = [parameter for _, parameter in case.theory.parameters()]
+    for x in (*backgrounds, *(x for parameter in parameters for x in parameter.numbers())):
+        result = math.lcm(result, int(only_rational(x).q))
+    for parameter in parameters:
+        for _, x in parameter.symbols:
+            result = math.lcm(result, abs(int(only_rational(x).p)))
+    return result
 
 
 def even_symbols(case: Case) -> tuple[bool, ...]:

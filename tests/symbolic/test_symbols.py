@@ -108,8 +108,9 @@ def test_a_block_known_for_every_momentum():
 CASES = {
     "two flavours, ratio 2": u2(antifundamental=["1/3"], fundamental=["1/5 + eps1"], eps2="2", charge=3),
     "not centred": u2(coulomb=("a", "1/5 - 2*a"), antifundamental=["a/2"], charge=3),
-    "a and a mass": u2(antifundamental=["m", *FLAVOURS[1:]], symbols=("a", "m"), charge=3),
-    "three colours": symbolic([{"coulomb": ["a", "0", "-a"]}], charge=3),
+    "grid on a pole": u2(coulomb=("2*a", "-a"), charge=3),
+    "a and a mass": u2(antifundamental=["m", *FLAVOURS[1:]], symbols=("a", "m"), charge=4),
+    "three colours": symbolic([{"coulomb": ["a", "0", "-a"]}], charge=4),
     "three colours, one free": symbolic([{"coulomb": ["a", "1/5", "1/7"]}], charge=2, eps2="2"),
     "two free colours": symbolic([{"coulomb": ["a", "b", "-a - b"]}], symbols=("a", "b"), charge=2),
     "equal fixed colours": symbolic([{"coulomb": ["a", "1/3", "1/3"]}], charge=2),
@@ -140,10 +141,21 @@ def test_numeric_runs_and_the_plain_reference_at_points_not_used(name):
             assert value == plain.laurent_coefficient(theory, c.charge).get(0, 0)
 
 
+@pytest.mark.long
+@pytest.mark.parametrize("ratio", ["1", "2"])
+@pytest.mark.parametrize("flavours", [[], FLAVOURS])
+def test_ten_boxes(flavours, ratio):
+    case = u2(antifundamental=flavours, eps2=ratio, charge=10)
+    result = ratomega.limit(case)
+    assert {c.name: c.verdict.value for c in result.checks}["functions of the symbols"] == "agrees"
+    run = ratomega.limit(case.at(a="5/23"))
+    assert [c.value.at(a="5/23") for c in result] == [c.value for c in run]
+
+
 @pytest.mark.parametrize("name", CASES)
 def test_documents_read_back(name):
     for command in (ratomega.limit, ratomega.detect, ratomega.validate):
-        result = command(CASES[name])
+        result = command(CASES[name].with_charge(2))
         text = ratomega.to_json(result)
         assert ratomega.load_result(text) == result
         assert ratomega.to_json(ratomega.load_result(text)) == text
@@ -195,8 +207,9 @@ def test_another_evaluator():
     """The function needs limits alone, wherever they come from."""
     asked = []
 
-    def recording(setting):
-        values = direct_evaluator(setting)
+    def recording(setting, highest):
+        assert highest == (2,)
+        values = direct_evaluator(setting, highest)
         asked.append(setting)
         return values
 
@@ -208,8 +221,8 @@ def test_another_evaluator():
 def test_a_wrong_limit_is_found_out():
     """The points beside the grid catch a value that is no function of the right kind."""
 
-    def wrong(setting):
-        values = direct_evaluator(setting)
+    def wrong(setting, highest):
+        values = direct_evaluator(setting, highest)
         spoilt = setting.nodes[0].coulomb[0].constant == Rational(1, 3)
         return lambda charge: values(charge) + (Rational(1, 10**6) if spoilt else 0)
 
