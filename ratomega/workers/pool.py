@@ -26,7 +26,7 @@ __all__ = ["OwnPool"]
 DEPTH = 2
 MOST_IDLE_DEATHS = 10
 # In a row, without any chunk done in between.
-MOST_FAILED_STARTS = 5
+MOST_FAILED_STARTS = 3
 _ONE_THREAD = (
     "OMP_NUM_THREADS",
     "OPENBLAS_NUM_THREADS",

@@ -46,7 +46,10 @@ def test_the_executor_of_a_client(cluster, plain):
 def test_the_address_of_a_scheduler(cluster, plain, tmp_path):
     job = Job.prepare(CASE)
     for _ in range(2):
-        with cluster_hands(cluster.scheduler_address) as hands, job.crew(executor=hands, keep=tmp_path / "kept") as crew:
+        with (
+            cluster_hands(cluster.scheduler_address) as hands,
+            job.crew(executor=hands, keep=tmp_path / "kept") as crew,
+        ):
             found = list(job.limits(probes=3, crew=crew))
         assert ratomega.to_json(limit_result(job, found)) == plain
     with distributed.Client(cluster, set_as_default=False) as client:

@@ -7,6 +7,7 @@ from __future__ import annotations
 
 import pickle
 from dataclasses import replace
+from itertools import pairwise
 
 import pytest
 from building import make_case
@@ -118,7 +119,7 @@ def test_parts_of_the_census_merge_exactly(entry):
     whole = direct_sum(entry.weights, charge, last=1, sinks=True)
     n = whole.configurations
     for edges in ([0, n // 3, n // 3 + 1, n], [*range(0, n, 7), n]):
-        parts = [range(a, b) for a, b in zip(edges, edges[1:], strict=False)]
+        parts = [range(a, b) for a, b in pairwise(edges)]
         sums = [direct_sum(entry.weights, charge, last=1, sinks=True, part=part) for part in parts]
         sums = [sum_from(read_list(written(sum_data(one))), charge) for one in sums]
         found = merged(sums)
@@ -154,7 +155,7 @@ def test_a_result_of_other_pieces_is_refused():
 
 @pytest.mark.parametrize(
     "text",
-    ["", "{}", "[" * 100_000, "[1,2]", "null", "[[0,1,[\"1/0\"]]]", "[[0,1,[0.5]]]", "[[0,1,[\"2/4\"]]]", "[[true,1,[]]]"],
+    ["", "{}", "[" * 100_000, "[1,2]", "null", '[[0,1,["1/0"]]]', "[[0,1,[0.5]]]", '[[0,1,["2/4"]]]', "[[true,1,[]]]"],
 )
 def test_texts_that_are_no_sums_are_refused(text):
     chunk = replace(first_chunk(), pieces=first_chunk().pieces[1:3])

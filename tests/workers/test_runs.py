@@ -85,6 +85,7 @@ def test_killed_workers_change_nothing(monkeypatch, plain):
 
 SCRIPT = """
 import os
+import time
 from ratomega.cli.main import main
 from ratomega.workers import charges
 
@@ -94,11 +95,12 @@ def logged(self):
     handle = os.open("log", os.O_WRONLY | os.O_APPEND | os.O_CREAT)
     os.write(handle, f"{os.getpid()} {self.key()}\\n".encode())
     os.close(handle)
+    time.sleep(float(os.environ.get("PAUSE", "0")))
     return run(self)
 
 # The worker processes import this script, and with it this change.
 charges.SumChunk.run = logged
-charges.TARGET = 0.02
+charges.TARGET = 0.01
 
 if __name__ == "__main__":
     main()
@@ -121,8 +123,12 @@ class Command:
         (folder / "script.py").write_text(SCRIPT)
         self.line = [sys.executable, "script.py", *WORDS]
 
-    def start(self, **options):
-        return subprocess.Popen(self.line, cwd=self.folder, text=True, start_new_session=True, **options)
+    def start(self, *, pause=0.0, **options):
+        """``pause`` makes every chunk longer, so that the run is not over before it is stopped."""
+        surroundings = {**os.environ, "PAUSE": str(pause)}
+        return subprocess.Popen(
+            self.line, cwd=self.folder, text=True, start_new_session=True, env=surroundings, **options
+        )
 
     def started(self):
         """(process id, key) of every chunk that was begun."""
@@ -166,8 +172,8 @@ def gone(pid):
 
 
 def test_a_run_that_was_killed_goes_on_where_it_was(command, table):
-    process = command.start(stdout=subprocess.DEVNULL, stderr=subprocess.DEVNULL)
-    until(lambda: command.kept() >= 6, "the sixth chunk")
+    process = command.start(pause=0.3, stdout=subprocess.DEVNULL, stderr=subprocess.DEVNULL)
+    until(lambda: command.kept() >= 6 or process.poll() is not None, "the sixth chunk")
     process.kill()
     process.wait()
     before = command.started()
@@ -185,9 +191,9 @@ def test_a_run_that_was_killed_goes_on_where_it_was(command, table):
     assert len(every) - total <= 2 + 2
 
 
-def test_an_interrupted_run_says_what_it_kept(command, table):
-    process = command.start(stdout=subprocess.PIPE, stderr=subprocess.PIPE)
-    until(lambda: command.kept() >= 6, "the sixth chunk")
+def test_an_interrupted_run_says_what_it_kept(command):
+    process = command.start(pause=0.3, stdout=subprocess.PIPE, stderr=subprocess.PIPE)
+    until(lambda: command.kept() >= 6 or process.poll() is not None, "the sixth chunk")
     # As a terminal does it: to the command and to its workers.
     os.killpg(process.pid, signal.SIGINT)
     out, err = process.communicate()
@@ -201,7 +207,6 @@ def test_an_interrupted_run_says_what_it_kept(command, table):
     assert int(said[2]) == command.kept() < int(said[3])
     assert "interrupted: only the charges below were finished" in out
     assert all(gone(pid) for pid, _ in command.started())
-    assert command.finish() == table
 
 
 def test_progress_is_shown_on_a_terminal_alone(command, table):
