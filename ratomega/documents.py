@@ -31,6 +31,7 @@ from ratomega.results import (
     Header,
     LimitResult,
     PathRecord,
+    RouteRecord,
     SingularReport,
     ValidateResult,
 )
@@ -59,6 +60,7 @@ def to_document(result: Result) -> Document:
     """The result as plain dictionaries, lists, strings, integers and truth values."""
     if isinstance(result, LimitResult):
         body: Document = {
+            "route": _route(result.route),
             "coefficients": [_coefficient(c) for c in result.coefficients],
             "checks": [_check(c) for c in result.checks],
         }
@@ -107,7 +109,8 @@ def _from_document(document: Document) -> Result:
     kind = document["result"]
     if kind == "limit":
         coefficients = tuple(_read_coefficient(c, header.case.symbols) for c in document["coefficients"])
-        return LimitResult(header, coefficients, tuple(_read_check(c) for c in document["checks"]), partial)
+        checks = tuple(_read_check(c) for c in document["checks"])
+        return LimitResult(header, _read_route(document["route"]), coefficients, checks, partial)
     if kind == "detect":
         return DetectResult(header, tuple(_read_charge(c, header.case) for c in document["charges"]), partial)
     if kind == "validate":
@@ -203,6 +206,9 @@ def _path_value(value: PathValue) -> Document:
     return {"path": value.path, "value": number_text(value.value), "order": value.order}
 
 
+_COUNTS = ("configurations", "singular", "indeterminate", "worst_order", "clusters", "singular_clusters")
+
+
 def _coefficient(c: Coefficient) -> Document:
     document: Document = {"charge": list(c.charge), "status": c.status}
     if c.value is not None:
@@ -214,13 +220,8 @@ def _coefficient(c: Coefficient) -> Document:
     document["independence"] = c.independence
     if c.terms is not None:
         document["terms"] = [{"power": power, "value": number_text(value)} for power, value in c.terms]
-    document["configurations"] = c.configurations
-    document["singular"] = c.singular
-    document["indeterminate"] = c.indeterminate
-    document["worst_order"] = c.worst_order
-    document["clusters"] = c.clusters
-    document["singular_clusters"] = c.singular_clusters
-    return document
+    counts = {name: getattr(c, name) for name in _COUNTS}
+    return document | {name: value for name, value in counts.items() if value is not None}
 
 
 def _read_coefficient(d: Document, symbols: tuple[str, ...]) -> Coefficient:
@@ -235,13 +236,17 @@ def _read_coefficient(d: Document, symbols: tuple[str, ...]) -> Coefficient:
         ),
         independence=None if d["independence"] is None else _word(d["independence"]),
         terms=tuple((_number(t["power"]), _exact(t["value"])) for t in d["terms"]) if "terms" in d else None,
-        configurations=_number(d["configurations"]),
-        singular=_number(d["singular"]),
-        indeterminate=_number(d["indeterminate"]),
-        worst_order=_number(d["worst_order"]),
-        clusters=_number(d["clusters"]),
-        singular_clusters=_number(d["singular_clusters"]),
+        **{name: _number(d[name]) if name in d else None for name in _COUNTS},
     )
+
+
+def _route(r: RouteRecord) -> Document:
+    return {"name": r.route, "method": r.method, "why": r.why, "spare_bits": r.spare_bits, "primes": r.primes}
+
+
+def _read_route(d: Document) -> RouteRecord:
+    bits = None if d["spare_bits"] is None else _number(d["spare_bits"])
+    return RouteRecord(_word(d["name"]), _word(d["method"]), _word(d["why"]), bits, _number(d["primes"]))
 
 
 def _diagrams(configuration: Configuration, case: Case) -> Document:

@@ -20,34 +20,33 @@ from ratomega.case.case import Case
 from ratomega.case.reading import load_case
 from ratomega.case.setting import MOST_PROBES, Setting, own_setting, probe_setting
 from ratomega.detector.accidents import check_path, dead_colours, frozen_number_warnings
-from ratomega.detector.clusters import Cluster, cluster_graph, find_clusters, tagged_boxes
-from ratomega.detector.zeros import Zeros, guilty_factors, scan
-from ratomega.diagrams.tuples import Charge, Configuration, count_all
+from ratomega.detector.clusters import cluster_graph, find_clusters
+from ratomega.detector.zeros import scan
+from ratomega.diagrams.tuples import Charge, count_all
 from ratomega.errors import InputError
 from ratomega.exact.path import SMALL_PARAMETERS
-from ratomega.exact.rational import ZERO
+from ratomega.exact.rational import ZERO, Rational
 from ratomega.regulator.limits import ChargeLimit, charge_limit
-from ratomega.regulator.outcome import FiniteLimit, PathDependent, Pole
+from ratomega.regulator.outcome import FiniteLimit, Independence, PathDependent, Pole
+from ratomega.regulator.routes import ShortCut, Way, choose, point_values, short_cut
+from ratomega.reports import charge_report
 from ratomega.results import (
     ChargeReport,
-    ClusterReport,
     Coefficient,
     DetectResult,
-    Exchange,
-    FactorReport,
     Header,
     LimitResult,
     PathRecord,
-    SingularReport,
+    RouteRecord,
     ValidateResult,
 )
 from ratomega.symbolic.certificate import check_functions
 from ratomega.symbolic.functions import Functions, SymbolicLimit
-from ratomega.validator.comparison import check_adjoint_clusters, check_closed_forms
-from ratomega.validator.finiteness import certificate, check_orders
+from ratomega.validator.comparison import check_adjoint_clusters, check_closed_forms, check_recursion
+from ratomega.validator.finiteness import certificate, check_orders, short_cut_certificate
 from ratomega.validator.verdict import Check
 from ratomega.version import VERSION
-from ratomega.weights import Factor, Weights
+from ratomega.weights import Weights
 from ratomega.workers.charges import charge_cost, charge_limits, cut
 from ratomega.workers.crew import Crew
 from ratomega.workers.hands import Hands, LentExecutor, ThisProcess
@@ -63,7 +62,18 @@ MOST_WORKERS = 1024
 
 CaseSource = str | os.PathLike[str] | Mapping[str, object] | Case
 Watcher = Callable[[Charge], None]
-Found = ChargeLimit | SymbolicLimit
+
+
+@dataclass(frozen=True, slots=True)
+class ShortLimit:
+    """The limit at one charge by a short cut: no weight was looked at."""
+
+    charge: Charge
+    value: Rational
+    evidence: ShortCut
+
+
+Found = ChargeLimit | SymbolicLimit | ShortLimit
 
 
 @dataclass(frozen=True, slots=True)
@@ -78,24 +88,33 @@ class Job:
     setting: Setting
     weights: Weights
     header: Header
-    functions: Functions | None = None
+    functions: Functions | None
+    way: Way
 
     @classmethod
     def prepare(
-        cls, source: CaseSource, *, allow_tilt: bool = True, most_configurations: int = MOST_CONFIGURATIONS
+        cls,
+        source: CaseSource,
+        *,
+        allow_tilt: bool = True,
+        most_configurations: int = MOST_CONFIGURATIONS,
+        route: str = "direct",
+        clusterwise: bool = True,
     ) -> Job:
-        """Raises ``InputError`` when the case cannot be read, is too large, or has an unusable path."""
+        """Raises ``InputError`` when the case cannot be read, is too large, or has an unusable path.
+
+        ``route`` and ``clusterwise`` as in ``regulator.routes.choose``: by default the sum cluster by cluster.
+        """
         case = load_case(source)
-        count = count_all(case.theory.ranks, case.charge)
-        if count > most_configurations:
-            raise InputError.single(
-                f"{count} configurations up to this charge, more than the limit of {most_configurations}; "
-                "lower the charge or raise the limit (--most-configurations, most_configurations=)",
-                "charge",
-            )
-        functions = Functions(case, most_configurations=most_configurations) if case.symbols else None
+        functions = None
+        if case.symbols:
+            _check_count(case, most_configurations)
+            functions = Functions(case, most_configurations=most_configurations, evaluator=point_values)
         sample = case.at(**functions.generic_point) if functions is not None else case
         setting = own_setting(sample, allow_tilt=allow_tilt)
+        way = choose(case, setting, route, clusterwise=clusterwise or functions is not None)
+        if way.short_cut != "poles":
+            _check_count(case, most_configurations)
         check_path(setting, case.bounds)
         warnings = [*dead_colours(setting), *frozen_number_warnings(sample, setting)]
         if setting.tilted:
@@ -111,7 +130,7 @@ class Job:
             point = ", ".join(f"{name} = {value}" for name, value in functions.generic_point.items())
             warnings.append(f"weights, singular terms, orders and clusters are those at the generic point {point}")
         header = Header(VERSION, case, path, case.hash, tuple(warnings))
-        return cls(case, sample, setting, Weights(setting), header, functions)
+        return cls(case, sample, setting, Weights(setting), header, functions, way)
 
     def probes(self, number: int) -> tuple[Weights, ...]:
         """The weights on the first ``number`` further paths."""
@@ -121,17 +140,32 @@ class Job:
         return tuple(Weights(probe_setting(self.sample, n)) for n in range(1, number + 1))
 
     def limits(
-        self, *, probes: int, terms: int | None = None, always_probe: bool = False, crew: Crew | None = None
+        self,
+        *,
+        probes: int,
+        terms: int | None = None,
+        always_probe: bool = False,
+        crew: Crew | None = None,
+        certify: bool = False,
     ) -> Iterator[Found]:
         """The limits charge by charge, to t^terms; computed here, or in chunks by a crew: they do not depend on which.
 
-        Raises ``InputError`` for terms of a case with symbols.
+        A short cut is taken in this process, all charges at once; ``certify`` makes it prove what it found.
+        Raises ``InputError`` for terms of a case with symbols, or a crew for it.
         """
         last = checked_terms(terms)
         if self.functions is not None and terms is not None:
             message = "the expansion in t belongs to a case without symbols; give numbers for them"
             raise InputError.single(message, "terms")
+        if self.functions is not None and crew is not None:
+            message = "a case with symbols is not cut into parts for workers or a file of finished parts"
+            raise InputError.single(message, "symbols")
         further = self.probes(probes)
+        if self.way.short_cut:
+            done = short_cut(self.way, self.case, self.setting, certify=certify)
+            for charge, value in zip(self.case.charges, done.values, strict=True):
+                yield ShortLimit(charge, value, done)
+            return
         if crew is not None:
             chunks = cut(self.case, self.setting, last=last, probes=probes, always_probe=always_probe)
             yield from charge_limits(self.setting, [p.setting for p in further], chunks, crew.results(chunks))
@@ -147,9 +181,7 @@ class Job:
     def scans(self, *, exchanges: int = 0) -> Iterator[ChargeReport]:
         """The detector's reports charge by charge; exchange edges in clusters of at most ``exchanges`` members."""
         for charge in self.case.charges:
-            found = tuple(scan(self.weights, charge))
-            yield _charge_report(self.weights, charge, found, exchanges)
-
+            yield charge_report(self.weights, charge, exchanges=exchanges)
 
     def crew(
         self,
@@ -175,6 +207,16 @@ class Job:
         else:
             hands = ThisProcess() if workers is None else OwnPool(workers)
         return Crew(hands, store)
+
+
+def _check_count(case: Case, most: int) -> None:
+    count = count_all(case.theory.ranks, case.charge)
+    if count > most:
+        raise InputError.single(
+            f"{count} configurations up to this charge, more than the limit of {most}; "
+            "lower the charge or raise the limit (--most-configurations, most_configurations=)",
+            "charge",
+        )
 
 
 def _is_whole(value: object) -> bool:
@@ -210,6 +252,8 @@ def limit(
     workers: int | None = None,
     executor: Executor | None = None,
     keep: str | os.PathLike[str] | None = None,
+    route: str = "auto",
+    certify: bool = False,
 ) -> LimitResult:
     """The exact limit of every coefficient of Z up to the case's charge, with its certificate.
 
@@ -222,7 +266,12 @@ def limit(
     names a file in which finished parts are kept, so that a run which was ended goes on from there. The result is the
     same with all of them. Raises ``WorkerError`` when workers or executor fail for good.
 
-    Cost: one pass over all configurations, and one more for every further path where paths are probed.
+    ``route`` is "direct" (the sum over diagrams), "poles" (the recursion of U(2)) or "auto", a fixed rule on the case;
+    ``result.route`` says which way was taken. Coefficients put together from residues say so, with the spare bits that
+    confirm them; ``certify`` takes so many primes that a proved bound leaves no other answer.
+
+    Cost: one pass over all configurations, and one more for every further path where paths are probed; far less on
+    the short cuts.
 
     >>> result = limit({"charge": 2, "background": {"eps1": 1, "eps2": -1}, "node": [{"coulomb": ["0"]}]})
     >>> [str(c.value) for c in result]            # exp(q/(eps1 eps2)) = exp(-q)
@@ -234,10 +283,16 @@ def limit(
     >>> str(limit(case)[1].value)
     '-1/(2*(a + 1)*(a - 1))'
     """
-    job = Job.prepare(source, allow_tilt=allow_tilt, most_configurations=most_configurations)
+    job = Job.prepare(
+        source,
+        allow_tilt=allow_tilt,
+        most_configurations=most_configurations,
+        route=route,
+        clusterwise=terms is not None,
+    )
     found = []
     with job.crew(workers=workers, executor=executor, keep=keep) or nullcontext() as crew:
-        for one in job.limits(probes=probes, terms=terms, crew=crew):
+        for one in job.limits(probes=probes, terms=terms, crew=crew, certify=certify):
             found.append(one)
             if watch is not None:
                 watch(one.charge)
@@ -254,13 +309,26 @@ def checked_terms(terms: int | None) -> int:
 
 def limit_result(job: Job, found: Sequence[Found], *, terms: int | None = None, partial: bool = False) -> LimitResult:
     """The result of the charges found so far."""
+    short = [one for one in found if isinstance(one, ShortLimit)]
+    if job.way.short_cut:
+        checks = short_cut_certificate([one.charge for one in short], job.way.why)
+    else:
+        checks = (*certificate(samples(found)), *_function_checks(job, found))
     coefficients = tuple(_coefficient(one, terms) for one in found)
-    return LimitResult(job.header, coefficients, (*certificate(samples(found)), *_function_checks(job, found)), partial)
+    return LimitResult(job.header, _route_record(job.way, short), coefficients, checks, partial)
+
+
+def _route_record(way: Way, short: Sequence[ShortLimit]) -> RouteRecord:
+    if not short:
+        return RouteRecord(way.route, "exact", way.why, None, 0)
+    evidence = short[0].evidence
+    return RouteRecord(way.route, evidence.method, way.why, evidence.spare_bits, evidence.primes)
 
 
 def samples(found: Sequence[Found]) -> list[ChargeLimit]:
-    """The limits at numbers: the limits themselves, or those at the generic point."""
-    return [one.sample if isinstance(one, SymbolicLimit) else one for one in found]
+    """The limits that were taken cluster by cluster, with symbols those at the generic point."""
+    limits = (one.sample if isinstance(one, SymbolicLimit) else one for one in found)
+    return [one for one in limits if isinstance(one, ChargeLimit)]
 
 
 def _function_checks(job: Job, found: Sequence[Found]) -> tuple[Check, ...]:
@@ -271,8 +339,11 @@ def _function_checks(job: Job, found: Sequence[Found]) -> tuple[Check, ...]:
 def _coefficient(one: Found, terms: int | None) -> Coefficient:
     if isinstance(one, SymbolicLimit):
         return replace(_coefficient(one.sample, None), value=one.found.function)
+    if isinstance(one, ShortLimit):
+        independence = Independence.THEOREM.value
+        return Coefficient(one.charge, "finite", one.value, 0, None, (), independence, None, *(None,) * 6)
     outcome, charge_sum = one.outcome, one.sum
-    independence = None if isinstance(outcome, PathDependent) else outcome.independence
+    proof = None if isinstance(outcome, PathDependent) else outcome.independence
     return Coefficient(
         charge=one.charge,
         status=outcome.status,
@@ -280,7 +351,7 @@ def _coefficient(one: Found, terms: int | None) -> Coefficient:
         order=outcome.order if isinstance(outcome, Pole) else 0,
         leading=outcome.leading if isinstance(outcome, Pole) else None,
         values=() if isinstance(outcome, FiniteLimit) else outcome.values,
-        independence=None if independence is None else independence.value,
+        independence=None if proof is None else proof.value,
         terms=None if terms is None else one.terms(terms),
         configurations=charge_sum.configurations,
         singular=charge_sum.singular,
@@ -361,68 +432,6 @@ def validate_result(job: Job, found: Sequence[Found], *, partial: bool = False) 
     """The checks for the charges found so far; with symbols all but the last are made at the generic point."""
     limits = samples(found)
     checks = [*certificate(limits), check_orders(limits), *check_closed_forms(job.sample, job.setting, limits)]
-    checks += _function_checks(job, found)
+    checks += [*check_recursion(job.sample, limits), *_function_checks(job, found)]
     adjoint = check_adjoint_clusters(job.setting, limits)
     return ValidateResult(job.header, (*checks, adjoint) if adjoint is not None else tuple(checks), partial)
-
-
-# ---- reports of the detector ----
-
-
-def _charge_report(weights: Weights, charge: Charge, found: tuple[Zeros, ...], exchanges: int) -> ChargeReport:
-    grouped = find_clusters(weights, charge, found)
-    guilty = [cluster for cluster in grouped if cluster.singular]
-    index = {member.configuration: n for n, cluster in enumerate(guilty) for member in cluster.members}
-    singular = tuple(_singular_report(weights, zeros, index) for zeros in found if zeros.singular)
-    indeterminate = tuple(_singular_report(weights, zeros, index) for zeros in found if zeros.indeterminate)
-    vanishing = tuple(zeros.configuration for zeros in found if zeros.vanishing)
-    return ChargeReport(
-        charge=charge,
-        configurations=len(found),
-        singular=len(singular),
-        indeterminate=len(indeterminate),
-        vanishing=len(vanishing),
-        worst_order=max((zeros.order for zeros in found if zeros.singular), default=0),
-        all_clusters=len(grouped),
-        clusters=tuple(_cluster_report(cluster, exchanges) for cluster in guilty),
-        singular_configurations=singular,
-        indeterminate_configurations=indeterminate,
-        vanishing_configurations=vanishing,
-    )
-
-
-def _singular_report(weights: Weights, zeros: Zeros, index: dict[Configuration, int]) -> SingularReport:
-    down, up = guilty_factors(weights, zeros.configuration)
-    return SingularReport(
-        zeros.configuration,
-        zeros.order,
-        tuple(_factor_report(f) for f in down),
-        tuple(_factor_report(f) for f in up),
-        index.get(zeros.configuration),
-        zeros.dead,
-    )
-
-
-def _factor_report(f: Factor) -> FactorReport:
-    return FactorReport(f.multiplet, f.place, f.colours, f.box, f.arm, f.leg, f.form, str(f.value))
-
-
-def _cluster_report(cluster: Cluster, exchanges: int) -> ClusterReport:
-    members = tuple(member.configuration for member in cluster.members)
-    edges: tuple[Exchange, ...] | None = None
-    if 0 < len(members) <= exchanges:
-        graph = cluster_graph([cluster], exchanges=True, largest=exchanges)
-        place = {member: n for n, member in enumerate(members)}
-        edges = tuple(_exchange(place[one], place[two], one, two) for one, two in graph.edges)
-    return ClusterReport(
-        cluster.order, members, cluster.dimension, cluster.compactness.compact, cluster.compactness.why, edges
-    )
-
-
-def _exchange(first: int, second: int, one: Configuration, two: Configuration) -> Exchange:
-    if first > second:
-        first, second, one, two = second, first, two, one
-    before, after = tagged_boxes(one), tagged_boxes(two)
-    leaves = tuple((v + 1, c + 1, i, j) for v, c, i, j in sorted(before - after))
-    enters = tuple((v + 1, c + 1, i, j) for v, c, i, j in sorted(after - before))
-    return Exchange((first, second), leaves, enters)

@@ -27,6 +27,7 @@ __all__ = [
     "FactorReport",
     "LimitResult",
     "PathRecord",
+    "RouteRecord",
     "SingularReport",
     "ValidateResult",
 ]
@@ -67,6 +68,7 @@ class Coefficient:
     ``values``, the case's own path first). ``independence`` is "theorem", "agreement" (of probed paths), "undecided"
     (none was probed), or None where paths differ. ``terms`` are (power of t, coefficient) on the own path.
 
+    The counts are None where no weight was looked at, on the short cuts of ``routes``.
     In a case with symbols ``value`` is a ``RationalFunction`` of them, the limit is finite by theorem away from its
     poles, and the counts belong to a generic point.
     """
@@ -79,12 +81,27 @@ class Coefficient:
     values: tuple[PathValue, ...]
     independence: str | None
     terms: tuple[tuple[int, Number], ...] | None
-    configurations: int
-    singular: int
-    indeterminate: int
-    worst_order: int
-    clusters: int
-    singular_clusters: int
+    configurations: int | None
+    singular: int | None
+    indeterminate: int | None
+    worst_order: int | None
+    clusters: int | None
+    singular_clusters: int | None
+
+
+@dataclass(frozen=True, slots=True)
+class RouteRecord:
+    """How the coefficients were found.
+
+    ``route`` is "direct" or "poles". ``method`` is "exact", "residues" (put together from residues modulo ``primes``
+    primes; every coefficient is confirmed by ``spare_bits`` at least), or "proved" (residues beyond a proved bound).
+    """
+
+    route: str
+    method: str
+    why: str
+    spare_bits: int | None
+    primes: int
 
 
 @dataclass(frozen=True, slots=True)
@@ -92,6 +109,7 @@ class LimitResult:
     """The exact coefficients and their certificate. ``partial``: the run was interrupted, finished charges are here."""
 
     header: Header
+    route: RouteRecord
     coefficients: tuple[Coefficient, ...]
     checks: tuple[Check, ...]
     partial: bool = False

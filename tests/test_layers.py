@@ -21,6 +21,7 @@ LAYERS = [
     {"validator"},
     {"symbolic"},
     {"results"},
+    {"reports"},
     {"workers"},
     {"pipeline"},
     {"documents"},

@@ -34,6 +34,7 @@ from ratomega.pipeline import (
     limit_result,
     validate_result,
 )
+from ratomega.regulator.routes import ROUTES
 from ratomega.version import VERSION
 from ratomega.workers.cluster import cluster_hands
 from ratomega.workers.crew import Crew, Progress
@@ -120,9 +121,13 @@ def detect(exchanges: int, as_json: bool, **case_options: Any) -> int:
 @_probes
 @_workers
 @click.option("--terms", type=int, metavar="N", help="Also the expansion in t up to t^N.")
+@click.option("--route", type=click.Choice(ROUTES), default="auto", show_default=True, help="The way to take.")
+@click.option("--certify", is_flag=True, help="Prove what residues gave, by a bound.")
 def limit(
     probes: int,
     terms: int | None,
+    route: str,
+    certify: bool,
     workers: int | None,
     cluster: str | None,
     keep: str | None,
@@ -133,9 +138,11 @@ def limit(
 
     Example: ratomega limit b1-four-flavours --charge 2
     """
-    job = _job(**case_options)
+    job = _job(**case_options, route=route, clusterwise=terms is not None)
     with _crew(job, workers, cluster, keep) as crew:
-        limits = job.limits(probes=probes, terms=terms, crew=crew)
+        if crew is not None and job.way.short_cut:
+            click.echo("note: this route works in one process and keeps no parts", err=True)
+        limits = job.limits(probes=probes, terms=terms, crew=crew, certify=certify)
         found, interrupted = _collect(job, limits, lambda one: one.charge, crew)
     return _finish(limit_result(job, found, terms=terms, partial=interrupted), limit_text, as_json, interrupted)
 
@@ -202,6 +209,8 @@ def _job(
     eps2: str | None,
     no_tilt: bool,
     most_configurations: int,
+    route: str = "direct",
+    clusterwise: bool = True,
 ) -> Job:
     loaded = load_case(case)
     if eps1 is not None or eps2 is not None:
@@ -211,7 +220,13 @@ def _job(
         loaded = case_from_mapping(mapping, where="command line")
     if charge is not None:
         loaded = loaded.with_charge(_charge(charge))
-    return Job.prepare(loaded, allow_tilt=not no_tilt, most_configurations=most_configurations)
+    return Job.prepare(
+        loaded,
+        allow_tilt=not no_tilt,
+        most_configurations=most_configurations,
+        route=route,
+        clusterwise=clusterwise,
+    )
 
 
 def _charge(text: str) -> int | list[int]:

@@ -9,7 +9,16 @@ from ratomega.diagrams.tuples import Charge, Configuration
 from ratomega.exact.function_text import function_text
 from ratomega.exact.quadratic import approximate_text, number_text
 from ratomega.exact.rational_function import RationalFunction
-from ratomega.results import ChargeReport, Coefficient, DetectResult, FactorReport, Header, LimitResult, ValidateResult
+from ratomega.results import (
+    ChargeReport,
+    Coefficient,
+    DetectResult,
+    FactorReport,
+    Header,
+    LimitResult,
+    RouteRecord,
+    ValidateResult,
+)
 from ratomega.validator.verdict import Check
 
 __all__ = ["detect_text", "limit_text", "table", "theory_text", "validate_text"]
@@ -91,7 +100,8 @@ def limit_text(result: LimitResult) -> str:
     head = ["charge", "weights", "singular", "worst order", "singular clusters", "status", "independence"]
     head += ["approx.", "exact"]
     rows = [_limit_row(c) for c in result.coefficients]
-    lines = _heading(result.header, result.partial) + table(head, rows, left=[5, 6, 7, 8])
+    lines = [*_heading(result.header, result.partial)[:-1], _route_line(result.route), ""]
+    lines += table(head, rows, left=[5, 6, 7, 8])
     for c in result.coefficients:
         if c.values:
             lines += ["", f"charge {charge_word(c.charge)}, path by path (the case's own path first)"]
@@ -108,8 +118,18 @@ def limit_text(result: LimitResult) -> str:
     return "\n".join(lines) + "\n"
 
 
+def _route_line(route: RouteRecord) -> str:
+    how = ""
+    if route.method == "residues":
+        how = f"; from residues modulo {route.primes} primes, confirmed by {route.spare_bits} spare bits at least"
+    elif route.method == "proved":
+        how = f"; from residues modulo {route.primes} primes, beyond a proved bound"
+    return f"route    {route.route} ({route.why}){how}"
+
+
 def _limit_row(c: Coefficient) -> list[str]:
-    counts = [str(n) for n in (c.configurations, c.singular, c.worst_order, c.singular_clusters)]
+    known = (c.configurations, c.singular, c.worst_order, c.singular_clusters)
+    counts = ["-" if n is None else str(n) for n in known]
     status = f"pole t^-{c.order}" if c.status == "pole" else c.status
     if isinstance(c.value, RationalFunction):
         function = c.value

@@ -25,7 +25,7 @@ from ratomega.regulator.pole_problem import case_problem
 from ratomega.regulator.poles import pole_coefficients
 from ratomega.weights import Weights
 
-__all__ = ["ROUTES", "Found", "Way", "choose", "point_values", "short_cut"]
+__all__ = ["ROUTES", "ShortCut", "Way", "choose", "point_values", "short_cut"]
 
 ROUTES = ("auto", "direct", "poles")
 # Up to here the sum is done cluster by cluster in about a second, and its certificate looks at every weight.
@@ -44,7 +44,7 @@ class Way:
 
 
 @dataclass(frozen=True, slots=True)
-class Found:
+class ShortCut:
     """Z_0 ... Z_K by a short cut.
 
     ``method`` is "exact", "residues" (confirmed by ``spare_bits`` at least for every coefficient) or "proved" (residues
@@ -94,21 +94,21 @@ def _no_poles(case: Case) -> str:
     return poles_apply(case).reason
 
 
-def short_cut(way: Way, case: Case, setting: Setting, *, certify: bool = False) -> Found:
+def short_cut(way: Way, case: Case, setting: Setting, *, certify: bool = False) -> ShortCut:
     """All coefficients by the short cut of a way. Cost: see ``fast`` and ``poles``."""
     charge = case.bounds[0]
     if way.short_cut == "poles":
         found = pole_coefficients(case_problem(case), charge, certify=certify)
         method = "exact" if not found.primes else "proved" if found.certified else "residues"
-        return Found(found.coefficients, method, found.spare_bits, found.primes)
+        return ShortCut(found.coefficients, method, found.spare_bits, found.primes)
     done = fast_sum(setting, charge, certify=certify)
-    return Found(done.coefficients, "proved" if done.proved else "residues", min(done.spare_bits), done.primes)
+    return ShortCut(done.coefficients, "proved" if done.proved else "residues", min(done.spare_bits), done.primes)
 
 
-def point_values(setting: Setting, charge: int | tuple[int, ...]) -> Callable[[Charge], Rational]:
-    """The limit at every charge within the bound, for a setting without resonances: what interpolation asks for."""
-    if isinstance(charge, int) and worthwhile(setting, charge):
-        coefficients = fast_sum(setting, charge).coefficients
+def point_values(setting: Setting, highest: tuple[int, ...]) -> Callable[[Charge], Rational]:
+    """The limit at every charge within the highest, for a setting without resonances: what interpolation asks for."""
+    if len(highest) == 1 and worthwhile(setting, highest[0]):
+        coefficients = fast_sum(setting, highest[0]).coefficients
         return lambda wanted: coefficients[wanted[0]]
     weights = Weights(setting)
     return lambda wanted: only_rational(direct_total(weights, wanted).coefficient(0))
