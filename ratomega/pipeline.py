@@ -265,9 +265,8 @@ def clusters(
     source: CaseSource, charge: int | Charge, *, exchanges: bool = False, largest: int = 24
 ) -> networkx.Graph:
     """All clusters of one charge as a networkx graph whose connected components are the clusters."""
-    job = Job.prepare(source)
     wanted = (charge,) if isinstance(charge, int) else tuple(charge)
-    job = Job.prepare(job.case.with_charge(list(wanted)))
+    job = Job.prepare(load_case(source).with_charge(list(wanted)))
     found = find_clusters(job.weights, wanted, scan(job.weights, wanted))
     return cluster_graph(found, exchanges=exchanges, largest=largest)
 

@@ -10,7 +10,7 @@ from ratomega.case.setting import Setting
 
 
 def make_case(eps1, eps2, nodes, *, charge=2, edges=()):
-    """A case from text expressions: ``nodes`` are mappings with coulomb, antifundamental, ...; edges (from, to, mass)."""
+    """A case from text expressions: ``nodes`` are mappings with coulomb, ...; edges are (from, to, mass), from 1."""
     mapping = {
         "charge": charge,
         "background": {"eps1": eps1, "eps2": eps2},

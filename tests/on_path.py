@@ -1,7 +1,7 @@
 """From the path that stands beside a result back to a plain theory, without the package's own settings.
 
-A path is read from its text, "3/2 - 2*t/7" and the like; masses keep the expressions of the case and are put on the path
-here once more.
+A path is read from its text, "3/2 - 2*t/7" and the like; masses keep the expressions of the case and are put on the
+path here once more.
 """
 
 from __future__ import annotations

@@ -27,9 +27,8 @@ antifundamental = {antifundamental}
 
 
 def run(*words, cwd=None):
-    done = subprocess.run(
-        [sys.executable, "-m", "ratomega", *words], capture_output=True, text=True, encoding="utf-8", cwd=cwd, check=False
-    )
+    command = [sys.executable, "-m", "ratomega", *words]
+    done = subprocess.run(command, capture_output=True, text=True, encoding="utf-8", cwd=cwd, check=False)
     assert "Traceback" not in done.stderr, done.stderr
     return done
 
@@ -184,7 +183,8 @@ def test_bad_input_is_one_clear_sentence(tmp_path, old, new, said):
 
 
 def test_all_mistakes_at_once(tmp_path):
-    done = bad(tmp_path, GOOD.replace('eps1 = "1"', 'eps1 = "0"').replace('"1/3", "-1/3"', '"1/0", "x"') + "colour = 1\n")
+    text = GOOD.replace('eps1 = "1"', 'eps1 = "0"').replace('"1/3", "-1/3"', '"1/0", "x"')
+    done = bad(tmp_path, text + "colour = 1\n")
     assert len(json.loads(done.stdout)["error"]["all"]) == 4
 
 

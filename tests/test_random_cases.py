@@ -14,7 +14,8 @@ from ratomega.case.setting import own_setting, probe_setting
 # Chosen so that all three outcomes occur among the twenty.
 SEED = 2500
 CASES = 20
-POINTS = [("1", "1"), ("1", "2"), ("2", "1"), ("2", "3"), ("1", "-1"), ("3", "-2"), ("1 + t/2", "-2"), ("-2", "-2 + 3*t")]
+POINTS = [("1", "1"), ("1", "2"), ("2", "1"), ("2", "3"), ("1", "-1"), ("3", "-2")]
+POINTS += [("1 + t/2", "-2"), ("-2", "-2 + 3*t")]
 
 
 def random_number(dice: Random) -> str:

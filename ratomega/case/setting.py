@@ -12,8 +12,10 @@ from __future__ import annotations
 import hashlib
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
-from itertools import combinations
+from itertools import combinations, count
+from math import isqrt
 
+from ratomega.case.affine import Affine
 from ratomega.case.case import Case
 from ratomega.errors import PathError
 from ratomega.exact.path import Linear, integer_combination, leaves_the_ratio
@@ -22,9 +24,9 @@ from ratomega.exact.rational import ZERO, Rational
 
 __all__ = ["NodeSetting", "Setting", "own_setting", "probe_setting"]
 
-# Tilts are fractions over these primes: none of them is an integer, and no two paths share a denominator.
-_PRIMES = (13, 17, 19, 23, 29, 31, 37, 41, 43, 47, 53, 59, 61, 67, 71, 73, 79, 83, 89, 97)
-MOST_PROBES = len(_PRIMES) - 1
+# Further paths beyond these would cost time and add nothing.
+MOST_PROBES = 20
+SMALLEST_PRIME = 13
 
 Tilt = tuple[Rational, ...]
 
@@ -104,15 +106,51 @@ def _numbers(case: Case, purpose: str) -> Iterator[int]:
         counter += 1
 
 
-def _tilt(rank: int, stream: Iterator[int], prime: int) -> Tilt:
-    """A traceless tilt whose entries differ in absolute value, in units of 1/prime."""
+def _prime(number: int, rank: int) -> int:
+    """The denominator of the tilts of path ``number`` (0 is the own one): no two paths share one.
+
+    The primes begin above 2 rank^2, so that drawn residues are mostly distinct.
+    """
+    candidate = max(SMALLEST_PRIME, 2 * rank * rank + 1)
     while True:
-        steps = [1 + (256 * next(stream) + next(stream)) % (prime * (rank + 1)) for _ in range(rank - 1)]
-        last = -sum(steps)
-        sizes = {abs(s) for s in [*steps, last]}
-        # For two colours the entries are s and -s by force; for more no two may agree, up to sign.
-        if (rank == 2 or len(sizes) == rank) and all(s % prime for s in [*steps, last]):
-            return tuple(Rational(s, prime) for s in [*steps, last])
+        if all(candidate % d for d in range(2, isqrt(candidate) + 1)):
+            if number == 0:
+                return candidate
+            number -= 1
+        candidate += 1
+
+
+def _path_number(number: int, attempt: int) -> int:
+    """The same number for the first attempts, then larger primes: a prime can be swallowed by the numbers of a case.
+
+    With eps2 = 1 + t/13, say, every multiple of t/13 is on the lattice.
+    """
+    return number + (MOST_PROBES + 1) * (attempt // 4)
+
+
+def _tilt(rank: int, stream: Iterator[int], prime: int) -> Tilt:
+    """A traceless tilt in units of 1/prime; no entry and no difference is an integer, no two agree up to sign."""
+    while True:
+        steps = [1 + (256 * next(stream) + next(stream)) % (2 * prime) for _ in range(rank - 1)]
+        entries = [*steps, -sum(steps)]
+        residues = {s % prime for s in entries}
+        # For two colours the entries are s and -s by force.
+        sizes = {abs(s) for s in entries}
+        if len(residues) == rank and 0 not in residues and (rank == 2 or len(sizes) == rank):
+            return tuple(Rational(s, prime) for s in entries)
+
+
+def _tilts(ranks: dict[str, int], stream: Iterator[int], number: int) -> dict[str, Tilt]:
+    """Tilts by node name; no entry of one node is, up to sign, an entry of another."""
+    tilts: dict[str, Tilt] = {}
+    taken: set[Rational] = set()
+    for name, rank in ranks.items():
+        tilt = _tilt(rank, stream, _prime(number, rank))
+        while taken.intersection(abs(s) for s in tilt):
+            tilt = _tilt(rank, stream, _prime(number, rank))
+        tilts[name] = tilt
+        taken.update(abs(s) for s in tilt)
+    return tilts
 
 
 def own_setting(case: Case, *, allow_tilt: bool = True) -> Setting:
@@ -127,9 +165,9 @@ def own_setting(case: Case, *, allow_tilt: bool = True) -> Setting:
         return setting
     stream = _numbers(case, "tilt")
     names = sorted({setting.nodes[index].name for index, *_ in frozen})
-    ranks = {node.name: node.rank for node in setting.nodes}
-    while True:
-        tilted = _settle(case, eps1, eps2, {name: _tilt(ranks[name], stream, _PRIMES[0]) for name in names})
+    ranks = {node.name: node.rank for node in setting.nodes if node.name in names}
+    for attempt in count():
+        tilted = _settle(case, eps1, eps2, _tilts(ranks, stream, _path_number(0, attempt)))
         if not any(frozen_pairs(tilted)):
             break
     if not allow_tilt:
@@ -142,9 +180,11 @@ def _needs_tilt(setting: Setting, tilted: Setting, first: tuple[int, int, int, t
     node = setting.nodes[index]
     cure = next(node for node in tilted.nodes if node.name == setting.nodes[index].name)
     difference = f"a{alpha + 1} - a{beta + 1}"
+    lattice = Affine(eps1=Rational(m), eps2=Rational(n))
+    form = difference if m == n == 0 else f"{difference} - ({lattice})"
     return PathError.single(
-        f"{difference} is {m}*eps1 + {n}*eps2 all along the path, so the vector factor "
-        f"{difference} - ({m})*eps1 - ({n})*eps2 of colours {alpha + 1}, {beta + 1} vanishes identically; "
+        f"{difference} is {lattice} all along the path, so the vector factor "
+        f"{form} of colours {alpha + 1}, {beta + 1} vanishes identically; "
         f"the tilt coulomb = [{', '.join(chr(34) + str(a) + chr(34) for a in cure.coulomb)}] would cure it",
         f"node {node.name}",
     )
@@ -157,18 +197,20 @@ def probe_setting(case: Case, number: int) -> Setting:
     """
     if not 1 <= number <= MOST_PROBES:
         raise ValueError(f"probe number {number} is not between 1 and {MOST_PROBES}")
-    prime = _PRIMES[number]
     stream = _numbers(case, f"probe {number}")
     own = case.background
-    while True:
+    ranks = {node.name: node.rank for node in case.theory.nodes if node.rank > 1}
+    for attempt in count():
+        path = _path_number(number, attempt)
+        prime = _prime(path, 1)
         slopes = [Rational(1 + next(stream) % prime, prime) for _ in range(2)]
         eps1, eps2 = Linear(own.eps1.constant, slopes[0]), Linear(own.eps2.constant, slopes[1])
         if not leaves_the_ratio(eps1, eps2):
             continue
-        tilts = {node.name: _tilt(node.rank, stream, prime) for node in case.theory.nodes if node.rank > 1}
-        setting = _settle(case, eps1, eps2, tilts)
+        setting = _settle(case, eps1, eps2, _tilts(ranks, stream, path))
         if not any(frozen_pairs(setting)):
             return setting
+    raise AssertionError("unreachable: only finitely many primes divide the numbers of a case")
 
 
 def resonances(setting: Setting, charge: Sequence[int]) -> Iterator[tuple[int, int, int, int, int]]:

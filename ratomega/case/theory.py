@@ -21,6 +21,8 @@ __all__ = ["HIGHEST_RANK", "MOST_EDGES", "MOST_MASSES", "MOST_NODES", "Edge", "N
 # Bounds on what is taken on: far beyond every sum that can be done, small enough to be read at once.
 MOST_NODES = 16
 HIGHEST_RANK = 64
+# Over all nodes: the work at charge 1 already grows like the square of this.
+MOST_COLOURS = 128
 MOST_MASSES = 256
 MOST_EDGES = 256
 LONGEST_NAME = 64
@@ -148,6 +150,10 @@ def _bad_nodes(nodes: list[Node]) -> Iterator[Problem]:
         yield Problem("a theory needs at least one gauge node", "node")
     if len(nodes) > MOST_NODES:
         yield Problem(f"a quiver has at most {MOST_NODES} nodes", "node")
+        return
+    colours = sum(node.rank for node in nodes)
+    if colours > MOST_COLOURS:
+        yield Problem(f"a quiver has at most {MOST_COLOURS} Coulomb parameters in all, not {colours}", "node")
         return
     first: dict[str, int] = {}
     for number, node in enumerate(nodes, 1):

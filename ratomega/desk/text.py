@@ -88,7 +88,8 @@ def _checks(checks: Iterable[Check]) -> list[str]:
 
 def limit_text(result: LimitResult) -> str:
     """The coefficients, the paths where they matter, and the certificate."""
-    head = ["charge", "weights", "singular", "worst order", "singular clusters", "status", "independence", "approx.", "exact"]
+    head = ["charge", "weights", "singular", "worst order", "singular clusters", "status", "independence"]
+    head += ["approx.", "exact"]
     rows = [_limit_row(c) for c in result.coefficients]
     lines = _heading(result.header, result.partial) + table(head, rows, left=[5, 6, 7, 8])
     for c in result.coefficients:
@@ -136,7 +137,8 @@ VERDICTS = ("proved", "agrees", "refuted", "undecided")
 
 def detect_text(result: DetectResult) -> str:
     """The counts of every charge, then the clusters and the guilty factors."""
-    head = ["charge", "weights", "singular", "indeterminate", "vanishing", "worst order", "clusters", "singular clusters"]
+    head = ["charge", "weights", "singular", "indeterminate", "vanishing", "worst order", "clusters"]
+    head += ["singular clusters"]
     rows = [
         [
             charge_word(c.charge),

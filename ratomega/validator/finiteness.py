@@ -65,7 +65,8 @@ def check_cancellation(limits: Sequence[ChargeLimit]) -> Check:
         if not limit.is_compact(c) and c.series.valuation < 0
     )
     note = f"; {loose} non-compact clusters cancel only against each other" if loose else ""
-    evidence = f"{singular} singular weights in {clusters} clusters; every negative power of t cancels exactly{note}"
+    found = f"{singular} singular weights in {clusters} clusters" if singular else "no single weight is singular"
+    evidence = f"{found}; every negative power of t cancels exactly{note}" if singular else f"{found}{note}"
     return Check(CANCELLATION, Verdict.PROVED, Kind.THEOREM, evidence, "exact cancellation in the Laurent expansion")
 
 

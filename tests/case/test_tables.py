@@ -25,6 +25,15 @@ def refusal(work, *arguments):
     return problem
 
 
+def places(work, *arguments):
+    """Where the mistakes are; none when there is no mistake. Anything but ``InputError`` goes through."""
+    try:
+        work(*arguments)
+    except InputError as error:
+        return [problem.where for problem in error.problems]
+    return []
+
+
 @pytest.mark.parametrize(
     ("text", "where", "said"),
     [
@@ -59,14 +68,9 @@ def test_a_plain_syntax_error_is_not_blamed_on_a_fraction():
     assert "quoted" not in refusal(toml_tables, "x = 1 # 3/2\ny 2", "demo.toml").message
 
 
-# Each of these once cost a plain TOML reader, or a careless search, time or memory quadratic in its length, or the
-# stack, or a plain ValueError from Python's limit on digits.
+# Each of these costs a careless reader or a careless search for hints time quadratic in the length, or the stack, or
+# a plain ValueError from Python's limit on digits.
 HOSTILE = {
-    "dots in a key": "a." * (SIZE // 2) + "a = 1",
-    "dots in a header": "[" + "a." * (SIZE // 2) + "a]",
-    "dots between quoted parts": '"a".' * (SIZE // 4) + "a = 1",
-    "dots between quoted quotes": '"\\"".' * (SIZE // 5) + "a = 1",
-    "dots in an inline table": "a = {" + "a." * (SIZE // 2) + "a = 1}",
     "nested lists": "a = " + "[" * SIZE,
     "nested tables": "a = " + "{a=" * (SIZE // 3),
     "digits": "a = " + "1" * SIZE,
@@ -90,11 +94,22 @@ def test_hostile_text_is_refused(text):
     refusal(toml_tables, text, "demo.toml")
 
 
+FORMS = ["{}a = 1", "[{}a]", "[[{} a ]]", "b = 1 # c\n{}a = 1", "x = {{{}a = 1}}", "x = [{{ {}a = 1}}]"]
+
+
+@pytest.mark.parametrize("part", ["a", '"a"', "'a'", '"\\""', "' '"])
+@pytest.mark.parametrize("form", FORMS)
+def test_keys_of_many_parts_are_refused_unread(part, form):
+    # Few parts here: a reader without the bound would take them, and time quadratic in many.
+    assert "at most 16 parts" in refusal(toml_tables, form.format(f"{part} . " * 40), "demo.toml").message
+
+
 def test_dots_outside_keys_do_no_harm():
     numbers = ", ".join(['"0.5"'] * 50)
-    text = f'title = "{"a." * 50}"  # {"a." * 50}\nx = [{numbers}]\ny = [1.5, {"2.5, " * 50}]\nz.y.x = """\n{"b." * 50}"""\n'
+    dots, bare = "a." * 50, "2.5, " * 50
+    text = f'title = "{dots}"  # {dots}\nx = [{numbers}]\ny = [1.5, {bare}]\nz.y.x = """\n{dots}"""\n'
     read = toml_tables(text, "demo.toml")
-    assert (len(read["x"]), len(read["y"]), read["z"]["y"]["x"]) == (50, 51, "b." * 50)
+    assert (len(read["x"]), len(read["y"]), read["z"]["y"]["x"]) == (50, 51, dots)
 
 
 GOOD = bundled_text("b1-four-flavours").encode()
@@ -175,7 +190,7 @@ def test_size_is_bounded_where_it_is_said(tmp_path):
     assert len(text_of_file(str(written(tmp_path, b"#" * LARGEST_FILE)))) == LARGEST_FILE
 
 
-@pytest.mark.parametrize("name", ["b1-four-flavour", "u2-puer", "no such case", "", "../b1-four-flavours", "a\nb", "\0"])
+@pytest.mark.parametrize("name", ["b1-four-flavour", "no such case", "", "../b1-four-flavours", "a\nb", "\0"])
 def test_an_unknown_name(name):
     problem = refusal(load_case, name)
     assert "neither a file nor a bundled case" in problem.message
@@ -207,16 +222,11 @@ def test_damaged_files_are_read_or_refused(tmp_path_factory, damage):
         data = data[:start] + new + data[start + length :]
     path = tmp_path_factory.getbasetemp() / "damaged.toml"
     path.write_bytes(data)
-    try:
-        load_case(path)
-    except InputError as error:
-        assert all(problem.where.startswith("damaged.toml") for problem in error.problems)
+    wheres = places(load_case, path)
+    assert all(where.startswith("damaged.toml") for where in wheres)
 
 
 @settings(deadline=None, max_examples=200)
 @given(st.text(max_size=80) | st.text(alphabet="ab=[]{}.,\"'#\n\\ 1/t", max_size=80))
 def test_any_text_is_toml_or_refused(text):
-    try:
-        assert isinstance(toml_tables(text, "demo.toml"), dict)
-    except InputError as error:
-        assert error.problems[0].where.startswith("demo.toml")
+    assert all(where.startswith("demo.toml") for where in places(toml_tables, text, "demo.toml"))

@@ -91,8 +91,18 @@ def test_the_path_may_move_everything() -> None:
 # ---- clusters alone
 
 
-@pytest.mark.parametrize("entry", census(), ids=str)
+@pytest.mark.parametrize("entry", census(matter=["none", "flavours", "cutting"]), ids=str)
 def test_compact_clusters_are_finite_and_independent_of_the_path(entry: Entry) -> None:
+    check_compact_clusters(entry)
+
+
+@pytest.mark.long
+@pytest.mark.parametrize("entry", census(matter=["adjoint", "soft adjoint"]), ids=str)
+def test_compact_clusters_with_adjoints(entry: Entry) -> None:
+    check_compact_clusters(entry)
+
+
+def check_compact_clusters(entry: Entry) -> None:
     paths = (entry.weights, *entry.probes)
     for k in range(entry.top + 1):
         for cluster in find_clusters(entry.weights, (k,), scan(entry.weights, (k,))):
@@ -121,7 +131,7 @@ def test_a_soft_adjoint_counts_the_members_of_each_cluster(ratio, eps, mass) -> 
     assert uneven or ratio == "-1"
 
 
-@pytest.mark.parametrize("entry", census(ranks=(2, 3), matter=["none", "cutting"]), ids=str)
+@pytest.mark.parametrize("entry", census(ranks=(2,), matter=["none", "cutting"]), ids=str)
 def test_counts_on_the_way(entry: Entry) -> None:
     """The counts of the sum are those of the plain factors, cluster by cluster."""
     for k in range(min(entry.top, 4) + 1):
