@@ -38,7 +38,8 @@ class Run:
     answer: str
 
     def text(self, name: str) -> str:
-        return f"{name:<12}{self.seconds:8.1f} s elapsed; processor time {self.there:.1f} s in workers, {self.here:.1f} s here"
+        spent = f"{self.there:.1f} s in workers, {self.here:.1f} s here"
+        return f"{name:<12}{self.seconds:8.1f} s elapsed; processor time {spent}"
 
 
 def processor_time(who: int) -> float:
