@@ -21,7 +21,7 @@ from ratomega.workers.charges import cut
 
 CASE = {
     "title": "two colours, two flavours, resonant",
-    "charge": 14,
+    "charge": 15,
     "background": {"eps1": "1", "eps2": "1"},
     "node": [{"coulomb": ["1", "-1"], "antifundamental": ["1/2", "1/5"]}],
 }

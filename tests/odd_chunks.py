@@ -82,6 +82,15 @@ class Deadly(Marked):
 
 
 @dataclass(frozen=True)
+class Interrupted(Marked):
+    """Ctrl-C reaches its worker in the middle."""
+
+    def run(self) -> str:
+        os.kill(os.getpid(), signal.SIGINT)
+        return super().run()
+
+
+@dataclass(frozen=True)
 class Wrong(Marked):
     """Has an error."""
 

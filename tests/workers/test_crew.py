@@ -10,7 +10,7 @@ import time
 from concurrent.futures import CancelledError, Executor, Future, ProcessPoolExecutor, ThreadPoolExecutor
 
 import pytest
-from odd_chunks import Deadly, Held, Marked, Patient, Surroundings, Wrong, traces
+from odd_chunks import Deadly, Held, Interrupted, Marked, Patient, Surroundings, Wrong, traces
 
 import ratomega
 from ratomega.errors import WorkerError
@@ -109,6 +109,13 @@ def test_a_worker_that_dies_idle_costs_nothing(folder):
         found += results
     assert found == expected(chunks)
     assert [name for _, name in traces(folder)] == [chunk.name for chunk in chunks]
+
+
+def test_workers_leave_ctrl_c_to_us(folder):
+    """A terminal sends it to them too; what is in hand is then for us to finish or to give up."""
+    chunks = marked(folder, 2, Interrupted)
+    with Crew(OwnPool(1)) as crew:
+        assert list(crew.results(chunks)) == expected(chunks)
 
 
 def test_a_chunk_that_always_kills_ends_in_an_error(folder):

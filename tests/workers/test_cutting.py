@@ -16,8 +16,9 @@ from census import census
 import ratomega
 from ratomega.diagrams.tuples import count_configurations
 from ratomega.errors import InputError, PathError, Problem, WorkerError
+from ratomega.exact.laurent import Laurent
 from ratomega.pipeline import Job
-from ratomega.regulator.direct import direct_sum, merged
+from ratomega.regulator.direct import ChargeSum, ClusterSum, direct_sum, merged
 from ratomega.weights import Weights
 from ratomega.workers import charges
 from ratomega.workers.charges import SumChunk, charge_limits, cut
@@ -125,6 +126,19 @@ def test_parts_of_the_census_merge_exactly(entry):
         found = merged(sums)
         assert found == whole
         assert list(found.clusters) == list(whole.clusters)
+
+
+def test_clusters_that_are_uneven_stay_so():
+    """There are none among the sums, by a theorem; the certificate checks it, so that merging must not hide one."""
+    series = Laurent.from_coefficients(-1, [1, 2], precision=1)
+    one = ClusterSum(3, 2, 1, 2, None, series)
+    two = ClusterSum(4, 1, 0, 1, False, series)
+    parts = [ChargeSum((2,), series, {((0, 1),): cluster}, 5, 2, 1, 2) for cluster in (one, two)]
+    for order in (parts, parts[::-1]):
+        found = merged(order)
+        assert found.clusters == {((0, 1),): ClusterSum(7, 2, 0, 3, False, series + series)}
+        assert (found.configurations, found.singular, found.indeterminate, found.worst_order) == (10, 4, 2, 2)
+        assert found.series == series + series
 
 
 # ---- what is refused
