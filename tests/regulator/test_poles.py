@@ -89,9 +89,9 @@ def test_units_scale_out(unit, matter):
 @pytest.mark.parametrize("ratio", [(1, 1), (1, 2), (1, -1), (3, -2)], ids=str)
 def test_primes_exact_series_and_certified_bound_agree(ratio, matter):
     problem = problem_of(ratio, matter)
-    exact = pole_coefficients(problem, 11, exact=True)
-    primes = pole_coefficients(problem, 11, exact=False)
-    bound = pole_coefficients(problem, 11, exact=False, certify=True)
+    exact = pole_coefficients(problem, 9, exact=True)
+    primes = pole_coefficients(problem, 9, exact=False)
+    bound = pole_coefficients(problem, 9, exact=False, certify=True)
     assert exact.coefficients == primes.coefficients == bound.coefficients
     assert exact.regular == primes.regular == bound.regular
     assert {e.kind for e in exact.evidence} == {"exact"}
@@ -201,13 +201,13 @@ def test_truncation_to_a_hypergeometric_series(ratio):
     a1, a2, m1, m2 = fmpq(2, 7), fmpq(-3, 11), fmpq(1, 3), fmpq(4, 5)
     x, y, z = (a1 + m1) / e2, (a1 + m2) / e2, 1 + (a1 - a2 + e1) / e2
     expected = [fmpq(1)]
-    for k in range(24):
+    for k in range(16):
         expected.append(expected[-1] * (x + k) * (y + k) / ((z + k) * (k + 1)))
     problem = gauge_problem(e1, e2, (a1, a2), antifundamental=[-a1 - e1, -a2, m1, m2])
-    assert list(pole_coefficients(problem, 24).coefficients) == expected
+    assert list(pole_coefficients(problem, 16).coefficients) == expected
     # The same theory with two of the masses as fundamentals: antifundamental m is fundamental eps - m.
     mixed = gauge_problem(e1, e2, (a1, a2), antifundamental=[-a2, m1], fundamental=[e1 + e2 - m2, e1 + e2 + a1 + e1])
-    assert list(pole_coefficients(mixed, 24).coefficients) == expected
+    assert list(pole_coefficients(mixed, 9).coefficients) == expected[:10]
 
 
 def painleve_three_sides(s, length):
