@@ -67,7 +67,7 @@ def test_flint_is_imported_in_exact_alone(path):
 
 
 def reached(start):
-    """Every module of the package that ``start`` imports, directly or not."""
+    """Every file of the package that ``start`` imports, directly or not."""
     found, todo = set(), [start]
     while todo:
         for name in imported(todo.pop()):
@@ -78,12 +78,29 @@ def reached(start):
             if path not in found:
                 found.add(path)
                 todo.append(path)
-    return {room(path) for path in found}
+    return found
 
 
 @pytest.mark.parametrize("path", sorted(ROOT.glob("validator/closed_forms*.py")), ids=lambda p: p.name)
 def test_closed_forms_share_no_code_with_the_sum(path):
-    assert not reached(path) & {"weights", "detector", "regulator", "pipeline"}
+    rooms = {room(found) for found in reached(path)}
+    assert not rooms & {"weights", "detector", "regulator", "pipeline"}
+
+
+POLE_ROUTE = sorted(ROOT.glob("regulator/pole*.py"))
+SUMS = [ROOT / "regulator" / "direct.py", *sorted(ROOT.glob("regulator/fast*.py"))]
+
+
+@pytest.mark.parametrize("path", POLE_ROUTE, ids=lambda p: p.name)
+def test_the_recursion_shares_no_code_with_the_sums(path):
+    found = reached(path)
+    assert not {room(other) for other in found} & {"weights", "detector"}
+    assert not found & set(SUMS)
+
+
+@pytest.mark.parametrize("path", SUMS, ids=lambda p: p.name)
+def test_the_sums_share_no_code_with_the_recursion(path):
+    assert not reached(path) & set(POLE_ROUTE)
 
 
 def test_the_plain_reference_imports_nothing_from_the_package():
