@@ -68,7 +68,7 @@ def test_certify_proves_what_residues_gave():
 @pytest.mark.parametrize(
     ("case", "route", "options", "way"),
     [
-        (u2("1", charge=8), "auto", {}, ("direct", "")),
+        (u2("1", charge=10), "auto", {}, ("direct", "")),
         (u2("1", charge=14), "auto", {}, ("poles", "poles")),
         (u2("1", charge=14), "direct", {}, ("direct", "fast")),
         (u2("1", charge=14), "auto", {"clusterwise": True}, ("direct", "")),

@@ -28,8 +28,8 @@ from ratomega.weights import Weights
 __all__ = ["ROUTES", "ShortCut", "Way", "choose", "point_values", "short_cut"]
 
 ROUTES = ("auto", "direct", "poles")
-# Up to here the sum is done cluster by cluster in about a second, and its certificate looks at every weight.
-CLUSTERWISE = 5_000
+# Up to here the sum is done cluster by cluster in a fraction of a second, and its certificate looks at every weight.
+CLUSTERWISE = 1_500
 # Beyond this charge the recursion takes many minutes and gigabytes.
 HIGHEST_POLE_CHARGE = 150
 
