@@ -22,6 +22,7 @@ __all__ = ["function_text", "parse_function"]
 DEEPEST_NESTING = 50
 HIGHEST_DEGREE = 4000
 MOST_TERMS = 200_000
+MOST_BITS = 10_000_000
 
 _TOKEN = re.compile(
     r"\s*(?:(?P<integer>[0-9]+)|(?P<name>[A-Za-z_][A-Za-z0-9_]*)|(?P<sign>\*\*|[-+*/()])|(?P<other>\S))"
@@ -95,6 +96,8 @@ class _Parser:
             if kind != "integer" or len(text) > 5 or _degree(result) == 0:
                 raise self.mistake()
             self.room(_degree(result) * int(text))
+            if _bits(result) * int(text) > MOST_BITS:
+                raise ValueError(f'"{self.shown}" is a rational function with too long numbers')
             result = result ** int(text)
         return -result if negative else result
 
@@ -123,6 +126,11 @@ class _Parser:
         count = len(self.symbols)
         if degree > HIGHEST_DEGREE or math.comb(degree + count, count) > MOST_TERMS:
             raise ValueError(f'"{self.shown}" is a rational function of too high a degree')
+
+
+def _bits(value: RationalFunction) -> int:
+    """The length of the longest coefficient."""
+    return max((int(c).bit_length() for part in (value.numerator, value.denominator) for c in part.coeffs()), default=0)
 
 
 def _degree(value: RationalFunction) -> int:

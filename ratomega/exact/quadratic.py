@@ -170,8 +170,8 @@ def square_root(d: int, where: str = "") -> Quadratic:
     ratomega.errors.InputError: sqrt(8): 8 is not squarefree; write 2*sqrt(2)
     """
     if abs(d) > LARGEST_RADICAND:
-        shown = f"{str(d)[:12]}..." if len(str(d)) > 20 else str(d)
-        raise InputError.single(f"sqrt({shown}): numbers under a root go up to {LARGEST_RADICAND}", where)
+        # Not shown: Python refuses to write very long integers.
+        raise InputError.single(f"numbers under a root go up to {LARGEST_RADICAND}", where)
     if d == 0:
         raise InputError.single("sqrt(0) is 0; write 0", where)
     root, rest = split_square(d)

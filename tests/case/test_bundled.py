@@ -8,7 +8,7 @@ from math import factorial
 import plain
 import pytest
 import sympy
-from building import plain_theory
+from building import plain_number, plain_theory
 
 import ratomega
 from ratomega.case.bundled import bundled_names, bundled_text
@@ -62,7 +62,8 @@ def test_no_two_are_the_same_theory():
 @pytest.mark.parametrize("name", NAMES)
 def test_the_engine_agrees_with_the_plain_reference(name):
     case = load_case(name)
-    theory = plain_theory(own_setting(case))
+    point = {symbol: f"{n}/23" for n, symbol in enumerate(case.symbols, 7)}
+    theory = plain_theory(own_setting(case.at(**point)))
     for coefficient in ratomega.limit(case):
         if sum(coefficient.charge) > 4:
             break
@@ -72,6 +73,7 @@ def test_the_engine_agrees_with_the_plain_reference(name):
         else:
             value = coefficient.value if coefficient.status == "finite" else coefficient.values[0].value
             assert set(expected) <= {0}
+            value = value.at(**point) if case.symbols else plain_number(value)
             assert value == expected.get(0, 0)
 
 

@@ -85,6 +85,7 @@ def test_what_is_read(text, constant, eps1, eps2, t):
         ("sqrt(eps1)", "takes the root of eps1"),
         ("sqrt(sqrt(2))", "takes the root of 1*sqrt(2)"),
         ("sqrt(10000000000001)", "numbers under a root go up to"),
+        ("sqrt(" + "*".join(["1e399"] * 100) + ")", "numbers under a root go up to"),
         ("sqrt(2) + sqrt(3)", "sqrt(2) and sqrt(3) occur together"),
         ("i*sqrt(3)", "i and sqrt(3) occur together"),
         ("2i", 'write "2*i"'),
