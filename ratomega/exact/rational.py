@@ -131,7 +131,7 @@ def from_exact_text(text: str) -> Rational:
         raise ValueError(f'"{text[:40]}" is not an exact number "num/den" or "num"')
     bottom = fmpz(match["bottom"] or "1")
     value = fmpq(fmpz(match["top"]), bottom)
-    if value.q != bottom:
+    if value.q != bottom or match["bottom"] == "1":
         raise ValueError(f'"{text[:40]}" is not in lowest terms')
     return value
 

@@ -123,6 +123,13 @@ def test_no_two_of_them_agree():
     assert len({hashed(change) for change in CHANGES} | {hashed()}) == len(CHANGES) + 1
 
 
+def test_each_end_of_an_edge_counts():
+    nodes = [{"name": name, "coulomb": ["1/3"]} for name in "abc"]
+    ends = [(x, y) for x in "abc" for y in "abc"]
+    cases = [BASE | {"node": nodes, "edge": [{"from": x, "to": y, "mass": "1/7"}]} for x, y in ends]
+    assert len({load_case(case).hash for case in cases}) == 9
+
+
 def test_a_loop_and_an_adjoint_are_one_theory():
     looped = json.loads(json.dumps(BASE))
     loops(looped)
