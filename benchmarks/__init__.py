@@ -1,0 +1,1 @@
+"""Benchmarks: one file a question, one command, ratios measured in one run."""
