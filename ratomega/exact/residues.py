@@ -21,7 +21,7 @@ from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 
 import numpy as np
-from flint import fmpz
+from flint import fmpz, fmpz_mat
 from numpy.typing import NDArray
 
 from ratomega.errors import RatomegaError
@@ -233,8 +233,10 @@ def combine(residues: Floats, primes: Sequence[int]) -> tuple[list[int], int]:
     for p in primes:
         cofactor = modulus // p
         weights.append(cofactor * pow(int(cofactor % p), -1, p))
-    columns = residues.T.astype(np.int64).tolist()
-    totals = [sum((w * r for w, r in zip(weights, column, strict=True)), fmpz(0)) for column in columns]
+    if residues.size == 0:
+        return [0] * residues.shape[1], int(modulus)
+    table = fmpz_mat(residues.shape[1], len(primes), residues.T.astype(np.int64).ravel().tolist())
+    totals = (table * fmpz_mat(len(primes), 1, weights)).entries()
     return [int(total % modulus) for total in totals], int(modulus)
 
 

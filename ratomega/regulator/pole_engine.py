@@ -15,21 +15,18 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.lib.stride_tricks import as_strided
 
-from ratomega.exact.rational import Rational
-from ratomega.exact.residues import Floats, Moduli, longest_dot, residues_of
+from ratomega.exact.residues import Floats, Moduli, longest_dot
+from ratomega.regulator.pole_fractions import ConsistencyError, PoleLayout
 from ratomega.regulator.pole_kernel import Kernel
 from ratomega.regulator.pole_lattice import PolePath
 from ratomega.regulator.pole_plan import Windows
+from ratomega.regulator.pole_principal import PrincipalParts
 from ratomega.regulator.pole_problem import PoleProblem
 from ratomega.regulator.pole_residues import ResidueLattice
 from ratomega.regulator.pole_schedule import Group, Schedule, Step
 from ratomega.regulator.pole_scratch import Scratch
 
-__all__ = ["ConsistencyError", "PoleEngine", "PoleSolver"]
-
-
-class ConsistencyError(ArithmeticError):
-    """Singular parts that have to cancel did not: the windows or the arithmetic are at fault."""
+__all__ = ["PoleEngine", "PoleSolver"]
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -38,13 +35,13 @@ class PoleEngine:
 
     lattice: ResidueLattice
     schedule: Schedule
-    square: Rational
+    layout: PoleLayout
 
     @classmethod
     def make(cls, problem: PoleProblem, charge: int) -> PoleEngine:
-        """Exact integer planning; assumes ``problem.pole(charge) is None``."""
+        """Exact integer planning. The Coulomb parameters of the problem do not matter here."""
         lattice = ResidueLattice.make(problem.matter, PolePath.towards(problem.steps), charge)
-        return cls(lattice, Schedule.make(Windows.make(lattice)), problem.square)
+        return cls(lattice, Schedule.make(Windows.make(lattice)), PoleLayout.make(problem.steps, charge))
 
     @property
     def bytes_per_prime(self) -> int:
@@ -60,6 +57,7 @@ class PoleSolver:
         self.engine, self.size = engine, size
         self.schedule, self.windows = engine.schedule, engine.schedule.windows
         self.path = engine.lattice.path
+        self.principal = PrincipalParts(self.windows, engine.layout)
         groups = self.schedule.groups
         deepest = max([g.highest for g in groups], default=0)
         self.length = max(deepest, -int(self.windows.valuation.min(initial=0))) + 3
@@ -75,22 +73,21 @@ class PoleSolver:
         ]
 
     def solve(self, moduli: Moduli) -> Floats:
-        """W_0 ... W_charge modulo every prime: shape (primes, charge + 1).
+        """The coefficients of the partial fractions of W_0 ... W_charge: shape (primes, charge + 1, terms).
 
-        Raises ``BadPrimes`` when a prime divides a denominator, ``ConsistencyError`` when singular parts survive, and
-        ``ValueError`` for a batch of more than ``size`` primes.
+        The constant of W_0, which is 1, is not among them. Raises ``BadPrimes`` when a prime divides a denominator,
+        ``ConsistencyError`` when singular parts survive, and ``ValueError`` for more than ``size`` primes.
         """
         if len(moduli) > self.size:
             raise ValueError(f"this solver takes {self.size} primes at a time, not {len(moduli)}")
         if not self.tables:
-            answer = np.zeros((len(moduli), self.windows.charge + 1))
-            answer[:, 0] = 1.0
-            return answer
+            return np.zeros((len(moduli), self.windows.charge + 1, len(self.engine.layout.powers)))
         strength = self.engine.lattice.series(moduli, self.length)
         for table in self.tables:
             table.fill(moduli, strength)
         self._recursion(moduli)
-        return self._answer(moduli, strength)
+        parts = [(table.group, table.copies[: len(moduli)]) for table in self.tables]
+        return self.principal.residues(moduli, strength, parts)
 
     def _recursion(self, moduli: Moduli) -> None:
         """Fill the copies of V, order by order."""
@@ -112,44 +109,6 @@ class PoleSolver:
             if value[:, cancelled].any():
                 raise ConsistencyError(f"terms below the lower end of a window do not cancel at order {order}")
             self.copies[: len(moduli), target] = value.reshape(len(moduli), -1)[:, source]
-
-    def _answer(self, moduli: Moduli, strength: Floats) -> Floats:
-        """The coefficients of t^0 of W, after those of the next lower power were seen to vanish."""
-        total = np.zeros((len(moduli), self.windows.charge + 1, 2))
-        # With a mirror symmetry odd powers cancel between (m, n) and (n, m) of themselves.
-        lower = -2 if self.path.mirror else -1
-        series = self._final_series(moduli, strength)
-        for table in self.tables:
-            reach = np.arange(table.group.start, table.group.stop)
-            final = np.zeros((len(moduli), len(reach), table.size, 2))
-            for power, weights in ((0, final[..., 0]), (lower, final[..., 1])):
-                place = power - reach
-                good = (place >= 0) & (place < series.shape[1])
-                weights[:, good] = series[:, place[good]][:, :, table.group.columns]
-            total += table.weighted(moduli, final)
-        answer = moduli.reduce(total)
-        if answer[:, :, 1].any():
-            raise ConsistencyError(f"the coefficient of t^{lower} of W does not vanish")
-        answer[:, 0, 0] += 1.0
-        return answer[:, :, 0]
-
-    def _final_series(self, moduli: Moduli, strength: Floats) -> Floats:
-        """2 R_c t^-v / ((m eps1 + n eps2)^2 - square), counted twice where (n, m) is left out."""
-        forms = np.array([self.path.form(*pair) for pair in self.windows.pairs], dtype=np.int64)
-        c, s = forms[:, 0], forms[:, 1]
-        square = residues_of([self.engine.square], moduli)
-        inverse = moduli.inverses(moduli.reduce(moduli.integers(c * c) - square))
-        one = moduli.multiply(moduli.integers(-2 * c * s), inverse)
-        two = moduli.multiply(moduli.integers(-s * s), inverse)
-        series = np.zeros_like(strength)
-        for power in range(series.shape[1]):
-            total = strength[:, power] * inverse
-            if power >= 1:
-                total += one * series[:, power - 1]
-            if power >= 2:
-                total += two * series[:, power - 2]
-            series[:, power] = moduli.reduce(total)
-        return moduli.reduce(series * np.array([1.0 + (self.path.mirror and m != n) for m, n in self.windows.pairs]))
 
 
 def _longest_sum(moduli: Moduli, *, mirror: bool) -> int:
@@ -252,13 +211,3 @@ class _Table:
             end = min(cut + sums.longest, length)
             np.matmul(left[:, :, cut:end], kernel[:, top + cut : top + end, : step.rows], out=product)
             sums.add(step, product, end - cut)
-
-    def weighted(self, moduli: Moduli, final: Floats) -> Floats:
-        """sum over powers and columns of V times ``final`` (primes, powers, columns, kinds), for every order."""
-        primes, orders = len(moduli), self.copies.shape[1]
-        flat, weights = self.copies[:primes].reshape(primes, orders, -1), final.reshape(primes, -1, final.shape[3])
-        total = np.zeros((primes, orders, final.shape[3]))
-        limit = _longest_sum(moduli, mirror=False)
-        for cut in range(0, flat.shape[2], limit):
-            total += moduli.reduce(np.matmul(flat[:, :, cut : cut + limit], weights[:, cut : cut + limit]))
-        return total

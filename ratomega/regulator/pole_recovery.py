@@ -1,4 +1,4 @@
-"""From residues of W back to fractions: by spare bits, or by a proved bound."""
+"""From residues back to fractions: the coefficients of W by spare bits, or W at one point by a proved bound."""
 
 from __future__ import annotations
 
@@ -7,7 +7,7 @@ from math import ceil, floor, lcm, log2
 
 import numpy as np
 
-from ratomega.exact.rational import Rational, common_denominator
+from ratomega.exact.rational import ONE, ZERO, Rational
 from ratomega.exact.residues import (
     PRIME_BITS,
     BadPrimes,
@@ -16,9 +16,11 @@ from ratomega.exact.residues import (
     PrimeSource,
     combine,
     reconstruct,
+    residues_of,
 )
 from ratomega.regulator.pole_bound import ProvedBound
-from ratomega.regulator.pole_engine import ConsistencyError, PoleEngine, PoleSolver
+from ratomega.regulator.pole_engine import PoleEngine, PoleSolver
+from ratomega.regulator.pole_fractions import ConsistencyError, PartialFractions, Term
 from ratomega.regulator.pole_problem import PoleProblem
 
 __all__ = ["Evidence", "Recovery"]
@@ -28,9 +30,9 @@ SPARE_BITS = 45
 BATCH_BYTES = 2**28
 LARGEST_BATCH = 24
 # Sizes of answers grow a little faster than the charge; a few primes cost hardly more than one.
-GROWTH = 1.2
+GROWTH = 1.3
 FEWEST_PRIMES = 4
-# Rounds of further primes between two looks at the proved bound.
+# Rounds of further primes after which the search is given up, if it has not come further meanwhile.
 PATIENCE = 12
 
 
@@ -39,9 +41,9 @@ class Evidence:
     """Why a coefficient is believed.
 
     ``kind`` is "exact" (exact series throughout), "bound" (residues, and a proved bound that leaves one answer) or
-    "residues" (a fraction behind the residues). For the last two ``spare_bits`` tells by how many bits the modulus
-    exceeds what the answer, or for "bound" its proved size, needs; ``confirmed`` is a prime that was not used to find
-    the fraction and agrees with it (None unless ``kind`` is "residues").
+    "residues" (fractions behind residues). For the last two ``spare_bits`` tells by how many bits the modulus exceeds
+    what the longest fraction, or for "bound" the proved size, needs; ``confirmed`` is a prime that was not used to find
+    the fractions and agrees with them (None unless ``kind`` is "residues").
     """
 
     kind: str
@@ -50,110 +52,147 @@ class Evidence:
 
 
 class Recovery:
-    """W_0 ... W_charge of a problem, by as many primes as it takes. ``values`` and ``evidence`` grow together."""
+    """The residues of one problem, by as many primes as it takes."""
 
     def __init__(self, problem: PoleProblem, charge: int) -> None:
         self.problem, self.charge = problem, charge
         engine = PoleEngine.make(problem, charge)
         size = max(1, min(LARGEST_BATCH, BATCH_BYTES // max(1, engine.bytes_per_prime)))
+        self._layout = engine.layout
         self._solver = PoleSolver(engine, size)
         self._source = PrimeSource()
         self.primes: list[int] = []
-        self._residues: list[Floats] = []
-        self.values: list[Rational] = []
-        self.evidence: list[Evidence] = []
 
-    def certify(self) -> None:
-        """Find everything with enough primes for the proved bound: denominators times W are integers of known size."""
+    def values_by_bound(self) -> tuple[list[Rational], list[Evidence]]:
+        """W_0 ... W_charge at the x^2 of the problem, proved: denominators times W are integers of known size."""
         bound = ProvedBound.make(self.problem, self.charge)
+        rows: list[Floats] = []
+        values: list[Rational] = []
+        evidence: list[Evidence] = []
         # One bit for the sign, and one so that the modulus exceeds the bound.
         while (missing := max(bound.bits) + 2 - self._bits()) > 0:
-            self._more(ceil(missing / PRIME_BITS))
-        residues, modulus = combine(np.concatenate(self._residues), self.primes)
+            self._more(ceil(missing / PRIME_BITS), rows, at_square=True)
+        residues, modulus = combine(np.concatenate(rows), self.primes)
         for residue, denominator, size in zip(residues, bound.denominators, bound.bits, strict=True):
             value = residue * int(denominator.p) * pow(int(denominator.q), -1, modulus) % modulus
-            self.values.append(Rational(value if 2 * value < modulus else value - modulus) / denominator)
-            self.evidence.append(Evidence("bound", modulus.bit_length() - 2 - size))
+            values.append(Rational(value if 2 * value < modulus else value - modulus) / denominator)
+            evidence.append(Evidence("bound", modulus.bit_length() - 2 - size))
+        return values, evidence
 
-    def search(self) -> None:
-        """Take primes until every fraction leaves enough bits unused; the last prime only confirms.
+    def functions_by_spare_bits(self) -> tuple[list[PartialFractions], list[Evidence]]:
+        """W_0 ... W_charge as functions of x^2: primes until every coefficient leaves enough bits unused.
 
-        Raises ``ConsistencyError`` when a proved bound says that the fractions should have been found by then.
+        The last prime only confirms. Raises ``ConsistencyError`` when more and more primes bring no further fraction.
         """
-        self._more(FEWEST_PRIMES + self.charge // 2)
-        rounds = 0
+        functions = [PartialFractions(ONE, ())]
+        evidence = [Evidence("exact")]
+        rows: list[Floats] = []
+        denominator, stalled = 1, 0
+        wanted = FEWEST_PRIMES + self.charge // 2
         while True:
-            needed = self._reconstruct()
-            if len(self.values) > self.charge and self._confirm():
-                return
-            rounds += 1
-            if rounds % PATIENCE == 0:
-                self._check_progress()
+            self._more(wanted, rows, at_square=False)
+            known = len(functions)
+            needed, denominator = self._reconstruct(rows, functions, evidence, denominator)
+            if len(functions) > self.charge:
+                wrong = self._refuted(rows[-1][-1], functions)
+                if wrong is None:
+                    confirmed = [Evidence(e.kind, e.spare_bits, self.primes[-1]) for e in evidence[1:]]
+                    return functions, [evidence[0], *confirmed]
+                del functions[wrong:], evidence[wrong:]
+            stalled = stalled + 1 if len(functions) <= known else 0
+            if stalled > PATIENCE:
+                raise ConsistencyError(f"no fraction fits the residues modulo {len(self.primes)} primes")
             # One prime more, because the last one only confirms.
             missing = ceil((needed - self._bits()) / PRIME_BITS) + 1
-            self._more(max(FEWEST_PRIMES, missing))
+            wanted = max(FEWEST_PRIMES, missing, len(self.primes) // 4 if stalled else 0)
 
     def _bits(self) -> int:
         """The product of all primes so far has more bits than this."""
         return floor(sum(log2(p) for p in self.primes) - 1e-6)
 
-    def _more(self, count: int) -> None:
-        """Residues of W modulo ``count`` further primes; bad ones are replaced."""
+    def _more(self, count: int, rows: list[Floats], *, at_square: bool) -> None:
+        """Append residues modulo ``count`` further primes: of all coefficients, or of W at the x^2 of the problem.
+
+        Bad primes are replaced.
+        """
         while count > 0:
             batch = list(self._source.take(min(count, self._solver.size)))
             while batch:
                 try:
-                    residues = self._solver.solve(Moduli.make(batch))
+                    moduli = Moduli.make(batch)
+                    inverse = self._inverse_distances(moduli) if at_square else None
+                    residues = self._solver.solve(moduli)
                 except BadPrimes as bad:
                     batch = [p for p in batch if p not in bad.primes]
                 else:
-                    self._residues.append(residues)
+                    rows.append(residues if inverse is None else self._at_square(moduli, residues, inverse))
                     self.primes += batch
                     count -= len(batch)
                     break
 
-    def _reconstruct(self) -> int:
-        """Find the next fractions, in order, as far as the primes reach. Returns an estimate of the bits for all."""
-        start = len(self.values)
-        residues, modulus = combine(np.concatenate(self._residues)[:-1, start:], self.primes[:-1])
-        common = common_denominator(self.values)
+    def _inverse_distances(self, moduli: Moduli) -> Floats:
+        """1/(S^2 - x^2) for every pole of the layout: shape (primes, squares). Raises ``BadPrimes``."""
+        distances = [Rational(square) - self.problem.square for square in self._layout.squares]
+        return moduli.inverses(residues_of(distances, moduli))
+
+    def _at_square(self, moduli: Moduli, residues: Floats, inverse: Floats) -> Floats:
+        """W_0 ... W_charge at the x^2 of the problem: shape (primes, charge + 1)."""
+        if not self._layout.powers:
+            return np.ones((len(moduli), 1))
+        powers = [inverse]
+        while len(powers) < max(self._layout.powers):
+            powers.append(moduli.multiply(powers[-1], inverse))
+        terms = zip(self._layout.powers, self._layout.places, strict=True)
+        weights = np.stack([powers[power - 1][:, place] for power, place in terms], axis=1)
+        values = moduli.reduce((moduli.multiply(residues, weights[:, None, :])).sum(axis=2))
+        values[:, 0] += 1.0
+        return values
+
+    def _reconstruct(
+        self, rows: list[Floats], functions: list[PartialFractions], evidence: list[Evidence], denominator: int
+    ) -> tuple[int, int]:
+        """Append the next functions, as far as the primes reach, with their evidence.
+
+        ``denominator`` is a common denominator of what is known; coefficients of W_k times it are nearly integers, so
+        that hardly more than their numerators have to fit. Returns an estimate of the bits for all, and the new one.
+        """
         used = 0
-        for order, residue in enumerate(residues, start):
-            # W_k times this is nearly an integer, so that hardly more than the numerator has to fit.
-            helper = common * self._new_factors(order) if order else 1
-            found = reconstruct(residue * helper % modulus, modulus, spare_bits=SPARE_BITS)
-            if found is None:
+        table, keys = np.concatenate(rows)[:-1], self._layout.keys
+        for order in range(len(functions), self.charge + 1):
+            terms = [i for i, born in enumerate(self._layout.born) if born <= order]
+            residues, modulus = combine(table[:, order, terms], self.primes[:-1])
+            helper = denominator * order
+            found: list[Term] = []
+            spare = modulus.bit_length()
+            for index, residue in zip(terms, residues, strict=True):
+                fraction = reconstruct(residue * helper % modulus, modulus, spare_bits=SPARE_BITS)
+                if fraction is None:
+                    break
+                spare = min(spare, fraction.spare_bits)
+                value = fraction.value / helper
+                helper *= int(fraction.value.q)
+                denominator = lcm(denominator, int(value.q))
+                found.append(Term(*keys[index], value))
+            if len(found) < len(terms):
                 break
-            used = modulus.bit_length() - found.spare_bits
-            self.values.append(found.value / helper)
-            self.evidence.append(Evidence("residues", found.spare_bits))
-            common = lcm(common, int(self.values[-1].q))
+            used = modulus.bit_length() - spare
+            functions.append(PartialFractions(ZERO, tuple(term for term in found if term.coefficient != 0)))
+            evidence.append(Evidence("residues", spare))
         # From few fractions nobody looks far ahead.
-        growth: float = min(2.0, (self.charge / max(1, len(self.values))) ** GROWTH)
-        return ceil(used * growth) + SPARE_BITS
+        growth: float = min(2.0, (self.charge / max(1, len(functions))) ** GROWTH)
+        return ceil(used * growth) + SPARE_BITS, denominator
 
-    def _new_factors(self, order: int) -> int:
-        """k alpha beta times the product of (m eps1 + n eps2)^2 - x^2 over m n = k, without denominators."""
-        alpha, beta = self.problem.steps
-        result: int = order * alpha * beta
-        for m in range(1, order + 1):
-            if order % m == 0:
-                factor = (m * alpha + order // m * beta) ** 2 - self.problem.square
-                result *= int(factor.p)
-        return result
-
-    def _confirm(self) -> bool:
-        """Do all fractions agree with the last prime? Those from the first that does not are given up."""
+    def _refuted(self, row: Floats, functions: list[PartialFractions]) -> int | None:
+        """The first function that does not agree with the last prime, which took no part in finding it."""
         prime = self.primes[-1]
-        for order, (value, residue) in enumerate(zip(self.values, self._residues[-1][-1], strict=True)):
-            if (value.p - int(residue) * value.q) % prime != 0:
-                del self.values[order:], self.evidence[order:]
-                return False
-        self.evidence = [Evidence(e.kind, e.spare_bits, prime) for e in self.evidence]
-        return True
-
-    def _check_progress(self) -> None:
-        bound = max(ProvedBound.make(self.problem, self.charge).bits)
-        # The proved denominators may miss a few factors of the helper, so twice the bound is asked for.
-        if self._bits() > 2 * bound + SPARE_BITS + 4 * PRIME_BITS:
-            raise ConsistencyError(f"no fraction fits the residues modulo {len(self.primes)} primes")
+        places = {key: index for index, key in enumerate(self._layout.keys)}
+        for order, function in enumerate(functions):
+            left = row[order].copy()
+            for term in function.terms:
+                index = places[term.square, term.power]
+                if (term.coefficient.p - int(left[index]) * term.coefficient.q) % prime != 0:
+                    return order
+                left[index] = 0.0
+            if left.any():
+                return order
+        return None

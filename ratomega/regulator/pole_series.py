@@ -16,7 +16,8 @@ from __future__ import annotations
 from ratomega.errors import PrecisionError
 from ratomega.exact.laurent import Laurent
 from ratomega.exact.quadratic import only_rational
-from ratomega.exact.rational import ONE, ZERO, Rational
+from ratomega.exact.rational import ONE, ZERO
+from ratomega.regulator.pole_fractions import ConsistencyError, PartialFractions, Term
 from ratomega.regulator.pole_lattice import (
     Form,
     PolePath,
@@ -27,18 +28,23 @@ from ratomega.regulator.pole_lattice import (
 )
 from ratomega.regulator.pole_problem import PoleMatter, PoleProblem
 
-__all__ = ["regular_part", "residue_series"]
+__all__ = ["regular_functions", "residue_series"]
+
+Pair = tuple[int, int]
 
 
-def regular_part(problem: PoleProblem, charge: int) -> tuple[Rational, ...]:
-    """W_0 ... W_charge at the limit point, in the units of the problem.
+def regular_functions(problem: PoleProblem, charge: int) -> tuple[PartialFractions, ...]:
+    """W_0 ... W_charge at the limit point as functions of x^2, in the units of the problem.
 
-    Assumes ``problem.pole(charge) is None``. Raises ``ArithmeticError`` if a singular part of W survives, which the
-    theory excludes. Cost: about charge^5 operations on fractions that grow; fine below charge 20.
+    The Coulomb parameters of the problem do not matter. Raises ``ConsistencyError`` if a singular part of W survives,
+    which the theory excludes. Cost: about charge^5 operations on fractions that grow; fine below charge 20.
 
-    >>> from ratomega.regulator.pole_problem import gauge_problem
-    >>> regular_part(gauge_problem(ONE, ONE, (Rational(3, 11), Rational(-3, 11))), 2)
-    (1, 121/224, 19135787/165582144)
+    >>> from ratomega.regulator.pole_problem import mixed_problem
+    >>> functions = regular_functions(mixed_problem(ONE, ONE, ZERO), 2)
+    >>> functions[1].terms
+    (Term(square=4, power=1, coefficient=2),)
+    >>> [f.at(4 * (3 * ONE / 11) ** 2) for f in functions]      # a = 3/11
+    [1, 121/224, 19135787/165582144]
     """
     path = PolePath.towards(problem.steps)
     length = charge // 2 + 4
@@ -49,12 +55,12 @@ def regular_part(problem: PoleProblem, charge: int) -> tuple[Rational, ...]:
             length *= 2
 
 
-def _attempt(problem: PoleProblem, path: PolePath, charge: int, length: int) -> tuple[Rational, ...]:
+def _attempt(problem: PoleProblem, path: PolePath, charge: int, length: int) -> tuple[PartialFractions, ...]:
     pairs = pairs_up_to(charge)
     strength = {pair: residue_series(problem.matter, path, pair, length).scaled(2) for pair in pairs}
     pairs = tuple(pair for pair in pairs if not strength[pair].is_zero())
-    kernels: dict[tuple[tuple[int, int], tuple[int, int]], Laurent] = {}
-    values: dict[tuple[tuple[int, int], int], Laurent] = {}
+    kernels: dict[tuple[Pair, Pair], Laurent] = {}
+    values: dict[tuple[Pair, int], Laurent] = {}
     for order in range(charge):
         for row in pairs:
             if row[0] * row[1] + order > charge:
@@ -69,29 +75,35 @@ def _attempt(problem: PoleProblem, path: PolePath, charge: int, length: int) -> 
                     kernels[row, column] = _kernel(near, far, length) * strength[column]
                 total = total + kernels[row, column] * values[column, rest]
             values[row, order] = total
-    return tuple(_coefficient(problem, path, strength, values, order, length) for order in range(charge + 1))
+    functions = [PartialFractions(ONE, ())]
+    for order in range(1, charge + 1):
+        parts = {
+            column: strength[column] * values[column, order - column[0] * column[1]]
+            for column in pairs
+            if column[0] * column[1] <= order
+        }
+        functions.append(PartialFractions(ZERO, _principal_parts(path, parts, order)))
+    return tuple(functions)
 
 
-def _coefficient(
-    problem: PoleProblem,
-    path: PolePath,
-    strength: dict[tuple[int, int], Laurent],
-    values: dict[tuple[tuple[int, int], int], Laurent],
-    order: int,
-    length: int,
-) -> Rational:
-    total = Laurent.constant(ONE if order == 0 else ZERO, precision=length)
-    for column in pairs_up_to(order):
-        if strength[column].is_zero():
-            continue
-        c, s = path.form(*column)
-        weight = Laurent.from_coefficients(0, [c * c - problem.square, Rational(2 * c * s), Rational(s * s)],
-                                           precision=length).inverse()
-        total = total + weight * strength[column] * values[column, order - column[0] * column[1]]
-    limit = total.coefficient(0)
-    if total.valuation < 0:
-        raise ArithmeticError(f"the pole recursion left a singular part at charge {order}: {total}")
-    return only_rational(limit)
+def _principal_parts(path: PolePath, parts: dict[Pair, Laurent], order: int) -> tuple[Term, ...]:
+    """The terms of sum_c parts[c] / (x_c^2 - x^2) at t^0: with x_c^2 = S^2 + f, expanded in f (see pole_principal)."""
+    poles: dict[tuple[int, int], Laurent] = {}
+    for pair, part in parts.items():
+        c, s = path.form(*pair)
+        step = Laurent.from_coefficients(1, [-2 * c * s, -s * s], precision=part.precision - part.valuation + 2)
+        power = 1
+        while part.valuation <= 0:
+            poles[c * c, power] = poles[c * c, power] + part if (c * c, power) in poles else part
+            part, power = part * step, power + 1
+    terms = []
+    for (square, power), total in sorted(poles.items(), key=lambda item: item[0]):
+        coefficient = only_rational(total.coefficient(0))
+        if total.valuation < 0:
+            raise ConsistencyError(f"the pole recursion left a singular part at charge {order}: {total}")
+        if coefficient != 0:
+            terms.append(Term(square, power, coefficient))
+    return tuple(terms)
 
 
 def _linear(form: Form, length: int) -> Laurent:

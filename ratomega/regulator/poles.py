@@ -2,9 +2,11 @@
 
 The recursion over the poles in a (``pole_series`` has the formulas) costs a power of the charge where the sum over
 pairs of diagrams grows exponentially in its square root. It is run in one of two ways: directly in exact Laurent
-series for small charges, or modulo many primes (``pole_engine``), where the fractions are found again from their
-residues. In the second case the answer says how many bits of the modulus were left over and which further prime
-confirmed it; with ``certify`` so many primes are taken that a proved bound (``pole_bound``) leaves no other answer.
+series for small charges, or modulo many primes (``pole_engine``). What is found again from its residues are the
+coefficients of the partial fractions of W in a^2: they do not depend on a and are several times shorter than W at a
+definite a, so fewer primes do, and every a costs next to nothing afterwards. The answer says how many bits of the
+modulus were left over and which further prime confirmed it; with ``certify`` so many primes are taken that a proved
+bound on W (``pole_bound``) leaves no other answer.
 
 Nothing here is shared with the sum over diagrams, except exact arithmetic.
 """
@@ -16,16 +18,29 @@ from dataclasses import dataclass
 
 from ratomega.errors import InputError
 from ratomega.exact.rational import ONE, Rational
+from ratomega.regulator.pole_fractions import PartialFractions
 from ratomega.regulator.pole_problem import PoleProblem, pole_sentence
 from ratomega.regulator.pole_recovery import Evidence, Recovery
-from ratomega.regulator.pole_series import regular_part
+from ratomega.regulator.pole_series import regular_functions
 
-__all__ = ["Evidence", "PoleResult", "pole_coefficients"]
+__all__ = ["Evidence", "PoleFunctions", "PoleResult", "pole_coefficients", "pole_functions"]
 
 # Up to this charge the exact series take a few hundredths of a second and leave nothing to confirm.
 LAST_EXACT_CHARGE = 8
 # Squares of the linear forms must stay exact integers in float64.
 WIDEST_FORM = 2**26
+
+
+@dataclass(frozen=True, slots=True)
+class PoleFunctions:
+    """W_0, W_1, ... at the limit point as functions of x^2 = (a1 - a2)^2, in the units of the problem.
+
+    ``evidence[k]`` is that of ``functions[k]``; ``primes`` counts the primes that were used.
+    """
+
+    functions: tuple[PartialFractions, ...]
+    evidence: tuple[Evidence, ...]
+    primes: int
 
 
 @dataclass(frozen=True, slots=True)
@@ -51,6 +66,24 @@ class PoleResult:
         return all(e.kind != "residues" for e in self.evidence)
 
 
+def pole_functions(problem: PoleProblem, charge: int, *, exact: bool | None = None) -> PoleFunctions:
+    """W_0 ... W_charge as exact partial fractions in x^2. The Coulomb parameters of the problem do not matter.
+
+    ``exact`` chooses exact series (True) or primes (False); by default the charge decides.
+    Cost: measured by ``python -m benchmarks.poles``.
+
+    >>> from ratomega.regulator.pole_problem import mixed_problem
+    >>> pole_functions(mixed_problem(ONE, ONE, ONE), 2).functions[2].terms[0]
+    Term(square=4, power=1, coefficient=1)
+    """
+    _check(problem, charge)
+    if charge <= LAST_EXACT_CHARGE if exact is None else exact:
+        return PoleFunctions(regular_functions(problem, charge), (Evidence("exact"),) * (charge + 1), 0)
+    recovery = _recovery(problem, charge)
+    functions, evidence = recovery.functions_by_spare_bits()
+    return PoleFunctions(tuple(functions), tuple(evidence), len(recovery.primes))
+
+
 def pole_coefficients(
     problem: PoleProblem, charge: int, *, certify: bool = False, exact: bool | None = None
 ) -> PoleResult:
@@ -67,25 +100,32 @@ def pole_coefficients(
     >>> result.coefficients
     (1, 2/5, 7/100, 313/43350, 498379/996356400)
     """
-    if charge < 0:
-        raise InputError.single(f"a charge is zero or more, not {charge}", "charge")
+    _check(problem, charge)
     pole = problem.pole(charge)
     if pole is not None:
         raise InputError.single(pole_sentence(*pole), "coulomb")
-    if charge <= LAST_EXACT_CHARGE if exact is None else exact:
-        return _result(problem, regular_part(problem, charge), (Evidence("exact"),) * (charge + 1), 0)
+    by_bound = certify and not (charge <= LAST_EXACT_CHARGE if exact is None else exact)
+    if by_bound:
+        recovery = _recovery(problem, charge)
+        values, evidence = recovery.values_by_bound()
+        return _result(problem, values, tuple(evidence), len(recovery.primes))
+    known = pole_functions(problem, charge, exact=exact)
+    return _result(problem, [f.at(problem.square) for f in known.functions], known.evidence, known.primes)
+
+
+def _check(problem: PoleProblem, charge: int) -> None:
+    if charge < 0:
+        raise InputError.single(f"a charge is zero or more, not {charge}", "charge")
+
+
+def _recovery(problem: PoleProblem, charge: int) -> Recovery:
     if 2 * charge * (problem.steps[0] + abs(problem.steps[1])) >= WIDEST_FORM:
         raise InputError.single(
             f"eps2/eps1 = {problem.steps[1]}/{problem.steps[0]} has too long a numerator or denominator for residues "
             f"at charge {charge}; exact series still take it",
             "eps2",
         )
-    recovery = Recovery(problem, charge)
-    if certify:
-        recovery.certify()
-    else:
-        recovery.search()
-    return _result(problem, recovery.values, tuple(recovery.evidence), len(recovery.primes))
+    return Recovery(problem, charge)
 
 
 def _result(

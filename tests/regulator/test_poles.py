@@ -15,6 +15,7 @@ from ratomega.case.theory import Edge, Node, Theory
 from ratomega.errors import InputError
 from ratomega.exact.rational import ONE, ZERO
 from ratomega.regulator.pole_dressing import Dressing, NomeExponents
+from ratomega.regulator.pole_fractions import PoleLayout
 from ratomega.regulator.pole_problem import (
     applies,
     case_problem,
@@ -23,7 +24,7 @@ from ratomega.regulator.pole_problem import (
     mixed_problem,
     torus_problem,
 )
-from ratomega.regulator.poles import LAST_EXACT_CHARGE, pole_coefficients
+from ratomega.regulator.poles import LAST_EXACT_CHARGE, pole_coefficients, pole_functions
 
 RATIOS = [(1, 1), (1, 2), (2, 1), (3, 2), (1, -1), (4, -3), (3, -2)]
 COULOMB = (fmpq(5, 11), fmpq(-1, 7))
@@ -95,13 +96,47 @@ def test_primes_exact_series_and_certified_bound_agree(ratio, matter):
     assert exact.coefficients == primes.coefficients == bound.coefficients
     assert exact.regular == primes.regular == bound.regular
     assert {e.kind for e in exact.evidence} == {"exact"}
-    assert {e.kind for e in primes.evidence} == {"residues"}
+    assert [e.kind for e in primes.evidence] == ["exact"] + ["residues"] * 9
     assert {e.kind for e in bound.evidence} == {"bound"}
     assert (exact.certified, primes.certified, bound.certified) == (True, False, True)
     assert exact.spare_bits is None
     assert primes.spare_bits >= 45
     assert bound.spare_bits >= 0
     assert min(primes.primes, bound.primes) > 0 == exact.primes
+
+
+@pytest.mark.parametrize("matter", [MATTER["none"], MATTER["four"], MATTER["adjoint"]], ids=["0", "4", "adjoint"])
+@pytest.mark.parametrize("ratio", RATIOS, ids=str)
+def test_partial_fractions_hold_for_every_coulomb_parameter(ratio, matter):
+    charge = 3
+    for exact in (True, False):
+        functions = pole_functions(problem_of(ratio, matter), charge, exact=exact).functions
+        for a in (fmpq(1, 3), fmpq(-7, 4)):
+            # the shift of both Coulomb parameters is part of the masses and stays
+            shift = (COULOMB[0] + COULOMB[1]) / 2
+            problem = gauge_problem(fmpq(ratio[0]), fmpq(ratio[1]), (shift + a, shift - a), **matter)
+            lines = {name: [plain.Line(m) for m in (masses if isinstance(masses, list) else [masses])]
+                     for name, masses in matter.items()}
+            theory = {
+                "eps1": plain.Line(ratio[0]),
+                "eps2": plain.Line(ratio[1], 1),
+                "nodes": [{"coulomb": [plain.Line(shift + a), plain.Line(shift - a)], **lines}],
+            }
+            expected = [plain.laurent_coefficient(theory, [k]).get(0, fmpq(0)) for k in range(charge + 1)]
+            assert problem.dressing.dressed([f.at(4 * a * a) for f in functions]) == expected
+
+
+@pytest.mark.parametrize("ratio", [(1, 1), (1, 2), (3, -2)], ids=str)
+def test_partial_fractions_by_both_methods(ratio):
+    problem = problem_of(ratio, MATTER["two"])
+    exact, primes = (pole_functions(problem, 10, exact=exact).functions for exact in (True, False))
+    assert exact == primes
+    layout = PoleLayout.make(ratio, 10)
+    born = dict(zip(layout.keys, layout.born, strict=True))
+    for order, function in enumerate(exact):
+        assert all(born[term.square, term.power] <= order for term in function.terms)
+    # The highest power at the busiest pole does occur, so that orders of poles are neither lost nor invented.
+    assert max(term.power for term in exact[10].terms) == max(layout.powers)
 
 
 # --- published closed forms -------------------------------------------------------------------------------------------
