@@ -98,12 +98,12 @@ class Job:
         *,
         allow_tilt: bool = True,
         most_configurations: int = MOST_CONFIGURATIONS,
-        route: str = "direct",
-        clusterwise: bool = True,
+        route: str = "auto",
+        clusterwise: bool = False,
     ) -> Job:
         """Raises ``InputError`` when the case cannot be read, is too large, or has an unusable path.
 
-        ``route`` and ``clusterwise`` as in ``regulator.routes.choose``: by default the sum cluster by cluster.
+        ``route`` and ``clusterwise`` as in ``regulator.routes.choose``.
         """
         case = load_case(source)
         functions = None
@@ -378,7 +378,9 @@ def detect(
     >>> report.singular, [cluster.members for cluster in report.clusters]
     (2, [((((2,),),), (((1, 1),),))])
     """
-    job = Job.prepare(source, allow_tilt=allow_tilt, most_configurations=most_configurations)
+    job = Job.prepare(
+        source, allow_tilt=allow_tilt, most_configurations=most_configurations, clusterwise=True
+    )
     reports = []
     for report in job.scans(exchanges=exchanges):
         reports.append(report)
@@ -397,7 +399,7 @@ def clusters(
 ) -> networkx.Graph:
     """All clusters of one charge as a networkx graph whose connected components are the clusters."""
     wanted = (charge,) if isinstance(charge, int) else tuple(charge)
-    job = Job.prepare(load_case(source).with_charge(list(wanted)))
+    job = Job.prepare(load_case(source).with_charge(list(wanted)), clusterwise=True)
     found = find_clusters(job.weights, wanted, scan(job.weights, wanted))
     return cluster_graph(found, exchanges=exchanges, largest=largest)
 
@@ -418,7 +420,9 @@ def validate(
     Further paths are run here also where compactness proves the outcome. A check that does not apply is left out.
     ``workers``, ``executor`` and ``keep`` are those of ``limit``.
     """
-    job = Job.prepare(source, allow_tilt=allow_tilt, most_configurations=most_configurations)
+    job = Job.prepare(
+        source, allow_tilt=allow_tilt, most_configurations=most_configurations, clusterwise=True
+    )
     found = []
     with job.crew(workers=workers, executor=executor, keep=keep) or nullcontext() as crew:
         for one in job.limits(probes=probes, always_probe=True, crew=crew):

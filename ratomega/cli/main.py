@@ -209,7 +209,7 @@ def _job(
     eps2: str | None,
     no_tilt: bool,
     most_configurations: int,
-    route: str = "direct",
+    route: str = "auto",
     clusterwise: bool = True,
 ) -> Job:
     loaded = load_case(case)

@@ -98,7 +98,8 @@ def by_chunks(case, *, last=0, probes=2, always_probe=False):
 
 def check_same(case, **options):
     job = Job.prepare(case)
-    plain = list(job.limits(**{"probes": 2} | options))
+    asked = {"probes": 2} | options
+    plain = list(job.limits(terms=asked.pop("last", None), **asked))
     found = by_chunks(case, **options)
     assert found == plain
     for one, other in zip(found, plain, strict=True):

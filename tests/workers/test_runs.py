@@ -75,7 +75,7 @@ def test_killed_workers_change_nothing(monkeypatch, plain):
     job = Job.prepare(CASE)
     with job.crew(workers=2) as crew:
         crew.watch = kill
-        found = list(job.limits(probes=3, last=1, crew=crew))
+        found = list(job.limits(probes=3, terms=1, crew=crew))
     assert ratomega.to_json(limit_result(job, found, terms=1)) == plain
     assert len(killed) == 2
 
