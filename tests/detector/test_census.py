@@ -10,6 +10,7 @@ from collections import Counter
 from dataclasses import dataclass
 from functools import cache
 from itertools import permutations
+from math import prod
 
 import networkx
 import plain
@@ -567,14 +568,20 @@ def test_detect_reports_what_the_plain_reference_sees(entry: Entry) -> None:
                 assert (set(exchange.leaves), set(exchange.enters)) == (first - second, second - first)
 
 
-def test_quivers_have_clusters_node_by_node() -> None:
-    """The census in small for a quiver: orders, clusters, sources and sinks, and the product of the node's sinks."""
-    setting = own_setting(QUIVER)
+# The same contents are within reach of both nodes: a box at 1/3 in the first and at -1/5 in the second is one cluster,
+# the other way round another.
+TWINS = make_case("1", "1", [{"coulomb": ["1/3", "-1/5"]}] * 2, charge=3, edges=[(1, 2, "8/15")])
+
+
+@pytest.mark.parametrize("case", [QUIVER, TWINS], ids=["three nodes", "twins"])
+def test_quivers_have_clusters_node_by_node(case) -> None:
+    """The census in small for quivers: bookkeeping, orders, clusters, sources and sinks."""
+    setting = own_setting(case)
     weights, theory, values = Weights(setting), plain_theory(setting), plain_values(setting)
     counts = [generating_function(rank, 3) for rank in setting.ranks]
-    for charge in QUIVER.charges:
+    for charge in case.charges:
         one = scan_charge(weights, theory, values, charge)
-        check_scan(one, counts[0][charge[0]] * counts[1][charge[1]] * counts[2][charge[2]])
+        check_scan(one, prod(counts[v][k] for v, k in enumerate(charge)))
         for cluster in one.clusters:
             for member in cluster.members:
                 tangents = one.plain[member.configuration].tangents

@@ -333,6 +333,10 @@ def test_tilts_of_one_case_are_not_mirror_images() -> None:
         assert len(set(map(str, sizes))) == len(sizes)
         if rank > 2:
             assert all(len({str(abs(s)) for s in tilt}) == rank for tilt in tilts)
+        # The background leaves its ratio in another direction on each of them.
+        directions = {str(probe_setting(case, n).eps2.slope / probe_setting(case, n).eps1.slope) for n in range(1, 8)}
+        assert len(directions) > 4
+        assert "1" not in directions
 
 
 def test_only_the_resonant_node_is_tilted() -> None:
