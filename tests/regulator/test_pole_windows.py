@@ -171,6 +171,25 @@ def test_sums_that_must_be_reduced_early(ratio, monkeypatch):
     assert agree(ratio, "four", 12)
 
 
+@pytest.mark.parametrize("mirror", [False, True])
+def test_sums_stay_exact_however_many_products_come(mirror):
+    primes = PrimeSource().take(2)
+    sums = pole_engine._Sums(Moduli.make(primes), np.zeros((2, 4, 3, 5)), -1, mirror)
+    step = pole_schedule.Step(begin=5, end=7, first=-1, count=2, stride=2, rows=4, low=-1)
+    largest = sums.longest * (primes[0] // 2) ** 2 * (2 if mirror else 1) - 3
+    for _ in range(7):
+        sums.add(step, np.full((2, 4, 4), float(largest)), sums.longest)
+    out = np.empty((2, 3, 5))
+    for order in (5, 6):
+        sums.take(order, out, np.empty_like(out))
+        for p, table in zip(primes, out, strict=True):
+            assert {int(x) % p for x in table[0::2, :4].ravel()} == {7 * largest % p}
+            assert not table[1].any()
+            assert not table[:, 4].any()
+    sums.take(5, out, np.empty_like(out))
+    assert not out.any()
+
+
 # --- faults -----------------------------------------------------------------------------------------------------------
 
 
