@@ -12,7 +12,6 @@ import benchmarks.one_core  # before anything that imports numpy
 # isort: on
 import argparse
 import json
-import sys
 from pathlib import Path
 
 from benchmarks import ball, by_sympy, direct, growth, memory, parameters, poles, workers
@@ -61,4 +60,4 @@ def main() -> None:
 
 
 if __name__ == "__main__":
-    sys.exit(main())
+    main()

@@ -22,7 +22,7 @@ assert benchmarks.one_core
 def main() -> None:
     mapping, options = json.loads(sys.argv[1])
     case = ratomega.load_case(mapping)
-    times, result = timed(lambda: ratomega.limit(case, **options))
+    times, result = timed(ratomega.limit, case, **options)
     answer = {
         "processor": times.processor,
         "elapsed": times.elapsed,

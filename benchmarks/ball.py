@@ -14,6 +14,7 @@ whoever has only balls must guess them, and a guess costs more.
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from types import ModuleType
 
 import flint
@@ -21,7 +22,7 @@ from flint import arb, fmpq, fmpz
 
 import ratomega
 from benchmarks.measure import RUNS, Pace, Report, Row, Times, plain_reference, timed
-from benchmarks.theories import PURE, Theory, at, rational
+from benchmarks.theories import PURE, Theory, at, rational, rationals
 from ratomega.exact.rational import Rational
 
 QUESTION = "the exact limit against ball arithmetic at eps2 = 1 + delta sqrt(2), the same rational recovered"
@@ -82,15 +83,19 @@ def by_balls(plain: ModuleType, theory: Theory, charge: int, limit: Rational) ->
     return recovered(nearby_ball(plain, theory, charge, bits, precision), bits - MARGIN // 2)
 
 
+def series_by_balls(plain: ModuleType, limits: Sequence[Rational]) -> list[Rational]:
+    return [by_balls(plain, PURE, k, value) for k, value in enumerate(limits)]
+
+
 def ask(pace: Pace, report: Report) -> None:
     plain = plain_reference()
     for charge in (6,) if pace.quick else (8, 12):
         case = ratomega.load_case(PURE.case(charge, "1"))
-        exact = [c.value for c in ratomega.limit(case)]
+        exact = rationals(ratomega.limit(case))
         ours, theirs = [], []
         for _ in range(RUNS):
-            ours.append(timed(lambda case=case: ratomega.limit(case, route="direct"))[0])
-            one, found = timed(lambda exact=exact: [by_balls(plain, PURE, k, value) for k, value in enumerate(exact)])
+            ours.append(timed(ratomega.limit, case, route="direct")[0])
+            one, found = timed(series_by_balls, plain, exact)
             theirs.append(one)
             if found != exact:
                 raise RuntimeError("a rational recovered from its ball is not the limit")

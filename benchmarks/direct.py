@@ -12,7 +12,7 @@ from types import ModuleType
 
 import ratomega
 from benchmarks.measure import RUNS, Pace, Report, Row, Times, plain_reference, timed
-from benchmarks.theories import FLAVOURED, NON_SINGULAR, PURE, THREE, Theory, at, rational
+from benchmarks.theories import FLAVOURED, NON_SINGULAR, PURE, THREE, Theory, at, rational, rationals
 from ratomega.exact.rational import ONE, Rational
 
 QUESTION = f"the direct sum against the plain per-box sum at ratio {NON_SINGULAR}"
@@ -32,9 +32,11 @@ def plain_times(
 ) -> tuple[dict[int, Times], dict[int, Rational]]:
     """Times for all charges up to each bound, from one run up to the last of them; and the coefficients."""
     given = theory.plain(ONE, rational(NON_SINGULAR))
-    total, times, values = Times(0, 0), {}, {}
+    total = Times(0, 0, RUNS)
+    times: dict[int, Times] = {}
+    values: dict[int, Rational] = {}
     for k in range(max(charges) + 1):
-        one, values[k] = timed(lambda k=k: plain.coefficient(given, (k,)))  # type: ignore[misc]
+        one, values[k] = timed(plain.coefficient, given, (k,))
         total += one
         if k in charges:
             times[k] = total
@@ -47,15 +49,15 @@ def compare(plain: ModuleType, theory: Theory, charges: Sequence[int], report: R
     ours: dict[tuple[int, str], list[Times]] = {(charge, eps2): [] for charge in charges for eps2 in RATIOS}
     results = {}
     for _ in range(RUNS):
-        times, values = plain_times(plain, theory, charges)
+        found, values = plain_times(plain, theory, charges)
         for charge in charges:
-            theirs[charge].append(times[charge])
+            theirs[charge].append(found[charge])
         for charge, eps2 in ours:
             case = ratomega.load_case(theory.case(charge, eps2))
-            one, results[charge, eps2] = timed(lambda case=case: ratomega.limit(case, route="direct"))
+            one, results[charge, eps2] = timed(ratomega.limit, case, route="direct")
             ours[charge, eps2].append(one)
     for charge in charges:
-        if [c.value for c in results[charge, NON_SINGULAR]] != [values[k] for k in range(charge + 1)]:
+        if rationals(results[charge, NON_SINGULAR]) != [values[k] for k in range(charge + 1)]:
             raise RuntimeError(f"{theory.name}: the two sums disagree")
     for (charge, eps2), times in ours.items():
         route = results[charge, eps2].route

@@ -21,10 +21,11 @@ from importlib.metadata import version
 from pathlib import Path
 from statistics import median
 from types import ModuleType
-from typing import Any, TypeVar
+from typing import Any, ParamSpec, TypeVar
 
 ROOT = Path(__file__).resolve().parent.parent
 RUNS = 3
+P = ParamSpec("P")
 T = TypeVar("T")
 PACKAGES = ("numpy", "python-flint", "sympy", "networkx")
 
@@ -53,14 +54,14 @@ class Times:
         return Times(self.processor + other.processor, self.elapsed + other.elapsed, min(self.runs, other.runs))
 
 
-def timed(action: Callable[[], T]) -> tuple[Times, T]:
+def timed(action: Callable[P, T], *arguments: P.args, **options: P.kwargs) -> tuple[Times, T]:
     """One run: its times and what it returned."""
     elapsed, processor = time.perf_counter(), time.process_time()
-    value = action()
+    value = action(*arguments, **options)
     return Times(time.process_time() - processor, time.perf_counter() - elapsed), value
 
 
-def turns(actions: Mapping[str, Callable[[], object]], runs: int = RUNS) -> dict[str, Times]:
+def in_turn(actions: Mapping[str, Callable[[], object]], runs: int = RUNS) -> dict[str, Times]:
     """All actions in turn, several rounds, so that what changes on the machine meets each of them alike."""
     found: dict[str, list[Times]] = {name: [] for name in actions}
     for _ in range(runs):
@@ -187,12 +188,11 @@ class Row:
 def seconds_text(seconds: float) -> str:
     """Three digits.
 
-    >>> seconds_text(0.01234), seconds_text(1.234), seconds_text(123.4)
-    ('0.0123', '1.23', '123')
+    >>> seconds_text(0.01234), seconds_text(1.234), seconds_text(12.34), seconds_text(123.4)
+    ('0.0123', '1.23', '12.3', '123')
     """
-    if seconds >= 100:
-        return f"{seconds:.0f}"
-    return f"{seconds:.{2 if seconds >= 1 else 3 if seconds >= 0.1 else 4}f}"
+    decimals = 0 if seconds >= 100 else 1 if seconds >= 10 else 2 if seconds >= 1 else 3 if seconds >= 0.1 else 4
+    return f"{seconds:.{decimals}f}"
 
 
 def ratio_text(ratio: float | None) -> str:

@@ -8,6 +8,7 @@ from typing import Any
 
 from ratomega.diagrams.tuples import count_all
 from ratomega.exact.rational import Rational
+from ratomega.results import LimitResult
 
 NON_SINGULAR = "103/71"
 
@@ -32,6 +33,16 @@ class Theory:
 
     def configurations(self, charge: int) -> int:
         return int(count_all([len(self.coulomb)], charge))
+
+
+def rationals(result: LimitResult) -> list[Rational]:
+    """The coefficients of a case without symbols and irrational numbers. Raises ``TypeError`` for any other."""
+    values = []
+    for coefficient in result:
+        if not isinstance(coefficient.value, Rational):
+            raise TypeError(f"{coefficient.value} is not rational")
+        values.append(coefficient.value)
+    return values
 
 
 def rational(text: str) -> Rational:
