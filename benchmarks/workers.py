@@ -1,11 +1,11 @@
-"""What do two workers gain over one? ``python -m benchmarks.workers``
+"""What two workers gain over one.
 
-One run of over twenty seconds with one worker process and the same with two, starting processes, sending and merging
-included. The case is resonant, so that further paths are summed as well, all by the direct sum. Both answers must be
-the same bytes.
+One run with one worker process and the same with two, starting processes, sending and merging included; over twenty
+seconds with ``--long``. The case is resonant, so that no short cut applies and further paths are summed as well, all
+by the sum over clusters. Both answers must be the same bytes.
 
-Where other programs use the cores too, elapsed times say as much about them as about the workers. Hence the load is
-printed, and the processor time of this process and of its workers: what does not depend on others.
+These ratios alone are of elapsed seconds. Where other programs use the cores too, they say as much about those as about
+the workers; hence the note on processor time, which does not depend on others: what two workers spent beyond one.
 """
 
 from __future__ import annotations
@@ -13,62 +13,50 @@ from __future__ import annotations
 import os
 import resource
 import time
-from dataclasses import dataclass
 
 import ratomega
+from benchmarks.measure import RUNS, Pace, Report, Row, Times, load
 from ratomega.pipeline import Job
-from ratomega.workers.charges import cut
 
-CASE = {
-    "title": "two colours, two flavours, resonant",
-    "charge": 15,
-    "background": {"eps1": "1", "eps2": "1"},
-    "node": [{"coulomb": ["1", "-1"], "antifundamental": ["1/2", "1/5"]}],
-}
+QUESTION = "two workers against one, the same bytes"
+NODE = {"coulomb": ["1", "-1"], "antifundamental": ["1/2", "1/5"]}
 PROBES = 4
 
 
-@dataclass(frozen=True, slots=True)
-class Run:
-    """One run: elapsed seconds, processor seconds here and in the workers, and the answer."""
-
-    seconds: float
-    here: float
-    there: float
-    answer: str
-
-    def text(self, name: str) -> str:
-        spent = f"{self.there:.1f} s in workers, {self.here:.1f} s here"
-        return f"{name:<12}{self.seconds:8.1f} s elapsed; processor time {spent}"
+def processor_seconds() -> float:
+    """Of this process and of its children that have ended, which workers have when ``limit`` returns."""
+    used = [resource.getrusage(who) for who in (resource.RUSAGE_SELF, resource.RUSAGE_CHILDREN)]
+    return sum(u.ru_utime + u.ru_stime for u in used)
 
 
-def processor_time(who: int) -> float:
-    used = resource.getrusage(who)
-    return used.ru_utime + used.ru_stime
+def one_run(case: ratomega.Case, workers: int) -> tuple[Times, str]:
+    elapsed, processor = time.perf_counter(), processor_seconds()
+    answer = ratomega.to_json(ratomega.limit(case, probes=PROBES, workers=workers, route="direct"))
+    return Times(processor_seconds() - processor, time.perf_counter() - elapsed), answer
 
 
-def measure(workers: int) -> Run:
-    """Children are counted when they have ended, which they have by then."""
-    start = time.perf_counter()
-    before = [processor_time(who) for who in (resource.RUSAGE_SELF, resource.RUSAGE_CHILDREN)]
-    answer = ratomega.to_json(ratomega.limit(CASE, probes=PROBES, workers=workers))
-    after = [processor_time(who) for who in (resource.RUSAGE_SELF, resource.RUSAGE_CHILDREN)]
-    return Run(time.perf_counter() - start, after[0] - before[0], after[1] - before[1], answer)
-
-
-def main() -> None:
-    job = Job.prepare(CASE)
-    chunks = cut(job.case, job.setting, last=0, probes=PROBES, always_probe=False)
-    load = ", ".join(f"{x:.1f}" for x in os.getloadavg())
-    print(f"{job.case.title}, to charge {job.case.charge}: {len(chunks)} chunks; {os.cpu_count()} cores, load {load}")
-    one = measure(1)
-    print(one.text("one worker"), flush=True)
-    two = measure(2)
-    print(two.text("two workers"))
-    if one.answer != two.answer:
-        raise SystemExit("the answers differ")
-    print(f"one/two     {one.seconds / two.seconds:8.2f}, same bytes; load now {os.getloadavg()[0]:.1f}")
-
-
-if __name__ == "__main__":
-    main()
+def ask(pace: Pace, report: Report) -> None:
+    charge = 15 if pace.long else 6 if pace.quick else 10
+    case = ratomega.load_case({"charge": charge, "background": {"eps1": "1", "eps2": "1"}, "node": [NODE]})
+    if Job.prepare(case, route="direct", clusterwise=False).way.short_cut:
+        raise RuntimeError("a short cut applies: nothing to share among workers")
+    times: dict[int, list[Times]] = {1: [], 2: []}
+    answers = set()
+    for _ in range(RUNS):
+        for workers, found in times.items():
+            one, answer = one_run(case, workers)
+            found.append(one)
+            answers.add(answer)
+    if len(answers) != 1:
+        raise RuntimeError("the answers differ")
+    one, two = Times.middle(times[1]), Times.middle(times[2])
+    name = "U(2), two flavours, resonant, ratio 1"
+    report.row(
+        Row(name, charge, "two workers (elapsed)", two, "one worker (elapsed)", one, headline=pace.long, elapsed=True)
+    )
+    report.note(
+        f"Processor time, all processes: {one.processor:.1f} s with one worker, {two.processor:.1f} s with two; "
+        f"{os.cpu_count()} cores, load {load()}."
+    )
+    if not pace.long:
+        report.note("Starting processes weighs in so short a run; --long takes one of over twenty seconds.")

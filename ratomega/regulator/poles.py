@@ -93,7 +93,7 @@ def pole_coefficients(
     route take as many primes as the proved bound asks for.
 
     Raises ``InputError`` when a1 - a2 sits at a pole: there the limit can be infinite or depend on the path.
-    Cost: measured by ``python -m benchmarks.poles``.
+    Cost: measured by ``python -m benchmarks poles``.
 
     >>> from ratomega.regulator.pole_problem import mixed_problem
     >>> result = pole_coefficients(mixed_problem(ONE, ONE, Rational(-1, 4)), 4)     # a = i/2
