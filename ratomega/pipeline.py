@@ -21,6 +21,7 @@ from ratomega.case.reading import load_case
 from ratomega.case.setting import MOST_PROBES, Setting, own_setting, probe_setting
 from ratomega.detector.accidents import check_path, dead_colours, frozen_number_warnings
 from ratomega.detector.clusters import cluster_graph, find_clusters
+from ratomega.detector.geometry import compact_by_parameters
 from ratomega.detector.zeros import scan
 from ratomega.diagrams.tuples import Charge, count_all
 from ratomega.errors import InputError
@@ -134,9 +135,7 @@ class Job:
 
     def probes(self, number: int) -> tuple[Weights, ...]:
         """The weights on the first ``number`` further paths."""
-        if not 0 <= number <= MOST_PROBES:
-            message = f"the number of further paths is between 0 and {MOST_PROBES}, not {number}"
-            raise InputError.single(message, "probes")
+        _check_probes(number)
         return tuple(Weights(probe_setting(self.sample, n)) for n in range(1, number + 1))
 
     def limits(
@@ -160,7 +159,9 @@ class Job:
         if self.functions is not None and crew is not None:
             message = "a case with symbols is not cut into parts for workers or a file of finished parts"
             raise InputError.single(message, "symbols")
-        further = self.probes(probes)
+        _check_probes(probes)
+        needed = always_probe or not compact_by_parameters(self.setting, self.case.bounds)
+        further = self.probes(probes if needed else 0)
         if self.way.short_cut:
             done = short_cut(self.way, self.case, self.setting, certify=certify)
             for charge, value in zip(self.case.charges, done.values, strict=True):
@@ -207,6 +208,12 @@ class Job:
         else:
             hands = ThisProcess() if workers is None else OwnPool(workers)
         return Crew(hands, store)
+
+
+def _check_probes(number: int) -> None:
+    if not 0 <= number <= MOST_PROBES:
+        message = f"the number of further paths is between 0 and {MOST_PROBES}, not {number}"
+        raise InputError.single(message, "probes")
 
 
 def _check_count(case: Case, most: int) -> None:

@@ -87,23 +87,23 @@ class Factor:
 
 @dataclass(frozen=True, slots=True)
 class Weight:
-    """The factored weight of one configuration."""
+    """The factored weight of one configuration.
+
+    ``order`` is vanishing denominators minus vanishing numerators at the limit point, also when the weight is ``dead``:
+    when a numerator vanishes all along the path, and the weight with it.
+    """
 
     parts: tuple[Factored, ...]
+    vanishing_denominators: int
+    order: int
+    dead: bool
 
-    @property
-    def vanishing_denominators(self) -> int:
-        return sum(part.vanishing_down for part in self.parts)
-
-    @property
-    def order(self) -> int:
-        """Vanishing denominators minus vanishing numerators at the limit point, also when the weight is dead."""
-        return sum(part.order for part in self.parts)
-
-    @property
-    def dead(self) -> bool:
-        """A numerator vanishes all along the path, and the weight with it."""
-        return any(part.dead for part in self.parts)
+    @classmethod
+    def of(cls, parts: tuple[Factored, ...]) -> Weight:
+        """The weight with its bookkeeping: the counts of its parts add up."""
+        down = sum([part.vanishing_down for part in parts])
+        up = sum([part.vanishing_up for part in parts])
+        return cls(parts, down, down - up, any(part.dead for part in parts))
 
     def laurent(self, last: int) -> Laurent:
         """The expansion in t, all powers up to ``last``."""
@@ -152,6 +152,7 @@ class Weights:
         # Pair parts are met again only where a third colour varies beside them.
         self._keep_pairs = len(self.slots) > 2
         self._columns: dict[Diagram, Diagram] = {(): ()}
+        self._single_contents: dict[tuple[int, Diagram], list[int]] = {}
         self._single: dict[tuple[int, Diagram], Factored] = {}
         self._double: dict[tuple[int, int, Diagram, Diagram], Factored] = {}
 
@@ -253,25 +254,31 @@ class Weights:
         for first, second in self._pairs:
             if first != second and (flat[first] or flat[second]):
                 parts.append(self._two(first, second, flat[first], flat[second]))
-        return Weight(tuple(parts))
+        return Weight.of(tuple(parts))
 
     def contents(self, configuration: Configuration) -> ContentsKey:
         """Node by node the sorted limiting contents of all boxes, in units of 1/scale: the key of the cluster."""
         if self.radicand:
             return self._paired_contents(configuration)
-        c1, c2 = self.eps1[0], self.eps2[0]
         key: list[tuple[int, ...]] = []
         slot = 0
         for node in configuration:
             found: list[int] = []
             for diagram in node:
-                start = self._starts[slot]
-                for i, row in enumerate(diagram):
-                    found.extend(start + i * c1 + j * c2 for j in range(row))
+                if diagram:
+                    found += self._slot_contents(slot, diagram)
                 slot += 1
             found.sort()
             key.append(tuple(found))
         return tuple(key)
+
+    def _slot_contents(self, slot: int, diagram: Diagram) -> list[int]:
+        known = self._single_contents.get((slot, diagram))
+        if known is None:
+            start, c1, c2 = self._starts[slot], self.eps1[0], self.eps2[0]
+            known = [start + i * c1 + j * c2 for i, row in enumerate(diagram) for j in range(row)]
+            self._single_contents[slot, diagram] = known
+        return known
 
     def _paired_contents(self, configuration: Configuration) -> ContentsKey:
         c1, c2 = self.eps1[0], self.eps2[0]

@@ -12,6 +12,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
+from math import prod
 
 from flint import fmpq, fmpq_poly, fmpz, fmpz_poly
 
@@ -81,20 +82,14 @@ class Factored:
     radicand: int = 0
     _products: tuple[fmpz_poly, fmpz_poly] | None = None
     _pairs: tuple[IntegerPair, IntegerPair] | None = None
+    _leads: tuple[int, int] | None = None
 
     @classmethod
     def of(cls, up: Iterable[Form], down: Iterable[Form], scale: int, radicand: int = 0) -> Factored:
         up, down = tuple(up), tuple(down)
-        return cls(
-            up,
-            down,
-            scale,
-            sum(1 for c, _ in up if c == 0),
-            sum(1 for c, _ in down if c == 0),
-            (0, 0) in up,
-            (0, 0) in down,
-            radicand,
-        )
+        zeros_up = [s for c, s in up if c == 0]
+        zeros_down = [s for c, s in down if c == 0]
+        return cls(up, down, scale, len(zeros_up), len(zeros_down), 0 in zeros_up, 0 in zeros_down, radicand)
 
     @property
     def order(self) -> int:
@@ -106,6 +101,12 @@ class Factored:
         if self._products is None:
             self._products = (_product(self.up), _product(self.down))  # type: ignore[arg-type]
         return self._products
+
+    def leads(self) -> tuple[int, int]:
+        """The constant terms of ``products``, without expanding them: all that a weight of order 0 needs at t^0."""
+        if self._leads is None:
+            self._leads = (_lead(self.up), _lead(self.down))  # type: ignore[arg-type]
+        return self._leads
 
     def pairs(self) -> tuple[IntegerPair, IntegerPair]:
         """The same over Z[sqrt(radicand)], each as a pair (P, Q) for P + Q sqrt(radicand)."""
@@ -134,6 +135,11 @@ def _pair_form(c: Whole, s: Whole) -> IntegerPair:
 
 def _two(value: Whole) -> tuple[int, int]:
     return (int(value.x.p), int(value.y.p)) if isinstance(value, Quadratic) else (value, 0)
+
+
+def _lead(forms: Sequence[tuple[int, int]]) -> int:
+    """The product of the forms at t = 0, each form that vanishes there divided by t."""
+    return prod([c or s for c, s in forms])
 
 
 def _product(forms: Sequence[tuple[int, int]]) -> fmpz_poly:
@@ -166,17 +172,17 @@ def expand(parts: Sequence[Factored], last: int) -> Laurent:
         return Laurent.zero(precision=precision)
     if parts and parts[0].radicand:
         return _expand_pairs(parts, order, length, precision)
+    exponent = sum([len(part.down) - len(part.up) for part in parts])
+    scale = fmpz(parts[0].scale if parts else 1)
+    factor = fmpq(scale**exponent) if exponent >= 0 else fmpq(1, scale**-exponent)
+    if length == 1:
+        leads = [part.leads() for part in parts]
+        value = fmpq(prod([up for up, _ in leads]), prod([down for _, down in leads])) * factor
+        return Laurent(-order, fmpq_poly([value]), precision)
     up, down = fmpz_poly([1]), fmpz_poly([1])
-    exponent = 0
-    scale = 1
     for part in parts:
         part_up, part_down = part.products()
         up, down = up.mul_low(part_up, length), down.mul_low(part_down, length)
-        exponent += len(part.down) - len(part.up)
-        scale = part.scale
-    factor = fmpq(fmpz(scale) ** exponent) if exponent >= 0 else fmpq(1, fmpz(scale) ** -exponent)
-    if length == 1:
-        return Laurent.make(-order, fmpq_poly([factor * up[0] / down[0]]), precision)
     return Laurent.make(-order, _quotient(up, down, length) * factor, precision)
 
 
