@@ -159,6 +159,8 @@ class Job:
         if self.functions is not None and crew is not None:
             message = "a case with symbols is not cut into parts for workers or a file of finished parts"
             raise InputError.single(message, "symbols")
+        if self.way.short_cut and (terms is not None or always_probe):
+            raise ValueError("this job was prepared for a short cut; prepare it with clusterwise=True")
         _check_probes(probes)
         needed = always_probe or not compact_by_parameters(self.setting, self.case.bounds)
         further = self.probes(probes if needed else 0)
@@ -317,12 +319,17 @@ def checked_terms(terms: int | None) -> int:
 def limit_result(job: Job, found: Sequence[Found], *, terms: int | None = None, partial: bool = False) -> LimitResult:
     """The result of the charges found so far."""
     short = [one for one in found if isinstance(one, ShortLimit)]
-    if job.way.short_cut:
-        checks = short_cut_certificate([one.charge for one in short], job.way.why)
-    else:
-        checks = (*certificate(samples(found)), *_function_checks(job, found))
     coefficients = tuple(_coefficient(one, terms) for one in found)
-    return LimitResult(job.header, _route_record(job.way, short), coefficients, checks, partial)
+    return LimitResult(job.header, _route_record(job.way, short), coefficients, _limit_checks(job, found), partial)
+
+
+def _limit_checks(job: Job, found: Sequence[Found]) -> tuple[Check, ...]:
+    if not found:
+        # Interrupted before anything was finished: no check ran.
+        return ()
+    if job.way.short_cut:
+        return short_cut_certificate([one.charge for one in found], job.way.why)
+    return (*certificate(samples(found)), *_function_checks(job, found))
 
 
 def _route_record(way: Way, short: Sequence[ShortLimit]) -> RouteRecord:
@@ -442,6 +449,8 @@ def validate(
 def validate_result(job: Job, found: Sequence[Found], *, partial: bool = False) -> ValidateResult:
     """The checks for the charges found so far; with symbols all but the last are made at the generic point."""
     limits = samples(found)
+    if not limits:
+        return ValidateResult(job.header, (), partial)
     checks = [*certificate(limits), check_orders(limits), *check_closed_forms(job.sample, job.setting, limits)]
     checks += [*check_recursion(job.sample, limits), *_function_checks(job, found)]
     adjoint = check_adjoint_clusters(job.setting, limits)

@@ -14,6 +14,7 @@ from dataclasses import dataclass
 import pytest
 
 import ratomega
+from ratomega import pipeline
 from ratomega.cli.main import main
 
 CASE = """
@@ -275,6 +276,28 @@ def test_an_interrupted_run_keeps_what_it_has():
     assert document["partial"] is True
     assert [c["charge"] for c in document["coefficients"]] == [[0], [1]]
     assert "interrupted" in done.stderr
+
+
+@pytest.mark.parametrize(
+    ("command", "stopped"),
+    [
+        (["limit", "u2-pure", "--charge", "14"], "short_cut"),
+        (["limit", "u2-pure"], "charge_limit"),
+        (["validate", "u2-pure"], "charge_limit"),
+        (["detect", "u2-pure"], "charge_report"),
+    ],
+)
+def test_interrupted_before_anything_was_finished(monkeypatch, command, stopped):
+    def interrupt(*_, **__):
+        raise KeyboardInterrupt
+
+    monkeypatch.setattr(pipeline, stopped, interrupt)
+    done = run(*command, "--json")
+    document = json.loads(done.stdout)
+    assert done.returncode == 130
+    assert document["partial"] is True
+    # What did not run is not counted as passed.
+    assert document.get("coefficients", []) == document.get("checks", []) == document.get("charges", []) == []
 
 
 def test_a_reader_that_goes_away_is_no_error(tmp_path):

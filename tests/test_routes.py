@@ -13,6 +13,7 @@ from building import make_case
 
 import ratomega
 from ratomega.case.setting import own_setting
+from ratomega.pipeline import Job
 from ratomega.regulator.routes import choose
 
 MATTER = {
@@ -96,6 +97,13 @@ def test_the_rule(case, route, options, way):
 def test_a_route_that_does_not_apply_is_refused(case, options, said):
     with pytest.raises(ratomega.InputError, match=said):
         ratomega.limit(case, route="poles", **options)
+
+
+def test_a_job_for_a_short_cut_does_nothing_else():
+    job = Job.prepare(u2("1", charge=14))
+    for options in ({"terms": 1}, {"always_probe": True}):
+        with pytest.raises(ValueError, match="clusterwise=True"):
+            list(job.limits(probes=0, **options))
 
 
 def test_an_unknown_route_is_refused():

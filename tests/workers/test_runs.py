@@ -72,7 +72,7 @@ def test_killed_workers_change_nothing(monkeypatch, plain):
             os.kill(alive[-1], signal.SIGKILL)
             killed.append(alive[-1])
 
-    job = Job.prepare(CASE)
+    job = Job.prepare(CASE, clusterwise=True)
     with job.crew(workers=2) as crew:
         crew.watch = kill
         found = list(job.limits(probes=3, terms=1, crew=crew))
