@@ -98,11 +98,12 @@ def test_a_worker_that_dies_costs_its_chunk_alone(folder):
 
 def test_a_worker_that_dies_idle_costs_nothing(folder):
     chunks = marked(folder, 6)
-    with Crew(OwnPool(1)) as crew:
+    hands = OwnPool(1)
+    with Crew(hands) as crew:
         results = crew.results(chunks)
         found = [next(results)]
-        # It did all that it had; the next chunk is given to a process that is dead already.
-        until(lambda: len(traces(folder)) == 2)
+        # It did all that it had, and its result arrived; the next chunk is given to a process that is dead already.
+        until(lambda: len(traces(folder)) == 2 and all(f.done() for lane in hands._lanes for f in lane.queue))
         (process,) = multiprocessing.active_children()
         os.kill(process.pid, signal.SIGKILL)
         process.join()
