@@ -105,6 +105,24 @@ def test_a_pole_on_a_tilted_vacuum() -> None:
     assert [(power, sympy.Rational(int(c.p), int(c.q))) for power, c in result[1].terms] == expected
 
 
+def test_finite_on_the_own_path_and_a_pole_on_the_others() -> None:
+    """One flavour at (1, -1), a -> 0: (eps - 2 m) / (eps1 eps2 (4 a^2 - eps^2)) vanishes on the path eps = t, m = t/2;
+    it keeps a pole wherever the background moves in another direction."""
+    result = checked(u2(("1", "-1"), ["t/3", "-t/3"], ["t/2"], charge=1))
+    assert (result[1].status, result[1].independence) == ("path-dependent", None)
+    assert [v.order for v in result[1].values] == [0, 1, 1, 1]
+    assert result[1].values[0].value == 0
+    for v in result[1].values[1:]:
+        theory = theory_on(result.header.case, v.path)
+        a, eps = theory["nodes"][0]["coulomb"][0].d, theory["eps1"].d + theory["eps2"].d
+        assert v.value == -(eps - 1) / (4 * a * a - eps * eps)
+    assert result.exit_status == 1
+    # The other way round: one of the probed directions as the own path has the pole.
+    other = checked(u2(("1 + t/2", "-1 + t/3"), ["t/3", "-t/3"], ["t/2"], charge=1))
+    assert (other[1].status, other[1].order) == ("pole", 1)
+    assert other[1].leading == R(-1) * (R(5, 6) - 1) / (R(4, 9) - R(25, 36))
+
+
 # ---- the kappa family
 
 
