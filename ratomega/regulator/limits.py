@@ -37,7 +37,10 @@ class ChargeLimit:
         return self.sum.charge
 
     def is_compact(self, cluster: ClusterSum) -> bool:
-        """Is this cluster's component compact? Isolated points are; otherwise the parameters or a sink decide."""
+        """Is this cluster's component known to be compact? The parameters or a sink decide.
+
+        A cluster of order <= 0 has no pole to cancel and is let pass; with matter its component need not be compact.
+        """
         return self.compact or cluster.order <= 0 or cluster.has_sink is True
 
     @property
