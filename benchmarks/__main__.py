@@ -36,7 +36,7 @@ def main() -> None:
     listed = "; ".join(f"{name}: {module.QUESTION}" for name, module in QUESTIONS.items())
     parser.add_argument("questions", nargs="*", metavar="QUESTION", help=f"which, by default all. {listed}")
     size = parser.add_mutually_exclusive_group()
-    size.add_argument("--quick", action="store_true", help="small sizes, about a minute")
+    size.add_argument("--quick", action="store_true", help="small sizes")
     size.add_argument("--long", action="store_true", help="also what takes many minutes")
     parser.add_argument("--json", type=Path, metavar="FILE", help="write the figures and the environment")
     options = parser.parse_args()
