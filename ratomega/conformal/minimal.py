@@ -123,7 +123,8 @@ class MinimalModel:
         (((1, 1), (1, 3)), ((1, 1),))
         """
         (r1, s1), (r2, s2) = self.canonical(first), self.canonical(second)
-        rows = range(abs(r1 - r2) + 1, min(r1 + r2 - 1, 2 * self.p - 1 - r1 - r2) + 1, 2)
+        # Canonical labels have r <= p/2, so that only the columns meet the end of the table.
+        rows = range(abs(r1 - r2) + 1, r1 + r2, 2)
         columns = range(abs(s1 - s2) + 1, min(s1 + s2 - 1, 2 * self.p_prime - 1 - s1 - s2) + 1, 2)
         return tuple(sorted({self.canonical((r, s)) for r in rows for s in columns}))
 

@@ -23,8 +23,9 @@ __all__ = ["minimal_forms"]
 def minimal_forms(setting: Setting, charges: Sequence[Charge]) -> tuple[ClosedForm, ...]:
     """The known blocks of minimal models that the limit point of ``setting`` is, at the given charges of its one node.
 
-    Empty where the internal parameter is not degenerate, the flavours are not degenerate fields, the fusion rules do
-    not hold, or no known function belongs to the fields. Cost: (highest charge)^2 exact operations.
+    Empty where the internal parameter is not degenerate, the flavours are not degenerate fields, or no known function
+    belongs to the fields; a known block is one for which the fusion rules hold. Cost: (highest charge)^2 exact
+    operations.
     """
     point = minimal_point(setting)
     if point is None or not charges:
@@ -32,8 +33,6 @@ def minimal_forms(setting: Setting, charges: Sequence[Charge]) -> tuple[ClosedFo
     order = max(charge[0] for charge in charges)
     forms: dict[str, ClosedForm] = {}
     for one in point.four_points:
-        if not one.fusion_holds:
-            continue
         for known, series in blocks_of(one, order):
             z = binomial(-ONE, one.exponent, order) * Series.make(series)
             forms[known.name] = ClosedForm(
