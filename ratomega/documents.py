@@ -331,6 +331,8 @@ def _cluster(c: ClusterReport, case: Case) -> Document:
         "euler_number": c.euler_number,
         "compact": c.compact,
         "why": c.why,
+        "poincare": None if c.poincare is None else list(c.poincare),
+        "poincare_why": c.poincare_why,
         "members": [_diagrams(member, case) for member in c.members],
     }
     if c.exchanges is not None:
@@ -346,6 +348,8 @@ def _read_cluster(d: Document, case: Case) -> ClusterReport:
         _flag(d["compact"]),
         _word(d["why"]),
         _each(_read_exchange, d["exchanges"]) if "exchanges" in d else None,
+        None if d["poincare"] is None else _each(_number, d["poincare"]),
+        _word(d["poincare_why"]),
     )
 
 
