@@ -24,6 +24,7 @@ LAYERS = [
     {"reports"},
     {"workers"},
     {"pipeline"},
+    {"atlas_documents"},
     {"documents"},
     {"desk"},
     {"cli"},
