@@ -88,6 +88,16 @@ def test_closed_forms_share_no_code_with_the_sum(path):
     assert not rooms & {"weights", "detector", "regulator", "pipeline"}
 
 
+IDENTITIES = [p for p in sorted(ROOT.glob("validator/identities/*.py")) if p.stem != "special_clusters"]
+
+
+@pytest.mark.parametrize("path", IDENTITIES, ids=lambda p: p.name)
+def test_identities_share_no_code_with_the_sums(path):
+    """They ask for limits through a function that is given to them."""
+    rooms = {room(found) for found in reached(path)}
+    assert not rooms & {"weights", "detector", "regulator", "pipeline"}
+
+
 POLE_ROUTE = sorted(ROOT.glob("regulator/pole*.py"))
 SUMS = [ROOT / "regulator" / "direct.py", *sorted(ROOT.glob("regulator/fast*.py"))]
 

@@ -177,7 +177,7 @@ def _combined(
     for rank, bound in zip(ranks, bounds, strict=True):
         everything = _product(everything, coloured_partitions(rank, bound), total)
         regular = _product(regular, _power(calm[: bound + 1], rank, bound), total)
-        # Within a node one colour does it alone: its order grows with its boxes faster than two smaller ones add up.
+        # Within a node one colour alone is worst: floor(n / (alpha + beta)) of the sum is at least the sum of floors.
         worst = _largest_sums(worst, count.worst[: bound + 1], total)
     singular = [n - fine for n, fine in zip(everything, regular, strict=True)]
     first = next(charge for charge, bad in enumerate(singular) if bad)
