@@ -15,6 +15,7 @@ The public API in one screen; nothing is defined here.
 from ratomega.case.bundled import bundled_names
 from ratomega.case.case import Case
 from ratomega.case.reading import load_case
+from ratomega.detector.atlas import Atlas, atlas
 from ratomega.documents import load_result, to_json
 from ratomega.errors import InputError, PathError, Problem, RatomegaError, WorkerError
 from ratomega.exact.quadratic import Quadratic
@@ -25,6 +26,7 @@ from ratomega.validator.verdict import Check, Kind, Verdict
 from ratomega.version import VERSION as __version__
 
 __all__ = [
+    "Atlas",
     "Case",
     "Check",
     "Coefficient",
@@ -41,6 +43,7 @@ __all__ = [
     "Verdict",
     "WorkerError",
     "__version__",
+    "atlas",
     "bundled_names",
     "clusters",
     "detect",
