@@ -99,8 +99,8 @@ def test_identities_share_no_code_with_the_sums(path):
     assert not rooms & {"weights", "detector", "regulator", "pipeline"}
 
 
-POLE_ROUTE = sorted(ROOT.glob("regulator/pole*.py"))
-SUMS = [ROOT / "regulator" / "direct.py", *sorted(ROOT.glob("regulator/fast*.py"))]
+POLE_ROUTE = sorted(ROOT.glob("regulator/poles/*.py"))
+SUMS = [ROOT / "regulator" / "direct.py", *sorted(ROOT.glob("regulator/fast/*.py"))]
 
 
 @pytest.mark.parametrize("path", POLE_ROUTE, ids=lambda p: p.name)

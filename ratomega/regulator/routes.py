@@ -18,11 +18,11 @@ from ratomega.errors import InputError
 from ratomega.exact.quadratic import only_rational
 from ratomega.exact.rational import Rational
 from ratomega.regulator.direct import direct_total
-from ratomega.regulator.fast import applies as fast_applies
-from ratomega.regulator.fast import fast_sum, worthwhile
-from ratomega.regulator.pole_problem import applies as poles_apply
-from ratomega.regulator.pole_problem import case_problem
-from ratomega.regulator.poles import pole_coefficients
+from ratomega.regulator.fast.sums import applies as fast_applies
+from ratomega.regulator.fast.sums import fast_sum, worthwhile
+from ratomega.regulator.poles.problem import applies as poles_apply
+from ratomega.regulator.poles.problem import case_problem
+from ratomega.regulator.poles.recursion import pole_coefficients
 from ratomega.weights import Weights
 
 __all__ = ["ROUTES", "ShortCut", "Way", "choose", "point_values", "short_cut"]

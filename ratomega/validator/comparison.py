@@ -9,8 +9,8 @@ from ratomega.case.setting import Setting
 from ratomega.exact.quadratic import number_text
 from ratomega.regulator.limits import ChargeLimit
 from ratomega.regulator.outcome import FiniteLimit
-from ratomega.regulator.pole_problem import applies, case_problem
-from ratomega.regulator.poles import pole_coefficients
+from ratomega.regulator.poles.problem import applies, case_problem
+from ratomega.regulator.poles.recursion import pole_coefficients
 from ratomega.validator.closed_forms import ClosedForm, closed_forms
 from ratomega.validator.finiteness import charge_text
 from ratomega.validator.verdict import Check, Kind, Verdict

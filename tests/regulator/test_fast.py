@@ -21,10 +21,10 @@ from ratomega.exact.rational import Rational
 from ratomega.exact.residues import Moduli
 from ratomega.regulator import fast, fast_clusters, fast_collect, fast_generic, fast_layout, fast_limit, fast_three
 from ratomega.regulator.direct import direct_total
-from ratomega.regulator.fast import applies, fast_sum, worthwhile
-from ratomega.regulator.fast_bell import exponential
-from ratomega.regulator.fast_factors import Bench
-from ratomega.regulator.fast_proof import multiplicity, proof_bound
+from ratomega.regulator.fast.bell import exponential
+from ratomega.regulator.fast.factors import Bench
+from ratomega.regulator.fast.proof import multiplicity, proof_bound
+from ratomega.regulator.fast.sums import applies, fast_sum, worthwhile
 from ratomega.weights import Weights, pair_points
 
 TOP = {1: 3, 2: 5, 3: 3}

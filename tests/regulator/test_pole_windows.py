@@ -11,15 +11,15 @@ from pole_oracle import limit
 
 from ratomega.exact.residues import Moduli, PrimeSource, residues_of
 from ratomega.regulator import pole_engine, pole_plan, pole_recovery, pole_schedule
-from ratomega.regulator.pole_bound import ProvedBound
-from ratomega.regulator.pole_engine import PoleEngine, PoleSolver
-from ratomega.regulator.pole_fractions import ConsistencyError
-from ratomega.regulator.pole_lattice import PolePath
-from ratomega.regulator.pole_plan import NOT_NEEDED, Windows
-from ratomega.regulator.pole_problem import PoleMatter, gauge_problem, mixed_problem, torus_problem
-from ratomega.regulator.pole_residues import ResidueLattice
-from ratomega.regulator.pole_series import regular_functions, residue_series
-from ratomega.regulator.poles import pole_coefficients
+from ratomega.regulator.poles.bound import ProvedBound
+from ratomega.regulator.poles.engine import PoleEngine, PoleSolver
+from ratomega.regulator.poles.fractions import ConsistencyError
+from ratomega.regulator.poles.lattice import PolePath
+from ratomega.regulator.poles.plan import NOT_NEEDED, Windows
+from ratomega.regulator.poles.problem import PoleMatter, gauge_problem, mixed_problem, torus_problem
+from ratomega.regulator.poles.recursion import pole_coefficients
+from ratomega.regulator.poles.residues import ResidueLattice
+from ratomega.regulator.poles.series import regular_functions, residue_series
 
 SQUARE = fmpq(3, 11) ** 2
 MU = [fmpq(1, 3), fmpq(-2, 5), fmpq(3, 7), fmpq(5, 4)]

@@ -14,9 +14,9 @@ from ratomega.case.case import Case
 from ratomega.case.theory import Edge, Node, Theory
 from ratomega.errors import InputError
 from ratomega.exact.rational import ONE, ZERO
-from ratomega.regulator.pole_dressing import Dressing, NomeExponents
-from ratomega.regulator.pole_fractions import PoleLayout
-from ratomega.regulator.pole_problem import (
+from ratomega.regulator.poles.dressing import Dressing, NomeExponents
+from ratomega.regulator.poles.fractions import PoleLayout
+from ratomega.regulator.poles.problem import (
     applies,
     case_problem,
     four_point_problem,
@@ -24,7 +24,7 @@ from ratomega.regulator.pole_problem import (
     mixed_problem,
     torus_problem,
 )
-from ratomega.regulator.poles import LAST_EXACT_CHARGE, pole_coefficients, pole_functions
+from ratomega.regulator.poles.recursion import LAST_EXACT_CHARGE, pole_coefficients, pole_functions
 
 RATIOS = [(1, 1), (1, 2), (2, 1), (3, 2), (1, -1), (4, -3), (3, -2)]
 COULOMB = (fmpq(5, 11), fmpq(-1, 7))

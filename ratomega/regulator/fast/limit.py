@@ -20,14 +20,14 @@ from dataclasses import dataclass
 import numpy as np
 
 from ratomega.exact.residues import EXACT_LIMIT, Floats, Moduli
-from ratomega.regulator.fast_bell import exponential
-from ratomega.regulator.fast_clusters import pair_constants
-from ratomega.regulator.fast_factors import Bench, Parameters, differences
-from ratomega.regulator.fast_layout import Layout, group_starts
-from ratomega.regulator.fast_powers import pair_shifts, power_sums
-from ratomega.regulator.fast_setup import FastSetup
-from ratomega.regulator.fast_singles import Single, inverse_factorials, singles
-from ratomega.regulator.fast_tables import Integers, box_arrays
+from ratomega.regulator.fast.bell import exponential
+from ratomega.regulator.fast.cluster_sums import pair_constants
+from ratomega.regulator.fast.factors import Bench, Parameters, differences
+from ratomega.regulator.fast.layout import Layout, group_starts
+from ratomega.regulator.fast.powers import pair_shifts, power_sums
+from ratomega.regulator.fast.setup import FastSetup
+from ratomega.regulator.fast.singles import Single, inverse_factorials, singles
+from ratomega.regulator.fast.tables import Integers, box_arrays
 
 __all__ = ["two_colours_limit"]
 

@@ -16,10 +16,10 @@ from collections.abc import Iterable
 import numpy as np
 
 from ratomega.exact.residues import Floats, Moduli
-from ratomega.regulator.pole_fractions import ConsistencyError, PoleLayout
-from ratomega.regulator.pole_lattice import Integers
-from ratomega.regulator.pole_plan import Windows
-from ratomega.regulator.pole_schedule import Group
+from ratomega.regulator.poles.fractions import ConsistencyError, PoleLayout
+from ratomega.regulator.poles.lattice import Integers
+from ratomega.regulator.poles.plan import Windows
+from ratomega.regulator.poles.schedule import Group
 
 __all__ = ["PrincipalParts"]
 

@@ -14,9 +14,9 @@ from dataclasses import dataclass
 import numpy as np
 
 from ratomega.exact.residues import Floats, Moduli
-from ratomega.regulator.fast_factors import Parameters, forms
-from ratomega.regulator.fast_setup import FastSetup
-from ratomega.regulator.fast_tables import Integers
+from ratomega.regulator.fast.factors import Parameters, forms
+from ratomega.regulator.fast.setup import FastSetup
+from ratomega.regulator.fast.tables import Integers
 
 __all__ = ["Shift", "box_shifts", "hook_shifts", "pair_shifts", "power_sums"]
 

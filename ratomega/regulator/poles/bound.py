@@ -28,8 +28,8 @@ import numpy as np
 
 from ratomega.exact.rational import Rational
 from ratomega.exact.residues import Floats
-from ratomega.regulator.pole_lattice import Form, PolePath, denominator_points, numerator_points, pairs_up_to
-from ratomega.regulator.pole_problem import PoleMatter, PoleProblem, denominator_root
+from ratomega.regulator.poles.lattice import Form, PolePath, denominator_points, numerator_points, pairs_up_to
+from ratomega.regulator.poles.problem import PoleMatter, PoleProblem, denominator_root
 
 __all__ = ["ProvedBound"]
 

@@ -12,15 +12,15 @@ from collections.abc import Iterator
 import numpy as np
 
 from ratomega.exact.residues import Floats, Moduli, longest_dot
-from ratomega.regulator.fast_bell import exponential
-from ratomega.regulator.fast_clusters import pair_constants
-from ratomega.regulator.fast_factors import Bench, Parameters, differences, pair_factors
-from ratomega.regulator.fast_generic import one_colour
-from ratomega.regulator.fast_layout import Layout, group_starts
-from ratomega.regulator.fast_powers import pair_shifts, power_sums
-from ratomega.regulator.fast_setup import FastSetup
-from ratomega.regulator.fast_singles import inverse_factorials, singles
-from ratomega.regulator.fast_tables import Forest, Integers, box_arrays, box_list
+from ratomega.regulator.fast.bell import exponential
+from ratomega.regulator.fast.cluster_sums import pair_constants
+from ratomega.regulator.fast.factors import Bench, Parameters, differences, pair_factors
+from ratomega.regulator.fast.generic import one_colour
+from ratomega.regulator.fast.layout import Layout, group_starts
+from ratomega.regulator.fast.powers import pair_shifts, power_sums
+from ratomega.regulator.fast.setup import FastSetup
+from ratomega.regulator.fast.singles import inverse_factorials, singles
+from ratomega.regulator.fast.tables import Forest, Integers, box_arrays, box_list
 
 __all__ = ["three_colours", "three_colours_limit"]
 

@@ -22,8 +22,8 @@ from dataclasses import dataclass
 import numpy as np
 
 from ratomega.exact.residues import Floats, Moduli
-from ratomega.regulator.fast_setup import FastSetup
-from ratomega.regulator.fast_tables import Forest, Integers
+from ratomega.regulator.fast.setup import FastSetup
+from ratomega.regulator.fast.tables import Forest, Integers
 
 __all__ = ["Bench", "Parameters", "box_factors", "diagram_factors", "differences", "pair_factors"]
 

@@ -18,10 +18,10 @@ from ratomega.exact.residues import (
     reconstruct,
     residues_of,
 )
-from ratomega.regulator.pole_bound import ProvedBound
-from ratomega.regulator.pole_engine import PoleEngine, PoleSolver
-from ratomega.regulator.pole_fractions import ConsistencyError, PartialFractions, Term
-from ratomega.regulator.pole_problem import PoleProblem
+from ratomega.regulator.poles.bound import ProvedBound
+from ratomega.regulator.poles.engine import PoleEngine, PoleSolver
+from ratomega.regulator.poles.fractions import ConsistencyError, PartialFractions, Term
+from ratomega.regulator.poles.problem import PoleProblem
 
 __all__ = ["Evidence", "Recovery"]
 

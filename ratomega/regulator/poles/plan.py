@@ -19,8 +19,8 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from ratomega.regulator.pole_lattice import Integers, PolePath, pairs_up_to
-from ratomega.regulator.pole_residues import ResidueLattice
+from ratomega.regulator.poles.lattice import Integers, PolePath, pairs_up_to
+from ratomega.regulator.poles.residues import ResidueLattice
 
 __all__ = ["NOT_NEEDED", "Windows"]
 

@@ -10,7 +10,7 @@ from __future__ import annotations
 import numpy as np
 
 from ratomega.exact.residues import Floats, Moduli
-from ratomega.regulator.fast_factors import (
+from ratomega.regulator.fast.factors import (
     Bench,
     Parameters,
     box_factors,
@@ -20,8 +20,8 @@ from ratomega.regulator.fast_factors import (
     pair_factors,
     tree_products,
 )
-from ratomega.regulator.fast_setup import FastSetup
-from ratomega.regulator.fast_tables import Forest, Integers, box_arrays, box_list
+from ratomega.regulator.fast.setup import FastSetup
+from ratomega.regulator.fast.tables import Forest, Integers, box_arrays, box_list
 
 __all__ = ["one_colour", "two_colours"]
 

@@ -12,7 +12,7 @@ from dataclasses import dataclass
 
 from ratomega.errors import RatomegaError
 from ratomega.exact.rational import ZERO, Rational
-from ratomega.regulator.pole_lattice import pairs_up_to
+from ratomega.regulator.poles.lattice import pairs_up_to
 
 __all__ = ["ConsistencyError", "PartialFractions", "PoleLayout", "Term"]
 

@@ -30,7 +30,7 @@ from ratomega.diagrams.tuples import coloured_partitions
 from ratomega.errors import RatomegaError
 from ratomega.exact.rational import Rational
 from ratomega.exact.residues import BadPrimes, Floats, Moduli, residues_of
-from ratomega.regulator.fast_setup import FastSetup
+from ratomega.regulator.fast.setup import FastSetup
 
 __all__ = ["Bound", "check_proof", "multiplicity", "proof_bound"]
 

@@ -15,8 +15,8 @@ import numpy as np
 
 from ratomega.exact.rational import Rational
 from ratomega.exact.residues import Floats, Moduli, residues_of
-from ratomega.regulator.pole_lattice import Integers, PolePath, even_at, pairs_up_to
-from ratomega.regulator.pole_problem import PoleMatter
+from ratomega.regulator.poles.lattice import Integers, PolePath, even_at, pairs_up_to
+from ratomega.regulator.poles.problem import PoleMatter
 
 __all__ = ["ResidueLattice"]
 

@@ -1,9 +1,9 @@
 """All coefficients of one node with two or three colours at a rational ratio, exactly, from residues.
 
-``applies`` says whether the fast sums serve a setting; ``fast_sum`` computes. Where no single weight diverges up to
-the charge the weights are summed at the limit point (``fast_generic``), otherwise the limit is taken
-(``fast_limit``, ``fast_three``). The answer carries the bits that confirm it (``fast_collect``), or is proved
-(``fast_proof``).
+``applies`` says whether the fast sums serve a setting; ``sum`` computes. Where no single weight diverges up to
+the charge the weights are summed at the limit point (``generic``), otherwise the limit is taken
+(``limit``, ``three``). The answer carries the bits that confirm it (``collect``), or is proved
+(``proof``).
 """
 
 from __future__ import annotations
@@ -16,14 +16,14 @@ from ratomega.diagrams.tuples import count_all
 from ratomega.errors import InputError
 from ratomega.exact.rational import ONE, Rational
 from ratomega.exact.residues import Floats, Moduli
-from ratomega.regulator.fast_collect import Collected, bits_needed, collect, residues_beyond
-from ratomega.regulator.fast_generic import two_colours
-from ratomega.regulator.fast_layout import Layout
-from ratomega.regulator.fast_limit import two_colours_limit
-from ratomega.regulator.fast_proof import check_proof, proof_bound
-from ratomega.regulator.fast_setup import FastSetup, applies, prepare
-from ratomega.regulator.fast_tables import Forest
-from ratomega.regulator.fast_three import three_colours, three_colours_limit
+from ratomega.regulator.fast.collect import Collected, bits_needed, collect, residues_beyond
+from ratomega.regulator.fast.generic import two_colours
+from ratomega.regulator.fast.layout import Layout
+from ratomega.regulator.fast.limit import two_colours_limit
+from ratomega.regulator.fast.proof import check_proof, proof_bound
+from ratomega.regulator.fast.setup import FastSetup, applies, prepare
+from ratomega.regulator.fast.tables import Forest
+from ratomega.regulator.fast.three import three_colours, three_colours_limit
 
 __all__ = ["FastSum", "applies", "fast_sum", "worthwhile"]
 
@@ -64,10 +64,10 @@ def fast_sum(setting: Setting, charge: int, *, certify: bool = False) -> FastSum
     """The coefficients up to ``charge`` at the limit point.
 
     Normalised as the general engine: Z_0 = 1, one weight per configuration. With ``certify`` the residues are taken
-    modulo so many primes that a proved bound (``fast_proof``) leaves one answer; that takes ten to twenty times longer.
+    modulo so many primes that a proved bound (``proof``) leaves one answer; that takes ten to twenty times longer.
 
     Raises ``InputError`` with the reason when the fast sums do not apply, ``RatomegaError`` when certification refutes
-    what was found. Cost: see ``fast_generic``, ``fast_limit`` and ``fast_three``, times the number of primes, which
+    what was found. Cost: see ``generic``, ``limit`` and ``three``, times the number of primes, which
     grows with the digits of the answer.
 
     >>> from ratomega.case.setting import NodeSetting

@@ -19,7 +19,7 @@ import numpy as np
 from ratomega.errors import RatomegaError
 from ratomega.exact.rational import ONE, Rational
 from ratomega.exact.residues import BadPrimes, Floats, Moduli, PrimeSource, combine, reconstruct, residues_of
-from ratomega.regulator.fast_setup import FastSetup
+from ratomega.regulator.fast.setup import FastSetup
 
 __all__ = ["SPARE_BITS", "Collected", "bits_needed", "collect", "new_poles", "residues_beyond"]
 

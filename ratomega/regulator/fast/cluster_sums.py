@@ -12,9 +12,9 @@ from dataclasses import dataclass
 import numpy as np
 
 from ratomega.exact.residues import Floats, Moduli
-from ratomega.regulator.fast_factors import Bench, Parameters, pair_factors
-from ratomega.regulator.fast_setup import FastSetup
-from ratomega.regulator.fast_tables import Forest, Integers
+from ratomega.regulator.fast.factors import Bench, Parameters, pair_factors
+from ratomega.regulator.fast.setup import FastSetup
+from ratomega.regulator.fast.tables import Forest, Integers
 
 __all__ = ["Clusters", "pair_constants"]
 

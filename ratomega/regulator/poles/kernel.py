@@ -13,8 +13,8 @@ from dataclasses import dataclass
 import numpy as np
 
 from ratomega.exact.residues import Floats, Moduli
-from ratomega.regulator.pole_lattice import Form, Integers
-from ratomega.regulator.pole_scratch import Scratch
+from ratomega.regulator.poles.lattice import Form, Integers
+from ratomega.regulator.poles.scratch import Scratch
 
 __all__ = ["Kernel"]
 

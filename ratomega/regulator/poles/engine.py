@@ -16,15 +16,15 @@ import numpy as np
 from numpy.lib.stride_tricks import as_strided
 
 from ratomega.exact.residues import Floats, Moduli, longest_dot
-from ratomega.regulator.pole_fractions import ConsistencyError, PoleLayout
-from ratomega.regulator.pole_kernel import Kernel
-from ratomega.regulator.pole_lattice import PolePath
-from ratomega.regulator.pole_plan import Windows
-from ratomega.regulator.pole_principal import PrincipalParts
-from ratomega.regulator.pole_problem import PoleProblem
-from ratomega.regulator.pole_residues import ResidueLattice
-from ratomega.regulator.pole_schedule import Group, Schedule, Step
-from ratomega.regulator.pole_scratch import Scratch
+from ratomega.regulator.poles.fractions import ConsistencyError, PoleLayout
+from ratomega.regulator.poles.kernel import Kernel
+from ratomega.regulator.poles.lattice import PolePath
+from ratomega.regulator.poles.plan import Windows
+from ratomega.regulator.poles.principal import PrincipalParts
+from ratomega.regulator.poles.problem import PoleProblem
+from ratomega.regulator.poles.residues import ResidueLattice
+from ratomega.regulator.poles.schedule import Group, Schedule, Step
+from ratomega.regulator.poles.scratch import Scratch
 
 __all__ = ["PoleEngine", "PoleSolver"]
 

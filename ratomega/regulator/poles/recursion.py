@@ -1,12 +1,12 @@
 """The pole route: U(2) with up to four flavours or an adjoint, exact at any rational ratio, to high charge.
 
-The recursion over the poles in a (``pole_series`` has the formulas) costs a power of the charge where the sum over
+The recursion over the poles in a (``series`` has the formulas) costs a power of the charge where the sum over
 pairs of diagrams grows exponentially in its square root. It is run in one of two ways: directly in exact Laurent
-series for small charges, or modulo many primes (``pole_engine``). What is found again from its residues are the
+series for small charges, or modulo many primes (``engine``). What is found again from its residues are the
 coefficients of the partial fractions of W in a^2: they do not depend on a and are several times shorter than W at a
 definite a, so fewer primes do, and every a costs next to nothing afterwards. The answer says how many bits of the
 modulus were left over and which further prime confirmed it; with ``certify`` so many primes are taken that a proved
-bound on W (``pole_bound``) leaves no other answer.
+bound on W (``bound``) leaves no other answer.
 
 Nothing here is shared with the sum over diagrams, except exact arithmetic.
 """
@@ -18,10 +18,10 @@ from dataclasses import dataclass
 
 from ratomega.errors import InputError
 from ratomega.exact.rational import ONE, Rational
-from ratomega.regulator.pole_fractions import PartialFractions
-from ratomega.regulator.pole_problem import PoleProblem, pole_sentence
-from ratomega.regulator.pole_recovery import Evidence, Recovery
-from ratomega.regulator.pole_series import regular_functions
+from ratomega.regulator.poles.fractions import PartialFractions
+from ratomega.regulator.poles.problem import PoleProblem, pole_sentence
+from ratomega.regulator.poles.recovery import Evidence, Recovery
+from ratomega.regulator.poles.series import regular_functions
 
 __all__ = ["Evidence", "PoleFunctions", "PoleResult", "pole_coefficients", "pole_functions"]
 
@@ -72,7 +72,7 @@ def pole_functions(problem: PoleProblem, charge: int, *, exact: bool | None = No
     ``exact`` chooses exact series (True) or primes (False); by default the charge decides.
     Cost: measured by ``python -m benchmarks.poles``.
 
-    >>> from ratomega.regulator.pole_problem import mixed_problem
+    >>> from ratomega.regulator.poles.problem import mixed_problem
     >>> pole_functions(mixed_problem(ONE, ONE, ONE), 2).functions[2].terms[0]
     Term(square=4, power=1, coefficient=1)
     """
@@ -95,7 +95,7 @@ def pole_coefficients(
     Raises ``InputError`` when a1 - a2 sits at a pole: there the limit can be infinite or depend on the path.
     Cost: measured by ``python -m benchmarks poles``.
 
-    >>> from ratomega.regulator.pole_problem import mixed_problem
+    >>> from ratomega.regulator.poles.problem import mixed_problem
     >>> result = pole_coefficients(mixed_problem(ONE, ONE, Rational(-1, 4)), 4)     # a = i/2
     >>> result.coefficients
     (1, 2/5, 7/100, 313/43350, 498379/996356400)

@@ -16,8 +16,8 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from ratomega.regulator.pole_lattice import Integers
-from ratomega.regulator.pole_plan import Windows
+from ratomega.regulator.poles.lattice import Integers
+from ratomega.regulator.poles.plan import Windows
 
 __all__ = ["Group", "Schedule", "Step"]
 

@@ -7,7 +7,7 @@ from math import comb
 import numpy as np
 
 from ratomega.exact.residues import EXACT_LIMIT, Floats
-from ratomega.regulator.fast_factors import Bench
+from ratomega.regulator.fast.factors import Bench
 
 __all__ = ["exponential"]
 

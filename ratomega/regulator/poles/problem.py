@@ -24,7 +24,7 @@ from ratomega.case.setting import NodeSetting
 from ratomega.errors import InputError
 from ratomega.exact.quadratic import only_rational
 from ratomega.exact.rational import ONE, ZERO, Rational, common_denominator
-from ratomega.regulator.pole_dressing import Dressing, NomeExponents
+from ratomega.regulator.poles.dressing import Dressing, NomeExponents
 
 __all__ = [
     "PoleMatter",

@@ -8,7 +8,7 @@ from math import factorial
 import numpy as np
 
 from ratomega.exact.residues import Floats, Moduli
-from ratomega.regulator.fast_factors import (
+from ratomega.regulator.fast.factors import (
     Bench,
     Parameters,
     box_factors,
@@ -18,10 +18,10 @@ from ratomega.regulator.fast_factors import (
     tree_products,
     whole,
 )
-from ratomega.regulator.fast_layout import Layout
-from ratomega.regulator.fast_powers import box_shifts, hook_shifts, power_sums
-from ratomega.regulator.fast_setup import FastSetup
-from ratomega.regulator.fast_tables import Integers, box_arrays
+from ratomega.regulator.fast.layout import Layout
+from ratomega.regulator.fast.powers import box_shifts, hook_shifts, power_sums
+from ratomega.regulator.fast.setup import FastSetup
+from ratomega.regulator.fast.tables import Integers, box_arrays
 
 __all__ = ["Single", "inverse_factorials", "singles"]
 

@@ -7,10 +7,10 @@ from dataclasses import dataclass
 import numpy as np
 
 from ratomega.exact.residues import Floats
-from ratomega.regulator.fast_clusters import Clusters
-from ratomega.regulator.fast_factors import hook_forms
-from ratomega.regulator.fast_setup import FastSetup
-from ratomega.regulator.fast_tables import Forest, Integers, box_list
+from ratomega.regulator.fast.cluster_sums import Clusters
+from ratomega.regulator.fast.factors import hook_forms
+from ratomega.regulator.fast.setup import FastSetup
+from ratomega.regulator.fast.tables import Forest, Integers, box_list
 
 __all__ = ["Layout", "group_starts"]
 

@@ -14,7 +14,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from ratomega.exact.rational import Rational
-from ratomega.regulator.pole_problem import PoleMatter
+from ratomega.regulator.poles.problem import PoleMatter
 
 __all__ = ["Form", "Integers", "PolePath", "denominator_points", "even_at", "numerator_points", "pairs_up_to"]
 

@@ -5,7 +5,7 @@ For U(2) with x = a1 - a2 the regular part W of Z obeys, at generic eps1, eps2,
     W_k(x) = delta_k0 + sum_{m n <= k} 2 R_mn / ((m eps1 + n eps2)^2 - x^2) W_{k - mn}(m eps1 - n eps2),
     R_mn = prod_{p,r} P((p eps1 + r eps2)/2) / prod' (i eps1 + j eps2)
 
-(Al. Zamolodchikov 1984, 1987; R. Poghossian 2009; the products are those of ``pole_lattice``). At a rational ratio
+(Al. Zamolodchikov 1984, 1987; R. Poghossian 2009; the products are those of ``lattice``). At a rational ratio
 the poles collide. On a path that leaves the ratio every quantity is a Laurent series in t; the singular parts cancel
 in W and its coefficient of t^0 is the limit. Nothing is planned here: each series carries its own precision, and the
 work is done again with longer series if that was not enough.
@@ -17,8 +17,8 @@ from ratomega.errors import PrecisionError
 from ratomega.exact.laurent import Laurent
 from ratomega.exact.quadratic import only_rational
 from ratomega.exact.rational import ONE, ZERO
-from ratomega.regulator.pole_fractions import ConsistencyError, PartialFractions, Term
-from ratomega.regulator.pole_lattice import (
+from ratomega.regulator.poles.fractions import ConsistencyError, PartialFractions, Term
+from ratomega.regulator.poles.lattice import (
     Form,
     PolePath,
     denominator_points,
@@ -26,7 +26,7 @@ from ratomega.regulator.pole_lattice import (
     numerator_points,
     pairs_up_to,
 )
-from ratomega.regulator.pole_problem import PoleMatter, PoleProblem
+from ratomega.regulator.poles.problem import PoleMatter, PoleProblem
 
 __all__ = ["regular_functions", "residue_series"]
 
@@ -39,7 +39,7 @@ def regular_functions(problem: PoleProblem, charge: int) -> tuple[PartialFractio
     The Coulomb parameters of the problem do not matter. Raises ``ConsistencyError`` if a singular part of W survives,
     which the theory excludes. Cost: about charge^5 operations on fractions that grow; fine below charge 20.
 
-    >>> from ratomega.regulator.pole_problem import mixed_problem
+    >>> from ratomega.regulator.poles.problem import mixed_problem
     >>> functions = regular_functions(mixed_problem(ONE, ONE, ZERO), 2)
     >>> functions[1].terms
     (Term(square=4, power=1, coefficient=2),)
