@@ -19,8 +19,9 @@ from ratomega.diagrams.young import diagrams_of_size, transpose
 from ratomega.errors import InputError, RatomegaError
 from ratomega.exact.rational import Rational
 from ratomega.exact.residues import Moduli
-from ratomega.regulator import fast, fast_clusters, fast_collect, fast_generic, fast_layout, fast_limit, fast_three
 from ratomega.regulator.direct import direct_total
+from ratomega.regulator.fast import cluster_sums, collect, generic, layout, limit, three
+from ratomega.regulator.fast import sums as fast
 from ratomega.regulator.fast.bell import exponential
 from ratomega.regulator.fast.factors import Bench
 from ratomega.regulator.fast.proof import multiplicity, proof_bound
@@ -333,12 +334,12 @@ def test_bad_primes_are_replaced(monkeypatch) -> None:
     setting = setting_of("1", antifundamental=["1/3"])
     expected = fast_sum(setting, 5).coefficients
 
-    class Small(fast_collect.PrimeSource):
+    class Small(collect.PrimeSource):
         def __init__(self, bits):
             super().__init__(bits)
             self._ready = [7, 11, 13, 1000003, 1000033]
 
-    monkeypatch.setattr(fast_collect, "PrimeSource", Small)
+    monkeypatch.setattr(collect, "PrimeSource", Small)
     answer = fast_sum(setting, 5)
     assert answer.coefficients == expected
 
@@ -372,12 +373,12 @@ def unhalved(forest):
     return np.where(weights == 1.0, 2.0, weights)
 
 
-MIRROR_WEIGHTS = fast_layout._mirror_weights
+MIRROR_WEIGHTS = layout._mirror_weights
 
 FAULTS = {
-    "window": [(fast_limit, "exponential", one_short), (fast_three, "exponential", one_short)],
-    "depth": [(fast_clusters, "_orders", shallow(fast_clusters._orders))],
-    "halving": [(fast_layout, "_mirror_weights", unhalved)],
+    "window": [(limit, "exponential", one_short), (three, "exponential", one_short)],
+    "depth": [(cluster_sums, "_orders", shallow(cluster_sums._orders))],
+    "halving": [(layout, "_mirror_weights", unhalved)],
 }
 
 
@@ -397,7 +398,7 @@ def test_faults_change_the_answer(fault, coulomb, monkeypatch) -> None:
 def test_exchanging_the_diagrams_is_no_symmetry(monkeypatch) -> None:
     """Doubling the pairs with |small| < |big| instead of running both passes is wrong at charge 1 already."""
     setting = setting_of("103/71", antifundamental=["1/3"])
-    right = fast_generic._pass
+    right = generic._pass
 
     def doubled(big, small, table, sign, *rest):
         if sign < 0:
@@ -405,7 +406,7 @@ def test_exchanging_the_diagrams_is_no_symmetry(monkeypatch) -> None:
         else:
             right(big, small, table, sign, *rest)
 
-    monkeypatch.setattr(fast_generic, "_pass", doubled)
+    monkeypatch.setattr(generic, "_pass", doubled)
     assert list(fast_sum(setting, 1).coefficients) != plain_limits(setting, 1)
 
 
@@ -459,7 +460,7 @@ def test_certification_refutes_a_wrong_coefficient(ratio, monkeypatch) -> None:
         def wrong(*given, k=k, change=change):
             found = right(*given)
             values = [z + change * (n == k) for n, z in enumerate(found.coefficients)]
-            return fast_collect.Collected(tuple(values), found.spare_bits, found.primes)
+            return collect.Collected(tuple(values), found.spare_bits, found.primes)
 
         monkeypatch.setattr(fast, "_collected", wrong)
         with pytest.raises(RatomegaError, match=f"charge {k}"):
@@ -499,7 +500,7 @@ def test_power_sums_keep_their_bound(ratio, coulomb, top, monkeypatch) -> None:
         assert half >= max(bench.moduli.primes) / 2
         return exponential(sums, bound, half, bench)
 
-    for module in (fast_limit, fast_three):
+    for module in (limit, three):
         monkeypatch.setattr(module, "exponential", watched)
     fast_sum(setting_of(ratio, coulomb), top)
     # The bound is no idle one.
@@ -508,12 +509,12 @@ def test_power_sums_keep_their_bound(ratio, coulomb, top, monkeypatch) -> None:
 
 def test_the_prime_that_is_kept_out_must_agree() -> None:
     setup = fast.prepare(setting_of("103/71"))
-    primes = list(fast_collect.PrimeSource(26).take(12))
-    table = fast_generic.two_colours(setup, fast_layout.Forest.make(3), Moduli.make(primes, last=True))
+    primes = list(collect.PrimeSource(26).take(12))
+    table = generic.two_colours(setup, layout.Forest.make(3), Moduli.make(primes, last=True))
     found: list[Rational] = []
-    fast_collect._extend(setup, 3, table, primes, found, [])
+    collect._extend(setup, 3, table, primes, found, [])
     assert len(found) == 4
     table[2, -1] += 1
     found.clear()
-    fast_collect._extend(setup, 3, table, primes, found, [])
+    collect._extend(setup, 3, table, primes, found, [])
     assert len(found) == 2

@@ -10,7 +10,7 @@ from flint import fmpq
 from pole_oracle import limit
 
 from ratomega.exact.residues import Moduli, PrimeSource, residues_of
-from ratomega.regulator import pole_engine, pole_plan, pole_recovery, pole_schedule
+from ratomega.regulator.poles import engine, plan, recovery, schedule
 from ratomega.regulator.poles.bound import ProvedBound
 from ratomega.regulator.poles.engine import PoleEngine, PoleSolver
 from ratomega.regulator.poles.fractions import ConsistencyError
@@ -158,24 +158,24 @@ def test_the_engine_at_charges_around_the_sizes_of_its_blocks(ratio, charge):
 @pytest.mark.parametrize(("width", "spread", "block"), [(1, 1, 1), (5, 2, 4), (200, 50, 64)])
 @pytest.mark.parametrize("ratio", RATIOS, ids=str)
 def test_the_schedule_does_not_change_the_result(ratio, width, spread, block, monkeypatch):
-    monkeypatch.setattr(pole_schedule, "WIDTH", width)
-    monkeypatch.setattr(pole_schedule, "SPREAD", spread)
-    monkeypatch.setattr(pole_schedule, "LONGEST_BLOCK", block)
+    monkeypatch.setattr(schedule, "WIDTH", width)
+    monkeypatch.setattr(schedule, "SPREAD", spread)
+    monkeypatch.setattr(schedule, "LONGEST_BLOCK", block)
     assert agree(ratio, "two", 13)
 
 
 @pytest.mark.parametrize("ratio", [(1, 1), (1, 2)], ids=str)
 def test_sums_that_must_be_reduced_early(ratio, monkeypatch):
     # As if the sums were near 2^53 all the time.
-    monkeypatch.setattr(pole_engine, "_longest_sum", lambda moduli, *, mirror: 12)
+    monkeypatch.setattr(engine, "_longest_sum", lambda moduli, *, mirror: 12)
     assert agree(ratio, "four", 12)
 
 
 @pytest.mark.parametrize("mirror", [False, True])
 def test_sums_stay_exact_however_many_products_come(mirror):
     primes = PrimeSource().take(2)
-    sums = pole_engine._Sums(Moduli.make(primes), np.zeros((2, 4, 3, 5)), -1, mirror)
-    step = pole_schedule.Step(begin=5, end=7, first=-1, count=2, stride=2, rows=4, low=-1)
+    sums = engine._Sums(Moduli.make(primes), np.zeros((2, 4, 3, 5)), -1, mirror)
+    step = schedule.Step(begin=5, end=7, first=-1, count=2, stride=2, rows=4, low=-1)
     largest = sums.longest * (primes[0] // 2) ** 2 * (2 if mirror else 1) - 3
     for _ in range(7):
         sums.add(step, np.full((2, 4, 4), float(largest)), sums.longest)
@@ -206,33 +206,33 @@ FAULTY_RATIOS = [(1, 1), (1, -1), (1, 2), (3, -2)]
 
 @pytest.mark.parametrize("ratio", FAULTY_RATIOS, ids=str)
 def test_a_lower_end_one_too_high_is_seen(ratio, monkeypatch):
-    true_ends = pole_plan._lower_ends
+    true_ends = plan._lower_ends
 
     def faulty(*arguments):
         low = true_ends(*arguments)
         return np.where(low < 0, low + 1, low)
 
-    monkeypatch.setattr(pole_plan, "_lower_ends", faulty)
+    monkeypatch.setattr(plan, "_lower_ends", faulty)
     assert seen(ratio)
 
 
 @pytest.mark.parametrize("ratio", FAULTY_RATIOS, ids=str)
 def test_an_upper_end_one_too_low_is_seen(ratio, monkeypatch):
-    true_ends = pole_plan._upper_ends
+    true_ends = plan._upper_ends
 
     def faulty(*arguments):
         need = true_ends(*arguments)
         return np.where(need > 0, need - 1, need)
 
-    monkeypatch.setattr(pole_plan, "_upper_ends", faulty)
+    monkeypatch.setattr(plan, "_upper_ends", faulty)
     assert seen(ratio)
 
 
 @pytest.mark.parametrize("ratio", FAULTY_RATIOS, ids=str)
 def test_forgetting_that_a_kernel_can_be_singular_is_seen(ratio, monkeypatch):
-    true_ends = pole_plan._upper_ends
+    true_ends = plan._upper_ends
     monkeypatch.setattr(
-        pole_plan, "_upper_ends", lambda weight, valuation, hits, charge: true_ends(weight, valuation, 0 * hits, charge)
+        plan, "_upper_ends", lambda weight, valuation, hits, charge: true_ends(weight, valuation, 0 * hits, charge)
     )
     assert seen(ratio)
 
@@ -240,14 +240,14 @@ def test_forgetting_that_a_kernel_can_be_singular_is_seen(ratio, monkeypatch):
 @pytest.mark.parametrize("ratio", FAULTY_RATIOS, ids=str)
 def test_kernel_tables_two_powers_too_short_are_seen(ratio, monkeypatch):
     # Two, because the tables are rectangles around what is needed: their last power alone can meet nothing but zeros.
-    true_group = pole_schedule._group
+    true_group = schedule._group
 
     def faulty(*arguments):
         group = true_group(*arguments)
         group.depth[-2:] = 0
         return group
 
-    monkeypatch.setattr(pole_schedule, "_group", faulty)
+    monkeypatch.setattr(schedule, "_group", faulty)
     assert seen(ratio)
 
 
@@ -338,7 +338,7 @@ def test_the_search_is_the_same_every_time():
 def test_batches_of_any_size_give_the_same(monkeypatch):
     problem = problem_of((1, 2), MATTER["two"])
     whole = pole_coefficients(problem, 12, exact=False)
-    monkeypatch.setattr(pole_recovery, "BATCH_BYTES", 1)
+    monkeypatch.setattr(recovery, "BATCH_BYTES", 1)
     assert pole_coefficients(problem, 12, exact=False) == whole
     solver = PoleSolver(PoleEngine.make(problem, 5), 2)
     with pytest.raises(ValueError, match="2 primes at a time, not 3"):
