@@ -16,7 +16,7 @@ import time
 
 import ratomega
 from benchmarks.measure import RUNS, Pace, Report, Row, Times, load
-from ratomega.pipeline import Job
+from ratomega.job import Job
 
 QUESTION = "two workers against one, the same bytes"
 NODE = {"coulomb": ["1", "-1"], "antifundamental": ["1/2", "1/5"]}

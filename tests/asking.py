@@ -8,7 +8,7 @@ from building import plain_values
 import ratomega
 from ratomega.case.setting import own_setting
 from ratomega.diagrams.tuples import count_all
-from ratomega.pipeline import Job
+from ratomega.job import Job
 from ratomega.validator.identities.siblings import is_smooth
 
 

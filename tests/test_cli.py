@@ -257,14 +257,14 @@ def test_the_limit_on_configurations_can_be_raised():
 
 INTERRUPT = """
 import os, signal, sys
-from ratomega import pipeline
+from ratomega import job
 from ratomega.cli.main import main
-plain = pipeline.charge_limit
+plain = job.charge_limit
 def stopping(weights, charge, *rest, **options):
     if sum(charge) == 2:
         os.kill(os.getpid(), signal.SIGINT)
     return plain(weights, charge, *rest, **options)
-pipeline.charge_limit = stopping
+job.charge_limit = stopping
 main(["limit", "b1-four-flavours", "--json"])
 """
 

@@ -24,6 +24,7 @@ LAYERS = [
     {"results"},
     {"reports"},
     {"workers"},
+    {"job"},
     {"pipeline"},
     {"atlas_documents"},
     {"documents"},

@@ -26,10 +26,9 @@ from ratomega.diagrams.tuples import Charge
 from ratomega.documents import Result, error_document, to_json
 from ratomega.errors import InputError, RatomegaError, WorkerError
 from ratomega.exact.rational import exact_text
+from ratomega.job import MOST_CONFIGURATIONS, Job
 from ratomega.pipeline import (
     DEFAULT_PROBES,
-    MOST_CONFIGURATIONS,
-    Job,
     detect_result,
     limit_result,
     validate_result,

@@ -16,7 +16,8 @@ from ratomega.case.setting import own_setting
 from ratomega.cli.main import cli
 from ratomega.exact.quadratic import square_root
 from ratomega.exact.rational import Rational
-from ratomega.pipeline import Job, limit_result
+from ratomega.job import Job
+from ratomega.pipeline import limit_result
 from ratomega.symbolic import functions as functions_module
 from ratomega.symbolic.functions import Functions, direct_evaluator
 from ratomega.symbolic.structure import even_symbols, structure

@@ -8,7 +8,8 @@ from building import make_case
 
 import ratomega
 from ratomega.errors import InputError
-from ratomega.pipeline import Job, limit_result
+from ratomega.job import Job
+from ratomega.pipeline import limit_result
 from ratomega.workers import charges
 from ratomega.workers.cluster import cluster_hands
 

@@ -17,7 +17,7 @@ import ratomega
 from ratomega.diagrams.tuples import count_configurations
 from ratomega.errors import InputError, PathError, Problem, WorkerError
 from ratomega.exact.laurent import Laurent
-from ratomega.pipeline import Job
+from ratomega.job import Job
 from ratomega.regulator.direct import ChargeSum, ClusterSum, direct_sum, merged
 from ratomega.weights import Weights
 from ratomega.workers import charges
