@@ -12,6 +12,8 @@
 The public API in one screen; nothing is defined here.
 """
 
+from ratomega.average_results import Average, AverageResult
+from ratomega.averaging import average
 from ratomega.case.bundled import bundled_names
 from ratomega.case.case import Case
 from ratomega.case.reading import load_case
@@ -25,6 +27,8 @@ from ratomega.validator.verdict import Check, Kind, Verdict
 from ratomega.version import VERSION as __version__
 
 __all__ = [
+    "Average",
+    "AverageResult",
     "Case",
     "Check",
     "Coefficient",
@@ -41,6 +45,7 @@ __all__ = [
     "Verdict",
     "WorkerError",
     "__version__",
+    "average",
     "bundled_names",
     "clusters",
     "detect",
