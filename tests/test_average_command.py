@@ -29,7 +29,9 @@ def small(name):
 
 
 @pytest.mark.parametrize("of", KINDS)
-@pytest.mark.parametrize("name", [n for n in ratomega.bundled_names() if not ratomega.load_case(n).symbols])
+@pytest.mark.parametrize(
+    "name", ["u1-two-flavours", "u3-pure", "two-ranks", "imaginary-momenta", "surviving-pole", "path-dependent"]
+)
 def test_every_result_reads_back_equal(name, of):
     result = ratomega.average(small(name), of=of, powers=2)
     text = ratomega.to_json(result)

@@ -4,11 +4,11 @@ from __future__ import annotations
 
 from fractions import Fraction as F
 
+import plain
 import plain_averages as reference
 import pytest
-from building import make_case, plain_theory
+from building import make_case, plain_theory, plain_values
 from flint import fmpq
-from plain import Line
 
 import ratomega
 from ratomega import weights as weights_module
@@ -16,6 +16,7 @@ from ratomega.averages import functions
 from ratomega.averages.characters import character_terms, is_linear
 from ratomega.case.setting import own_setting
 from ratomega.exact.rational import as_fraction
+from ratomega.validator import regularity
 from ratomega.validator.regularity import (
     Regular,
     check_dyson_schwinger,
@@ -162,12 +163,12 @@ def test_the_polynomial_of_one_node_is_the_plain_average(eps):
     theory = plain_theory(own_setting(case))
     shift = theory["eps1"] + theory["eps2"]
     for x in (fmpq(29, 3), fmpq(-31, 5)):
-        above = reference.product_sums(theory, lambda c, x=x: reference.y_factors(theory, c, 0, Line(x) + shift))
+        above = reference.product_sums(theory, lambda c, x=x: reference.y_factors(theory, c, 0, plain.Line(x) + shift))
 
         def below(c, x=x):
             node = theory["nodes"][0]
-            masses = [Line(x) + m for m in node["antifundamental"]] + [Line(x) + shift - m for m in node["fundamental"]]
-            return [*reference.y_factors(theory, c, 0, x, -1), *((m, 1) for m in masses)]
+            masses = [*node["antifundamental"], *(shift - m for m in node["fundamental"])]
+            return [*reference.y_factors(theory, c, 0, x, -1), *((plain.Line(x) + m, 1) for m in masses)]
 
         inverse = reference.product_sums(theory, below)
         for charge, function in polynomials(case).items():
@@ -188,7 +189,7 @@ def test_the_polynomials_of_two_nodes_are_the_plain_averages(eps, node):
     case = two_nodes(eps, ranks, charge=2)
     theory = plain_theory(own_setting(case))
     e, m = theory["eps1"] + theory["eps2"], theory["edges"][0][2]
-    x, other = Line(fmpq(29, 3)), 1 - node
+    x, other = plain.Line(fmpq(29, 3)), 1 - node
     m = m if node == 0 else e - m
     # Factors by which a term with q1 or with q1 q2 changes sign when the edge is reversed.
     flip = 1 if node == 0 else (-1) ** ranks[other]
@@ -373,3 +374,18 @@ def test_a_wrong_sign_of_one_mass_is_noticed():
     assert refuted(tampered(case, wrong), case) == set(NAMES)
     # The second trace holds configuration by configuration: it looks at no weight.
     assert check_trace_square(tampered(case, wrong), case.charges, 0).verdict is Verdict.AGREES
+
+
+def test_a_wrong_coefficient_of_a_polynomial_is_noticed(monkeypatch):
+    """T without poles, and not what log Z says: here log Z is off by a factor."""
+    case = one_node(("1", "1"), 2, 4, 2)
+    regular = Regular(weights_of(case), case.charges, 0)
+    assert check_regular_coefficients(regular).verdict is Verdict.AGREES
+    right = regularity.size_sums
+    monkeypatch.setattr(
+        regularity, "size_sums", lambda *known: lambda k, last: [z.scaled(2) for z in right(*known)(k, last)]
+    )
+    check = check_regular_coefficients(regular)
+    assert check.verdict is Verdict.REFUTED
+    value, size = regular.at((1,)).leading.at(fmpq(0)), plain.coefficient(plain_values(own_setting(case)), (1,))
+    assert check.evidence == f"charge 1: T(0) is {value}, not {value + size}"
