@@ -17,6 +17,7 @@ from ratomega.averaging import average
 from ratomega.case.bundled import bundled_names
 from ratomega.case.case import Case
 from ratomega.case.reading import load_case
+from ratomega.detector.atlas import Atlas, atlas
 from ratomega.documents import load_result, to_json
 from ratomega.errors import InputError, PathError, Problem, RatomegaError, WorkerError
 from ratomega.exact.quadratic import Quadratic
@@ -27,6 +28,7 @@ from ratomega.validator.verdict import Check, Kind, Verdict
 from ratomega.version import VERSION as __version__
 
 __all__ = [
+    "Atlas",
     "Average",
     "AverageResult",
     "Case",
@@ -45,6 +47,7 @@ __all__ = [
     "Verdict",
     "WorkerError",
     "__version__",
+    "atlas",
     "average",
     "bundled_names",
     "clusters",

@@ -13,10 +13,12 @@ from collections.abc import Callable, Mapping, Sequence
 from pathlib import Path
 from typing import Any
 
+from ratomega.atlas_documents import atlas_document, read_atlas
 from ratomega.average_documents import average_body, read_average
 from ratomega.average_results import AverageResult
 from ratomega.case.case import Case
 from ratomega.case.reading import case_from_mapping, case_to_mapping
+from ratomega.detector.atlas import Atlas
 from ratomega.diagrams.tuples import Configuration
 from ratomega.errors import InputError
 from ratomega.exact.function_text import function_text, parse_function
@@ -41,7 +43,7 @@ from ratomega.validator.verdict import Check, Kind, Verdict
 
 __all__ = ["Result", "error_document", "load_result", "to_document", "to_json"]
 
-Result = LimitResult | DetectResult | ValidateResult | AverageResult
+Result = LimitResult | DetectResult | ValidateResult | AverageResult | Atlas
 Document = dict[str, Any]
 
 LARGEST_DOCUMENT = 512 * 1024 * 1024
@@ -60,6 +62,8 @@ def error_document(error: InputError) -> Document:
 
 def to_document(result: Result) -> Document:
     """The result as plain dictionaries, lists, strings, integers and truth values."""
+    if isinstance(result, Atlas):
+        return atlas_document(result)
     if isinstance(result, LimitResult):
         body: Document = {
             "route": _route(result.route),
@@ -108,6 +112,8 @@ def _text_of(source: str | os.PathLike[str]) -> tuple[str, str]:
 
 
 def _from_document(document: Document) -> Result:
+    if document["result"] == "atlas":
+        return read_atlas(document)
     header = _read_header(document)
     partial = _flag(document["partial"])
     kind = document["result"]
@@ -121,7 +127,7 @@ def _from_document(document: Document) -> Result:
         return ValidateResult(header, tuple(_read_check(c) for c in document["checks"]), partial)
     if kind == "average":
         return read_average(document, header, partial)
-    raise ValueError(f'"result" is {kind!r}, not limit, detect, validate or average')
+    raise ValueError(f'"result" is {kind!r}, not limit, detect, validate, average or atlas')
 
 
 # ---- small pieces, each with its way back ----
@@ -337,6 +343,8 @@ def _cluster(c: ClusterReport, case: Case) -> Document:
         "euler_number": c.euler_number,
         "compact": c.compact,
         "why": c.why,
+        "poincare": None if c.poincare is None else list(c.poincare),
+        "poincare_why": c.poincare_why,
         "members": [_diagrams(member, case) for member in c.members],
     }
     if c.exchanges is not None:
@@ -352,6 +360,8 @@ def _read_cluster(d: Document, case: Case) -> ClusterReport:
         _flag(d["compact"]),
         _word(d["why"]),
         _each(_read_exchange, d["exchanges"]) if "exchanges" in d else None,
+        None if d["poincare"] is None else _each(_number, d["poincare"]),
+        _word(d["poincare_why"]),
     )
 
 

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from ratomega.detector.clusters import Cluster, cluster_graph, find_clusters, tagged_boxes
+from ratomega.detector.poincare import poincare_polynomial
 from ratomega.detector.zeros import Zeros, guilty_factors, scan
 from ratomega.diagrams.tuples import Charge, Configuration
 from ratomega.results import ChargeReport, ClusterReport, Exchange, FactorReport, SingularReport
@@ -28,7 +29,7 @@ def charge_report(weights: Weights, charge: Charge, *, exchanges: int = 0) -> Ch
         vanishing=len(vanishing),
         worst_order=max((zeros.order for zeros in found if zeros.singular), default=0),
         all_clusters=len(grouped),
-        clusters=tuple(_cluster_report(cluster, exchanges) for cluster in guilty),
+        clusters=tuple(_cluster_report(weights, cluster, exchanges) for cluster in guilty),
         singular_configurations=singular,
         indeterminate_configurations=indeterminate,
         vanishing_configurations=vanishing,
@@ -51,15 +52,23 @@ def _factor_report(f: Factor) -> FactorReport:
     return FactorReport(f.multiplet, f.place, f.colours, f.box, f.arm, f.leg, f.form, str(f.value))
 
 
-def _cluster_report(cluster: Cluster, exchanges: int) -> ClusterReport:
+def _cluster_report(weights: Weights, cluster: Cluster, exchanges: int) -> ClusterReport:
     members = tuple(member.configuration for member in cluster.members)
     edges: tuple[Exchange, ...] | None = None
     if 0 < len(members) <= exchanges:
         graph = cluster_graph([cluster], exchanges=True, largest=exchanges)
         place = {member: n for n, member in enumerate(members)}
         edges = tuple(_exchange(place[one], place[two], one, two) for one, two in graph.edges)
+    polynomial = poincare_polynomial(weights, cluster)
     return ClusterReport(
-        cluster.order, members, cluster.dimension, cluster.compactness.compact, cluster.compactness.why, edges
+        cluster.order,
+        members,
+        cluster.dimension,
+        cluster.compactness.compact,
+        cluster.compactness.why,
+        edges,
+        polynomial.coefficients,
+        polynomial.disagreement,
     )
 
 

@@ -184,7 +184,11 @@ class Exchange:
 
 @dataclass(frozen=True, slots=True)
 class ClusterReport:
-    """One cluster with at least one singular member. ``exchanges`` is None unless asked for."""
+    """One cluster with at least one singular member. ``exchanges`` is None unless asked for.
+
+    ``poincare`` holds the coefficients of 1, q, q^2, ... of the Poincaré polynomial of the component in q = t^2; None
+    where the component is not compact, or where ``poincare_why`` says that directions disagree (a fault).
+    """
 
     order: int
     members: tuple[Configuration, ...]
@@ -192,6 +196,8 @@ class ClusterReport:
     compact: bool
     why: str
     exchanges: tuple[Exchange, ...] | None
+    poincare: tuple[int, ...] | None = None
+    poincare_why: str = ""
 
     @property
     def size(self) -> int:

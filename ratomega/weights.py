@@ -85,9 +85,9 @@ class Factor:
         return bool(self.value.constant == 0)
 
 
-@dataclass(frozen=True, slots=True)
+@dataclass(slots=True, eq=False)
 class Weight:
-    """The factored weight of one configuration.
+    """The factored weight of one configuration; treat it as frozen.
 
     ``order`` is vanishing denominators minus vanishing numerators at the limit point, also when the weight is ``dead``:
     when a numerator vanishes all along the path, and the weight with it.
@@ -101,9 +101,13 @@ class Weight:
     @classmethod
     def of(cls, parts: tuple[Factored, ...]) -> Weight:
         """The weight with its bookkeeping: the counts of its parts add up."""
-        down = sum([part.vanishing_down for part in parts])
-        up = sum([part.vanishing_up for part in parts])
-        return cls(parts, down, down - up, any(part.dead for part in parts))
+        down = up = 0
+        dead = False
+        for part in parts:
+            down += part.vanishing_down
+            up += part.vanishing_up
+            dead = dead or part.dead
+        return cls(parts, down, down - up, dead)
 
     def laurent(self, last: int) -> Laurent:
         """The expansion in t, all powers up to ``last``."""
@@ -149,6 +153,9 @@ class Weights:
         self.coulomb = tuple(integer_form(setting.nodes[v].coulomb[c], self.scale) for v, c in self.slots)
         self._starts = [c if isinstance(c, int) else 0 for c, _ in self.coulomb]
         self._contents, self._pairs = self._links()
+        # Slots with the same factors share their parts: all colours of a node that has no flavours.
+        own = [(_roots(self._pairs[n, n]), _roots(self._contents[n])) for n in range(len(self.slots))]
+        self._alike = [own.index(one) for one in own]
         # Pair parts are met again only where a third colour varies beside them.
         self._keep_pairs = len(self.slots) > 2
         self._columns: dict[Diagram, Diagram] = {(): ()}
@@ -230,16 +237,18 @@ class Weights:
         if part is None:
             columns = self.columns(diagram)
             up, down = self._forms(self._pairs[slot, slot], pair_points(diagram, diagram, columns, columns))
-            more, _ = self._forms(self._contents[slot], [(i - 1, j - 1) for i, j in boxes(diagram)])
-            part = self._single[slot, diagram] = Factored.of(up + more, down, self.scale, self.radicand)
+            if self._contents[slot]:
+                up += self._forms(self._contents[slot], [(i - 1, j - 1) for i, j in boxes(diagram)])[0]
+            part = self._single[slot, diagram] = Factored.of(up, down, self.scale, self.radicand)
         return part
 
     def _two(self, first: int, second: int, lam: Diagram, mu: Diagram) -> Factored:
         key = (first, second, lam, mu)
         part = self._double.get(key)
         if part is None:
-            points = pair_points(lam, mu, self.columns(lam), self.columns(mu))
-            up, down = self._forms(self._pairs[first, second], points)
+            known = self._columns
+            columns = known.get(lam) or self.columns(lam), known.get(mu) or self.columns(mu)
+            up, down = self._forms(self._pairs[first, second], pair_points(lam, mu, *columns))
             part = Factored.of(up, down, self.scale, self.radicand)
             if self._keep_pairs:
                 self._double[key] = part
@@ -250,7 +259,7 @@ class Weights:
     def weight(self, configuration: Configuration) -> Weight:
         """The factored weight of one configuration."""
         flat = [diagram for node in configuration for diagram in node]
-        parts = [self._one(slot, diagram) for slot, diagram in enumerate(flat) if diagram]
+        parts = [self._one(slot, diagram) for slot, diagram in zip(self._alike, flat, strict=True) if diagram]
         for first, second in self._pairs:
             if first != second and (flat[first] or flat[second]):
                 parts.append(self._two(first, second, flat[first], flat[second]))
@@ -339,6 +348,10 @@ class Weights:
                     one, two, pp, qq = (second, first, 1 - p, 1 - q) if link.reverse else (first, second, p, q)
                     if link.root[0] + pp * c1 + qq * c2 == 0:
                         yield one, two, pp, qq
+
+
+def _roots(links: list[_Link]) -> list[tuple[Form, int, bool]]:
+    return [(link.root, link.exponent, link.reverse) for link in links]
 
 
 def _integer_parts(value: Whole) -> tuple[int, int]:

@@ -15,6 +15,7 @@ LAYERS = [
     {"exact"},
     {"diagrams"},
     {"case"},
+    {"conformal"},
     {"weights"},
     {"detector"},
     {"regulator"},
@@ -26,6 +27,7 @@ LAYERS = [
     {"reports"},
     {"workers"},
     {"pipeline"},
+    {"atlas_documents"},
     {"averaging"},
     {"average_documents"},
     {"documents"},
@@ -87,6 +89,16 @@ def reached(start):
 
 @pytest.mark.parametrize("path", sorted(ROOT.glob("validator/closed_forms*.py")), ids=lambda p: p.name)
 def test_closed_forms_share_no_code_with_the_sum(path):
+    rooms = {room(found) for found in reached(path)}
+    assert not rooms & {"weights", "detector", "regulator", "pipeline"}
+
+
+IDENTITIES = [p for p in sorted(ROOT.glob("validator/identities/*.py")) if p.stem != "special_clusters"]
+
+
+@pytest.mark.parametrize("path", IDENTITIES, ids=lambda p: p.name)
+def test_identities_share_no_code_with_the_sums(path):
+    """They ask for limits through a function that is given to them."""
     rooms = {room(found) for found in reached(path)}
     assert not rooms & {"weights", "detector", "regulator", "pipeline"}
 

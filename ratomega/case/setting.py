@@ -11,7 +11,7 @@ from __future__ import annotations
 
 import hashlib
 from collections.abc import Iterator, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from itertools import combinations, count
 from math import isqrt
 
@@ -55,6 +55,8 @@ class Setting:
     nodes: tuple[NodeSetting, ...]
     edges: tuple[tuple[int, int, Linear], ...]
     tilts: tuple[tuple[str, Tilt], ...] = ()
+    # Written once: it stands beside the result of every charge.
+    _text: str = field(default="", init=False, repr=False, compare=False)
 
     @property
     def ranks(self) -> tuple[int, ...]:
@@ -66,10 +68,12 @@ class Setting:
 
     def text(self) -> str:
         """The path in one line, as it stands beside every result."""
-        parts = [f"eps1 = {self.eps1}", f"eps2 = {self.eps2}"]
-        for node in self.nodes:
-            parts.append(f"{node.name}: a = ({', '.join(str(a) for a in node.coulomb)})")
-        return "; ".join(parts)
+        if not self._text:
+            parts = [f"eps1 = {self.eps1}", f"eps2 = {self.eps2}"]
+            for node in self.nodes:
+                parts.append(f"{node.name}: a = ({', '.join(str(a) for a in node.coulomb)})")
+            object.__setattr__(self, "_text", "; ".join(parts))
+        return self._text
 
 
 def _settle(case: Case, eps1: Linear, eps2: Linear, tilts: dict[str, Tilt]) -> Setting:

@@ -9,7 +9,6 @@ from __future__ import annotations
 
 import json
 import os
-import re
 import sys
 import time
 from collections.abc import Callable, Iterable, Iterator, Sequence
@@ -21,6 +20,7 @@ import click
 from ratomega.case.bundled import bundled_names, bundled_text
 from ratomega.case.case import Case
 from ratomega.case.reading import case_from_mapping, case_to_mapping, load_case
+from ratomega.cli.atlas import atlas, read_charge
 from ratomega.cli.average import average_command
 from ratomega.desk.text import charge_word, detect_text, limit_text, table, theory_text, validate_text
 from ratomega.diagrams.tuples import Charge
@@ -43,7 +43,6 @@ from ratomega.workers.crew import Crew, Progress
 __all__ = ["main"]
 
 INTERRUPTED = 130
-_CHARGE = re.compile(r"[+-]?\d{1,9}(,[+-]?\d{1,9})*")
 
 Item = TypeVar("Item")
 
@@ -166,6 +165,9 @@ def validate(
     return _finish(validate_result(job, found, partial=interrupted), validate_text, as_json, interrupted)
 
 
+cli.add_command(atlas)
+
+
 @cli.command()
 @click.argument("name", required=False)
 @click.option("--json", "as_json", is_flag=True, help="One JSON document on standard output.")
@@ -220,7 +222,7 @@ def _job(
         mapping["background"] |= {key: value for key, value in given.items() if value is not None}
         loaded = case_from_mapping(mapping, where="command line")
     if charge is not None:
-        loaded = loaded.with_charge(_charge(charge))
+        loaded = loaded.with_charge(read_charge(charge))
     return Job.prepare(
         loaded,
         allow_tilt=not no_tilt,
@@ -228,14 +230,6 @@ def _job(
         route=route,
         clusterwise=clusterwise,
     )
-
-
-def _charge(text: str) -> int | list[int]:
-    if not _CHARGE.fullmatch(text):
-        message = f'"{text[:40]}" is not a charge; write an integer, or one integer a node such as 2,1'
-        raise InputError.single(message, "--charge")
-    bounds = [int(word) for word in text.split(",")]
-    return bounds if "," in text else bounds[0]
 
 
 @contextmanager

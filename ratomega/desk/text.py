@@ -5,12 +5,14 @@ from __future__ import annotations
 from collections.abc import Iterable, Sequence
 
 from ratomega.case.case import Case
+from ratomega.detector.poincare import polynomial_text
 from ratomega.diagrams.tuples import Charge, Configuration
 from ratomega.exact.function_text import function_text
 from ratomega.exact.quadratic import approximate_text, number_text
 from ratomega.exact.rational_function import RationalFunction
 from ratomega.results import (
     ChargeReport,
+    ClusterReport,
     Coefficient,
     DetectResult,
     FactorReport,
@@ -183,7 +185,7 @@ def _charge_lines(report: ChargeReport, case: Case) -> list[str]:
         compact = "compact" if cluster.compact else "not compact"
         lines.append(
             f"  cluster {n}: order {cluster.order}, {cluster.size} members, Euler number {cluster.euler_number}, "
-            f"dimension {cluster.dimension}, {compact} ({cluster.why})"
+            f"dimension {cluster.dimension}, {poincare_text(cluster)}, {compact} ({cluster.why})"
         )
         lines += [f"    {m}: {diagrams_text(c, case)}" for m, c in enumerate(cluster.members[:MOST_SHOWN])]
         if cluster.size > MOST_SHOWN:
@@ -203,6 +205,13 @@ def _charge_lines(report: ChargeReport, case: Case) -> list[str]:
         if len(listed) > MOST_SHOWN:
             lines.append(f"  and {len(listed) - MOST_SHOWN} more {title} configurations (--json lists all)")
     return lines
+
+
+def poincare_text(cluster: ClusterReport) -> str:
+    """The Poincaré polynomial, or that there is none; why a component is not compact stands beside it."""
+    if cluster.poincare is not None:
+        return f"Poincaré polynomial {polynomial_text(cluster.poincare)}"
+    return f"no Poincaré polynomial{f' ({cluster.poincare_why})' if cluster.poincare_why else ''}"
 
 
 def diagrams_text(configuration: Configuration, case: Case) -> str:

@@ -29,6 +29,9 @@ from ratomega.exact.quadratic_poly import (
 
 __all__ = ["Factored", "Form", "Whole", "expand", "integer_form", "rational_form"]
 
+# Up to this many terms, plain integers are quicker than integer polynomials.
+SHORT = 4
+
 Whole = int | Quadratic
 Form = tuple[Whole, Whole]
 
@@ -82,7 +85,7 @@ class Factored:
     radicand: int = 0
     _products: tuple[fmpz_poly, fmpz_poly] | None = None
     _pairs: tuple[IntegerPair, IntegerPair] | None = None
-    _leads: tuple[int, int] | None = None
+    _heads: tuple[list[int], list[int]] | None = None
 
     @classmethod
     def of(cls, up: Iterable[Form], down: Iterable[Form], scale: int, radicand: int = 0) -> Factored:
@@ -102,11 +105,12 @@ class Factored:
             self._products = (_product(self.up), _product(self.down))  # type: ignore[arg-type]
         return self._products
 
-    def leads(self) -> tuple[int, int]:
-        """The constant terms of ``products``, without expanding them: all that a weight of order 0 needs at t^0."""
-        if self._leads is None:
-            self._leads = (_lead(self.up), _lead(self.down))  # type: ignore[arg-type]
-        return self._leads
+    def heads(self, length: int) -> tuple[list[int], list[int]]:
+        """The first coefficients of ``products``, at least ``length`` of them, as plain integers: what a weight needs
+        that has no pole, or a low one."""
+        if self._heads is None or len(self._heads[0]) < length:
+            self._heads = (_head(self.up, length), _head(self.down, length))  # type: ignore[arg-type]
+        return self._heads
 
     def pairs(self) -> tuple[IntegerPair, IntegerPair]:
         """The same over Z[sqrt(radicand)], each as a pair (P, Q) for P + Q sqrt(radicand)."""
@@ -137,9 +141,29 @@ def _two(value: Whole) -> tuple[int, int]:
     return (int(value.x.p), int(value.y.p)) if isinstance(value, Quadratic) else (value, 0)
 
 
-def _lead(forms: Sequence[tuple[int, int]]) -> int:
-    """The product of the forms at t = 0, each form that vanishes there divided by t."""
-    return prod([c or s for c, s in forms])
+def _head(forms: Sequence[tuple[int, int]], length: int) -> list[int]:
+    """The product of the forms to ``length`` terms, each form that vanishes at t = 0 divided by t."""
+    if not forms:
+        return [1] + [0] * (length - 1)
+    if length == 1:
+        return [prod([c or s for c, s in forms])]
+    if length == 2:
+        lead, slope = 1, 0
+        for c, s in forms:
+            if c:
+                lead, slope = lead * c, slope * c + lead * s
+            else:
+                lead, slope = lead * s, slope * s
+        return [lead, slope]
+    result = [1] + [0] * (length - 1)
+    for c, s in forms:
+        if c:
+            for n in range(length - 1, 0, -1):
+                result[n] = result[n] * c + result[n - 1] * s
+            result[0] *= c
+        else:
+            result = [x * s for x in result]
+    return result
 
 
 def _product(forms: Sequence[tuple[int, int]]) -> fmpz_poly:
@@ -162,28 +186,65 @@ def expand(parts: Sequence[Factored], last: int) -> Laurent:
     all along the path. Cost: products of integer polynomials, then one division to exactly ``order + last + 1`` terms.
     """
     precision = last + 1
-    order = 0
+    order = exponent = 0
+    dead = False
     for part in parts:
         if part.undefined:
             raise ZeroDivisionError("a denominator vanishes all along the path")
-        order += part.order
+        dead = dead or part.dead
+        order += part.vanishing_down - part.vanishing_up
+        exponent += len(part.down) - len(part.up)
     length = precision + order
-    if length <= 0 or any(part.dead for part in parts):
+    if length <= 0 or dead:
         return Laurent.zero(precision=precision)
     if parts and parts[0].radicand:
         return _expand_pairs(parts, order, length, precision)
-    exponent = sum([len(part.down) - len(part.up) for part in parts])
-    scale = fmpz(parts[0].scale if parts else 1)
-    factor = fmpq(scale**exponent) if exponent >= 0 else fmpq(1, scale**-exponent)
-    if length == 1:
-        leads = [part.leads() for part in parts]
-        value = fmpq(prod([up for up, _ in leads]), prod([down for _, down in leads])) * factor
-        return Laurent(-order, fmpq_poly([value]), precision)
+    scale = parts[0].scale if parts else 1
+    if length <= SHORT:
+        # The leading coefficient is a product of numbers that are not zero, so the form is canonical as it is.
+        return Laurent(-order, _short_quotient(parts, length, scale, exponent), precision)
+    factor = fmpq(fmpz(scale) ** exponent) if exponent >= 0 else fmpq(1, fmpz(scale) ** -exponent)
     up, down = fmpz_poly([1]), fmpz_poly([1])
     for part in parts:
         part_up, part_down = part.products()
         up, down = up.mul_low(part_up, length), down.mul_low(part_down, length)
     return Laurent.make(-order, _quotient(up, down, length) * factor, precision)
+
+
+def _short_quotient(parts: Sequence[Factored], length: int, scale: int, exponent: int) -> fmpq_poly:
+    """The product of the parts to ``length`` terms times scale^exponent, in plain integers: less work than polynomials
+    while few terms are wanted. All coefficients stand over one denominator."""
+    if length == 2:
+        # Most weights with a pole have a simple one, and this is half the work of the general way.
+        u, v, c, d = 1, 0, 1, 0
+        for part in parts:
+            part_up, part_down = part.heads(2)
+            if part.up:
+                u, v = u * part_up[0], u * part_up[1] + v * part_up[0]
+            c, d = c * part_down[0], c * part_down[1] + d * part_down[0]
+        numerators, below = [u * c, v * c - u * d], c * c
+    else:
+        up = down = [1] + [0] * (length - 1)
+        for part in parts:
+            part_up, part_down = part.heads(length)
+            up, down = _low_product(up, part_up, length), _low_product(down, part_down, length)
+        lead = down[0]
+        numerators, below = [up[0]], lead
+        for n in range(1, length):
+            coming = up[n] * below - sum([down[k] * numerators[n - k] for k in range(1, n + 1)])
+            numerators = [x * lead for x in numerators]
+            numerators.append(coming)
+            below *= lead
+    if exponent >= 0:
+        factor = scale**exponent
+        return fmpq_poly([x * factor for x in numerators], below)
+    return fmpq_poly(numerators, below * scale**-exponent)
+
+
+def _low_product(left: list[int], right: list[int], length: int) -> list[int]:
+    if length == 1:
+        return [left[0] * right[0]]
+    return [sum([left[k] * right[n - k] for k in range(n + 1)]) for n in range(length)]
 
 
 def _expand_pairs(parts: Sequence[Factored], order: int, length: int, precision: int) -> Laurent:

@@ -19,7 +19,7 @@ from ratomega.exact.quadratic import Number
 from ratomega.exact.quadratic_poly import Poly, low_product, poly_of
 from ratomega.exact.rational import ZERO
 
-__all__ = ["Laurent", "total"]
+__all__ = ["Laurent", "Sum", "total"]
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -86,8 +86,9 @@ class Laurent:
 
     def __add__(self, other: Laurent) -> Laurent:
         low = min(self.valuation, other.valuation)
-        poly = self.poly.left_shift(self.valuation - low) + other.poly.left_shift(other.valuation - low)
-        return Laurent.make(low, poly, min(self.precision, other.precision))
+        left = self.poly if self.valuation == low else self.poly.left_shift(self.valuation - low)
+        right = other.poly if other.valuation == low else other.poly.left_shift(other.valuation - low)
+        return Laurent.make(low, left + right, min(self.precision, other.precision))
 
     def __neg__(self) -> Laurent:
         return Laurent(self.valuation, -self.poly, self.precision)
@@ -139,9 +140,43 @@ class Laurent:
         return " + ".join([*terms, f"O(t^{self.precision})"])
 
 
+class Sum:
+    """A sum of series that is put together term by term; those of equal valuation cost one addition of polynomials.
+
+    ``series`` gives what was added so far, to ``precision`` at most and no further than any of the terms is known.
+
+    >>> whole = Sum(precision=1)
+    >>> for slope in (1, -1):
+    ...     whole.add(Laurent.from_coefficients(-1, [slope, 2], precision=1))
+    >>> whole.series().coefficients()
+    {0: 4}
+    """
+
+    __slots__ = ("_polys", "precision")
+
+    def __init__(self, *, precision: int) -> None:
+        self.precision = precision
+        self._polys: dict[int, Poly] = {}
+
+    def add(self, one: Laurent) -> None:
+        if one.precision < self.precision:
+            self.precision = one.precision
+        known = self._polys.get(one.valuation)
+        self._polys[one.valuation] = one.poly if known is None else known + one.poly
+
+    def series(self) -> Laurent:
+        if not self._polys:
+            return Laurent.zero(precision=self.precision)
+        low = min(self._polys)
+        poly: Poly = fmpq_poly()
+        for valuation, part in self._polys.items():
+            poly = part.left_shift(valuation - low) + poly
+        return Laurent.make(low, poly, self.precision)
+
+
 def total(series: Iterable[Laurent], *, precision: int) -> Laurent:
     """The sum of several series, to ``precision``."""
-    result = Laurent.zero(precision=precision)
+    result = Sum(precision=precision)
     for one in series:
-        result = result + one
-    return result
+        result.add(one)
+    return result.series()

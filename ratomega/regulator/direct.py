@@ -14,7 +14,7 @@ from itertools import islice
 
 from ratomega.detector.geometry import is_sink
 from ratomega.diagrams.tuples import Charge, Configuration, configurations
-from ratomega.exact.laurent import Laurent, total
+from ratomega.exact.laurent import Laurent, Sum, total
 from ratomega.weights import ContentsKey, Weights
 
 __all__ = ["ChargeSum", "ClusterSum", "direct_sum", "direct_total", "merged"]
@@ -66,7 +66,7 @@ def direct_sum(
     With ``sinks`` the singular clusters are searched for a sink, which decides their compactness.
     """
     precision = last + 1
-    sums: dict[ClusterKey, Laurent] = {}
+    sums: dict[ClusterKey, Sum] = {}
     books: dict[ClusterKey, list[int]] = {}
     found_sink: dict[ClusterKey, bool] = {}
     count = singular = indeterminate = worst = 0
@@ -83,31 +83,28 @@ def direct_sum(
             indeterminate += 1
         if sinks and order > 0 and not found_sink.get(key, False):
             found_sink[key] = is_sink(weights, configuration)
-        series = weight.laurent(last)
         book = books.get(key)
         if book is None:
             books[key] = [1, order, order, int(diverges)]
-            sums[key] = series
+            sums[key] = Sum(precision=precision)
         else:
             book[0] += 1
             book[1] = max(book[1], order)
             book[2] = min(book[2], order)
             book[3] += diverges
-            sums[key] = sums[key] + series
+        sums[key].add(weight.laurent(last))
     clusters = {
-        key: ClusterSum(book[0], book[1], book[2], book[3], found_sink.get(key), sums[key])
+        key: ClusterSum(book[0], book[1], book[2], book[3], found_sink.get(key), sums[key].series())
         for key, book in books.items()
     }
-    series = total(sums.values(), precision=precision)
+    series = total((cluster.series for cluster in clusters.values()), precision=precision)
     return ChargeSum(charge, series, clusters, count, singular, indeterminate, worst)
 
 
 def direct_total(weights: Weights, charge: Charge, *, last: int = 0, part: range | None = None) -> Laurent:
     """The sum of the weights of one charge alone, without clusters: what a further path needs."""
-    result = Laurent.zero(precision=last + 1)
-    for configuration in _part(weights, charge, part):
-        result = result + weights.weight(configuration).laurent(last)
-    return result
+    weighed = (weights.weight(configuration) for configuration in _part(weights, charge, part))
+    return total((weight.laurent(last) for weight in weighed), precision=last + 1)
 
 
 def merged(parts: Sequence[ChargeSum]) -> ChargeSum:
