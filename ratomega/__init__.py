@@ -12,6 +12,8 @@
 The public API in one screen; nothing is defined here.
 """
 
+from ratomega.average_results import Average, AverageResult
+from ratomega.averaging import average
 from ratomega.case.bundled import bundled_names
 from ratomega.case.case import Case
 from ratomega.case.reading import load_case
@@ -27,6 +29,8 @@ from ratomega.version import VERSION as __version__
 
 __all__ = [
     "Atlas",
+    "Average",
+    "AverageResult",
     "Case",
     "Check",
     "Coefficient",
@@ -44,6 +48,7 @@ __all__ = [
     "WorkerError",
     "__version__",
     "atlas",
+    "average",
     "bundled_names",
     "clusters",
     "detect",

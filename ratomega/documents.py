@@ -14,6 +14,8 @@ from pathlib import Path
 from typing import Any
 
 from ratomega.atlas_documents import atlas_document, read_atlas
+from ratomega.average_documents import average_body, read_average
+from ratomega.average_results import AverageResult
 from ratomega.case.case import Case
 from ratomega.case.reading import case_from_mapping, case_to_mapping
 from ratomega.detector.atlas import Atlas
@@ -41,7 +43,7 @@ from ratomega.validator.verdict import Check, Kind, Verdict
 
 __all__ = ["Result", "error_document", "load_result", "to_document", "to_json"]
 
-Result = LimitResult | DetectResult | ValidateResult | Atlas
+Result = LimitResult | DetectResult | ValidateResult | AverageResult | Atlas
 Document = dict[str, Any]
 
 LARGEST_DOCUMENT = 512 * 1024 * 1024
@@ -72,6 +74,8 @@ def to_document(result: Result) -> Document:
     if isinstance(result, DetectResult):
         body = {"charges": [_charge(c, result.header.case) for c in result.charges]}
         return {"result": "detect", **_header(result.header), "partial": result.partial, **body}
+    if isinstance(result, AverageResult):
+        return {"result": "average", **_header(result.header), "partial": result.partial, **average_body(result)}
     body = {"checks": [_check(c) for c in result.checks]}
     return {"result": "validate", **_header(result.header), "partial": result.partial, **body}
 
@@ -121,7 +125,9 @@ def _from_document(document: Document) -> Result:
         return DetectResult(header, tuple(_read_charge(c, header.case) for c in document["charges"]), partial)
     if kind == "validate":
         return ValidateResult(header, tuple(_read_check(c) for c in document["checks"]), partial)
-    raise ValueError(f'"result" is {kind!r}, not limit, detect, validate or atlas')
+    if kind == "average":
+        return read_average(document, header, partial)
+    raise ValueError(f'"result" is {kind!r}, not limit, detect, validate, average or atlas')
 
 
 # ---- small pieces, each with its way back ----

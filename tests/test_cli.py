@@ -14,7 +14,7 @@ from dataclasses import dataclass
 import pytest
 
 import ratomega
-from ratomega import pipeline
+from ratomega import job
 from ratomega.cli.main import main
 
 CASE = """
@@ -291,7 +291,7 @@ def test_interrupted_before_anything_was_finished(monkeypatch, command, stopped)
     def interrupt(*_, **__):
         raise KeyboardInterrupt
 
-    monkeypatch.setattr(pipeline, stopped, interrupt)
+    monkeypatch.setattr(job, stopped, interrupt)
     done = run(*command, "--json")
     document = json.loads(done.stdout)
     assert done.returncode == 130

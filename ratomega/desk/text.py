@@ -23,7 +23,7 @@ from ratomega.results import (
 )
 from ratomega.validator.verdict import Check
 
-__all__ = ["detect_text", "limit_text", "table", "theory_text", "validate_text"]
+__all__ = ["detect_text", "heading", "limit_text", "table", "theory_text", "validate_text"]
 
 # A terminal page shows this many singular configurations and clusters a charge; JSON has them all.
 MOST_SHOWN = 12
@@ -71,7 +71,8 @@ def theory_text(case: Case) -> str:
     return "; ".join(parts)
 
 
-def _heading(header: Header, partial: bool) -> list[str]:
+def heading(header: Header, partial: bool) -> list[str]:
+    """What stands above every result: title, theory, path, ratio, hash, warnings, and an empty line."""
     case = header.case
     ratio = case.background.ratio
     lines = [case.title] if case.title else []
@@ -102,7 +103,7 @@ def limit_text(result: LimitResult) -> str:
     head = ["charge", "weights", "singular", "worst order", "singular clusters", "status", "independence"]
     head += ["approx.", "exact"]
     rows = [_limit_row(c) for c in result.coefficients]
-    lines = [*_heading(result.header, result.partial)[:-1], _route_line(result.route), ""]
+    lines = [*heading(result.header, result.partial)[:-1], _route_line(result.route), ""]
     lines += table(head, rows, left=[5, 6, 7, 8])
     for c in result.coefficients:
         if c.values:
@@ -148,7 +149,7 @@ def _limit_row(c: Coefficient) -> list[str]:
 
 def validate_text(result: ValidateResult) -> str:
     """Every check with its verdict, and a sentence that sums up."""
-    lines = _heading(result.header, result.partial) + _checks(result.checks)
+    lines = heading(result.header, result.partial) + _checks(result.checks)
     count = {word: sum(1 for c in result.checks if c.verdict.value == word) for word in VERDICTS}
     summary = ", ".join(f"{n} {word}" for word, n in count.items() if n)
     return "\n".join([*lines, "", f"{len(result.checks)} checks: {summary}"]) + "\n"
@@ -170,7 +171,7 @@ def detect_text(result: DetectResult) -> str:
         ]
         for c in result.charges
     ]
-    lines = _heading(result.header, result.partial) + table(head, rows)
+    lines = heading(result.header, result.partial) + table(head, rows)
     for report in result.charges:
         lines += _charge_lines(report, result.header.case)
     return "\n".join(lines) + "\n"
