@@ -39,6 +39,7 @@ from ratomega.results import (
     SingularReport,
     ValidateResult,
 )
+from ratomega.validator.checklist import depth_of
 from ratomega.validator.verdict import Check, Kind, Verdict
 
 __all__ = ["Result", "error_document", "load_result", "to_document", "to_json"]
@@ -76,7 +77,7 @@ def to_document(result: Result) -> Document:
         return {"result": "detect", **_header(result.header), "partial": result.partial, **body}
     if isinstance(result, AverageResult):
         return {"result": "average", **_header(result.header), "partial": result.partial, **average_body(result)}
-    body = {"checks": [_check(c) for c in result.checks]}
+    body = {"depth": result.depth, "checks": [_check(c) for c in result.checks], "summary": result.summary}
     return {"result": "validate", **_header(result.header), "partial": result.partial, **body}
 
 
@@ -124,7 +125,11 @@ def _from_document(document: Document) -> Result:
     if kind == "detect":
         return DetectResult(header, tuple(_read_charge(c, header.case) for c in document["charges"]), partial)
     if kind == "validate":
-        return ValidateResult(header, tuple(_read_check(c) for c in document["checks"]), partial)
+        checks = tuple(_read_check(c) for c in document["checks"])
+        result = ValidateResult(header, checks, depth_of(document["depth"]).name, partial)
+        if document["summary"] != result.summary:
+            raise ValueError("the summary is not that of the checks")
+        return result
     if kind == "average":
         return read_average(document, header, partial)
     raise ValueError(f'"result" is {kind!r}, not limit, detect, validate, average or atlas')
@@ -207,11 +212,13 @@ def _check(check: Check) -> Document:
         "kind": check.kind.value,
         "evidence": check.evidence,
         "source": check.source,
+        "complete": check.complete,
     }
 
 
 def _read_check(d: Document) -> Check:
-    return Check(_word(d["name"]), Verdict(d["verdict"]), Kind(d["kind"]), _word(d["evidence"]), _word(d["source"]))
+    name, evidence, source = _word(d["name"]), _word(d["evidence"]), _word(d["source"])
+    return Check(name, Verdict(d["verdict"]), Kind(d["kind"]), evidence, source, _flag(d["complete"]))
 
 
 def _path_value(value: PathValue) -> Document:

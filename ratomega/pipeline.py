@@ -6,17 +6,20 @@
 from __future__ import annotations
 
 import os
-from collections.abc import Callable, Sequence
+from collections.abc import Callable, Iterator, Sequence
 from concurrent.futures import Executor
 from contextlib import nullcontext
 from dataclasses import replace
 
 import networkx
 
+from ratomega.case.case import Case
 from ratomega.case.reading import load_case
 from ratomega.detector.clusters import cluster_graph, find_clusters
 from ratomega.detector.zeros import scan
 from ratomega.diagrams.tuples import Charge
+from ratomega.exact.quadratic import Number
+from ratomega.exact.rational_function import RationalFunction
 from ratomega.job import MOST_CONFIGURATIONS, CaseSource, Found, Job, ShortLimit
 from ratomega.regulator.limits import ChargeLimit
 from ratomega.regulator.outcome import FiniteLimit, Independence, PathDependent, Pole
@@ -31,8 +34,8 @@ from ratomega.results import (
 )
 from ratomega.symbolic.certificate import check_functions
 from ratomega.symbolic.functions import SymbolicLimit
-from ratomega.validator.comparison import check_adjoint_clusters, check_closed_forms, check_recursion
-from ratomega.validator.finiteness import certificate, check_orders, short_cut_certificate
+from ratomega.validator.checklist import Depth, depth_of, first_checks, outside_checks
+from ratomega.validator.finiteness import certificate, short_cut_certificate
 from ratomega.validator.verdict import Check
 
 __all__ = ["DEFAULT_PROBES", "clusters", "detect", "limit", "validate"]
@@ -212,12 +215,22 @@ def validate(
     workers: int | None = None,
     executor: Executor | None = None,
     keep: str | os.PathLike[str] | None = None,
+    depth: str = "quick",
 ) -> ValidateResult:
-    """Every check that applies to the case: finiteness, further paths, equal orders, closed forms.
+    """Every check that applies to the case: finiteness, further paths, independent routes, identities.
 
-    Further paths are run here also where compactness proves the outcome. A check that does not apply is left out.
-    ``workers``, ``executor`` and ``keep`` are those of ``limit``.
+    Further paths are run here also where compactness proves the outcome. A check that does not apply is left out; one
+    that costs more than ``depth`` ("quick" or "full") allows is undecided and says so. ``workers``, ``executor`` and
+    ``keep`` are those of ``limit`` and serve the limits of the case itself.
+
+    >>> case = {"charge": 3, "background": {"eps1": 1, "eps2": 1}, "node": [{"coulomb": ["1/3", "-1/3"]}]}
+    >>> result = validate(case)
+    >>> [check.name for check in result.routes]
+    ['pole recursion in the Coulomb parameter']
+    >>> result.exit_status
+    0
     """
+    asked = depth_of(depth)
     job = Job.prepare(
         source, allow_tilt=allow_tilt, most_configurations=most_configurations, clusterwise=True
     )
@@ -227,15 +240,36 @@ def validate(
             found.append(one)
             if watch is not None:
                 watch(one.charge)
-    return validate_result(job, found)
+    return ValidateResult(job.header, tuple(validate_checks(job, found, asked)), asked.name)
 
 
-def validate_result(job: Job, found: Sequence[Found], *, partial: bool = False) -> ValidateResult:
-    """The checks for the charges found so far; with symbols all but the last are made at the generic point."""
+def validate_checks(job: Job, found: Sequence[Found], depth: Depth) -> Iterator[Check]:
+    """The checks for the charges found so far, one by one; with symbols all but one are made at the generic point."""
     limits = samples(found)
     if not limits:
-        return ValidateResult(job.header, (), partial)
-    checks = [*certificate(limits), check_orders(limits), *check_closed_forms(job.sample, job.setting, limits)]
-    checks += [*check_recursion(job.sample, limits), *_function_checks(job, found)]
-    adjoint = check_adjoint_clusters(job.setting, limits)
-    return ValidateResult(job.header, (*checks, adjoint) if adjoint is not None else tuple(checks), partial)
+        return
+    yield from first_checks(limits)
+    yield from _function_checks(job, found)
+    if len(limits) < len(job.case.charges):
+        # Interrupted: what is there is shown, and no further work begun.
+        return
+    known: dict[tuple[str, object], list[Number]] = {}
+
+    def evaluate(case: Case) -> list[Number]:
+        key = case.hash, case.charge
+        if key not in known:
+            known[key] = [_number(one) for one in limit(case, probes=0)]
+        return known[key]
+
+    def clusterwise(case: Case) -> list[ChargeLimit]:
+        return samples(list(Job.prepare(case, clusterwise=True).limits(probes=0)))
+
+    yield from outside_checks(
+        job.sample, job.weights, limits, evaluate=evaluate, clusterwise=clusterwise, depth=depth
+    )
+
+
+def _number(one: Coefficient) -> Number:
+    if one.value is None or isinstance(one.value, RationalFunction):
+        raise ValueError(f"the limit at charge {one.charge} is no number; checks ask for compact cases without symbols")
+    return one.value

@@ -17,7 +17,7 @@ from ratomega.exact.quadratic import Number
 from ratomega.exact.rational_function import RationalFunction
 from ratomega.regulator.outcome import PathValue
 from ratomega.validator.finiteness import CANCELLATION, PATHS
-from ratomega.validator.verdict import Check, Verdict
+from ratomega.validator.verdict import Check, Kind, Verdict
 
 __all__ = [
     "ChargeReport",
@@ -257,11 +257,36 @@ class DetectResult:
 
 @dataclass(frozen=True, slots=True)
 class ValidateResult:
-    """All checks that apply to the case."""
+    """All checks that apply to the case, run to a depth: "quick" or "full"."""
 
     header: Header
     checks: tuple[Check, ...]
+    depth: str
     partial: bool = False
+
+    @property
+    def routes(self) -> tuple[Check, ...]:
+        """The checks by which an independent route agrees with the limits of this very case, at all its charges."""
+        independent = (c for c in self.checks if c.kind is Kind.INDEPENDENT and c.verdict is Verdict.AGREES)
+        return tuple(c for c in independent if c.complete)
+
+    @property
+    def summary(self) -> str:
+        """One sentence: what is refuted, how many independent routes agree, what stayed undecided."""
+        refuted = [c.name for c in self.checks if c.verdict is Verdict.REFUTED]
+        undecided = [c.name for c in self.checks if c.verdict is Verdict.UNDECIDED]
+        parts = [f"REFUTED: {', '.join(refuted)}" if refuted else "nothing is refuted"]
+        routes = self.routes
+        if routes:
+            word = "independent route agrees" if len(routes) == 1 else "independent routes agree"
+            parts.append(f"{len(routes)} {word} with the limits of this case at all its charges")
+        else:
+            relatives = sum(1 for c in self.checks if c.kind is Kind.SIBLING and c.verdict is Verdict.AGREES)
+            beside = f", {relatives} on relatives of it agree, which does not prove this case" if relatives else ""
+            parts.append(f"no independent route covers all charges of this case{beside}")
+        if undecided:
+            parts.append(f"undecided: {', '.join(undecided)}")
+        return f"{len(self.checks)} checks at depth {self.depth}: {'; '.join(parts)}."
 
     @property
     def exit_status(self) -> int:

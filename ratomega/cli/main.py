@@ -32,9 +32,12 @@ from ratomega.pipeline import (
     DEFAULT_PROBES,
     detect_result,
     limit_result,
-    validate_result,
+    validate_checks,
 )
 from ratomega.regulator.routes import ROUTES
+from ratomega.results import ValidateResult
+from ratomega.validator.checklist import DEPTHS, depth_of
+from ratomega.validator.verdict import Check
 from ratomega.version import VERSION
 from ratomega.workers.cluster import cluster_hands
 from ratomega.workers.crew import Crew, Progress
@@ -150,10 +153,23 @@ def limit(
 @_common
 @_probes
 @_workers
+@click.option(
+    "--depth",
+    type=click.Choice([depth.name for depth in DEPTHS]),
+    default="quick",
+    show_default=True,
+    help="How much work a single check may be.",
+)
 def validate(
-    probes: int, workers: int | None, cluster: str | None, keep: str | None, as_json: bool, **case_options: Any
+    probes: int,
+    workers: int | None,
+    cluster: str | None,
+    keep: str | None,
+    depth: str,
+    as_json: bool,
+    **case_options: Any,
 ) -> int:
-    """Check finiteness, further paths, and closed forms where one applies.
+    """Check finiteness, further paths, and every independent route and relation that applies.
 
     Example: ratomega validate b1-four-flavours --charge 2
     """
@@ -161,7 +177,19 @@ def validate(
     with _crew(job, workers, cluster, keep) as crew:
         limits = job.limits(probes=probes, always_probe=True, crew=crew)
         found, interrupted = _collect(job, limits, lambda one: one.charge, crew)
-    return _finish(validate_result(job, found, partial=interrupted), validate_text, as_json, interrupted)
+    checks: list[Check] = []
+    line = _Line()
+    try:
+        for check in validate_checks(job, found, depth_of(depth)):
+            checks.append(check)
+            line.show(f"check {len(checks)}: {check.name}")
+    except KeyboardInterrupt:
+        interrupted = True
+        line.clear()
+        click.echo(f"interrupted: {len(checks)} checks were finished and are printed", err=True)
+    line.clear()
+    result = ValidateResult(job.header, tuple(checks), depth, interrupted)
+    return _finish(result, validate_text, as_json, interrupted)
 
 
 cli.add_command(atlas)

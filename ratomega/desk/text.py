@@ -150,12 +150,7 @@ def _limit_row(c: Coefficient) -> list[str]:
 def validate_text(result: ValidateResult) -> str:
     """Every check with its verdict, and a sentence that sums up."""
     lines = heading(result.header, result.partial) + _checks(result.checks)
-    count = {word: sum(1 for c in result.checks if c.verdict.value == word) for word in VERDICTS}
-    summary = ", ".join(f"{n} {word}" for word, n in count.items() if n)
-    return "\n".join([*lines, "", f"{len(result.checks)} checks: {summary}"]) + "\n"
-
-
-VERDICTS = ("proved", "agrees", "refuted", "undecided")
+    return "\n".join([*lines, "", result.summary]) + "\n"
 
 
 def detect_text(result: DetectResult) -> str:

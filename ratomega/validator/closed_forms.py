@@ -18,6 +18,8 @@ from ratomega.exact.rational import ONE
 from ratomega.validator.closed_forms_u1 import chain_forms, necklace_forms
 from ratomega.validator.closed_forms_u2 import four_flavour_forms, low_charge_forms
 from ratomega.validator.closed_forms_un import adjoint_forms, truncation_forms, vanishing_forms
+from ratomega.validator.identities.finite_poles import finite_pole_forms
+from ratomega.validator.identities.painleve import painleve_forms
 from ratomega.validator.limit_point import Charge, ClosedForm, LimitPoint, limit_point
 
 __all__ = ["Charge", "ClosedForm", "closed_forms"]
@@ -30,6 +32,8 @@ _FAMILIES = (
     truncation_forms,
     four_flavour_forms,
     low_charge_forms,
+    finite_pole_forms,
+    painleve_forms,
 )
 
 

@@ -1,4 +1,4 @@
-"""Closed forms against the limits: agreement to the stated charge, or the first difference."""
+"""Forms by charge against the limits: agreement to the stated charge, or the first difference."""
 
 from __future__ import annotations
 
@@ -9,35 +9,17 @@ from ratomega.case.setting import Setting
 from ratomega.exact.quadratic import number_text
 from ratomega.regulator.limits import ChargeLimit
 from ratomega.regulator.outcome import FiniteLimit
-from ratomega.regulator.poles.problem import applies, case_problem
-from ratomega.regulator.poles.recursion import pole_coefficients
 from ratomega.validator.closed_forms import ClosedForm, closed_forms
 from ratomega.validator.finiteness import charge_text
 from ratomega.validator.verdict import Check, Kind, Verdict
 
-__all__ = ["check_adjoint_clusters", "check_closed_forms", "check_recursion"]
+__all__ = ["check_adjoint_clusters", "check_closed_forms", "compare"]
 
 
 def check_closed_forms(case: Case, setting: Setting, limits: Sequence[ChargeLimit]) -> tuple[Check, ...]:
     """One check for every closed form that holds at some computed charge beyond 0."""
     checks = (compare(form, limits) for form in closed_forms(case, setting))
     return tuple(check for check in checks if check is not None)
-
-
-def check_recursion(case: Case, limits: Sequence[ChargeLimit]) -> tuple[Check, ...]:
-    """The pole recursion of U(2), where it applies: it shares no code with the sum above exact arithmetic."""
-    charges = [limit.charge for limit in limits]
-    if not isinstance(case.charge, int) or len(charges) < 2 or not applies(case.with_charge(charges[-1][0])).applies:
-        return ()
-    values = pole_coefficients(case_problem(case), charges[-1][0]).coefficients
-    form = ClosedForm(
-        "pole recursion in the Coulomb parameter",
-        "Z is the sum over its poles 2a = ±(m eps1 + n eps2), with residues fixed by lower charges, in exact series",
-        "Al. Zamolodchikov 1984; R. Poghossian, arXiv 0909.3412",
-        {(k,): value for k, value in enumerate(values)},
-    )
-    check = compare(form, limits)
-    return () if check is None else (check,)
 
 
 def compare(form: ClosedForm, limits: Sequence[ChargeLimit]) -> Check | None:
@@ -56,7 +38,8 @@ def compare(form: ClosedForm, limits: Sequence[ChargeLimit]) -> Check | None:
             return Check(form.name, Verdict.REFUTED, Kind.INDEPENDENT, evidence, form.source)
     last = charge_text(compared[-1].charge)
     evidence = f"{form.statement}; equal {f'up to {last}' if len(compared) > 1 else f'at {last}'}"
-    return Check(form.name, Verdict.AGREES, Kind.INDEPENDENT, evidence, form.source)
+    complete = len(compared) == len(limits)
+    return Check(form.name, Verdict.AGREES, Kind.INDEPENDENT, evidence, form.source, complete)
 
 
 def check_adjoint_clusters(setting: Setting, limits: Sequence[ChargeLimit]) -> Check | None:
@@ -85,4 +68,5 @@ def check_adjoint_clusters(setting: Setting, limits: Sequence[ChargeLimit]) -> C
     if clusters <= 1:
         return None
     evidence = f"adjoint mass {node.adjoint[0]}: each of {clusters} compact clusters sums to its number of members"
-    return Check(name, Verdict.AGREES, Kind.INDEPENDENT, evidence, source)
+    complete = all(limit.compact for limit in limits)
+    return Check(name, Verdict.AGREES, Kind.INDEPENDENT, evidence, source, complete)

@@ -81,7 +81,7 @@ def check_components(weights: Weights, charges: Sequence[Charge], *, most: int =
 
 
 _PLAIN_CELLS = (_CELLS, Kind.CONSISTENCY, "A. Bialynicki-Birula 1973")
-_PLAIN_PRODUCT = (_PRODUCT, Kind.INDEPENDENT, "A. Buryak, B. Feigin, arXiv 1206.5640")
+_PLAIN_PRODUCT = (_PRODUCT, Kind.GEOMETRY, "A. Buryak, B. Feigin, arXiv 1206.5640")
 
 
 def _checks(

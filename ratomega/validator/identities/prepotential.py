@@ -101,7 +101,7 @@ def check_seiberg_witten(case: Case, evaluate: Evaluate, *, most: int = MOST_WOR
         return None
     identity = Identity(
         "Seiberg-Witten prepotential and first gravitational terms of U(2)",
-        Kind.INDEPENDENT,
+        Kind.SIBLING,
         "-eps1 eps2 log Z is F_k q^k a^(2-4k) + (eps1 eps2 A_k + (eps1^2+eps2^2) B_k/3) q^k a^(-4k) at large a, "
         "F, A, B from the periods of the curve; a statement on all a together",
         "N. Seiberg, E. Witten, arXiv hep-th/9407087; M. Matone, arXiv hep-th/9506102; H. Nakajima, K. Yoshioka, "
@@ -185,7 +185,7 @@ def check_one_instanton(case: Case, evaluate: Evaluate, *, most: int = MOST_WORK
         return None
     identity = Identity(
         f"one-instanton prepotential of U({node.rank})",
-        Kind.INDEPENDENT,
+        Kind.SIBLING,
         "-eps1 eps2 Z_1 grows like F_1 = (-1)^N sum_k prod_f (a_k + m_f)/prod_(j != k) (a_k - a_j)^2 when all Coulomb "
         "parameters and masses grow",
         "E. D'Hoker, I. Krichever, D. Phong, arXiv hep-th/9609041",

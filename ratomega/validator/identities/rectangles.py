@@ -56,7 +56,7 @@ def check_rectangles(case: Case, evaluate: Evaluate, *, most: int = MOST_WORK) -
         return None
     identity = Identity(
         f"rectangles: U({node.rank}) with an adjoint near mass eps1",
-        Kind.INDEPENDENT,
+        Kind.SIBLING,
         "dZ_k/dm at m = eps1 is a sum over rectangles of p by r boxes, p r = k (at eps1 = eps2 the coefficient of "
         "(m - eps1)^2); Z = 1 there, and prod over n of (1 - q^n)^(-N) at m = 0; three statements on all masses "
         "together, which do not fix Z at one of them",

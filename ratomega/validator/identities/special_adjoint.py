@@ -53,8 +53,8 @@ def check_special_adjoint(case: Case, evaluate: Evaluate, *, most: int = MOST_WO
     if node is None or smooth_charge(case) < 1:
         return None
     identity = Identity(
-        f"U({node.rank}) with an adjoint of special mass on the path (siblings)",
-        Kind.INDEPENDENT,
+        f"U({node.rank}) with an adjoint of special mass on the path",
+        Kind.SIBLING,
         f"Z = prod over n of (1 - q^n)^(-{node.rank}) for the mass t/5, Z = 1 for eps1 + t/7 and for eps2 - t/3, in "
         "the limit t -> 0; other masses than the case has, so this does not prove the case",
         "C. Vafa, E. Witten, arXiv hep-th/9408074; common practice",

@@ -62,7 +62,7 @@ def test_rectangles_of_one_colour():
 def test_rectangles_hold(eps1, eps2, coulomb, charge):
     asked = Counting()
     check = check_rectangles(adjoint_case(eps1, eps2, coulomb, charge=charge), asked)
-    assert (check.verdict, check.kind) == (Verdict.AGREES, Kind.INDEPENDENT)
+    assert (check.verdict, check.kind) == (Verdict.AGREES, Kind.SIBLING)
     assert len(asked.cases) == len(coulomb) * charge + 1
     assert check.evidence.endswith(f"equal up to charge {charge}")
 
@@ -118,7 +118,7 @@ def test_special_masses(eps1, eps2, coulomb, charge):
     case = adjoint_case(eps1, eps2, coulomb, charge=charge)
     asked = Counting()
     check = check_special_adjoint(case, asked)
-    assert (check.verdict, check.kind) == (Verdict.AGREES, Kind.INDEPENDENT)
+    assert (check.verdict, check.kind) == (Verdict.AGREES, Kind.SIBLING)
     assert "does not prove the case" in check.evidence
     # Vafa, Witten hep-th/9408074: U(2) 1, 2, 5, 10, 20, 36; U(3) 1, 3, 9, 22.
     numbers = [1, 2, 5, 10, 20, 36] if len(coulomb) == 2 else [1, 3, 9, 22]
@@ -137,7 +137,7 @@ def test_clusters_of_the_soft_sibling_sum_to_their_numbers():
     case = adjoint_case("1", "1", TWO, charge=4)
     check = check_special_clusters(case, clusterwise)
     assert check.verdict is Verdict.AGREES
-    assert check.name == "Euler numbers of the clusters at adjoint mass t/5 (sibling)"
+    assert check.name == "Euler numbers of the clusters at adjoint mass t/5"
     assert "each of 21 compact clusters" in check.evidence
     # Another mass than was asked for: some cluster does not sum to a number of members.
     assert check_special_clusters(case, lambda one: clusterwise(case)).verdict is Verdict.REFUTED

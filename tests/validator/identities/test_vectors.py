@@ -58,7 +58,7 @@ def test_the_curve_against_published_values():
 )
 def test_the_prepotential_from_limits(eps1, eps2, coulomb, charge):
     check = check_seiberg_witten(pure(eps1, eps2, coulomb, charge), engine)
-    assert (check.verdict, check.kind) == (Verdict.AGREES, Kind.INDEPENDENT)
+    assert (check.verdict, check.kind) == (Verdict.AGREES, Kind.SIBLING)
     assert check.evidence.endswith(f"equal up to charge {charge}")
 
 
@@ -93,7 +93,7 @@ def test_one_instanton_against_hand():
 def test_one_instanton_from_limits(eps1, eps2, coulomb, flavours):
     node = {"coulomb": coulomb, "antifundamental": flavours[:1], "fundamental": flavours[1:]}
     check = check_one_instanton(make_case(eps1, eps2, [node], charge=1), engine)
-    assert (check.verdict, check.kind) == (Verdict.AGREES, Kind.INDEPENDENT)
+    assert (check.verdict, check.kind) == (Verdict.AGREES, Kind.SIBLING)
     # At a1 - a2 = 2 = eps1 + eps2 the case itself has a pole, and scaled parameters speak for the others.
     assert ("the case's own among them" in check.evidence) == (coulomb != ["1", "-1"])
 
@@ -263,6 +263,6 @@ def test_work_is_bounded_before_it_starts(check):
 
 
 def test_an_identity_that_compared_nothing_does_not_pass():
-    identity = Identity("name", Kind.INDEPENDENT, "statement", "source")
+    identity = Identity("name", Kind.SIBLING, "statement", "source")
     with pytest.raises(ValueError, match="nothing was compared"):
         identity.judged([], "equal")
