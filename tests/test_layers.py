@@ -15,6 +15,7 @@ LAYERS = [
     {"exact"},
     {"diagrams"},
     {"case"},
+    {"conformal"},
     {"weights"},
     {"detector"},
     {"regulator"},

@@ -1,0 +1,1 @@
+"""Conformal blocks by the representation theory of the Virasoro algebra: U(2) sums without a Young diagram."""
