@@ -3,16 +3,20 @@
 Over series with coefficients in a field, a form can be diagonalised by t-integral changes of basis alone, when every
 pivot is an entry of the lowest valuation that is left. So nothing is lost on the way: the rest of the form keeps the
 precision of the start, and with v the highest valuation of a pivot the answer loses 2 v. A form over numbers is the
-case of precision 1, where every valuation is 0.
+case of precision 1, where every valuation is 0; rational ones are solved by flint, which lifts from a prime.
 """
 
 from __future__ import annotations
 
 from collections.abc import Sequence
 
-from ratomega.exact.laurent import Laurent
+from flint import fmpq, fmpq_mat, fmpq_poly
 
-__all__ = ["inverse_contraction"]
+from ratomega.exact.laurent import Laurent
+from ratomega.exact.quadratic import only_rational
+from ratomega.exact.rational import ZERO
+
+__all__ = ["diagonalised_contraction", "inverse_contraction"]
 
 Rows = Sequence[Sequence[Laurent]]
 
@@ -20,17 +24,41 @@ Rows = Sequence[Sequence[Laurent]]
 def inverse_contraction(form: Rows, left: Rows, right: Rows, *, precision: int) -> Laurent:
     """The trace of left^T form^(-1) right, to ``precision`` at most.
 
-    ``form`` is symmetric, n x n, and only its entries on and above the diagonal are read; ``left`` and ``right`` are
-    n x m (m = 1 makes it a scalar product). All entries have valuation 0 or more. The precision of the answer tells
-    how far it is known; a pole of the inverse that does not cancel is a negative valuation of the answer.
+    ``form`` is symmetric, n x n; ``left`` and ``right`` are n x m (m = 1 makes it a scalar product). All entries have
+    valuation 0 or more. The precision of the answer tells how far it is known; a pole of the inverse that does not
+    cancel is a negative valuation of the answer.
 
-    Raises ``ZeroDivisionError`` when the form is degenerate as far as it is known. Cost: n^3/6 + 2 m n^2/2 products.
+    Raises ``ZeroDivisionError`` when the form is degenerate as far as it is known.
 
     >>> t = Laurent.from_coefficients(1, [1], precision=4)
     >>> one, zero = Laurent.constant(1, precision=4), Laurent.zero(precision=4)
     >>> str(inverse_contraction([[zero, t], [t, zero]], [[one], [zero]], [[zero], [one]], precision=1))
     '1*t^-1 + O(t^1)'
     """
+    matrix, one_side, other_side = _as_matrix(form), _as_matrix(left), _as_matrix(right)
+    if matrix is not None and one_side is not None and other_side is not None:
+        return Laurent.constant(_over_q(matrix, one_side, other_side), precision=min(1, precision))
+    return diagonalised_contraction(form, left, right, precision=precision)
+
+
+def _as_matrix(rows: Rows) -> fmpq_mat | None:
+    """The rows as rational numbers; None when an entry is a longer series or lies beyond Q."""
+    values: list[list[fmpq]] = []
+    for row in rows:
+        if not all(x.precision == 1 and x.valuation >= 0 and isinstance(x.poly, fmpq_poly) for x in row):
+            return None
+        values.append([only_rational(x.coefficient(0)) for x in row])
+    return fmpq_mat(values)
+
+
+def _over_q(form: fmpq_mat, left: fmpq_mat, right: fmpq_mat) -> fmpq:
+    solution = form.solve(right)
+    columns = range(left.ncols())
+    return sum((left[i, j] * solution[i, j] for i in range(left.nrows()) for j in columns), ZERO)
+
+
+def diagonalised_contraction(form: Rows, left: Rows, right: Rows, *, precision: int) -> Laurent:
+    """``inverse_contraction`` for every kind of entries. Cost: n^3/6 + 2 m n^2/2 products of series."""
     size = len(form)
     rows = [[form[min(i, j)][max(i, j)] for j in range(size)] for i in range(size)]
     lefts, rights = [list(row) for row in left], [list(row) for row in right]
