@@ -50,7 +50,7 @@ class Commutators:
 
 
 def commutators(depth: int) -> Commutators:
-    """All raising and lowering operators between levels 0 ... depth. Cost: some 0.01 s at depth 8, 0.05 s at 10.
+    """All raising and lowering operators between levels 0 ... depth. Cost: 0.003 s at depth 8, 0.01 s at 10.
 
     >>> table = commutators(3)
     >>> table.raising[1, (2,)]                      # L_-1 L_-2 = L_-2 L_-1 + L_-3
@@ -146,7 +146,7 @@ class VermaModule:
 
 
 def verma_module(weight: Laurent, central: Laurent, depth: int) -> VermaModule:
-    """The module up to level ``depth``. Cost in products of series: about 1500 at depth 8, 10 000 at depth 10.
+    """The module up to level ``depth``. Cost: 0.03 s at depth 8, 0.08 s at depth 10.
 
     >>> h, c = (Laurent.constant(x, precision=1) for x in (Rational(3), Rational(1, 2)))
     >>> [[str(x.coefficient(0)) for x in row] for row in verma_module(h, c, 2).gram[2]]   # 4h + c/2, 6h; 6h, 4h(2h+1)

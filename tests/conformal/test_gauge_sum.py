@@ -10,13 +10,17 @@ from random import Random
 
 import pytest
 from building import make_case, plain_number, plain_theory
-from flint import fmpq
+from flint import fmpq, fmpq_mat
 from plain import coefficient, laurent_coefficient
 
 import ratomega
 from ratomega.case.setting import own_setting
 from ratomega.conformal.dictionary import dealings, gauge_path
+from ratomega.conformal.dressing import Dressing
 from ratomega.conformal.gauge_sum import first_singular_level, gauge_coefficients
+from ratomega.conformal.gram import verma_module
+from ratomega.conformal.vertex import Vertex, state_column, vertex_matrices
+from ratomega.exact.laurent import Laurent
 
 # 2, 1/2 and the like are eps2/eps1; generic Coulomb parameters off centre, no colour dead.
 RATIOS = [("1", "1"), ("1", "2"), ("2", "1"), ("2", "3"), ("1", "-1"), ("4", "-3"), ("3", "-2")]
@@ -175,3 +179,57 @@ def test_random_cases_on_their_paths(seed) -> None:
         node["antifundamental"] = [moving() for _ in range(split)]
         node["fundamental"] = [moving() for _ in range(flavours - split)]
     on_the_path(make_case(*eps, [node]), 3)
+
+
+# ---- a chain of fields
+
+
+def sides(masses, eps, area):
+    """Two antifundamentals of masses m ± b: the fields of Delta(m) and (eps^2/4 - b^2)/A."""
+    mean, b = (masses[0] + masses[1]) / 2, (masses[0] - masses[1]) / 2
+    return mean, Vertex(number(mean * (eps - mean) / area), number((eps**2 / 4 - b**2) / area))
+
+
+def number(x) -> Laurent:
+    return Laurent.constant(x, precision=1)
+
+
+def matrix(rows) -> fmpq_mat:
+    return fmpq_mat([[x.coefficient(0) for x in row] for row in rows])
+
+
+def test_a_chain_of_three_fields_is_a_quiver_of_two_nodes() -> None:
+    # Alday, Gaiotto, Tachikawa, arXiv 0906.3219: the five-point block, with a factor (1 - q)^(2 m (eps - m')/A) for
+    # every run of nodes between two fields, against the quiver box by box. The bifundamental of mass m is the field of
+    # Delta(m) between descendants of both nodes.
+    eps1, eps2, last = fmpq(7), fmpq(5), 3
+    eps, area = eps1 + eps2, eps1 * eps2
+    a, b, m = fmpq(2, 7), fmpq(3, 11), fmpq(5, 9)
+    flavours = [fmpq(1, 3), fmpq(-2, 5)], [fmpq(3, 8), fmpq(7, 6)]
+    nodes = [{"coulomb": [x, -x], "antifundamental": masses} for x, masses in zip((a, b), flavours, strict=True)]
+    quiver = {"eps1": eps1, "eps2": eps2, "nodes": nodes, "edges": [(0, 1, m)]}
+    charges = [(i, j) for i in range(last + 1) for j in range(last + 1 - i)]
+    central = number(1 + 6 * eps**2 / area)
+    first, second = (verma_module(number((eps**2 / 4 - x**2) / area), central, last) for x in (a, b))
+    (left_mass, left), (right_mass, right) = (sides(masses, eps, area) for masses in flavours)
+    middle = vertex_matrices(first, second, number(m * (eps - m) / area), last)
+
+    def block(i, j):
+        start, end = ([[x] for x in state_column(*args)] for args in ((first, left, i), (second, right, j)))
+        inverses = matrix(first.gram[i]).inv(), matrix(second.gram[j]).inv()
+        return (matrix(start).transpose() * inverses[0] * matrix(middle[i, j]) * inverses[1] * matrix(end))[0, 0]
+
+    zero = number(0)
+    runs = ((1, 0), left_mass * (eps - m)), ((0, 1), m * right_mass), ((1, 1), left_mass * right_mass)
+    values = {charge: block(*charge) for charge in charges}
+    for (di, dj), exponent in runs:
+        factor = Dressing(zero, number(2 * exponent / area), zero).coefficients(last)
+        values = {
+            (i, j): sum(
+                (factor[n].coefficient(0) * values[i - n * di, j - n * dj]
+                 for n in range(last + 1) if i >= n * di and j >= n * dj),
+                fmpq(0),
+            )
+            for i, j in charges
+        }  # fmt: skip
+    assert values == {charge: coefficient(quiver, charge) for charge in charges}
