@@ -19,9 +19,9 @@ __all__ = ["block_coefficients", "first_singular_level", "gauge_coefficients"]
 def block_coefficients(block: SphereBlock | TorusBlock, first: int, last: int) -> tuple[Laurent, ...]:
     """The coefficients of the block at levels ``first`` ... ``last``, without the U(1) factor.
 
-    Raises ``ZeroDivisionError`` when a Gram matrix is degenerate to the precision of the block. Cost with numbers of few
-    digits, levels 0 to 8 and 0 to 10: 0.06 s and 0.2 s on the sphere, 0.2 s and 0.7 s on the torus; over a quadratic
-    field or over series of nine terms 0.4 s and 3 s on the sphere, 1.2 s to level 8 on the torus.
+    Raises ``ZeroDivisionError`` when a Gram matrix is degenerate to the precision of the block. Cost with numbers of
+    few digits, to level 8 and to level 10: 0.06 s and 0.2 s on the sphere, 0.2 s and 0.7 s on the torus; over a
+    quadratic field or over series of nine terms 0.4 s and 3 s on the sphere, 1.2 s to level 8 on the torus.
     """
     module = verma_module(block.internal, block.central, last)
     precision = module.precision
