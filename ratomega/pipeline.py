@@ -226,7 +226,7 @@ def validate(
     >>> case = {"charge": 3, "background": {"eps1": 1, "eps2": 1}, "node": [{"coulomb": ["1/3", "-1/3"]}]}
     >>> result = validate(case)
     >>> [check.name for check in result.routes]
-    ['pole recursion in the Coulomb parameter']
+    ['pole recursion in the Coulomb parameter', 'Gram matrix of Virasoro descendants']
     >>> result.exit_status
     0
     """

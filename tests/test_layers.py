@@ -104,6 +104,14 @@ def test_identities_share_no_code_with_the_sums(path):
     assert not rooms & {"weights", "detector", "regulator", "pipeline"}
 
 
+@pytest.mark.parametrize(
+    "path", [*sorted(ROOT.glob("conformal/*.py")), ROOT / "validator" / "virasoro.py"], ids=lambda p: p.name
+)
+def test_conformal_forms_share_no_code_with_the_sum(path):
+    rooms = {room(found) for found in reached(path)}
+    assert not rooms & {"weights", "detector", "regulator", "pipeline"}
+
+
 POLE_ROUTE = sorted(ROOT.glob("regulator/poles/*.py"))
 SUMS = [ROOT / "regulator" / "direct.py", *sorted(ROOT.glob("regulator/fast/*.py"))]
 

@@ -24,6 +24,7 @@ from ratomega.validator.identities.rectangles import check_rectangles
 from ratomega.validator.identities.siblings import Evaluate
 from ratomega.validator.identities.special_adjoint import check_special_adjoint
 from ratomega.validator.identities.special_clusters import check_special_clusters
+from ratomega.validator.path_comparison import check_elementary_path, check_gram
 from ratomega.validator.recursion import check_recursion
 from ratomega.validator.regularity import regularity_checks
 from ratomega.validator.verdict import Check
@@ -76,7 +77,7 @@ def outside_checks(
     ``evaluate`` and ``clusterwise`` take the limits of other cases. Cost: bounded check by check by the depth, before
     any work; a few seconds in all at "quick", up to minutes at "full".
     """
-    yield from _routes(case, weights, limits)
+    yield from _routes(case, weights, limits, depth)
     yield from _relatives(case, evaluate, clusterwise, depth)
     yield from check_components(weights, [one.charge for one in limits], most=depth.configurations)
     for check in (
@@ -89,14 +90,16 @@ def outside_checks(
     yield from regularity_checks(weights, [one.charge for one in limits], effort=depth.effort)
 
 
-def _routes(case: Case, weights: Weights, limits: Sequence[ChargeLimit]) -> Iterator[Check]:
+def _routes(case: Case, weights: Weights, limits: Sequence[ChargeLimit], depth: Depth) -> Iterator[Check]:
     setting = weights.setting
     yield from check_closed_forms(case, setting, limits)
     for form in minimal_forms(setting, [one.charge for one in limits]):
         check = compare(form, limits)
         if check is not None:
             yield check
+    yield from check_elementary_path(case, setting, limits)
     yield from check_recursion(case, setting, limits)
+    yield from check_gram(case, setting, limits, most_level=depth.level)
     adjoint = check_adjoint_clusters(setting, limits)
     if adjoint is not None:
         yield adjoint

@@ -6,14 +6,23 @@ All are written for Coulomb parameters (a, -a); a common shift of the Coulomb pa
 from __future__ import annotations
 
 from collections.abc import Iterator, Sequence
-from itertools import product
 
-from ratomega.exact.quadratic import Number, Quadratic
+from ratomega.conformal.exact_blocks import elementary_sum
+from ratomega.exact.quadratic import Number
 from ratomega.exact.rational import ONE, ZERO
 from ratomega.validator.limit_point import Charge, ClosedForm, LimitPoint
-from ratomega.validator.qseries import binomial, nome_over_modulus, theta3_of_modulus
 
-__all__ = ["four_flavour_forms", "low_charge_forms"]
+__all__ = ["ELEMENTARY_SOURCE", "ELEMENTARY_STATEMENT", "four_flavour_forms", "low_charge_forms"]
+
+ELEMENTARY_STATEMENT = (
+    "Z = (16 q_e/q)^(-a^2/(eps1 eps2)) (1-q)^((sum mu + eps)^2/(4 eps1 eps2)) "
+    "theta_3^((2 sum mu^2 - eps^2)/(eps1 eps2)) where mu = m - eps/2 are 0, ±eps1/2, ±eps2/2, ±eps1/2±eps2/2, "
+    "q_e the nome of modulus q, theta_3 = sum_n q_e^(n^2)"
+)
+ELEMENTARY_SOURCE = (
+    "V. Fateev, A. Litvinov, A. Neveu, E. Onofri, arXiv 0902.1331; Al. Zamolodchikov 1986 (c = 1); "
+    "R. Poghossian, arXiv 0909.3412"
+)
 
 _SUM_OF_BOXES = "N. Nekrasov, arXiv hep-th/0206161; R. Flume, R. Poghossian, arXiv hep-th/0208176"
 
@@ -32,34 +41,20 @@ def _is_one_u2(point: LimitPoint) -> bool:
 def four_flavour_forms(point: LimitPoint, charges: Sequence[Charge]) -> Iterator[ClosedForm]:
     """U(2) with mu_f = m_f - eps/2 equal to 0, ±eps1/2, ±eps2/2, ±eps1/2 ± eps2/2, one of each: H = 1 for every a.
 
-    The residues of H at 2a = ±(m eps1 + n eps2) contain prod_f prod (mu_f + (p eps1 + r eps2)/2), p = 1-m, 3-m, ...,
-    m-1 and r = 1-n, 3-n, ..., n-1: for each parity of m and n one of the four masses makes a factor zero, with either
-    sign, since p and r take both signs.
+    ``conformal.exact_blocks`` says why and holds the form.
     """
     if not _is_one_u2(point) or point.nodes[0].adjoint or len(point.nodes[0].flavours) != 4:
         return
     a_squared, masses = _centred(point)
-    mu = [m - point.eps / 2 for m in masses if not isinstance(m, Quadratic)]
-    half1, half2 = point.eps1 / 2, point.eps2 / 2
-    family = (sorted([ZERO, r * half1, s * half2, u * half1 + v * half2]) for r, s, u, v in product((1, -1), repeat=4))
-    if sorted(mu) not in family:
+    form = elementary_sum(point.eps1, point.eps2, a_squared, [m - point.eps / 2 for m in masses])
+    if form is None:
         return
-    order = max(charge[0] for charge in charges)
-    scale = point.eps1 * point.eps2
-    total, squares = sum(mu, ZERO), sum((x * x for x in mu), ZERO)
-    series = (
-        nome_over_modulus(order).power(-a_squared / scale)
-        * binomial(-ONE, (total + point.eps) ** 2 / (4 * scale), order)
-        * theta3_of_modulus(order).power((2 * squares - point.eps**2) / scale)
-    )
+    values = form.coefficients(max(charge[0] for charge in charges))
     yield ClosedForm(
         "U(2) with four flavours, elementary block",
-        "Z = (16 q_e/q)^(-a^2/(eps1 eps2)) (1-q)^((sum mu + eps)^2/(4 eps1 eps2)) "
-        "theta_3^((2 sum mu^2 - eps^2)/(eps1 eps2)) where mu = m - eps/2 are 0, ±eps1/2, ±eps2/2, ±eps1/2±eps2/2, "
-        "q_e the nome of modulus q, theta_3 = sum_n q_e^(n^2)",
-        "V. Fateev, A. Litvinov, A. Neveu, E. Onofri, arXiv 0902.1331; Al. Zamolodchikov 1986 (c = 1); "
-        "R. Poghossian, arXiv 0909.3412",
-        {charge: series.coefficients[charge[0]] for charge in charges},
+        ELEMENTARY_STATEMENT,
+        ELEMENTARY_SOURCE,
+        {charge: values[charge[0]] for charge in charges},
     )
 
 

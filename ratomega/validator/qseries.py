@@ -21,8 +21,6 @@ __all__ = [
     "euler_product",
     "exponential",
     "hypergeometric",
-    "nome_over_modulus",
-    "theta3_of_modulus",
 ]
 
 
@@ -169,29 +167,6 @@ def euler_product(exponent: Number, order: int) -> Series:
                 sparse[position] = Rational((-1) ** n)
         n += 1
     return Series(tuple(sparse)).power(exponent)
-
-
-def theta3_of_modulus(order: int) -> Series:
-    """theta_3 = sum_n nome^(n^2) as a series in the modulus q: its square is 2F1(1/2, 1/2; 1; q) (Jacobi).
-
-    >>> theta3_of_modulus(3).coefficients
-    (1, 1/8, 1/16, 21/512)
-    """
-    half = Rational(1, 2)
-    return hypergeometric([half, half], [ONE], ONE, order).power(half)
-
-
-def nome_over_modulus(order: int) -> Series:
-    """16 nome / q as a series in the modulus q.
-
-    The nome runs with the modulus as q d(log nome)/dq = 1 / ((1 - q) theta_3^4) (Jacobi); this is integrated.
-
-    >>> nome_over_modulus(3).coefficients
-    (1, 1/2, 21/64, 31/128)
-    """
-    theta = theta3_of_modulus(order)
-    velocity = (theta.power(Rational(4)) * binomial(-ONE, ONE, order)).inverse()
-    return Series((ZERO, *(velocity.coefficients[n] / n for n in range(1, order + 1)))).exp()
 
 
 @dataclass(frozen=True, slots=True)

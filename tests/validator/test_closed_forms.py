@@ -21,7 +21,7 @@ from ratomega.case.setting import Setting, own_setting, resonances
 from ratomega.case.theory import Edge, Node, Theory
 from ratomega.exact.rational import ONE, Rational, as_rational
 from ratomega.validator.closed_forms import ClosedForm, closed_forms
-from ratomega.validator.qseries import binomial, nome_over_modulus, theta3_of_modulus
+from ratomega.validator.qseries import binomial
 
 R = Rational
 E1, E2, T = Affine(eps1=ONE), Affine(eps2=ONE), Affine(t=ONE)
@@ -331,17 +331,6 @@ def test_four_flavours_at_c_1_and_c_25(second) -> None:
     assert set(forms_of(full_case)[0].values) == set(full_case.charges)
 
 
-def test_four_flavour_prefactor_is_the_published_block() -> None:
-    # c = 1, weights 1/16, and c = 25, weights 15/16, at h = 3/7, without the power of x (Al. Zamolodchikov 1986):
-    # the series from which the form is built.
-    h, order = R(3, 7), 3
-    nome, theta = nome_over_modulus(order), theta3_of_modulus(order)
-    first = nome.power(h) * binomial(-ONE, R(-1, 8), order) * theta.power(-ONE)
-    assert first.coefficients == (1, R(3, 14), R(739, 6272), R(7123, 87808))
-    second = nome.power(h - 1) * binomial(-ONE, R(-7, 8), order) * theta.power(R(-3))
-    assert second.coefficients == (1, R(3, 14), R(1131, 6272), R(13787, 87808))
-
-
 def test_four_flavours_at_c_1_towards_the_vacuum() -> None:
     # c = 1, weights 1/16, h -> 0: the block 1, 0, 1/128, 1/128, 117/16384, recomputed from Zamolodchikov's formula.
     # Here at h = 1/10^12, times (1-x)^(2 m0 m1/(eps1 eps2)) = (1-x)^(-1/8), m0 = m1 = 1/4 (Alday, Gaiotto, Tachikawa
@@ -503,7 +492,7 @@ def test_no_form_is_wrong_among_crowded_parameters(seed) -> None:
 def test_closed_forms_share_only_numbers_and_the_case() -> None:
     folder = Path(module.__file__).parent
     numbers, case = {"exact.quadratic", "exact.rational"}, {"case.case", "case.setting"}
-    conformal = {"conformal.known_blocks", "conformal.minimal"}
+    conformal = {"conformal.exact_blocks", "conformal.known_blocks", "conformal.minimal"}
     allowed = numbers | case | conformal | {"validator.limit_point", "validator.qseries"}
     identities = [folder / "identities" / name for name in ("finite_poles.py", "painleve.py")]
     allowed |= {f"validator.identities.{file.stem}" for file in identities}

@@ -9,7 +9,7 @@ from flint import fmpz
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
-from ratomega.exact.rational import ONE, ZERO, Rational, as_fraction
+from ratomega.exact.rational import ONE, Rational, as_fraction
 from ratomega.validator.qseries import (
     Multiseries,
     Series,
@@ -17,22 +17,12 @@ from ratomega.validator.qseries import (
     euler_product,
     exponential,
     hypergeometric,
-    nome_over_modulus,
-    theta3_of_modulus,
 )
 
 fractions = st.fractions(min_value=-3, max_value=3, max_denominator=7).map(
     lambda x: Rational(x.numerator, x.denominator)
 )
 tails = st.lists(fractions, min_size=5, max_size=5)
-
-
-def composed(outer: list[Rational], inner: Series) -> Series:
-    """outer(inner(q)) for a series inner without constant term, by Horner's rule."""
-    result = Series.make([ZERO] * (inner.order + 1))
-    for c in reversed(outer):
-        result = result * inner + Series.one(inner.order).scaled(c)
-    return result
 
 
 def evaluated(series: Series, x: mpmath.mpf) -> mpmath.mpf:
@@ -47,44 +37,6 @@ def test_euler_products_against_tables() -> None:
     # Pairs of diagrams and triples of diagrams: Vafa, Witten hep-th/9408074 for U(2) and U(3).
     assert euler_product(Rational(-2), 3).coefficients == (1, 2, 5, 10)
     assert euler_product(Rational(-3), 3).coefficients == (1, 3, 9, 22)
-
-
-def test_nome_against_its_table() -> None:
-    # nome = u + 8 u^2 + 84 u^3 + 992 u^4 + ..., u = q/16: Abramowitz and Stegun, from memory.
-    table = [Rational(c, 16**n) for n, c in enumerate([1, 8, 84, 992])]
-    assert list(nome_over_modulus(3).coefficients) == table
-
-
-def test_nome_inverts_the_modular_function() -> None:
-    # q = 16 nome prod ((1 + nome^(2n)) / (1 + nome^(2n-1)))^8 (Jacobi), composed order by order.
-    order = 9
-    product = Series.one(order)
-    for n in range(1, order + 1):
-        product = product * Series.make([ONE if k in (0, n) else ZERO for k in range(order + 1)]).power(
-            Rational(8 if n % 2 == 0 else -8)
-        )
-    modulus = [ZERO, *(16 * c for c in product.coefficients[:-1])]
-    nome = Series((ZERO, *(c / 16 for c in nome_over_modulus(order).coefficients[:-1])))
-    assert composed(modulus, nome) == Series.make([0, 1, *[0] * (order - 1)])
-
-
-def test_theta_is_its_sum_over_squares() -> None:
-    order = 10
-    squares = [ZERO] * (order + 1)
-    for n in range(-3, 4):
-        squares[n * n] += 1
-    nome = Series((ZERO, *(c / 16 for c in nome_over_modulus(order).coefficients[:-1])))
-    assert composed(squares, nome) == theta3_of_modulus(order)
-
-
-def test_nome_and_theta_against_mpmath() -> None:
-    with mpmath.workdps(40):
-        x = mpmath.mpf(1) / 100
-        nome = mpmath.qfrom(m=x)
-        assert mpmath.almosteq(evaluated(nome_over_modulus(14), x) * x / 16, nome, rel_eps=mpmath.mpf(10) ** -29)
-        assert mpmath.almosteq(
-            evaluated(theta3_of_modulus(14), x), mpmath.jtheta(3, 0, nome), rel_eps=mpmath.mpf(10) ** -29
-        )
 
 
 def test_hypergeometric_against_mpmath() -> None:
