@@ -45,7 +45,7 @@ class Depth:
     effort: int
 
 
-DEPTHS = (Depth("quick", 2_000, 6, 1), Depth("full", 20_000, 10, 10))
+DEPTHS = (Depth("quick", 2_000, 8, 1), Depth("full", 20_000, 10, 10))
 
 
 def depth_of(name: str) -> Depth:
