@@ -21,6 +21,7 @@ from ratomega.exact.path import Linear
 from ratomega.exact.quadratic import Number, is_quadratic, number_text, only_rational, rational_parts
 from ratomega.exact.rational import Rational
 from ratomega.validator.closed_forms_u2 import ELEMENTARY_SOURCE, ELEMENTARY_STATEMENT
+from ratomega.validator.depth import FULL
 from ratomega.validator.limit_point import Charge, ClosedForm
 
 __all__ = [
@@ -117,7 +118,11 @@ def gram_path_form(case: Case, setting: Setting, *, most_level: int = MOST_LEVEL
     where = "" if singular > last else f", in series in t from level {singular} on, where the Kac determinant vanishes"
     statement = (_FLAVOURS if gauge.adjoint is None else _ADJOINT) + where
     left_out = case.bounds[0] > last
-    note = f"charges beyond {last} were not computed this way (Gram matrices to level {depth} here)" if left_out else ""
+    note = ""
+    if left_out:
+        deeper = deepest_level(gauge, FULL.level)
+        more = f", to level {deeper} with --depth full" if deeper > depth else ""
+        note = f"charges beyond {last} were not computed this way (Gram matrices to level {depth} here{more})"
     return PathForm(_NAME, statement, _SOURCE, values, note)
 
 

@@ -106,7 +106,8 @@ def test_levels_left_out_are_named() -> None:
     case = make_case("1", "1", [C25], charge=4)
     check = gram(case, most_level=3)
     assert check.evidence.endswith(
-        "equal up to charge 3; charges beyond 3 were not computed this way (Gram matrices to level 3 here)"
+        "equal up to charge 3; charges beyond 3 were not computed this way (Gram matrices to level 3 here, to level 10 "
+        "with --depth full)"
     )
     assert check.verdict is Verdict.AGREES
 

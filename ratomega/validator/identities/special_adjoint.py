@@ -20,11 +20,11 @@ from ratomega.validator.identities.siblings import (
     Evaluate,
     Identity,
     affordable,
+    nothing_allowed,
     reach_text,
     sibling,
     single_node,
     smooth_charge,
-    too_costly,
 )
 from ratomega.validator.qseries import Series, euler_product
 from ratomega.validator.verdict import Check, Kind
@@ -62,14 +62,14 @@ def check_special_adjoint(case: Case, evaluate: Evaluate, *, most: int = MOST_WO
     wanted = smooth_charge(case)
     charge = affordable(case, wanted, lambda k: 3, most)
     if charge < 1:
-        return identity.undecided(too_costly(most))
+        return identity.undecided(nothing_allowed(most))
     euler = euler_product(Rational(-node.rank), charge)
     one = Series.one(charge)
     rows: list[tuple[str, Number, Number]] = []
     for mass, series in ((SOFT, euler), (NEAR_EPS1, one), (NEAR_EPS2, one)):
         values = evaluate(sibling(case, charge, adjoint=mass))
         rows += [(f"Z_{k} at mass {mass}", values[k], series.coefficients[k]) for k in range(1, charge + 1)]
-    return identity.judged(rows, reach_text(charge, wanted))
+    return identity.judged(rows, reach_text(charge, wanted, most))
 
 
 def soft_sibling(case: Case, *, most: int = MOST_WORK) -> Case | None:

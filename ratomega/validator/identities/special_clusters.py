@@ -16,7 +16,7 @@ from ratomega.regulator.limits import ChargeLimit
 from ratomega.validator.comparison import check_adjoint_clusters
 from ratomega.validator.identities.siblings import MOST_WORK
 from ratomega.validator.identities.special_adjoint import SOFT, soft_sibling
-from ratomega.validator.verdict import Check, Kind
+from ratomega.validator.verdict import Check
 
 __all__ = ["check_special_clusters"]
 
@@ -33,4 +33,4 @@ def check_special_clusters(
     if other is None or case.theory.nodes[0].adjoint == (SOFT,):
         return None
     found = check_adjoint_clusters(own_setting(other), clusterwise(other))
-    return None if found is None else replace(found, name=f"{found.name} at adjoint mass t/5", kind=Kind.SIBLING)
+    return None if found is None else replace(found, name=f"{found.name} at adjoint mass t/5")

@@ -233,11 +233,12 @@ def test_work_is_bounded_before_it_starts(check):
     lowered = check(case, asked, most=200)
     assert asked.configurations <= 200
     assert lowered.verdict is Verdict.AGREES
-    assert "(of 6: more is too costly)" in lowered.evidence
+    assert "(of 6: more is too costly; --depth full allows more)" in lowered.evidence
     nothing = Counting()
     refused = check(case, nothing, most=3)
     assert refused.verdict is Verdict.UNDECIDED
     assert "more than 3 configurations" in refused.evidence
+    assert "ask for it with --depth full" in refused.evidence
     assert nothing.cases == []
 
 
