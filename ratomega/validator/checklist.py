@@ -18,6 +18,7 @@ from ratomega.validator.components import check_components
 from ratomega.validator.depth import DEPTHS, Depth, depth_of
 from ratomega.validator.finiteness import certificate, check_orders
 from ratomega.validator.identities.blow_up import check_blow_up
+from ratomega.validator.identities.collapse import check_collapse
 from ratomega.validator.identities.prepotential import check_one_instanton, check_seiberg_witten
 from ratomega.validator.identities.rectangles import check_rectangles
 from ratomega.validator.identities.siblings import Evaluate
@@ -92,3 +93,4 @@ def _relatives(case: Case, evaluate: Evaluate, clusterwise: Clusterwise, depth: 
     ):
         if check is not None:
             yield check
+    yield from check_collapse(case, evaluate, most=depth.configurations)

@@ -1,8 +1,8 @@
 """Siblings of a case, the limits that an identity asks for there, and the verdict on what came out.
 
 An identity imports no sum. It is given an ``Evaluate``: a function from a case to the exact limits Z_0, ..., Z_K, K the
-charge of that case. It is asked for cases of one node at which every component is compact, so that the limit is finite
-and the same on every path, and for no more configurations in all than were allowed.
+charge of that case. It is asked for cases at which every component is compact, so that the limit is finite and the same
+on every path, and for no more configurations in all than were allowed.
 """
 
 from __future__ import annotations
@@ -35,7 +35,7 @@ __all__ = [
 ]
 
 Evaluate = Callable[[Case], Sequence[Number]]
-"""From a case to its limits Z_0, ..., Z_K; the case has one node, no symbols and an integer charge K."""
+"""From a case without symbols to its limits in the order of its charges: Z_0, ..., Z_K for one node."""
 
 MOST_WORK = 20_000
 """How many configurations an identity may ask for in all, unless its caller says otherwise: some seconds."""
