@@ -27,6 +27,7 @@ LAYERS = [
     {"reports"},
     {"workers"},
     {"job"},
+    {"nesting"},
     {"pipeline"},
     {"atlas_documents"},
     {"averaging"},

@@ -28,6 +28,7 @@ from ratomega.documents import Result, error_document, to_json
 from ratomega.errors import InputError, RatomegaError, WorkerError
 from ratomega.exact.rational import exact_text
 from ratomega.job import MOST_CONFIGURATIONS, Job
+from ratomega.nesting import nested_checks, nested_result, refuse_other_ways
 from ratomega.pipeline import (
     DEFAULT_PROBES,
     detect_result,
@@ -35,7 +36,7 @@ from ratomega.pipeline import (
     validate_checks,
 )
 from ratomega.regulator.routes import ROUTES
-from ratomega.results import ValidateResult
+from ratomega.results import LimitResult, ValidateResult
 from ratomega.validator.checklist import DEPTHS, depth_of
 from ratomega.validator.verdict import Check
 from ratomega.version import VERSION
@@ -113,7 +114,7 @@ def detect(exchanges: int, as_json: bool, **case_options: Any) -> int:
 
     Example: ratomega detect u2-pure --charge 3
     """
-    job = _job(**case_options)
+    job = _job(_loaded(**case_options), **case_options)
     found, interrupted = _collect(job, job.scans(exchanges=exchanges), lambda report: report.charge)
     return _finish(detect_result(job, found, partial=interrupted), detect_text, as_json, interrupted)
 
@@ -140,7 +141,12 @@ def limit(
 
     Example: ratomega limit b1-four-flavours --charge 2
     """
-    job = _job(**case_options, route=route, clusterwise=terms is not None)
+    loaded = _loaded(**case_options)
+    if loaded.nested:
+        asked = {"terms": terms is not None, "route": route == "poles", "certify": certify}
+        refuse_other_ways(**asked, workers=workers, cluster=cluster, keep=keep)
+        return _finish(_nested(loaded, **case_options), limit_text, as_json, False)
+    job = _job(loaded, **case_options, route=route, clusterwise=terms is not None)
     with _crew(job, workers, cluster, keep) as crew:
         if crew is not None and job.way.short_cut:
             click.echo("note: this route works in one process and keeps no parts", err=True)
@@ -173,7 +179,13 @@ def validate(
 
     Example: ratomega validate b1-four-flavours --charge 2
     """
-    job = _job(**case_options)
+    loaded = _loaded(**case_options)
+    if loaded.nested:
+        refuse_other_ways(workers=workers, cluster=cluster, keep=keep)
+        limits_found = _nested(loaded, **case_options)
+        nested = ValidateResult(limits_found.header, tuple(nested_checks(loaded, limits_found)), depth)
+        return _finish(nested, validate_text, as_json, False)
+    job = _job(loaded, **case_options)
     with _crew(job, workers, cluster, keep) as crew:
         limits = job.limits(probes=probes, always_probe=True, crew=crew)
         found, interrupted = _collect(job, limits, lambda one: one.charge, crew)
@@ -232,24 +244,26 @@ def _charge_bound(case: Case) -> str:
     return str(case.charge) if isinstance(case.charge, int) else charge_word(case.charge)
 
 
-def _job(
-    case: str,
-    charge: str | None,
-    eps1: str | None,
-    eps2: str | None,
-    no_tilt: bool,
-    most_configurations: int,
-    route: str = "auto",
-    clusterwise: bool = True,
-) -> Job:
+def _loaded(case: str, charge: str | None, eps1: str | None, eps2: str | None, **_others: Any) -> Case:
+    """The case with what the options replace."""
     loaded = load_case(case)
     if eps1 is not None or eps2 is not None:
         mapping = case_to_mapping(loaded)
         given = {"eps1": eps1, "eps2": eps2}
         mapping["background"] |= {key: value for key, value in given.items() if value is not None}
         loaded = case_from_mapping(mapping, where="command line")
-    if charge is not None:
-        loaded = loaded.with_charge(read_charge(charge))
+    return loaded if charge is None else loaded.with_charge(read_charge(charge))
+
+
+def _job(
+    loaded: Case,
+    *,
+    no_tilt: bool,
+    most_configurations: int,
+    route: str = "auto",
+    clusterwise: bool = True,
+    **_others: Any,
+) -> Job:
     return Job.prepare(
         loaded,
         allow_tilt=not no_tilt,
@@ -257,6 +271,10 @@ def _job(
         route=route,
         clusterwise=clusterwise,
     )
+
+
+def _nested(loaded: Case, *, no_tilt: bool, most_configurations: int, **_others: Any) -> LimitResult:
+    return nested_result(loaded, allow_tilt=not no_tilt, most_configurations=most_configurations)
 
 
 @contextmanager
