@@ -16,8 +16,8 @@ from ratomega.validator.finiteness import CANCELLATION, FORESIGHT, ORDERS, PATHS
 from ratomega.validator.identities.prepotential import check_one_instanton
 from ratomega.validator.verdict import Kind, Verdict
 
-# The recursion takes rational momenta, and in this case they are imaginary: one complete route fewer.
-WITH_ONE_ROUTE = {"imaginary-momenta"}
+# A limit inside a limit has the recursion alone: one complete route fewer.
+WITH_ONE_ROUTE = {"vacuum-degenerate", "vacuum-from-momentum"}
 # What may be proved: all of it is computed before any other check begins.
 PROVABLE = {CANCELLATION, PATHS, FORESIGHT, ORDERS}
 NOTHING = Depth("nothing", 0, 1, 0)
