@@ -35,7 +35,7 @@ __all__ = ["nested_checks", "nested_result", "refuse_other_ways"]
 DIRECTIONS = tuple(Rational(*kappa) for kappa in ((1, 7), (-3, 5), (5, 11), (-2, 13), (7, 3), (4, 17), (-9, 19)))
 MOST_DIRECTIONS = 3
 
-_WHY = "u -> 0 at fixed t, then t -> 0; the inner limits cluster by cluster at t = P, a prime"
+_WHY = "u -> 0 at fixed t, then t -> 0; the inner limits are taken at t = P, a prime"
 _NESTED = "limit inside the limit"
 _ORDER = "order of the two limits"
 _SOURCE = "P-adic evaluation: a fraction is found from its residue when the prime is longer than both of its parts"

@@ -101,8 +101,9 @@ def _checks(
     if product:
         name, kind, source = _PLAIN_PRODUCT
         evidence = (
-            "at eps1 : eps2 = alpha : beta they add up, over all components, to a coefficient of the product over colours "
-            "and i >= 1 of 1/(1 - t^i), or 1/(1 - q t^i) where alpha + beta divides i (nowhere at a negative ratio)"
+            "at eps1 : eps2 = alpha : beta they add up, over all components, to a coefficient of the product over "
+            "colours and i >= 1 of 1/(1 - t^i), or 1/(1 - q t^i) where alpha + beta divides i (for no i at a negative "
+            "ratio)"
         )
         verdict = Verdict.REFUTED if difference else Verdict.AGREES
         yield Check(name, verdict, kind, f"{evidence}; {difference or f'equal {reach}'}", source)

@@ -121,7 +121,7 @@ def check_regularity(regular: Regular) -> Check | None:
                 return _check(name, Verdict.REFUTED, f"{_where(charge, power)}: T(x) {what}: {_short(function)}")
         times = f"t^-{series.order} times " if series.order else ""
         shown.append(f"{charge_text(charge)}: {times}{_short(series.leading)}")
-    head = f"T(x) = <{_statement(setting, regular.node)}> is a polynomial of degree {highest} at most"
+    head = f"T(x) = {_statement(setting, regular.node)} is a polynomial of degree {highest} at most"
     extent = _extent(regular.reach, regular.charges, regular.most, MOST_FUNCTIONS)
     return _check(name, Verdict.AGREES, f"{head}, {extent}; {'; '.join(shown[:3])}")
 
@@ -195,7 +195,7 @@ def check_dyson_schwinger(
                 return _check(name, Verdict.REFUTED, f"{_where(charge, power)}: {evidence}")
             if not example and any(value != 0 for value in values):
                 example = f"; {_where(charge, power)}: {', '.join(number_text(value) for value in values)}"
-    head = f"the coefficients of 1/x of the terms of <{_statement(setting, node)}> add up to zero"
+    head = f"the coefficients of 1/x of the terms of T(x) = {_statement(setting, node)} add up to zero"
     return _check(name, Verdict.AGREES, f"{head}, {_extent(reach, charges, most, MOST_NUMBERS)}{example}")
 
 
@@ -314,10 +314,10 @@ def _affordable(
 
 
 def _statement(setting: Setting, node: int) -> str:
-    """T in words: the first terms."""
+    """T in words: the average of its first terms."""
     if len(setting.nodes) == 1:
-        return f"Y(x + eps) {'-' if setting.nodes[0].rank % 2 else '+'} q P(x)/Y(x)"
-    return f"Y(x + eps) + ... of node {setting.nodes[node].name}"
+        return f"<Y(x + eps) {'-' if setting.nodes[0].rank % 2 else '+'} q P(x)/Y(x)>"
+    return f"<Y(x + eps) + ...>, Y that of node {setting.nodes[node].name},"
 
 
 def _where(charge: Charge, power: int) -> str:
