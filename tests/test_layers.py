@@ -29,7 +29,7 @@ LAYERS = [
     {"job"},
     {"nesting"},
     {"pipeline"},
-    {"averaging"},
+    {"averaging", "explaining"},
     {"verify"},
     {"atlas_documents", "average_documents", "approach_documents"},
     {"documents"},

@@ -21,6 +21,7 @@ from ratomega.case.reading import load_case
 from ratomega.cli.approach import approach
 from ratomega.cli.atlas import atlas
 from ratomega.cli.average import average
+from ratomega.cli.explain import explain
 from ratomega.cli.options import case_options, probes_option, worker_options
 from ratomega.cli.running import (
     INTERRUPTED,
@@ -162,6 +163,7 @@ def validate(
 
 cli.add_command(approach)
 cli.add_command(atlas)
+cli.add_command(explain)
 cli.add_command(average)
 
 
