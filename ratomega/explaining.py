@@ -150,8 +150,8 @@ def _meaning(job: Job, reports: Sequence[ChargeReport]) -> str:
     return (
         f"The Coulomb parameters are resonant: {resonance_text(job.setting, least)}, so from charge {first} of that "
         "node on components need not be compact. There the limit may exist because numerators vanish (as for minimal "
-        "models), may be a pole, or may depend on the path; `ratomega limit` tries further paths and says which. A limit "
-        "inside the limit is written with u."
+        "models), may be a pole, or may depend on the path; `ratomega limit` tries further paths and says which. A "
+        "limit inside the limit is written with u."
     )
 
 
