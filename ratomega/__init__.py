@@ -22,12 +22,15 @@ from ratomega.documents import load_result, to_json
 from ratomega.errors import InputError, PathError, Problem, RatomegaError, WorkerError
 from ratomega.exact.quadratic import Quadratic
 from ratomega.exact.rational_function import RationalFunction
+from ratomega.explaining import Explanation, explain
 from ratomega.pipeline import clusters, detect, limit, validate
 from ratomega.results import Coefficient, DetectResult, LimitResult, ValidateResult
 from ratomega.validator.verdict import Check, Kind, Verdict
+from ratomega.verify.approach import Approach, approach
 from ratomega.version import VERSION as __version__
 
 __all__ = [
+    "Approach",
     "Atlas",
     "Average",
     "AverageResult",
@@ -35,6 +38,7 @@ __all__ = [
     "Check",
     "Coefficient",
     "DetectResult",
+    "Explanation",
     "InputError",
     "Kind",
     "LimitResult",
@@ -47,11 +51,13 @@ __all__ = [
     "Verdict",
     "WorkerError",
     "__version__",
+    "approach",
     "atlas",
     "average",
     "bundled_names",
     "clusters",
     "detect",
+    "explain",
     "limit",
     "load_case",
     "load_result",

@@ -18,8 +18,10 @@ import click
 from ratomega.case.bundled import bundled_names, bundled_text
 from ratomega.case.case import Case
 from ratomega.case.reading import load_case
+from ratomega.cli.approach import approach
 from ratomega.cli.atlas import atlas
 from ratomega.cli.average import average
+from ratomega.cli.explain import explain
 from ratomega.cli.options import case_options, probes_option, worker_options
 from ratomega.cli.running import (
     INTERRUPTED,
@@ -159,7 +161,9 @@ def validate(
     return finish(result, validate_text, as_json, interrupted)
 
 
+cli.add_command(approach)
 cli.add_command(atlas)
+cli.add_command(explain)
 cli.add_command(average)
 
 
