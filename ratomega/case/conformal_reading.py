@@ -184,10 +184,12 @@ def _field(value: object, key: str, reader: _Mistakes) -> Field:
     if not isinstance(value, Mapping):
         reader.add(f"expected a table {_EXAMPLE}, not {kind(value)}", key)
         return _PLACEHOLDER
-    for found in value:
-        if found not in FIELD_KINDS:
-            reader.unknown(found, FIELD_KINDS, key)
+    strange = [found for found in value if found not in FIELD_KINDS]
+    for found in strange:
+        reader.unknown(found, FIELD_KINDS, key)
     given = [name for name in FIELD_KINDS if name in value]
+    if strange and not given:
+        return _PLACEHOLDER
     if len(given) != 1:
         reader.add(f"a field has one of the keys {', '.join(FIELD_KINDS)}, not {' and '.join(given) or 'none'}", key)
         return _PLACEHOLDER

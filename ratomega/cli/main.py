@@ -1,4 +1,4 @@
-"""The command line: ``ratomega detect | limit | validate | average CASE`` and ``ratomega cases``.
+"""The command line: ``ratomega detect | limit | validate | average | block CASE`` and ``ratomega cases``.
 
 Results go to standard output, everything else to standard error. Exit status: 0 done; 1 a pole survives, a limit is
 path-dependent or a check is refuted; 2 the input is wrong; 3 finiteness or path-independence stayed undecided; 4 the
@@ -22,6 +22,7 @@ from ratomega.case.case import Case
 from ratomega.case.reading import case_from_mapping, case_to_mapping, load_case
 from ratomega.cli.atlas import atlas, read_charge
 from ratomega.cli.average import average_command
+from ratomega.cli.block import block
 from ratomega.desk.text import charge_word, detect_text, limit_text, table, theory_text, validate_text
 from ratomega.diagrams.tuples import Charge
 from ratomega.documents import Result, error_document, to_json
@@ -193,6 +194,7 @@ def validate(
 
 
 cli.add_command(atlas)
+cli.add_command(block)
 
 
 @cli.command()

@@ -168,7 +168,8 @@ def known_checks(correlator: Correlator, series: Series) -> tuple[Check, ...]:
         return ()
     found = []
     for known, values in blocks_of(point, len(series.values) - 1):
-        statement = f"{point}: {known.statement}{'' if known.fields == point.fields else ', the fields in another order'}"
+        moved = "" if known.fields == point.fields else ", the fields in another order"
+        statement = f"{point}: {known.statement}{moved}"
         check = compare_block(f"{known.name}, {known.model}", statement, known.source, series, values, torus=False)
         found += [] if check is None else [check]
     return tuple(found)
