@@ -27,9 +27,11 @@ from ratomega.exact.rational_function import RationalFunction
 from ratomega.pipeline import clusters, detect, limit, validate
 from ratomega.results import Coefficient, DetectResult, LimitResult, ValidateResult
 from ratomega.validator.verdict import Check, Kind, Verdict
+from ratomega.verify.approach import Approach, approach
 from ratomega.version import VERSION as __version__
 
 __all__ = [
+    "Approach",
     "Atlas",
     "Average",
     "AverageResult",
@@ -51,6 +53,7 @@ __all__ = [
     "Verdict",
     "WorkerError",
     "__version__",
+    "approach",
     "atlas",
     "average",
     "block",

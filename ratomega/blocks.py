@@ -154,6 +154,8 @@ def _prepared(source: BlockSource, order: int | None) -> _Prepared:
     if loaded.symbols:
         message = f"a block is computed at numbers; give numbers for {', '.join(loaded.symbols)}"
         raise InputError.single(message, "symbols")
+    if loaded.nested:
+        raise InputError.single("a block is computed on one path, and this case has a limit inside the limit (u)", "u")
     reason = why_no_fields(probe_setting(loaded, 1))
     if reason:
         raise InputError.single(reason, "node")

@@ -13,6 +13,7 @@ from collections.abc import Callable, Mapping, Sequence
 from pathlib import Path
 from typing import Any
 
+from ratomega.approach_documents import approach_body, read_approach
 from ratomega.atlas_documents import atlas_document, read_atlas
 from ratomega.average_documents import average_body, read_average
 from ratomega.average_results import AverageResult
@@ -43,10 +44,11 @@ from ratomega.results import (
 )
 from ratomega.validator.checklist import depth_of
 from ratomega.validator.verdict import Check, Kind, Verdict
+from ratomega.verify.approach import Approach
 
 __all__ = ["Result", "error_document", "load_result", "to_document", "to_json"]
 
-Result = LimitResult | DetectResult | ValidateResult | AverageResult | Atlas | BlockResult
+Result = LimitResult | DetectResult | ValidateResult | AverageResult | Atlas | BlockResult | Approach
 Document = dict[str, Any]
 
 LARGEST_DOCUMENT = 512 * 1024 * 1024
@@ -81,6 +83,8 @@ def to_document(result: Result) -> Document:
         return {"result": "detect", **_header(result.header), "partial": result.partial, **body}
     if isinstance(result, AverageResult):
         return {"result": "average", **_header(result.header), "partial": result.partial, **average_body(result)}
+    if isinstance(result, Approach):
+        return {"result": "approach", **_header(result.header), "partial": result.partial, **approach_body(result)}
     body = {"depth": result.depth, "checks": [_check(c) for c in result.checks], "summary": result.summary}
     return {"result": "validate", **_header(result.header), "partial": result.partial, **body}
 
@@ -138,7 +142,9 @@ def _from_document(document: Document) -> Result:
         return result
     if kind == "average":
         return read_average(document, header, partial)
-    raise ValueError(f'"result" is {kind!r}, not limit, detect, validate, average, block or atlas')
+    if kind == "approach":
+        return read_approach(document, header, partial)
+    raise ValueError(f'"result" is {kind!r}, not limit, detect, validate, average, block, approach or atlas')
 
 
 # ---- small pieces, each with its way back ----

@@ -35,7 +35,7 @@ from ratomega.workers.hands import Hands, LentExecutor, ThisProcess
 from ratomega.workers.pool import OwnPool
 from ratomega.workers.store import Store
 
-__all__ = ["MOST_CONFIGURATIONS", "CaseSource", "Found", "Job", "ShortLimit"]
+__all__ = ["MOST_CONFIGURATIONS", "CaseSource", "Found", "Job", "ShortLimit", "check_count"]
 
 MOST_CONFIGURATIONS = 1_000_000
 MOST_TERMS = 60
@@ -86,15 +86,21 @@ class Job:
         ``route`` and ``clusterwise`` as in ``regulator.routes.choose``.
         """
         case = load_case(source)
+        if case.nested:
+            message = (
+                "u stands for a limit inside the limit, which limit and validate take; elsewhere there is one path, so "
+                "give a multiple of t in place of u"
+            )
+            raise InputError.single(message, "u")
         functions = None
         if case.symbols:
-            _check_count(case, most_configurations)
+            check_count(case, most_configurations)
             functions = Functions(case, most_configurations=most_configurations, evaluator=point_values)
         sample = case.at(**functions.generic_point) if functions is not None else case
         setting = own_setting(sample, allow_tilt=allow_tilt)
         way = choose(case, setting, route, clusterwise=clusterwise or functions is not None)
         if way.short_cut != "poles":
-            _check_count(case, most_configurations)
+            check_count(case, most_configurations)
         check_path(setting, case.bounds)
         warnings = [*dead_colours(setting), *frozen_number_warnings(sample, setting)]
         if setting.tilted:
@@ -197,7 +203,8 @@ def _check_probes(number: int) -> None:
         raise InputError.single(message, "probes")
 
 
-def _check_count(case: Case, most: int) -> None:
+def check_count(case: Case, most: int) -> None:
+    """Raises ``InputError`` when the case has more configurations than ``most``."""
     count = count_all(case.theory.ranks, case.charge)
     if count > most:
         raise InputError.single(

@@ -21,6 +21,7 @@ from ratomega.diagrams.tuples import Charge
 from ratomega.exact.quadratic import Number
 from ratomega.exact.rational_function import RationalFunction
 from ratomega.job import MOST_CONFIGURATIONS, CaseSource, Found, Job, ShortLimit
+from ratomega.nesting import nested_checks, nested_result, refuse_other_ways
 from ratomega.regulator.limits import ChargeLimit
 from ratomega.regulator.outcome import FiniteLimit, Independence, PathDependent, Pole
 from ratomega.regulator.routes import Way
@@ -81,14 +82,23 @@ def limit(
     >>> [str(c.value) for c in result]            # exp(q/(eps1 eps2)) = exp(-q)
     ['1', '-1', '1/2']
 
+    With u in a parameter there is a limit inside the limit, u -> 0 before t -> 0, taken in one way of its own.
+
     With symbols the values are functions, found from limits at many points.
 
     >>> case = {"charge": 1, "symbols": ["a"], "background": {"eps1": 1, "eps2": 1}, "node": [{"coulomb": ["a", "-a"]}]}
     >>> str(limit(case)[1].value)
     '-1/(2*(a + 1)*(a - 1))'
     """
+    case = load_case(source)
+    if case.nested:
+        poles = route == "poles"
+        refuse_other_ways(
+            terms=terms is not None, route=poles, certify=certify, workers=workers, executor=executor, keep=keep
+        )
+        return nested_result(case, allow_tilt=allow_tilt, most_configurations=most_configurations)
     job = Job.prepare(
-        source,
+        case,
         allow_tilt=allow_tilt,
         most_configurations=most_configurations,
         route=route,
@@ -231,8 +241,13 @@ def validate(
     0
     """
     asked = depth_of(depth)
+    case = load_case(source)
+    if case.nested:
+        refuse_other_ways(workers=workers, executor=executor, keep=keep)
+        found_limits = nested_result(case, allow_tilt=allow_tilt, most_configurations=most_configurations)
+        return ValidateResult(found_limits.header, tuple(nested_checks(case, found_limits)), asked.name)
     job = Job.prepare(
-        source, allow_tilt=allow_tilt, most_configurations=most_configurations, clusterwise=True
+        case, allow_tilt=allow_tilt, most_configurations=most_configurations, clusterwise=True
     )
     found = []
     with job.crew(workers=workers, executor=executor, keep=keep) or nullcontext() as crew:

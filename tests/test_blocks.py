@@ -177,9 +177,9 @@ def test_the_conformal_form_of_a_gauge_case():
     assert d.internal.weight == 1 - fmpq(4, 49)
 
 
-@pytest.mark.parametrize("name", ["u2-pure", "surviving-pole", "two-ranks", "u3-pure", "free-momentum"])
+@pytest.mark.parametrize("name", ["u2-pure", "surviving-pole", "two-ranks", "u3-pure", "free-momentum", "vacuum-degenerate"])
 def test_other_theories_have_no_block_of_primary_fields(name):
-    with pytest.raises(ratomega.InputError, match=r"four flavours or one adjoint|give numbers for a"):
+    with pytest.raises(ratomega.InputError, match=r"four flavours or one adjoint|give numbers for a|limit inside"):
         ratomega.block(name)
 
 

@@ -5,24 +5,27 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 from ratomega.case.affine import Affine
+from ratomega.case.expression import INNER
 from ratomega.errors import InputError, Problem
 from ratomega.exact.path import Linear
 from ratomega.exact.quadratic import is_quadratic, only_rational
-from ratomega.exact.rational import ONE, Rational
+from ratomega.exact.rational import ONE, ZERO, Rational
 
 __all__ = ["Background"]
 
 
 @dataclass(frozen=True, slots=True)
 class Background:
-    """eps1 and eps2 as linear forms in t. Build it with ``Background.make``."""
+    """eps1 and eps2 as linear forms in t, and their slopes in u. Build it with ``Background.make``."""
 
     eps1: Linear
     eps2: Linear
+    inner: tuple[Rational, Rational] = (ZERO, ZERO)
 
     @classmethod
     def make(cls, eps1: Affine, eps2: Affine) -> Background:
-        """Where no t occurs, the path is eps2 + t. Raises ``InputError`` when eps1 or eps2 is zero at the limit.
+        """Where neither t nor u occurs, the path is eps2 + t. Raises ``InputError`` when eps1 or eps2 is zero at the
+        limit.
 
         >>> str(Background.make(Affine(ONE), Affine(ONE)).eps2)
         '1 + t'
@@ -30,8 +33,8 @@ class Background:
         problems = []
         for name, value in (("eps1", eps1), ("eps2", eps2)):
             if value.eps1 != 0 or value.eps2 != 0:
-                problems.append(Problem("in eps1 and eps2 themselves only t may occur", name))
-            elif is_quadratic(value.constant) or is_quadratic(value.t):
+                problems.append(Problem("in eps1 and eps2 themselves only t and u may occur", name))
+            elif any(is_quadratic(x) for x in (value.constant, value.t, value.coefficient(INNER))):
                 problems.append(
                     Problem(
                         f"{name} = {value} is not rational; i and sqrt(d) may stand in all other parameters, but "
@@ -49,8 +52,15 @@ class Background:
                 )
         if problems:
             raise InputError(problems)
-        slope2 = ONE if eps1.t == 0 and eps2.t == 0 else eps2.t
-        return cls(Linear(eps1.constant, eps1.t), Linear(eps2.constant, slope2))
+        inner = only_rational(eps1.coefficient(INNER)), only_rational(eps2.coefficient(INNER))
+        moves = any(x != 0 for x in (eps1.t, eps2.t, *inner))
+        return cls(Linear(eps1.constant, eps1.t), Linear(eps2.constant, eps2.t if moves else ONE), inner)
+
+    def affine(self) -> tuple[Affine, Affine]:
+        """eps1 and eps2 as expressions in t and u."""
+        pairs = zip((self.eps1, self.eps2), self.inner, strict=True)
+        one, two = (Affine(e.constant, t=e.slope, symbols=((INNER, u),) if u != 0 else ()) for e, u in pairs)
+        return one, two
 
     @property
     def ratio(self) -> Rational:

@@ -11,11 +11,12 @@ from dataclasses import dataclass, replace
 
 from ratomega.case.affine import Affine
 from ratomega.case.background import Background
-from ratomega.case.expression import IMAGINARY, ROOT, SYMBOLS, as_affine
+from ratomega.case.expression import IMAGINARY, INNER, ROOT, SYMBOLS, as_affine
 from ratomega.case.theory import Theory
 from ratomega.case.wording import kind, quoted, shortened
 from ratomega.diagrams.tuples import Charge, charges_up_to
 from ratomega.errors import InputError, Problem
+from ratomega.exact.path import Linear
 from ratomega.exact.quadratic import is_quadratic, two_fields
 from ratomega.exact.rational import Rational, exact_text
 
@@ -74,6 +75,25 @@ class Case:
         return Case.make(self.theory.at(read), self.background, self.charge, self.title, rest)
 
     @property
+    def nested(self) -> bool:
+        """u occurs: a limit inside the limit, u -> 0 before t -> 0."""
+        parameters = (x for _, x in self.theory.parameters())
+        return any(u != 0 for u in self.background.inner) or any(x.coefficient(INNER) != 0 for x in parameters)
+
+    def inner(self, value: Rational) -> Case:
+        """The case of the inner limit at t = ``value``: t a number, and u the parameter of the path, called t."""
+
+        def forms(e: Linear, u: Rational) -> Linear:
+            return Linear(e.constant + e.slope * value, u)
+
+        def change(x: Affine) -> Affine:
+            return Affine(x.constant + x.t * value, x.eps1, x.eps2, x.coefficient(INNER))
+
+        background, (u1, u2) = self.background, self.background.inner
+        moved = Background(forms(background.eps1, u1), forms(background.eps2, u2))
+        return replace(self, theory=self.theory.each(change), background=moved)
+
+    @property
     def charges(self) -> tuple[Charge, ...]:
         """Every charge within the bound, charge 0 first."""
         return charges_up_to(self.charge, len(self.theory.nodes))
@@ -86,6 +106,8 @@ class Case:
     def key(self) -> str:
         """The physics alone as canonical text: no title, no charge, no names."""
         eps = [[str(x.constant), str(x.slope)] for x in (self.background.eps1, self.background.eps2)]
+        if any(u != 0 for u in self.background.inner):
+            eps += [[str(u) for u in self.background.inner]]
         symbols = [sorted(self.symbols)] if self.symbols else []
         return json.dumps([eps, self.theory.key(), *symbols], separators=(",", ":"))
 
@@ -105,7 +127,7 @@ def checked_symbols(symbols: Sequence[str]) -> tuple[str, ...]:
             message = f"a symbol is a name in quotes, not {kind(name)}"
         elif not _NAME.fullmatch(name) or keyword.iskeyword(name):
             message = f"the symbol {quoted(name)} is not a name of letters, digits and _ such as a or m_1"
-        elif name in (*SYMBOLS, IMAGINARY, ROOT):
+        elif name in (*SYMBOLS, INNER, IMAGINARY, ROOT):
             message = f"the name {name} has its own meaning; choose another symbol"
         elif name in symbols[: number - 1]:
             message = f"the symbol {name} is listed twice"
@@ -122,7 +144,9 @@ def _check_field(theory: Theory, symbols: Sequence[str]) -> None:
     field = 0
     for where, parameter in theory.parameters():
         for name, _ in parameter.symbols:
-            if name not in symbols:
+            if name == INNER and symbols:
+                raise InputError.single(f"{parameter} contains u; a limit inside the limit takes no symbols", where)
+            if name not in (*symbols, INNER):
                 raise InputError.single(f"{parameter} contains {name}, which is not among the symbols", where)
         if symbols and any(is_quadratic(x) for x in parameter.numbers()):
             message = f"{parameter} is not rational; in a case with symbols all numbers are rational"

@@ -33,9 +33,11 @@ from ratomega.exact.quadratic import (
 )
 from ratomega.exact.rational import ONE, Rational, unsigned
 
-__all__ = ["DEEPEST_NESTING", "LONGEST_EXPRESSION", "MOST_DIGITS", "SYMBOLS", "as_affine", "parse_affine"]
+__all__ = ["DEEPEST_NESTING", "INNER", "LONGEST_EXPRESSION", "MOST_DIGITS", "SYMBOLS", "as_affine", "parse_affine"]
 
 SYMBOLS = ("eps1", "eps2", "t")
+INNER = "u"
+"""A second path parameter, taken to 0 before t."""
 IMAGINARY, ROOT = "i", "sqrt"
 _UNITS = {"eps1": Affine(eps1=ONE), "eps2": Affine(eps2=ONE), "t": Affine(t=ONE)}
 
@@ -253,7 +255,7 @@ class _Parser:
     def named(self, name: str) -> Affine:
         if name == ROOT:
             return self.root()
-        if self.next.text == "(" and name not in (*SYMBOLS, IMAGINARY):
+        if self.next.text == "(" and name not in (*SYMBOLS, INNER, IMAGINARY):
             message = f"calls the function {quoted(name)}; functions are not read, only numbers, sqrt(d) and + - * /"
             raise self.mistake(message)
         if name == IMAGINARY:
@@ -262,8 +264,8 @@ class _Parser:
             return _UNITS[name] if name in _UNITS else Affine(symbols=((name, ONE),))
         if name in SYMBOLS:
             raise InputError.single(_not_here(self.shown, name, self.symbols), self.where)
-        if set(self.symbols) == {"t"}:
-            message = f"contains the unknown name {quoted(name)}; only t may occur in eps1 and eps2 themselves"
+        if set(self.symbols) <= {"t", INNER}:
+            message = f"contains the unknown name {quoted(name)}; only t may occur in eps1 and eps2 themselves, and u"
             raise self.mistake(message)
         if name in ("I", "j", "J"):
             raise self.mistake(f"contains the unknown name {quoted(name)}; the imaginary unit is written i")

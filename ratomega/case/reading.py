@@ -18,7 +18,7 @@ from ratomega.case.bundled import bundled_names, bundled_text
 from ratomega.case.case import Case, checked_charge, checked_symbols, checked_title
 from ratomega.case.conformal import ConformalCase, gauge_case
 from ratomega.case.conformal_reading import conformal_from_mapping
-from ratomega.case.expression import SYMBOLS, as_affine
+from ratomega.case.expression import INNER, SYMBOLS, as_affine
 from ratomega.case.tables import file_label, text_of_file, toml_tables
 from ratomega.case.theory import HIGHEST_RANK, MOST_EDGES, MOST_MASSES, MOST_NODES, Edge, Node, Theory
 from ratomega.case.wording import kind, nearest, quoted
@@ -151,7 +151,7 @@ def case_to_mapping(case: Case) -> dict[str, Any]:
         "title": case.title,
         "charge": case.charge if isinstance(case.charge, int) else list(case.charge),
         **({"symbols": list(case.symbols)} if case.symbols else {}),
-        "background": {"eps1": str(case.background.eps1), "eps2": str(case.background.eps2)},
+        "background": dict(zip(("eps1", "eps2"), map(str, case.background.affine()), strict=True)),
         "node": [
             {
                 "name": node.name,
@@ -245,7 +245,7 @@ class _Reader:
         self.free = self.attempt(lambda: checked_symbols(value)) or ()  # type: ignore[arg-type]
 
     def affine(self, value: object, key: str, symbols: Collection[str] | None = None) -> Affine:
-        symbols = (*SYMBOLS, *self.free) if symbols is None else symbols
+        symbols = (*SYMBOLS, INNER, *self.free) if symbols is None else symbols
         read = self.attempt(lambda: as_affine(value, symbols=symbols), key)
         return _PLACEHOLDER if read is None else read
 
@@ -278,8 +278,9 @@ class _Reader:
                 self.add(f"expected a table with eps1 and eps2, not {kind(table)}", "background")
             return None
         self.keys(table, "background", ("eps1", "eps2"), needed=("eps1", "eps2"))
+        small = (*SMALL_PARAMETERS, INNER)
         eps1, eps2 = (
-            self.affine(table[name], f"background.{name}", SMALL_PARAMETERS) if name in table else _PLACEHOLDER
+            self.affine(table[name], f"background.{name}", small) if name in table else _PLACEHOLDER
             for name in ("eps1", "eps2")
         )
         return self.attempt(lambda: Background.make(eps1, eps2), "background")

@@ -7,7 +7,7 @@ loop into an adjoint, so that the theory has one form.
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Iterator, Mapping
+from collections.abc import Callable, Iterable, Iterator, Mapping
 from dataclasses import dataclass, replace
 
 import networkx
@@ -109,15 +109,19 @@ class Theory:
 
     def at(self, values: Mapping[str, Affine]) -> Theory:
         """The theory with symbols replaced in every parameter."""
+        return self.each(lambda x: x.at(values))
 
-        def each(parameters: Iterable[Affine]) -> tuple[Affine, ...]:
-            return tuple(x.at(values) for x in parameters)
+    def each(self, change: Callable[[Affine], Affine]) -> Theory:
+        """The theory with every parameter changed."""
+
+        def all_of(parameters: Iterable[Affine]) -> tuple[Affine, ...]:
+            return tuple(change(x) for x in parameters)
 
         nodes = (
-            Node(n.name, each(n.coulomb), each(n.antifundamental), each(n.fundamental), each(n.adjoint))
+            Node(n.name, all_of(n.coulomb), all_of(n.antifundamental), all_of(n.fundamental), all_of(n.adjoint))
             for n in self.nodes
         )
-        edges = (replace(edge, mass=edge.mass.at(values)) for edge in self.edges)
+        edges = (replace(edge, mass=change(edge.mass)) for edge in self.edges)
         return Theory(tuple(nodes), tuple(edges))
 
     def key(self) -> list[object]:

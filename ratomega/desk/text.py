@@ -78,7 +78,7 @@ def heading(header: Header, partial: bool) -> list[str]:
     lines = [case.title] if case.title else []
     lines += [
         f"theory   {theory_text(case)}",
-        f"path     {header.path.text()}; t -> 0",
+        f"path     {header.path.text()}; {', then '.join(f'{name} -> 0' for name in header.path.parameters)}",
         *([f"symbols  {', '.join(case.symbols)}"] if case.symbols else []),
         f"ratio    eps2/eps1 = {number_text(ratio)}",
         f"hash     {header.hash}",
@@ -143,7 +143,7 @@ def _limit_row(c: Coefficient) -> list[str]:
         shown = c.leading
     else:
         shown = c.values[0].value
-    independence = c.independence or "paths differ"
+    independence = c.independence or ("paths differ" if c.values else "-")
     return [charge_word(c.charge), *counts, status, independence, f"~{approximate_text(shown)}", number_text(shown)]
 
 

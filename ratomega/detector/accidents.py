@@ -53,7 +53,7 @@ def _meetings(value: Number, setting: Setting, bound: int) -> Iterator[tuple[int
 
 
 def check_path(setting: Setting, bounds: Sequence[int]) -> None:
-    """Refuse a path that stays on the ratio while a denominator vanishes at the limit point. Raises ``PathError``."""
+    """Refuse a path that stays on the ratio where a denominator vanishes all along it. Raises ``PathError``."""
     if leaves_the_ratio(setting.eps1, setting.eps2):
         return
     ratio = only_rational(setting.eps2.constant / setting.eps1.constant)
@@ -64,13 +64,20 @@ def check_path(setting: Setting, bounds: Sequence[int]) -> None:
             guilty = f"from charge {first} on a vector factor of one colour vanishes identically"
         for alpha in range(node.rank):
             for beta in range(node.rank):
-                difference = node.coulomb[alpha].constant - node.coulomb[beta].constant
+                difference = node.coulomb[alpha] - node.coulomb[beta]
                 if alpha == beta or guilty:
                     continue
-                reached = [(p, q) for p, q in _meetings(difference, setting, bound) if smallest_pair(p, q) <= bound]
+                reached = [
+                    (p, q)
+                    for p, q in _meetings(difference.constant, setting, bound)
+                    if smallest_pair(p, q) <= bound
+                    and (difference + setting.eps1.scaled(p) + setting.eps2.scaled(q)).is_zero()
+                ]
                 if reached:
                     p, q = reached[0]
-                    guilty = f"the vector factor a{alpha + 1} - a{beta + 1} + ({p})*eps1 + ({q})*eps2 vanishes"
+                    guilty = (
+                        f"the vector factor a{alpha + 1} - a{beta + 1} + ({p})*eps1 + ({q})*eps2 vanishes identically"
+                    )
         if guilty:
             raise PathError.single(
                 f"the path eps1 = {setting.eps1}, eps2 = {setting.eps2} stays on the ratio {ratio} "

@@ -22,7 +22,6 @@ from ratomega.exact.quadratic import Number, as_integer, is_quadratic, number_te
 from ratomega.exact.rational import ONE, ZERO, Rational
 from ratomega.regulator.poles.problem import PoleProblem, four_point_problem, torus_problem
 from ratomega.regulator.poles.recursion import WIDEST_FORM, pole_coefficients
-from ratomega.validator.recursion import BESIDE
 from ratomega.validator.verdict import Check, Kind, Verdict
 
 __all__ = [
@@ -38,6 +37,8 @@ __all__ = [
 
 GRAM = "Gram matrices of Virasoro descendants"
 RECURSION = "the pole recursion in the internal weight"
+# A prime, so large that it divides no denominator of a case by accident.
+BESIDE = 2**127 - 1
 # Beyond this order the recursion in plain series takes minutes.
 HIGHEST_PLAIN_ORDER = 20
 
