@@ -11,7 +11,7 @@ from dataclasses import dataclass
 
 from ratomega.block_results import BlockCoefficient, BlockResult, Dictionary, FieldEntry
 from ratomega.case.case import Case
-from ratomega.case.conformal import PLACES, ConformalCase, checked_order, gauge_case
+from ratomega.case.conformal import HIGHEST_ORDER, PLACES, ConformalCase, checked_order, gauge_case
 from ratomega.case.reading import load_case_as_written
 from ratomega.case.setting import own_setting, probe_setting
 from ratomega.conformal.correlator import (
@@ -40,6 +40,7 @@ from ratomega.validator.blocks import (
     elementary_check,
     known_checks,
     recursion_check,
+    recursion_reach,
     recursion_values,
 )
 from ratomega.validator.verdict import Check, Kind, Verdict
@@ -55,6 +56,9 @@ MOST_CONFIGURATIONS = 1_500
 # The deepest level of Gram matrices for the effort that the numbers make (see ``_depth``): seconds at most.
 _DEPTHS = ((12, 10), (40, 8), (200, 6))
 _ALWAYS = 4
+# The highest order of the recursion for the digits of the longest number: a minute or so, minutes in the first line.
+_REACHES = ((12, HIGHEST_ORDER), (80, 40), (400, 24))
+_REACHES_ALWAYS = 12
 
 _SUM = "the sum over pairs of diagrams"
 _DICTIONARY_SOURCE = "L. Alday, D. Gaiotto, Y. Tachikawa, arXiv 0906.3219"
@@ -94,9 +98,9 @@ def block(source: BlockSource, *, order: int | None = None) -> BlockResult:
     correlator, last = ready.correlator, ready.order
     degenerate = correlator.degenerate(last)
     depth = min(last, _depth(correlator, bool(degenerate)))
-    values = None if degenerate else recursion_values(correlator, last)
+    values = None if degenerate or last > _reach(correlator) else recursion_values(correlator, last)
     if values is None and depth < last:
-        raise InputError.single(_out_of_reach(degenerate, depth, last), "order")
+        raise InputError.single(_out_of_reach(correlator, degenerate, depth, last), "order")
     gram = correlator.coefficients(depth)
     if values is None:
         series = Series(gram, GRAM)
@@ -176,20 +180,32 @@ def _prepared(source: BlockSource, order: int | None) -> _Prepared:
 
 def _depth(correlator: Correlator, degenerate: bool) -> int:
     """How deep Gram matrices are taken, by the length of the numbers; decided before any work."""
-    parts = [part for x in correlator.numbers() for part in rational_parts(x)]
-    digits = max(max(int(x.p).bit_length(), int(x.q).bit_length()) for x in parts) * 3 // 10 + 1
-    effort = digits * (4 if correlator.torus else 1)
+    effort = _digits(correlator) * (4 if correlator.torus else 1)
     if degenerate or any(is_quadratic(x) for x in correlator.numbers()):
         effort *= 2
     return next((level for most, level in _DEPTHS if effort <= most), _ALWAYS)
 
 
-def _out_of_reach(degenerate: Sequence[tuple[int, int]], depth: int, last: int) -> str:
+def _digits(correlator: Correlator) -> int:
+    """The digits of the longest number."""
+    parts = [part for x in correlator.numbers() for part in rational_parts(x)]
+    return max(max(int(x.p).bit_length(), int(x.q).bit_length()) for x in parts) * 3 // 10 + 1
+
+
+def _reach(correlator: Correlator) -> int:
+    """How far the recursion goes, by the length of the numbers; decided before any work."""
+    digits = _digits(correlator)
+    return next((order for most, order in _REACHES if digits <= most), _REACHES_ALWAYS)
+
+
+def _out_of_reach(correlator: Correlator, degenerate: Sequence[tuple[int, int]], depth: int, last: int) -> str:
+    most = depth
     if degenerate:
         why = f"the internal weight is h_({degenerate[0][0]},{degenerate[0][1]}), where the recursion divides by zero"
     else:
+        most = max(depth, recursion_reach(correlator, _reach(correlator)))
         why = f"the recursion does not go to order {last} here (it takes rational squares of momenta and short numbers)"
-    return f"{why}, and Gram matrices go to order {depth} at these numbers; ask for order {depth} at most"
+    return f"{why}, and Gram matrices go to order {depth} at these numbers; ask for order {most} at most"
 
 
 def _outcomes(

@@ -177,7 +177,9 @@ def test_the_conformal_form_of_a_gauge_case():
     assert d.internal.weight == 1 - fmpq(4, 49)
 
 
-@pytest.mark.parametrize("name", ["u2-pure", "surviving-pole", "two-ranks", "u3-pure", "free-momentum", "vacuum-degenerate"])
+@pytest.mark.parametrize(
+    "name", ["u2-pure", "surviving-pole", "two-ranks", "u3-pure", "free-momentum", "vacuum-degenerate"]
+)
 def test_other_theories_have_no_block_of_primary_fields(name):
     with pytest.raises(ratomega.InputError, match=r"four flavours or one adjoint|give numbers for a|limit inside"):
         ratomega.block(name)
@@ -246,9 +248,13 @@ def test_an_order_that_nothing_reaches_is_refused():
     with pytest.raises(ratomega.InputError, match=r"order: the internal weight is h_\(1,1\).* order 10 at most"):
         ratomega.block(case([weight("1/16")] * 4, weight(0), 40, c=1))
     irrational = [{"momentum": "1 + i"}] * 4
-    with pytest.raises(ratomega.InputError, match=r"order: the recursion does not go to order 12"):
+    with pytest.raises(ratomega.InputError, match=r"does not go to order 12 here .* ask for order 10 at most"):
         ratomega.block(case(irrational, weight(3), 12, c=1))
     assert len(ratomega.block(case(irrational, weight(3), 2, c=1)).coefficients) == 3
+    with pytest.raises(ratomega.InputError, match=r"order 60 here .* and short numbers\), .* ask for order 24 at most"):
+        ratomega.block(case([weight(f"{10**150 + 1}/7")], weight("1/3"), 60, c=1))
+    with pytest.raises(ratomega.InputError, match=r"order 150 here .* ask for order 20 at most"):
+        ratomega.block(case([weight(3)], weight("1/3"), 150, b_squared="999999/1000000"))
     with pytest.raises(ratomega.InputError, match="between 0 and 150"):
         ratomega.block("block-torus", order=151)
     assert block_of(ratomega.block("block-torus", order=0)) == ["1"]

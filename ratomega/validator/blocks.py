@@ -32,6 +32,7 @@ __all__ = [
     "elementary_check",
     "known_checks",
     "recursion_check",
+    "recursion_reach",
     "recursion_values",
 ]
 
@@ -78,18 +79,28 @@ def _solved(problem: PoleProblem, last: int, *, torus: bool, plain: bool | None)
     return series_product(found.regular, euler_power(-ONE, last + 1))
 
 
+def recursion_reach(correlator: Correlator, wanted: int) -> int:
+    """How far up to ``wanted`` the recursion goes at a regular internal weight; -1: it does not cover the case."""
+    problem = _problem(correlator, 0)
+    if problem is None:
+        return -1
+    return min(wanted, HIGHEST_PLAIN_ORDER) if _is_wide(problem, wanted) else wanted
+
+
+def _is_wide(problem: PoleProblem, order: int) -> bool:
+    """Is the ratio too long for residues? Then the recursion is done in plain series."""
+    return 2 * order * (problem.steps[0] + abs(problem.steps[1])) >= WIDEST_FORM
+
+
 def recursion_values(correlator: Correlator, last: int) -> list[Number] | None:
     """The block at a regular internal weight; None where the recursion does not cover it.
 
     Cost: a power of ``last``; some seconds at 40.
     """
     problem = _problem(correlator, 0)
-    if problem is None or problem.pole(last) is not None:
+    if problem is None or problem.pole(last) is not None or recursion_reach(correlator, last) < last:
         return None
-    wide = 2 * last * (problem.steps[0] + abs(problem.steps[1])) >= WIDEST_FORM
-    if wide and last > HIGHEST_PLAIN_ORDER:
-        return None
-    return _solved(problem, last, torus=correlator.torus, plain=True if wide else None)
+    return _solved(problem, last, torus=correlator.torus, plain=True if _is_wide(problem, last) else None)
 
 
 def compare_block(
