@@ -24,6 +24,7 @@ from ratomega.documents import load_result, to_json
 from ratomega.errors import InputError, PathError, Problem, RatomegaError, WorkerError
 from ratomega.exact.quadratic import Quadratic
 from ratomega.exact.rational_function import RationalFunction
+from ratomega.explaining import Explanation, explain
 from ratomega.pipeline import clusters, detect, limit, validate
 from ratomega.results import Coefficient, DetectResult, LimitResult, ValidateResult
 from ratomega.validator.verdict import Check, Kind, Verdict
@@ -41,6 +42,7 @@ __all__ = [
     "Check",
     "Coefficient",
     "DetectResult",
+    "Explanation",
     "InputError",
     "Kind",
     "LimitResult",
@@ -60,6 +62,7 @@ __all__ = [
     "bundled_names",
     "clusters",
     "detect",
+    "explain",
     "limit",
     "load_case",
     "load_result",

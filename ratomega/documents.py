@@ -27,6 +27,7 @@ from ratomega.errors import InputError
 from ratomega.exact.function_text import function_text, parse_function
 from ratomega.exact.quadratic import Number, from_number_text, number_text
 from ratomega.exact.rational_function import RationalFunction
+from ratomega.explaining import Explanation, Paragraph
 from ratomega.regulator.outcome import PathValue
 from ratomega.results import (
     ChargeReport,
@@ -48,7 +49,7 @@ from ratomega.verify.approach import Approach
 
 __all__ = ["Result", "error_document", "load_result", "to_document", "to_json"]
 
-Result = LimitResult | DetectResult | ValidateResult | AverageResult | Atlas | BlockResult | Approach
+Result = LimitResult | DetectResult | ValidateResult | AverageResult | Atlas | BlockResult | Approach | Explanation
 Document = dict[str, Any]
 
 LARGEST_DOCUMENT = 512 * 1024 * 1024
@@ -83,6 +84,9 @@ def to_document(result: Result) -> Document:
         return {"result": "detect", **_header(result.header), "partial": result.partial, **body}
     if isinstance(result, AverageResult):
         return {"result": "average", **_header(result.header), "partial": result.partial, **average_body(result)}
+    if isinstance(result, Explanation):
+        paragraphs = [{"title": p.title, "text": p.text} for p in result.paragraphs]
+        return {"result": "explain", **_header(result.header), "partial": result.partial, "paragraphs": paragraphs}
     if isinstance(result, Approach):
         return {"result": "approach", **_header(result.header), "partial": result.partial, **approach_body(result)}
     body = {"depth": result.depth, "checks": [_check(c) for c in result.checks], "summary": result.summary}
@@ -142,9 +146,12 @@ def _from_document(document: Document) -> Result:
         return result
     if kind == "average":
         return read_average(document, header, partial)
+    if kind == "explain":
+        paragraphs = tuple(Paragraph(_word(p["title"]), _word(p["text"])) for p in document["paragraphs"])
+        return Explanation(header, paragraphs, partial)
     if kind == "approach":
         return read_approach(document, header, partial)
-    raise ValueError(f'"result" is {kind!r}, not limit, detect, validate, average, block, approach or atlas')
+    raise ValueError(f'"result" is {kind!r}, not limit, detect, validate, average, block, approach, explain or atlas')
 
 
 # ---- small pieces, each with its way back ----

@@ -29,7 +29,7 @@ LAYERS = [
     {"job"},
     {"nesting"},
     {"pipeline"},
-    {"averaging", "blocks"},
+    {"averaging", "blocks", "explaining"},
     {"verify"},
     {"atlas_documents", "average_documents", "approach_documents", "block_documents"},
     {"documents"},

@@ -11,6 +11,7 @@ import json
 import os
 import sys
 from collections.abc import Sequence
+from functools import partial
 from typing import Any, NoReturn
 
 import click
@@ -22,7 +23,8 @@ from ratomega.cli.approach import approach
 from ratomega.cli.atlas import atlas
 from ratomega.cli.average import average
 from ratomega.cli.block import block
-from ratomega.cli.options import case_options, probes_option, worker_options
+from ratomega.cli.explain import explain
+from ratomega.cli.options import case_options, form_option, probes_option, worker_options
 from ratomega.cli.running import (
     INTERRUPTED,
     StatusLine,
@@ -31,8 +33,11 @@ from ratomega.cli.running import (
     finish,
     loaded_case,
     nested_limits_of,
+    one_form,
     prepared_job,
 )
+from ratomega.desk.csv_text import limit_csv
+from ratomega.desk.latex import detect_latex, limit_latex, validate_latex
 from ratomega.desk.text import charge_word, detect_text, limit_text, table, theory_text, validate_text
 from ratomega.documents import error_document
 from ratomega.errors import InputError, RatomegaError, WorkerError
@@ -59,6 +64,7 @@ def cli() -> None:
 
 @cli.command()
 @case_options
+@form_option
 @click.option(
     "--exchanges",
     type=click.IntRange(0),
@@ -66,20 +72,25 @@ def cli() -> None:
     metavar="N",
     help="Show which boxes are exchanged inside clusters of at most N members.",
 )
-def detect(exchanges: int, as_json: bool, **options_given: Any) -> int:
+def detect(exchanges: int, as_json: bool, latex: bool, **options_given: Any) -> int:
     """List the singular configurations, the guilty factors and the clusters.
 
     Example: ratomega detect u2-pure --charge 3
     """
+    one_form(json=as_json, latex=latex)
     job = prepared_job(loaded_case(**options_given), **options_given)
     found, interrupted = collect(job, job.scans(exchanges=exchanges), lambda report: report.charge)
-    return finish(detect_result(job, found, partial=interrupted), detect_text, as_json, interrupted)
+    write = detect_latex if latex else detect_text
+    return finish(detect_result(job, found, partial=interrupted), write, as_json, interrupted)
 
 
 @cli.command()
 @case_options
 @probes_option
 @worker_options
+@form_option
+@click.option("--csv", "as_csv", is_flag=True, help="Comma-separated values.")
+@click.option("--factored", is_flag=True, help="With --csv, the prime factors of denominators as well.")
 @click.option("--terms", type=int, metavar="N", help="Also the expansion in t up to t^N.")
 @click.option("--route", type=click.Choice(ROUTES), default="auto", show_default=True, help="The way to take.")
 @click.option("--certify", is_flag=True, help="Prove what residues gave, by a bound.")
@@ -92,30 +103,36 @@ def limit(
     cluster: str | None,
     keep: str | None,
     as_json: bool,
+    latex: bool,
+    as_csv: bool,
+    factored: bool,
     **options_given: Any,
 ) -> int:
     """Take the limit of every coefficient exactly, with a certificate.
 
     Example: ratomega limit b1-four-flavours --charge 2
     """
+    one_form(json=as_json, latex=latex, csv=as_csv)
+    write = limit_latex if latex else partial(limit_csv, factored=factored) if as_csv else limit_text
     loaded = loaded_case(**options_given)
     if loaded.nested:
         asked = {"terms": terms is not None, "route": route == "poles", "certify": certify}
         refuse_other_ways(**asked, workers=workers, cluster=cluster, keep=keep)
-        return finish(nested_limits_of(loaded, **options_given), limit_text, as_json, False)
+        return finish(nested_limits_of(loaded, **options_given), write, as_json, False)
     job = prepared_job(loaded, **options_given, route=route, clusterwise=terms is not None)
     with crew_of(job, workers, cluster, keep) as crew:
         if crew is not None and job.way.short_cut:
             click.echo("note: this route works in one process and keeps no parts", err=True)
         limits = job.limits(probes=probes, terms=terms, crew=crew, certify=certify)
         found, interrupted = collect(job, limits, lambda one: one.charge, crew)
-    return finish(limit_result(job, found, terms=terms, partial=interrupted), limit_text, as_json, interrupted)
+    return finish(limit_result(job, found, terms=terms, partial=interrupted), write, as_json, interrupted)
 
 
 @cli.command()
 @case_options
 @probes_option
 @worker_options
+@form_option
 @click.option(
     "--depth",
     type=click.Choice([depth.name for depth in DEPTHS]),
@@ -130,18 +147,21 @@ def validate(
     keep: str | None,
     depth: str,
     as_json: bool,
+    latex: bool,
     **options_given: Any,
 ) -> int:
     """Check finiteness, further paths, and every independent route and relation that applies.
 
     Example: ratomega validate b1-four-flavours --charge 2
     """
+    one_form(json=as_json, latex=latex)
+    write = validate_latex if latex else validate_text
     loaded = loaded_case(**options_given)
     if loaded.nested:
         refuse_other_ways(workers=workers, cluster=cluster, keep=keep)
         limits_found = nested_limits_of(loaded, **options_given)
         nested = ValidateResult(limits_found.header, tuple(nested_checks(loaded, limits_found)), depth)
-        return finish(nested, validate_text, as_json, False)
+        return finish(nested, write, as_json, False)
     job = prepared_job(loaded, **options_given)
     with crew_of(job, workers, cluster, keep) as crew:
         limits = job.limits(probes=probes, always_probe=True, crew=crew)
@@ -158,11 +178,12 @@ def validate(
         click.echo(f"interrupted: {len(checks)} checks were finished and are printed", err=True)
     line.clear()
     result = ValidateResult(job.header, tuple(checks), depth, interrupted)
-    return finish(result, validate_text, as_json, interrupted)
+    return finish(result, write, as_json, interrupted)
 
 
 cli.add_command(approach)
 cli.add_command(atlas)
+cli.add_command(explain)
 cli.add_command(average)
 cli.add_command(block)
 

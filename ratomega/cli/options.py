@@ -10,7 +10,7 @@ import click
 from ratomega.job import MOST_CONFIGURATIONS
 from ratomega.pipeline import DEFAULT_PROBES
 
-__all__ = ["case_options", "probes_option", "worker_options"]
+__all__ = ["case_options", "form_option", "probes_option", "worker_options"]
 
 
 def case_options(function: Callable[..., Any]) -> Callable[..., Any]:
@@ -41,6 +41,11 @@ probes_option = click.option(
     show_default=True,
     help="How many further paths are tried.",
 )
+
+
+def form_option(function: Callable[..., Any]) -> Callable[..., Any]:
+    """A table for LaTeX in place of text."""
+    return click.option("--latex", is_flag=True, help="A LaTeX table; needs the package longtable.")(function)
 
 
 def worker_options(function: Callable[..., Any]) -> Callable[..., Any]:

@@ -31,6 +31,7 @@ __all__ = [
     "finish",
     "loaded_case",
     "nested_limits_of",
+    "one_form",
     "prepared_job",
 ]
 
@@ -155,6 +156,13 @@ class StatusLine:
 
 
 ResultType = TypeVar("ResultType", bound=Result)
+
+
+def one_form(**asked: bool) -> None:
+    """Raises ``InputError`` when more than one form of output was asked for."""
+    named = [f"--{name}" for name, value in asked.items() if value]
+    if len(named) > 1:
+        raise InputError.single(f"one form of output at a time; leave all but one of {', '.join(named)} out", named[1])
 
 
 def finish(result: ResultType, write: Callable[[ResultType], str], as_json: bool, interrupted: bool) -> int:
