@@ -14,6 +14,8 @@ The public API in one screen; nothing is defined here.
 
 from ratomega.average_results import Average, AverageResult
 from ratomega.averaging import average
+from ratomega.block_results import BlockCoefficient, BlockResult
+from ratomega.blocks import block
 from ratomega.case.bundled import bundled_names
 from ratomega.case.case import Case
 from ratomega.case.reading import load_case
@@ -34,6 +36,8 @@ __all__ = [
     "Atlas",
     "Average",
     "AverageResult",
+    "BlockCoefficient",
+    "BlockResult",
     "Case",
     "Check",
     "Coefficient",
@@ -54,6 +58,7 @@ __all__ = [
     "approach",
     "atlas",
     "average",
+    "block",
     "bundled_names",
     "clusters",
     "detect",

@@ -17,6 +17,8 @@ from ratomega.approach_documents import approach_body, read_approach
 from ratomega.atlas_documents import atlas_document, read_atlas
 from ratomega.average_documents import average_body, read_average
 from ratomega.average_results import AverageResult
+from ratomega.block_documents import block_document, read_block
+from ratomega.block_results import BlockResult
 from ratomega.case.case import Case
 from ratomega.case.reading import case_from_mapping, case_to_mapping
 from ratomega.detector.atlas import Atlas
@@ -47,7 +49,7 @@ from ratomega.verify.approach import Approach
 
 __all__ = ["Result", "error_document", "load_result", "to_document", "to_json"]
 
-Result = LimitResult | DetectResult | ValidateResult | AverageResult | Atlas | Approach | Explanation
+Result = LimitResult | DetectResult | ValidateResult | AverageResult | Atlas | BlockResult | Approach | Explanation
 Document = dict[str, Any]
 
 LARGEST_DOCUMENT = 512 * 1024 * 1024
@@ -68,6 +70,8 @@ def to_document(result: Result) -> Document:
     """The result as plain dictionaries, lists, strings, integers and truth values."""
     if isinstance(result, Atlas):
         return atlas_document(result)
+    if isinstance(result, BlockResult):
+        return block_document(result, [_check(c) for c in result.checks])
     if isinstance(result, LimitResult):
         body: Document = {
             "route": _route(result.route),
@@ -123,6 +127,8 @@ def _text_of(source: str | os.PathLike[str]) -> tuple[str, str]:
 def _from_document(document: Document) -> Result:
     if document["result"] == "atlas":
         return read_atlas(document)
+    if document["result"] == "block":
+        return read_block(document, _each(_read_check, document["checks"]))
     header = _read_header(document)
     partial = _flag(document["partial"])
     kind = document["result"]
@@ -145,7 +151,7 @@ def _from_document(document: Document) -> Result:
         return Explanation(header, paragraphs, partial)
     if kind == "approach":
         return read_approach(document, header, partial)
-    raise ValueError(f'"result" is {kind!r}, not limit, detect, validate, average, approach, explain or atlas')
+    raise ValueError(f'"result" is {kind!r}, not limit, detect, validate, average, block, approach, explain or atlas')
 
 
 # ---- small pieces, each with its way back ----

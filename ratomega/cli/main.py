@@ -22,6 +22,7 @@ from ratomega.case.reading import load_case
 from ratomega.cli.approach import approach
 from ratomega.cli.atlas import atlas
 from ratomega.cli.average import average
+from ratomega.cli.block import block
 from ratomega.cli.explain import explain
 from ratomega.cli.options import case_options, form_option, probes_option, worker_options
 from ratomega.cli.running import (
@@ -184,6 +185,7 @@ cli.add_command(approach)
 cli.add_command(atlas)
 cli.add_command(explain)
 cli.add_command(average)
+cli.add_command(block)
 
 
 @cli.command()
