@@ -24,6 +24,7 @@ from ratomega.cli.atlas import atlas
 from ratomega.cli.average import average
 from ratomega.cli.block import block
 from ratomega.cli.explain import explain
+from ratomega.cli.new import new
 from ratomega.cli.options import case_options, form_option, probes_option, worker_options
 from ratomega.cli.running import (
     INTERRUPTED,
@@ -184,6 +185,7 @@ def validate(
 cli.add_command(approach)
 cli.add_command(atlas)
 cli.add_command(explain)
+cli.add_command(new)
 cli.add_command(average)
 cli.add_command(block)
 
