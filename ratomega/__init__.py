@@ -25,6 +25,7 @@ from ratomega.exact.rational_function import RationalFunction
 from ratomega.pipeline import clusters, detect, limit, validate
 from ratomega.results import Coefficient, DetectResult, LimitResult, ValidateResult
 from ratomega.validator.verdict import Check, Kind, Verdict
+from ratomega.verify.comparing import CompareResult, compare
 from ratomega.version import VERSION as __version__
 
 __all__ = [
@@ -34,6 +35,7 @@ __all__ = [
     "Case",
     "Check",
     "Coefficient",
+    "CompareResult",
     "DetectResult",
     "InputError",
     "Kind",
@@ -51,6 +53,7 @@ __all__ = [
     "average",
     "bundled_names",
     "clusters",
+    "compare",
     "detect",
     "limit",
     "load_case",

@@ -41,10 +41,12 @@ from ratomega.results import (
 )
 from ratomega.validator.checklist import depth_of
 from ratomega.validator.verdict import Check, Kind, Verdict
+from ratomega.verify.compare_documents import compare_body, read_compare
+from ratomega.verify.comparing import CompareResult
 
 __all__ = ["Result", "error_document", "load_result", "to_document", "to_json"]
 
-Result = LimitResult | DetectResult | ValidateResult | AverageResult | Atlas
+Result = LimitResult | DetectResult | ValidateResult | AverageResult | CompareResult | Atlas
 Document = dict[str, Any]
 
 LARGEST_DOCUMENT = 512 * 1024 * 1024
@@ -77,6 +79,8 @@ def to_document(result: Result) -> Document:
         return {"result": "detect", **_header(result.header), "partial": result.partial, **body}
     if isinstance(result, AverageResult):
         return {"result": "average", **_header(result.header), "partial": result.partial, **average_body(result)}
+    if isinstance(result, CompareResult):
+        return {"result": "compare", **_header(result.header), "partial": result.partial, **compare_body(result)}
     body = {"depth": result.depth, "checks": [_check(c) for c in result.checks], "summary": result.summary}
     return {"result": "validate", **_header(result.header), "partial": result.partial, **body}
 
@@ -132,7 +136,9 @@ def _from_document(document: Document) -> Result:
         return result
     if kind == "average":
         return read_average(document, header, partial)
-    raise ValueError(f'"result" is {kind!r}, not limit, detect, validate, average or atlas')
+    if kind == "compare":
+        return read_compare(document, header, partial)
+    raise ValueError(f'"result" is {kind!r}, not limit, detect, validate, average, compare or atlas')
 
 
 # ---- small pieces, each with its way back ----

@@ -32,6 +32,7 @@ LAYERS = [
     {"atlas_documents"},
     {"averaging"},
     {"average_documents"},
+    {"verify"},
     {"documents"},
     {"desk"},
     {"cli"},

@@ -22,6 +22,7 @@ from ratomega.case.case import Case
 from ratomega.case.reading import case_from_mapping, case_to_mapping, load_case
 from ratomega.cli.atlas import atlas, read_charge
 from ratomega.cli.average import average_command
+from ratomega.cli.compare import compare
 from ratomega.desk.text import charge_word, detect_text, limit_text, table, theory_text, validate_text
 from ratomega.diagrams.tuples import Charge
 from ratomega.documents import Result, error_document, to_json
@@ -205,6 +206,7 @@ def validate(
 
 
 cli.add_command(atlas)
+cli.add_command(compare)
 
 
 @cli.command()
