@@ -2,11 +2,11 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from ratomega.case.case import Case
 from ratomega.case.reading import CaseSource, load_case
-from ratomega.diagrams.tuples import Charge, count_all, count_configurations
+from ratomega.diagrams.tuples import Charge, configurations, count_all, count_configurations
 from ratomega.errors import InputError, Problem
 from ratomega.exact.quadratic import Number
 from ratomega.exact.rational import Rational
@@ -17,6 +17,7 @@ from ratomega.results import Header
 from ratomega.verify.diagnosis import diagnose
 from ratomega.verify.explanation import Explanation
 from ratomega.verify.given import Given
+from ratomega.verify.precision_loss import rounding
 from ratomega.verify.quantities import Quantity, quantities
 from ratomega.verify.question import Question
 from ratomega.verify.rows import Row, compared, real_value
@@ -28,6 +29,7 @@ __all__ = ["CompareResult", "compare"]
 
 # The diagnosis sums the configurations of a row many times over; rows beyond this are compared and not diagnosed from.
 MOST_DIAGNOSED = 2000
+ROUNDING_AT_MOST = Rational(1, 10**8)
 
 
 @dataclass(frozen=True, slots=True)
@@ -81,15 +83,16 @@ def compare(
     chosen = quantities(as_, job.setting)
     result = limit_result(job, list(job.limits(probes=1)))
     z = _exact_series(result.coefficients, table)
-    found = {one: _rows(table, one.of(z, job.setting)) for one in chosen}
+    source = Source(job.setting)
+    found = {one: _rows(table, one, one.of(z, job.setting), source) for one in chosen}
     for quantity, rows in found.items():
-        if rows is not None and all(row.agrees for row in rows):
+        if all(row.agrees for row in rows):
             return CompareResult(result.header, quantity.name, rows, (), 0)
     used = _affordable(table, job.setting.ranks)
-    explanations = _diagnosis(job, table, used, {q: rows for q, rows in found.items() if rows is not None})
-    quantity = explanations[0].quantity
-    shown = next(rows for one, rows in found.items() if one.name == quantity and rows is not None)
-    return CompareResult(result.header, quantity, shown, explanations, len(used))
+    explanations = _diagnosis(job, source, table, used, found)
+    best = explanations[0].quantity
+    shown = next(rows for one, rows in found.items() if one.name == best)
+    return CompareResult(result.header, best, shown, explanations, len(used))
 
 
 def _covering(case: Case, table: tuple[Given, ...]) -> Case:
@@ -124,8 +127,8 @@ def _exact_series(coefficients: object, table: tuple[Given, ...]) -> Series:
     return known.__getitem__
 
 
-def _rows(table: tuple[Given, ...], series: Series) -> tuple[Row, ...] | None:
-    """None when a value is not real: tables hold real numbers."""
+def _rows(table: tuple[Given, ...], quantity: Quantity, series: Series, source: Source) -> tuple[Row, ...]:
+    """Raises ``InputError`` where an exact value is not real: tables hold real numbers."""
     rows = []
     for given in table:
         exact = series(given.charge)
@@ -134,15 +137,38 @@ def _rows(table: tuple[Given, ...], series: Series) -> tuple[Row, ...] | None:
             shown = ",".join(str(k) for k in given.charge)
             message = f"the exact value at charge {shown} is not real, and a table holds real numbers"
             raise InputError.single(message, "case")
-        rows.append(compared(given, exact, real))
+        row = compared(given, exact, real)
+        if not row.agrees and given.double and _may_be_rounding(given, real):
+            row = compared(_with_rounding(given, quantity, source), exact, real)
+        rows.append(row)
     return tuple(rows)
+
+
+def _may_be_rounding(given: Given, real: Rational) -> bool:
+    """Worth looking at: a number of double precision that is off in its last half."""
+    return bool(abs(given.value - real) <= ROUNDING_AT_MOST * (1 + abs(real)))
+
+
+def _with_rounding(given: Given, quantity: Quantity, source: Source) -> Given:
+    """The number with the rounding errors of a sum in double precision allowed, where nothing is singular."""
+    ranks = source.setting.ranks
+    regular = all(
+        source.weights.weight(c).vanishing_denominators == 0
+        for j in below(given.charge)
+        for c in configurations(ranks, j)
+    )
+    if source.weights.radicand or not regular:
+        return given
+    allowed = Rational(*rounding(source, quantity, given.charge).as_integer_ratio())
+    return replace(given, tolerance=max(given.tolerance, allowed))
 
 
 def _affordable(table: tuple[Given, ...], ranks: tuple[int, ...]) -> tuple[Given, ...]:
     """The rows that the diagnosis is made from, cheapest first."""
     costs = {row.charge: count_configurations(ranks, row.charge) for row in table}
     rows = sorted(table, key=lambda row: (costs[row.charge], sum(row.charge), row.charge))
-    kept, total = [], 0
+    kept: list[Given] = []
+    total = 0
     for row in rows:
         total += costs[row.charge]
         if total > MOST_DIAGNOSED and len(kept) > 1:
@@ -152,18 +178,23 @@ def _affordable(table: tuple[Given, ...], ranks: tuple[int, ...]) -> tuple[Given
 
 
 def _diagnosis(
-    job: Job, table: tuple[Given, ...], used: tuple[Given, ...], found: dict[Quantity, tuple[Row, ...]]
+    job: Job,
+    source: Source,
+    table: tuple[Given, ...],
+    used: tuple[Given, ...],
+    found: dict[Quantity, tuple[Row, ...]],
 ) -> tuple[Explanation, ...]:
-    source = Source(job.setting)
-    questions = []
+    questions: list[Question] = []
     for quantity, rows in found.items():
+        tolerances = {row.charge: row.tolerance for row in rows}
+        allowed = tuple(replace(row, tolerance=tolerances[row.charge]) for row in used)
         exact: dict[Charge, Rational] = {}
         for row in rows:
             real = real_value(row.exact)
             assert real is not None
             exact[row.charge] = real
         values = tuple(exact[row.charge] for row in used)
-        question = Question(job.case, job.setting, source, quantity, used, values)
+        question = Question(job.case, job.setting, source, quantity, allowed, values)
         if question.deviating and all(values != other.exact for other in questions):
             questions.append(question)
     if not questions:

@@ -1,7 +1,6 @@
 """Offset: the numbers were taken near the limit point, at t = delta on the path or with another eps moved by delta.
 
-The row that moves most for its precision gives delta, by Newton's method with exact values and an exact difference
-quotient; then the sum at this delta must give every row, all orders in delta included. A short delta inside what
+The row that moves most for its precision gives delta, by the secant method with exact values; then the sum at this delta must give every row, all orders in delta included. A short delta inside what
 the row allows (0.001, say) is preferred.
 """
 
@@ -17,15 +16,16 @@ from ratomega.exact.rational import ONE, ZERO, Rational, decimal_text
 from ratomega.verify.explanation import Explanation, enough_evidence, size
 from ratomega.verify.given import Given
 from ratomega.verify.question import Question
+from ratomega.verify.rows import real_value
 from ratomega.verify.series import Series
 from ratomega.verify.simplest import simplest_between
 from ratomega.verify.source import Source, moved
 
 __all__ = ["Direction", "directions", "offset_at", "offsets", "solved"]
 
-STEP = Rational(1, 10**30)
-NEWTON_STEPS = 12
-ROUNDED_TO = 10**45
+STEP = Rational(1, 10**20)
+SECANT_STEPS = 15
+SMALLEST = Rational(1, 10**40)
 # An offset beyond this share of eps1 or eps2 is another background.
 LARGEST_SHARE = Rational(1, 4)
 MOST_PIVOTS = 3
@@ -115,44 +115,66 @@ def _decimal(value: Rational, digits: int) -> tuple[int, int]:
 
 
 def _pivots(question: Question, direction: Direction, change: Change | None) -> list[Given]:
-    """The rows that resolve delta best: the derivative over the tolerance, largest first."""
+    """The rows that resolve delta best: the derivative over the tolerance, largest first.
+
+    None is returned where the derivatives say at once that there is no such delta: too large, or half of the rows
+    deviate by another amount than the derivative makes them.
+    """
     near, here = offset_at(direction, STEP, change), offset_at(direction, ZERO, change)
     moved_series, still = question.quantity.of(*near), question.quantity.of(*here)
-    found: list[tuple[Rational, int, Given]] = []
+    found: list[tuple[Rational, int, Given, Rational, Rational]] = []
     for n, row in enumerate(question.rows):
         a, b = question.value(moved_series, row), question.value(still, row)
         if a is None or b is None:
             return []
-        slope = abs(a - b) / STEP
+        slope = (a - b) / STEP
         tolerance = row.tolerance if row.tolerance != 0 else Rational(1, 10**60)
         if slope != 0 and not row.agrees(b):
-            found.append((slope / tolerance, -n, row))
-    return [row for _, _, row in sorted(found, key=lambda one: one[:2], reverse=True)[:MOST_PIVOTS]]
+            found.append((abs(slope) / tolerance, -n, row, slope, row.value - b))
+    if not found:
+        return []
+    found.sort(key=lambda one: one[:2], reverse=True)
+    delta = found[0][4] / found[0][3]
+    if abs(delta) > 2 * _largest(question):
+        return []
+    alike = sum(1 for *_, row, slope, shift in found if abs(shift - slope * delta) <= abs(shift) / 2 + row.tolerance)
+    return [one[2] for one in found[:MOST_PIVOTS]] if 2 * alike >= len(found) else []
+
+
+def _largest(question: Question) -> Rational:
+    e1, e2 = real_value(question.setting.eps1.constant), real_value(question.setting.eps2.constant)
+    assert e1 is not None
+    assert e2 is not None
+    return LARGEST_SHARE * min(abs(e1), abs(e2))
 
 
 def solved(
     question: Question, direction: Direction, pivot: Given, change: Change | None = None
 ) -> tuple[Rational, Rational] | None:
-    """delta and its uncertainty from one row; None when Newton's method does not lead to a small delta."""
+    """delta and its uncertainty from one row, by the secant method; None when it does not lead to a small delta."""
 
-    def at(delta: Rational) -> Rational | None:
-        return question.value(question.quantity.of(*offset_at(direction, delta, change)), pivot)
+    def miss(delta: Rational) -> Rational | None:
+        value = question.value(question.quantity.of(*offset_at(direction, delta, change)), pivot)
+        return None if value is None else value - pivot.value
 
-    eps = abs(question.setting.eps1.constant), abs(question.setting.eps2.constant)
-    largest = LARGEST_SHARE * min(eps)
-    delta = ZERO
-    for _ in range(NEWTON_STEPS):
-        here, next_one = at(delta), at(delta + STEP)
-        if here is None or next_one is None or here == next_one:
+    largest = _largest(question)
+    before, delta = ZERO, STEP
+    miss_before, miss_here = miss(before), miss(delta)
+    for _ in range(SECANT_STEPS):
+        if miss_before is None or miss_here is None or miss_before == miss_here:
             return None
-        slope = (next_one - here) / STEP
-        correction = (pivot.value - here) / slope
+        slope = (miss_here - miss_before) / (delta - before)
         uncertainty = abs(pivot.tolerance / slope)
-        delta = Rational((((delta + correction) * ROUNDED_TO) + Rational(1, 2)).floor(), ROUNDED_TO)
+        correction = miss_here / slope
+        rounding = max(SMALLEST, uncertainty / 10**4)
+        places = 10 ** max(1, len(str(int((1 / rounding).floor()))))
+        before, miss_before = delta, miss_here
+        delta = Rational(((delta - correction) * places + Rational(1, 2)).floor(), places)
         if abs(delta) > largest:
             return None
-        if abs(correction) <= max(uncertainty / 10**3, Rational(1, 10**35)):
+        if abs(correction) <= max(uncertainty / 100, SMALLEST):
             return (delta, uncertainty) if delta != 0 else None
+        miss_here = miss(delta)
     return None
 
 

@@ -2,12 +2,12 @@
 
 At an offset delta a singular weight is of the order delta^-n, n up to [k/(alpha+beta)], and its vanishing factors, which
 are differences of numbers of order 1, have a relative error u/delta at the working precision u. So the error of the
-sum grows like u/delta^(n+1), or like u/delta^n where the factors are formed without loss. The typical error of every
-row is added up from the weights themselves:
+sum grows like u/delta^(n+1) at most; where the errors of the factors go together (they are the same differences over and
+over) most of it cancels again, down to u/delta. The most of every row is added up from the weights themselves:
 
     B_k = sqrt( sum over configurations of w^2 (1 + sum over factors f of (s/f)^2) ),  s the size of the parameters,
 
-and u is estimated from the rows. The offset comes from rows without singular weights where it shows, else from the
+and the working precision u is that of a usual format. The offset comes from rows without singular weights where it shows, else from the
 growth of the error at a usual working precision.
 """
 
@@ -22,37 +22,50 @@ from ratomega.exact.quadratic import is_quadratic
 from ratomega.exact.rational import ZERO, Rational, as_fraction, decimal_text
 from ratomega.verify.explanation import Explanation
 from ratomega.verify.given import Given
-from ratomega.verify.offset import Direction, directions, offset_at, solved
-from ratomega.verify.quantities import noise_weights
+from ratomega.verify.offset import Direction, directions, solved
+from ratomega.verify.quantities import Quantity, noise_weights
 from ratomega.verify.question import Question
 from ratomega.verify.rows import real_value
 from ratomega.verify.series import below, minus
 from ratomega.verify.source import Source, moved
 
-__all__ = ["Noise", "noise_profile", "precision_loss", "singular_orders"]
+__all__ = ["Noise", "noise_profile", "precision_loss", "rounding", "singular_orders"]
 
 PRECISIONS = {"double": 2.0**-53, "single": 2.0**-24, "extended": 2.0**-64, "quadruple": 2.0**-113}
-# A clean row at double precision may be off by this many typical errors.
+# A clean row at double precision may be off by this many typical errors, when it has so many digits.
 CLEAN = 30.0
-# Orders of magnitude by which noise may miss its typical size.
-SPREAD = 2.5
-# Where u was estimated from the rows: orders of magnitude between the greatest and the least.
-MOST_SPREAD = 4.0
-LEAST_GROWTH = 2.0
+LEAST_DIGITS = 14
+# Orders of magnitude by which noise may be above the most, or below the least, that is typical.
+SPREAD = 2.0
+LEAST_SPREAD = 3.5
+LEAST_GROWTH = 1.5
+MOST_PIVOTS = 4
 GRID = [Rational(1, 10**n) for n in range(2, 13)]
 LARGEST_FLOAT = 1e300
 
 
 @dataclass(frozen=True, slots=True)
 class Noise:
-    """An offset, the working precision, and the rows in which noise shows, beyond what was given."""
+    """An offset, the working precision, the rows in which noise shows, and those that show the offset alone."""
 
     delta: Rational
     uncertainty: Rational
     precision: float
     noisy: tuple[Given, ...]
-    clean: tuple[Given, ...]
+    shows: tuple[Given, ...]
     misfit: float
+    name: str = "double"
+
+
+@dataclass(frozen=True, slots=True)
+class _Noisy:
+    """A row, how far it is off, and the most and the least that cancellation leaves at precision 1: factors may be wrong
+    independently of each other, or together, and then most of it drops out."""
+
+    row: Given
+    rest: float
+    most: float
+    least: float
 
 
 def singular_orders(question: Question) -> dict[Charge, int]:
@@ -67,8 +80,8 @@ def singular_orders(question: Question) -> dict[Charge, int]:
     return {charge: max(order, 0) for charge, order in found.items()}
 
 
-def noise_profile(source: Source, charge: Charge, *, formed: bool) -> float:
-    """B_k at the point where the source sits, nothing vanishing there; without the loss in factors unless ``formed``."""
+def noise_profile(source: Source, charge: Charge) -> float:
+    """B_k at the point where the source sits, nothing vanishing there."""
     weights = source.weights
     scale = max(_float(abs(x)) for x in _sizes(source)) * (1 + sum(charge))
     total = 0.0
@@ -81,7 +94,7 @@ def noise_profile(source: Source, charge: Charge, *, formed: bool) -> float:
                 break
             value *= factor**exponent
             loss += abs(exponent) * (scale / factor) ** 2
-        total += value * value * (loss if formed else 1 + len(configuration))
+        total += value * value * loss
     return min(sqrt(total), LARGEST_FLOAT)
 
 
@@ -96,18 +109,41 @@ def _float(value: Rational) -> float:
     return float(as_fraction(value))
 
 
+def rounding(source: Source, quantity: Quantity, charge: Charge) -> float:
+    """By how much a sum in double precision at the point of the source may be off at a charge where nothing is singular."""
+    return CLEAN * PRECISIONS["double"] * _typical(source, quantity, charge, {})
+
+
+def _typical(source: Source, quantity: Quantity, charge: Charge, known: dict[Charge, float]) -> float:
+    """The typical error of a coefficient of the quantity, in units of the working precision."""
+    reach = noise_weights(quantity, source.z, source.setting)
+    total = 0.0
+    for j in below(charge):
+        factor = real_value(reach(minus(charge, j)))
+        if factor is None or factor == 0:
+            continue
+        if j not in known:
+            known[j] = noise_profile(source, j)
+        total += abs(_float(factor)) * known[j]
+    return total
+
+
 def precision_loss(question: Question) -> Iterator[Explanation]:
-    """The best noise that explains all rows, if any does. Only rational cases are asked."""
+    """The best noise that explains all rows, if any does. Only rational cases are asked.
+
+    Where nothing cancels, noise of double precision on top of an offset makes it an offset.
+    """
     if question.source.weights.radicand or len(question.deviating) < 2:
         return
     orders = singular_orders(question)
-    found: list[Noise] = []
     direction = next(directions(question))
-    for formed in (True, False):
-        for delta, uncertainty in _deltas(question, direction, orders):
-            noise = _noise(question, direction, delta, uncertainty, orders, formed=formed)
-            if noise is not None:
-                found.append(noise)
+    found: list[Noise] = []
+    for delta, uncertainty in _deltas(question, direction, orders):
+        noise = _noise(question, direction, delta, uncertainty, orders)
+        if noise is not None:
+            found.append(noise)
+            if noise.shows:
+                break
     if found:
         yield _explanation(question, direction, min(found, key=lambda one: one.misfit), orders)
 
@@ -115,9 +151,9 @@ def precision_loss(question: Question) -> Iterator[Explanation]:
 def _deltas(
     question: Question, direction: Direction, orders: dict[Charge, int]
 ) -> Iterator[tuple[Rational, Rational]]:
-    """Offsets from the rows without singular weights, the most telling first; else a grid of powers of ten."""
+    """Offsets from the rows without singular weights, lowest charges first; else a grid of powers of ten."""
     clean = [row for row in question.deviating if orders[row.charge] == 0]
-    for row in sorted(clean, key=lambda one: sum(one.charge))[:2]:
+    for row in sorted(clean, key=lambda one: sum(one.charge))[:MOST_PIVOTS]:
         solution = solved(question, direction, row)
         if solution is not None:
             yield solution
@@ -127,49 +163,33 @@ def _deltas(
 
 
 def _noise(
-    question: Question,
-    direction: Direction,
-    delta: Rational,
-    uncertainty: Rational,
-    orders: dict[Charge, int],
-    *,
-    formed: bool,
+    question: Question, direction: Direction, delta: Rational, uncertainty: Rational, orders: dict[Charge, int]
 ) -> Noise | None:
     """Do all rows agree with the sum at this offset and noise of one precision? None when they do not."""
     source = Source(moved(direction.setting, delta))
-    reach = noise_weights(question.quantity, source.z, source.setting)
     near = question.quantity.of(source.z, source.setting)
     profile: dict[Charge, float] = {}
-
-    def typical(charge: Charge) -> float:
-        total = 0.0
-        for j in below(charge):
-            factor = real_value(reach(minus(charge, j)))
-            if factor is None or factor == 0:
-                continue
-            if j not in profile:
-                profile[j] = noise_profile(source, j, formed=formed)
-            total += abs(_float(factor)) * profile[j]
-        return total
-
-    noisy: list[tuple[Given, float, float]] = []
+    noisy: list[_Noisy] = []
     quiet: list[tuple[Given, float]] = []
     clean: list[Given] = []
     for row in question.rows:
         value = question.value(near, row)
         if value is None:
             return None
-        rest, size = abs(row.value - value), typical(row.charge)
-        allowed = _float(row.tolerance)
-        if orders[row.charge] == 0:
-            allowed += CLEAN * PRECISIONS["double"] * size if row.digits is None or row.digits >= 14 else 0.0
+        rest, order = abs(row.value - value), orders[row.charge]
+        if order == 0:
+            allowed = _float(row.tolerance)
+            if _float(rest) > allowed and row.digits is not None and row.digits >= LEAST_DIGITS:
+                allowed += CLEAN * PRECISIONS["double"] * _typical(source, question.quantity, row.charge, profile)
             if _float(rest) > allowed:
                 return None
             clean.append(row)
-        elif rest > row.tolerance:
-            noisy.append((row, _float(rest), size))
+            continue
+        most = _typical(source, question.quantity, row.charge, profile)
+        if rest > row.tolerance:
+            noisy.append(_Noisy(row, _float(rest), most, most * abs(_float(delta)) ** order))
         else:
-            quiet.append((row, size))
+            quiet.append((row, most * abs(_float(delta)) ** order))
     return _judged(question, delta, uncertainty, noisy, quiet, clean)
 
 
@@ -177,33 +197,32 @@ def _judged(
     question: Question,
     delta: Rational,
     uncertainty: Rational,
-    noisy: list[tuple[Given, float, float]],
+    noisy: list[_Noisy],
     quiet: list[tuple[Given, float]],
     clean: list[Given],
 ) -> Noise | None:
-    """Noise of one precision: it spreads little, and rows without it had no room for it (but one by luck)."""
+    """Is it noise of one precision? In every noisy row it lies between the least and the most that cancellation leaves,
+    and rows without it had no room for it (one by luck excepted)."""
+    visible = tuple(row for row in clean if row in question.deviating)
     if not noisy:
-        return None
-    logs = [log10(rest / size) for _, rest, size in noisy]
-    shows = any(row in question.deviating for row in clean)
-    name, misfit = min(
-        ((name, max(abs(one - log10(u)) for one in logs)) for name, u in PRECISIONS.items()), key=lambda pair: pair[1]
-    )
-    del name
-    centre = sum(logs) / len(logs)
-    lucky = sum(1 for row, size in quiet if size * 10**centre > 10**SPREAD * max(_float(row.tolerance), 1e-300))
-    if lucky > 1:
-        return None
-    sizes = [size for _, _, size in noisy]
-    growth = log10(max(sizes) / min(sizes))
-    if shows:
-        # The offset is known from other rows: the precision may be any.
-        if max(logs) - min(logs) > MOST_SPREAD or centre > log10(PRECISIONS["single"]) + SPREAD or centre < -40:
+        if len(visible) < 2 or quiet:
             return None
-    elif misfit > SPREAD or len(noisy) < 2 or growth < LEAST_GROWTH:
-        return None
-    rows = tuple(row for row, _, _ in noisy)
-    return Noise(delta, uncertainty, 10**centre, rows, tuple(clean), misfit)
+        return Noise(delta, uncertainty, PRECISIONS["double"], (), visible, 0.0)
+    tops = [log10(one.rest / one.most) for one in noisy]
+    for name, u in PRECISIONS.items():
+        level = log10(u)
+        top = max(tops)
+        low = sum(1 for one in noisy if log10(one.rest / one.least) < level - LEAST_SPREAD)
+        lucky = sum(1 for row, least in quiet if least * u > 10**SPREAD * max(_float(row.tolerance), 1e-300))
+        if top - level > SPREAD or low + lucky > 1:
+            continue
+        rests = [one.rest for one in noisy]
+        grows = log10(max(rests) / min(rests)) >= LEAST_GROWTH
+        # Without a row that shows the offset itself, the growth must.
+        if visible or (grows and len(noisy) >= 2 and abs(top - level) <= SPREAD):
+            rows = tuple(one.row for one in noisy)
+            return Noise(delta, uncertainty, u, rows, visible, abs(top - level), name)
+    return None
 
 
 def _explanation(
@@ -211,20 +230,29 @@ def _explanation(
 ) -> Explanation:
     digits = floor(-log10(noise.precision) + 0.5)
     about = "about " if noise.uncertainty == 0 else ""
-    shown = decimal_text(noise.delta, 3)
-    change = direction.words.format(f"{about}{shown}")
+    change = direction.words.format(f"{about}{decimal_text(noise.delta, 3)}")
+    parameters = (("offset", decimal_text(noise.delta, 6)), ("digits", str(digits)))
+    if not noise.noisy:
+        sentence = (
+            f"The numbers were taken at an offset: {change}; the exact sum there gives all {len(question.rows)} rows "
+            "but for the rounding of double precision."
+        )
+        return Explanation(
+            "offset", question.quantity.name, sentence, changes=(change,), parameters=parameters,
+            charges=question.charges, fitted=1,
+        )
     losses = ", ".join(
-        f"charge {','.join(str(k) for k in row.charge)}: {orders[row.charge]}" for row in noise.noisy
+        f"{orders[row.charge]} at charge {','.join(str(k) for k in row.charge)}" for row in noise.noisy
     )
     sentence = (
-        f"The numbers were summed with about {digits} digits at an offset, {change}, and cancellation left noise in them: "
-        f"it grows as the singular weights make it (orders of the offset that cancel, {losses})"
+        f"The numbers were summed in {noise.name} precision, about {digits} digits, at an offset, {change}, and the "
+        f"cancellation of singular weights left noise: so many orders of the offset cancel, {losses}"
     )
-    visible = sum(1 for row in noise.clean if row in question.deviating)
-    sentence += f", and {visible} rows without singular weights show the offset itself." if visible else "."
+    shown = len(noise.shows)
+    if shown:
+        rows = "the row without singular weights shows" if shown == 1 else f"{shown} rows without singular weights show"
+        sentence += f"; {rows} the offset itself"
     return Explanation(
-        "precision-loss", question.quantity.name, sentence,
-        changes=(change,),
-        parameters=(("offset", decimal_text(noise.delta, 6)), ("digits", str(digits))),
+        "precision-loss", question.quantity.name, f"{sentence}.", changes=(change,), parameters=parameters,
         charges=question.charges, fitted=1,
     )
