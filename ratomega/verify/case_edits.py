@@ -1,7 +1,7 @@
 """The ways in which the same case is written in another convention: masses, Coulomb parameters, eps, edges.
 
-An edit changes the case; it is shown as the lines of the case file that become others. Edits that lead to one theory (an
-antifundamental of mass eps - m is a fundamental of mass m; a node's colours have no order) share a ``theory_key``.
+An edit changes the case; it is shown as the lines of the case file that become others. Edits that lead to one theory
+(an antifundamental of mass eps - m is a fundamental of mass m; colours have no order) share a ``theory_key``.
 """
 
 from __future__ import annotations

@@ -62,11 +62,11 @@ def compare(
     """Someone's numbers against the exact limits, with a diagnosis where they differ.
 
     ``numbers`` is a CSV or JSON file, a JSON text, a mapping from charges to values or a list of rows (``verify.table``
-    says how they look). ``as_`` says what they are: "z", "log", "prepotential" (-eps1 eps2 log Z) or "block"; without it
-    each is tried, and the first that all rows agree with is taken.
+    says how they look). ``as_`` says what they are: "z", "log", "prepotential" (-eps1 eps2 log Z) or "block"; without
+    it each is tried, and the first that all rows agree with is taken.
 
-    Raises ``InputError`` for a bad table (row and column named), a case with symbols or with u, and a row whose charge has
-    no finite limit. Cost: the exact limits, and where rows deviate some thousand sums at low charges.
+    Raises ``InputError`` for a bad table (row and column named), a case with symbols or with u, and a row whose charge
+    has no finite limit. Cost: the exact limits, and where rows deviate some thousand sums at low charges.
 
     >>> case = {"charge": 1, "background": {"eps1": 1, "eps2": 1}, "node": [{"coulomb": [0]}]}
     >>> compare(case, {1: "1.00", 2: "0.50", 3: "0.17"}).agree            # exp(q)

@@ -1,14 +1,14 @@
 """Convention: the numbers are right in another convention. Single changes first, then pairs.
 
-Edits of the case are tried on the cheapest rows first; most candidates fall at charge 1. Those that lead to a theory already
-tried, to the case itself among them, are not tried again. Every candidate predicts every row; changes of Z with a free
-number (an exponent, a scale) fix it from one row.
+Edits of the case are tried on the cheapest rows first; most candidates fall at charge 1. Those that lead to a theory
+already tried, to the case itself among them, are not tried again. Every candidate predicts every row; changes of Z
+with a free number (an exponent, a scale) fix it from one row.
 """
 
 from __future__ import annotations
 
-from collections.abc import Iterator
-from dataclasses import dataclass
+from collections.abc import Iterator, Sequence
+from dataclasses import dataclass, replace
 
 from ratomega.case.case import Case
 from ratomega.case.setting import Setting, own_setting
@@ -82,7 +82,7 @@ class Variants:
             self._pairs = self._made(chosen[: self._most])
         return self._pairs
 
-    def _made(self, chosen: list[tuple[CaseEdit, ...]]) -> list[Variant]:
+    def _made(self, chosen: Sequence[tuple[CaseEdit, ...]]) -> list[Variant]:
         found: list[Variant] = []
         for edits in chosen:
             edited = self.case
@@ -205,9 +205,10 @@ def _fitted(question: Question, variant: Variant, edits: list[SeriesEdit], tried
             question, (*variant.words, *(e.words for e in edits), change), variant,
             (*(e.advice for e in edits), advice), fit.predicted,
         )
-        yield Explanation(
-            found.kind, found.quantity, found.sentence, found.changes, found.edits, (("s", exact_text(fit.value)),)
-            if not fit.free else (("s", number),), found.equal, found.charges, found.length, int(fit.free), fit.predicted,
+        yield replace(
+            found,
+            parameters=(("s", number if fit.free else exact_text(fit.value)),),
+            fitted=int(fit.free),
         )
 
 

@@ -64,14 +64,14 @@ def _sorted(found: Iterable[Explanation], questions: Sequence[Question]) -> tupl
     order = [question.quantity.name for question in questions]
     ranked = sorted(found, key=lambda one: (one.rank, order.index(one.quantity)))
     kept: list[Explanation] = []
-    places: dict[tuple[str, tuple[Rational, ...]], int] = {}
+    places: dict[tuple[str, str, tuple[Rational, ...]], int] = {}
     for one in ranked:
-        key = one.quantity, one.predicted
+        key = one.quantity, one.kind, one.predicted
         place = places.get(key) if one.predicted else None
         if place is None:
             places[key] = len(kept)
             kept.append(one)
-        elif kept[place].kind == one.kind and kept[place].rank == one.rank and kept[place].changes != one.changes:
+        elif kept[place].rank == one.rank and kept[place].changes != one.changes:
             kept[place] = replace(kept[place], equal=(*kept[place].equal, one.changes, *one.equal))
     return tuple(kept[:MOST_EXPLANATIONS])
 
@@ -80,8 +80,8 @@ def _unexplained(question: Question, variants: Variants) -> Explanation:
     rows = len(question.deviating)
     cut = f"; {variants.left_out} pairs of changes were too many to try" if variants.left_out else ""
     sentence = (
-        f"Nothing that was tried explains the {rows} row{'s' if rows != 1 else ''} that deviate{'' if rows != 1 else 's'}: "
-        "no offset, no terms left out, no change of convention or two of them, no loss of precision, no single wrong entry"
-        f"{cut}."
+        f"Nothing that was tried explains the {'row that deviates' if rows == 1 else f'{rows} rows that deviate'}: no "
+        "offset, no terms left out, no change of convention or two of them, no loss of precision, no single wrong "
+        f"entry{cut}."
     )
     return Explanation("unexplained", question.quantity.name, sentence, charges=question.charges)

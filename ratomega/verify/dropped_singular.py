@@ -67,7 +67,8 @@ def _one_cluster(question: Question) -> Iterator[Explanation]:
             continue
         value = real_value(cluster.series.coefficient(0))
         if value is not None and value != 0 and row.agrees(exact - value):
-            predicted = tuple(exact - value if one is row else e for one, e in zip(question.rows, question.exact, strict=True))
+            pairs = zip(question.rows, question.exact, strict=True)
+            predicted = tuple(exact - value if one is row else other for one, other in pairs)
             shown = ",".join(str(k) for k in row.charge)
             words = f"one singular cluster of {cluster.size} configurations was left out at charge {shown}"
             yield _explanation(question, words, predicted, (("cluster", str(number)), ("sum", str(value))))

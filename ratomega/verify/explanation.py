@@ -1,7 +1,7 @@
 """An explanation, and what makes one worth giving.
 
-An explanation predicts every row within what was given. How much that proves is counted in digits: of each deviating row,
-the digits by which the prediction does better than the exact value. A fitted number uses up the best row, and an
+An explanation predicts every row within what was given. How much that proves is counted in digits: of each deviating
+row, the digits by which the prediction does better than the exact value. A fitted number uses up the best row, and an
 explanation found among n candidates the logarithm of n. What is left must be one digit at least.
 """
 

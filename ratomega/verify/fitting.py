@@ -42,7 +42,7 @@ def fitted_number(
     neutral: Rational,
     named: Mapping[Rational, str],
 ) -> Fit | None:
-    """The number with which ``build`` predicts all rows, None when there is none. ``pivot`` is the row that fixes it."""
+    """The number with which ``build`` predicts all rows, None when there is none. ``pivot`` fixes it."""
 
     def at(s: Rational) -> Rational | None:
         z, setting = build(s)

@@ -1,14 +1,16 @@
 """One given number: its value, how many digits were given, and how far it may be from the exact value.
 
 What is written decides. A fraction is exact. A decimal is right to less than one unit of its last digit, so that
-rounding and cutting off both pass. Numbers of sixteen digits and more are taken as the output of double precision: a few
-units of its last place are allowed. An uncertainty is a standard one, and three of them are allowed.
+rounding and cutting off both pass. Numbers of sixteen digits and more are taken as the output of double precision: a
+few units of its last place are allowed. An uncertainty is a standard one, and three of them are allowed.
 """
 
 from __future__ import annotations
 
 import re
 from dataclasses import dataclass
+from decimal import Decimal
+from fractions import Fraction
 
 from ratomega.case.wording import kind, quoted
 from ratomega.diagrams.tuples import Charge
@@ -59,9 +61,9 @@ def is_fraction(text: str) -> bool:
 
 def read_number(value: object, where: str) -> tuple[str, Rational]:
     """The text and the value of a number from outside. Floats are read at their shortest decimal text."""
-    if isinstance(value, bool) or not isinstance(value, (int, float, str)) and not hasattr(value, "as_integer_ratio"):
-        if hasattr(value, "p") and hasattr(value, "q"):
-            return str(value), as_rational(value, where)
+    if not isinstance(value, bool) and hasattr(value, "p") and hasattr(value, "q"):
+        return str(value), as_rational(value, where)
+    if isinstance(value, bool) or not isinstance(value, (int, float, str, Fraction, Decimal)):
         raise InputError.single(f"a number is decimal text or an exact fraction, not {kind(value)}", where)
     # repr of a subclass of float need not be a number.
     text = (repr(float(value)) if isinstance(value, float) else str(value)).strip()
@@ -75,9 +77,20 @@ def read_number(value: object, where: str) -> tuple[str, Rational]:
 
 
 def given_number(
-    charge: Charge, text: str, value: Rational, uncertainty: Rational | None, row: int, *, exact_integers: bool, double: bool
+    charge: Charge,
+    text: str,
+    value: Rational,
+    uncertainty: Rational | None,
+    row: int,
+    *,
+    exact_integers: bool,
+    double: bool,
+    many_digits: bool = False,
 ) -> Given:
     """The number with its digits and tolerance.
+
+    ``exact_integers``: an integer is exact and not rounded. ``double``: this was a float. ``many_digits``: the table
+    has so many digits that a bare "0.0" means zero.
 
     >>> from ratomega.exact.rational import Rational
     >>> g = given_number((1,), "0.5625", Rational(9, 16), None, 1, exact_integers=False, double=False)
@@ -85,6 +98,8 @@ def given_number(
     (4, True, False)
     """
     digits, tolerance = _precision(text, value, exact_integers)
+    if value == 0 and many_digits and len(text.strip("+-0.").partition("e")[0]) == 0 and len(text.lstrip("+-")) <= 3:
+        digits, tolerance = None, ZERO
     if double:
         digits = max(digits or 0, DOUBLE_DIGITS)
     if digits is not None and digits >= DOUBLE_DIGITS:

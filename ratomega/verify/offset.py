@@ -1,7 +1,8 @@
 """Offset: the numbers were taken near the limit point, at t = delta on the path or with another eps moved by delta.
 
-The row that moves most for its precision gives delta, by the secant method with exact values; then the sum at this delta must give every row, all orders in delta included. A short delta inside what
-the row allows (0.001, say) is preferred.
+The row that moves most for its precision gives delta, by the secant method with exact values; then the sum at this
+delta must give every row, all orders in delta included. A short delta inside what the row allows (0.001, say) is
+preferred.
 """
 
 from __future__ import annotations
@@ -13,12 +14,11 @@ from ratomega.case.background import Background
 from ratomega.case.setting import Setting, own_setting
 from ratomega.exact.path import Linear
 from ratomega.exact.rational import ONE, ZERO, Rational, decimal_text
-from ratomega.verify.explanation import Explanation, enough_evidence, size
+from ratomega.verify.explanation import Explanation, enough_evidence
 from ratomega.verify.given import Given
 from ratomega.verify.question import Question
 from ratomega.verify.rows import real_value
 from ratomega.verify.series import Series
-from ratomega.verify.simplest import simplest_between
 from ratomega.verify.source import Source, moved
 
 __all__ = ["Direction", "directions", "offset_at", "offsets", "solved"]
@@ -27,7 +27,7 @@ STEP = Rational(1, 10**20)
 SECANT_STEPS = 15
 SMALLEST = Rational(1, 10**40)
 # An offset beyond this share of eps1 or eps2 is another background.
-LARGEST_SHARE = Rational(1, 4)
+LARGEST_SHARE = Rational(1, 20)
 MOST_PIVOTS = 3
 
 Change = Callable[[Series, Setting], Series]
@@ -62,7 +62,9 @@ def offset_at(direction: Direction, delta: Rational, change: Change | None = Non
     return (z if change is None else change(z, setting)), setting
 
 
-def offsets(question: Question, *, change: Change | None = None, words: str = "", tried: int = 3) -> Iterator[Explanation]:
+def offsets(
+    question: Question, *, change: Change | None = None, words: str = "", tried: int = 3
+) -> Iterator[Explanation]:
     """Offsets that explain all rows; with ``change`` (in ``words``) on top of another change."""
     digits = question.digits
     if not enough_evidence(digits, fitted=1, tried=tried) and not enough_evidence(digits, fitted=0, tried=tried * 10):
@@ -83,13 +85,11 @@ def _at_pivot(
     if solution is None:
         return None
     delta, uncertainty = solution
-    short = simplest_between(delta - uncertainty, delta + uncertainty)
-    round_one = _round_decimal(delta, uncertainty)
-    for candidate in sorted({short, round_one}, key=size):
-        if candidate != 0 and enough_evidence(question.digits, fitted=0, tried=tried * 10 ** size(candidate)):
-            predicted = question.fit(*offset_at(direction, candidate, change))
-            if predicted is not None:
-                return candidate, False, predicted
+    short = _round_decimal(delta, uncertainty)
+    if short is not None and enough_evidence(question.digits, fitted=0, tried=tried * 100):
+        predicted = question.fit(*offset_at(direction, short, change))
+        if predicted is not None:
+            return short, False, predicted
     if not enough_evidence(question.digits, fitted=1, tried=tried):
         return None
     # The pivot moves most for its precision: within its uncertainty no other row moves by more than its own.
@@ -98,13 +98,13 @@ def _at_pivot(
     return None if predicted is None else (delta, True, predicted)
 
 
-def _round_decimal(delta: Rational, uncertainty: Rational) -> Rational:
-    """The decimal of fewest digits within the uncertainty."""
-    for digits in range(1, 20):
-        text = Rational(*_decimal(delta, digits))
-        if abs(text - delta) <= uncertainty:
-            return text
-    return delta
+def _round_decimal(delta: Rational, uncertainty: Rational) -> Rational | None:
+    """A decimal of one or two digits within the uncertainty."""
+    for digits in (1, 2):
+        short = Rational(*_decimal(delta, digits))
+        if abs(short - delta) <= uncertainty:
+            return short
+    return None
 
 
 def _decimal(value: Rational, digits: int) -> tuple[int, int]:
@@ -117,8 +117,8 @@ def _decimal(value: Rational, digits: int) -> tuple[int, int]:
 def _pivots(question: Question, direction: Direction, change: Change | None) -> list[Given]:
     """The rows that resolve delta best: the derivative over the tolerance, largest first.
 
-    None is returned where the derivatives say at once that there is no such delta: too large, or half of the rows
-    deviate by another amount than the derivative makes them.
+    Empty where the derivatives say at once that there is no such delta: it is too large, or most rows deviate by
+    another amount than the derivative makes them.
     """
     near, here = offset_at(direction, STEP, change), offset_at(direction, ZERO, change)
     moved_series, still = question.quantity.of(*near), question.quantity.of(*here)

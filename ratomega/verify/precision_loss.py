@@ -1,14 +1,14 @@
-"""Precision-loss: the numbers were summed at an offset in floating-point arithmetic, and the cancellation ate the digits.
+"""Precision-loss: the numbers were summed at an offset in floating-point arithmetic, and cancellation ate the digits.
 
-At an offset delta a singular weight is of the order delta^-n, n up to [k/(alpha+beta)], and its vanishing factors, which
-are differences of numbers of order 1, have a relative error u/delta at the working precision u. So the error of the
-sum grows like u/delta^(n+1) at most; where the errors of the factors go together (they are the same differences over and
-over) most of it cancels again, down to u/delta. The most of every row is added up from the weights themselves:
+At an offset delta a singular weight is of the order delta^-n, n up to [k/(alpha+beta)], and its vanishing factors,
+which are differences of numbers of order 1, have a relative error u/delta at the working precision u. So the error of
+the sum grows like u/delta^(n+1) at most. Where the errors of the factors go together (they are the same differences
+over and over) most of it cancels again, down to u/delta. The most is added up from the weights of a row,
 
     B_k = sqrt( sum over configurations of w^2 (1 + sum over factors f of (s/f)^2) ),  s the size of the parameters,
 
-and the working precision u is that of a usual format. The offset comes from rows without singular weights where it shows, else from the
-growth of the error at a usual working precision.
+and the least is B_k delta^n. The working precision is that of a usual format. The offset comes from rows without
+singular weights where it shows, else from the growth of the error.
 """
 
 from __future__ import annotations
@@ -18,7 +18,7 @@ from dataclasses import dataclass
 from math import floor, log10, sqrt
 
 from ratomega.diagrams.tuples import Charge, configurations
-from ratomega.exact.quadratic import is_quadratic
+from ratomega.exact.quadratic import only_rational
 from ratomega.exact.rational import ZERO, Rational, as_fraction, decimal_text
 from ratomega.verify.explanation import Explanation
 from ratomega.verify.given import Given
@@ -59,8 +59,7 @@ class Noise:
 
 @dataclass(frozen=True, slots=True)
 class _Noisy:
-    """A row, how far it is off, and the most and the least that cancellation leaves at precision 1: factors may be wrong
-    independently of each other, or together, and then most of it drops out."""
+    """A row, how far it is off, and the most and the least that cancellation leaves at precision 1."""
 
     row: Given
     rest: float
@@ -83,12 +82,12 @@ def singular_orders(question: Question) -> dict[Charge, int]:
 def noise_profile(source: Source, charge: Charge) -> float:
     """B_k at the point where the source sits, nothing vanishing there."""
     weights = source.weights
-    scale = max(_float(abs(x)) for x in _sizes(source)) * (1 + sum(charge))
+    scale = max(abs(_float(x)) for x in _sizes(source)) * (1 + sum(charge))
     total = 0.0
     for configuration in configurations(source.setting.ranks, charge):
         value, loss = 1.0, 1.0
         for (c, _), exponent in weights.weight(configuration).factors().items():
-            factor = _float(abs(c)) if not is_quadratic(c) else 1.0
+            factor = abs(_float(only_rational(c)))
             if factor == 0.0:
                 value = 0.0
                 break
@@ -101,8 +100,7 @@ def noise_profile(source: Source, charge: Charge) -> float:
 def _sizes(source: Source) -> Iterator[Rational]:
     setting = source.setting
     for value in (setting.eps1, setting.eps2, *(x for node in setting.nodes for x in node.coulomb)):
-        if not is_quadratic(value.constant):
-            yield value.constant
+        yield only_rational(value.constant)
 
 
 def _float(value: Rational) -> float:
@@ -110,7 +108,7 @@ def _float(value: Rational) -> float:
 
 
 def rounding(source: Source, quantity: Quantity, charge: Charge) -> float:
-    """By how much a sum in double precision at the point of the source may be off at a charge where nothing is singular."""
+    """By how much a sum in double precision at the point of the source may be off where nothing is singular."""
     return CLEAN * PRECISIONS["double"] * _typical(source, quantity, charge, {})
 
 

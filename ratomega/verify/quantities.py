@@ -1,7 +1,7 @@
 """What a table may hold: coefficients of Z, of log Z, of -eps1 eps2 log Z, or of the conformal block.
 
-The block is Z divided by its U(1) factor, where the dictionary of ``conformal`` covers the theory; flavours can be dealt to
-the two ends of a block in several ways, and each has its own factor.
+The block is Z divided by its U(1) factor, where the dictionary of ``conformal`` covers the theory; flavours can be
+dealt to the two ends of a block in several ways, and each has its own factor.
 """
 
 from __future__ import annotations

@@ -11,7 +11,7 @@ from dataclasses import dataclass
 from ratomega.case.setting import Setting
 from ratomega.conformal.dictionary import dealings, gauge_path, why_not_covered
 from ratomega.diagrams.tuples import Charge
-from ratomega.exact.quadratic import Number, is_quadratic
+from ratomega.exact.quadratic import Number, is_quadratic, only_rational
 from ratomega.exact.rational import ONE, ZERO, Rational
 from ratomega.verify.series import Series, remembered, rescaled, scaled, times
 
@@ -125,7 +125,7 @@ def _binomial(s: Rational, order: int) -> Rational:
 
 
 def _complement(s: Rational, order: int) -> Rational:
-    return _binomial(s, order) * (-1) ** order
+    return _binomial(s, order) if order % 2 == 0 else -_binomial(s, order)
 
 
 def _euler(s: Rational, order: int) -> Rational:
@@ -154,8 +154,10 @@ def named_exponents(setting: Setting) -> dict[Rational, str]:
 
     def add(value: Number, words: str) -> None:
         for sign, prefix in ((1, ""), (-1, "-")):
-            signed = value * sign
-            if not is_quadratic(signed) and signed != 0:
+            if is_quadratic(value):
+                continue
+            signed = only_rational(value * sign)
+            if signed != 0:
                 found.setdefault(signed, f"{prefix}{words}" if "+" not in words else f"{prefix}({words})")
 
     add(ONE / area, "1/(eps1*eps2)")

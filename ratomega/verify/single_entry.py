@@ -24,9 +24,8 @@ def single_entry(question: Question) -> Explanation | None:
     shown = ",".join(str(k) for k in row.charge)
     right = right_text(row, exact)
     others = f"the other {len(telling)} above charge 0 agree" if len(telling) > 1 else "the other above charge 0 agrees"
-    sentence = (
-        f"One coefficient is wrong, at charge {shown}: {row.text} should be {right}{f' ({how})' if how else ''}; {others}."
-    )
+    note = f" ({how})" if how else ""
+    sentence = f"One coefficient is wrong, at charge {shown}: {row.text} should be {right}{note}; {others}."
     return Explanation(
         "single-entry", question.quantity.name, sentence,
         changes=(f"charge {shown}: {row.text} -> {right}",),

@@ -2,8 +2,8 @@
 
 CSV: one column for the charge of every node, one for the value, one for an uncertainty if there is one; separated by
 commas, semicolons or tabs. A header may name the columns; lines that begin with # and empty lines are passed over.
-JSON: a list of rows, or an object with the key "rows". A row is {"charge": [1], "value": "0.5625", "uncertainty": ...} or
-the list [1, "0.5625"]; an object {"1": "0.5625"} gives values by charge.
+JSON: a list of rows, or an object with the key "rows". A row is {"charge": [1], "value": "0.5625"}, with "uncertainty"
+if there is one, or the list [1, "0.5625"]; an object {"1": "0.5625"} gives values by charge.
 
 All mistakes are collected, each with its row (in CSV the line) and column.
 """
@@ -34,6 +34,7 @@ LARGEST_FILE = 4 * 1024 * 1024
 MOST_ROWS = 10_000
 MOST_PROBLEMS = 100
 LONGEST_FIELD = 2000
+MANY_DIGITS = 7
 
 VALUE, UNCERTAINTY = "value", "uncertainty"
 _CHARGE = re.compile(r"\+?\d{1,6}")
@@ -85,8 +86,12 @@ def read_table(source: NumbersSource, nodes: Sequence[str]) -> tuple[Given, ...]
         raise InputError.single("the table has no row with a number", label)
     texts = [text for _, _, text, _, _, _ in checked]
     exact_integers = any(is_fraction(text) for text in texts) and not any("." in text for text in texts)
+    many_digits = any(len(text) > MANY_DIGITS for text in texts)
     return tuple(
-        given_number(charge, text, value, uncertainty, row, exact_integers=exact_integers, double=double)
+        given_number(
+            charge, text, value, uncertainty, row,
+            exact_integers=exact_integers, double=double, many_digits=many_digits,
+        )
         for row, charge, text, value, uncertainty, double in checked
     )
 

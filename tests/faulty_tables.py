@@ -1,7 +1,7 @@
-"""Tables of numbers with a known fault, made by the plain reference and by plain floats: nothing of the package is used.
+"""Tables of numbers with a known fault, made by the plain reference and by plain floats: no line of the package.
 
-A theory is a dictionary of numbers as in ``plain``. ``FAULTS`` maps a name to a function (draw, theory) -> (table, expected
-kinds), None where the fault does not apply to the theory. Tables are lists of (charge, text).
+A theory is a mapping as in a case file. ``FAULTS`` maps a name to a function (draw, theory) -> (table, expected kinds),
+None where the fault does not apply to the theory. Tables are lists of (charge, text).
 """
 
 from __future__ import annotations

@@ -1,0 +1,83 @@
+"""Tables with one known fault, drawn at random: each is diagnosed as what it is, and correct numbers are not accused."""
+
+from __future__ import annotations
+
+import random
+
+import pytest
+
+import faulty_tables
+import ratomega
+from faulty_tables import BACKGROUNDS, FAULTS, draw_theory
+
+QUICK = [0, 1]
+
+
+def drawn(fault, seed):
+    """The first theory of this seed to which the fault applies: (mapping, table, kinds)."""
+    draw = random.Random(f"{fault}/{seed}")
+    while True:
+        mapping = draw_theory(draw, draw.choice([1, 2, 3]), draw.choice(list(BACKGROUNDS)))
+        made = FAULTS[fault](draw, mapping)
+        if made is not None:
+            return mapping, *made
+
+
+def check(fault, seed):
+    mapping, rows, kinds = drawn(fault, seed)
+    result = ratomega.compare(mapping, rows)
+    found = [one.kind for one in result.diagnosis]
+    if fault in ("correct", "log"):
+        assert result.agree
+        assert (found, result.exit_status) == ([], 0)
+        assert result.quantity == ("log" if fault == "log" else "z")
+        return
+    assert result.exit_status == 1
+    assert found[0] in kinds, (mapping, rows, result.diagnosis)
+    assert all(one.fitted < 2 for one in result.diagnosis)
+
+
+@pytest.mark.parametrize("seed", QUICK)
+@pytest.mark.parametrize("fault", FAULTS)
+def test_faults(fault, seed):
+    check(fault, seed)
+
+
+@pytest.mark.long
+@pytest.mark.parametrize("seed", range(len(QUICK), 30))
+@pytest.mark.parametrize("fault", FAULTS)
+def test_many_faults(fault, seed):
+    check(fault, seed)
+
+
+@pytest.mark.parametrize("fault", ["offset 1e-3", "offset 1e-4"])
+def test_the_offset_is_found(fault):
+    mapping, rows, _ = drawn(fault, 100)
+    first = ratomega.compare(mapping, rows).diagnosis[0]
+    assert dict(first.parameters)["offset"] == {"offset 1e-3": "0.001", "offset 1e-4": "0.0001"}[fault]
+
+
+def test_the_offset_and_the_precision_of_floats_are_estimated():
+    mapping = {"charge": 2, "background": {"eps1": "1", "eps2": "1"}, "node": [{"coulomb": ["1/3", "-1/3"]}]}
+    rows = faulty_tables.float_table(faulty_tables.in_floats(mapping, faulty_tables.fmpq(1, 10**6)))
+    first = ratomega.compare(mapping, rows).diagnosis[0]
+    assert first.kind == "precision-loss"
+    assert abs(float(dict(first.parameters)["offset"]) - 1e-6) < 1e-11
+    assert dict(first.parameters)["digits"] == "16"
+
+
+@pytest.mark.parametrize("digits", [1, 2, 3, 5, 8, 15, 30])
+def test_correct_numbers_to_any_number_of_digits(digits):
+    for seed in range(4):
+        draw = random.Random(f"correct to {digits}/{seed}")
+        mapping = draw_theory(draw, draw.choice([1, 2, 3]), draw.choice(list(BACKGROUNDS)))
+        result = ratomega.compare(mapping, faulty_tables.table(faulty_tables.exact_limits(mapping), digits))
+        assert result.agree, result
+
+
+def test_correct_numbers_of_double_precision_at_a_negative_ratio():
+    for seed in range(6):
+        draw = random.Random(f"correct floats/{seed}")
+        mapping = draw_theory(draw, draw.choice([1, 2, 3]), "-3/4")
+        result = ratomega.compare(mapping, dict(enumerate(faulty_tables.in_floats(mapping, 0))))
+        assert result.agree, result
