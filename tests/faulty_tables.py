@@ -112,7 +112,7 @@ def decimal(value, digits=15):
     if len(mantissa) > digits:
         mantissa, exponent = mantissa[:digits], exponent + 1
     sign = "-" if fraction < 0 else ""
-    return f"{sign}{mantissa[0]}.{mantissa[1:] or '0'}e{exponent:+03d}"
+    return f"{sign}{'.'.join(filter(None, (mantissa[0], mantissa[1:])))}e{exponent:+03d}"
 
 
 def table(values, digits=15):

@@ -169,6 +169,9 @@ def _fit_edits(question: Question, variant: Variant, edits: list[SeriesEdit]) ->
 def _fitted(question: Question, variant: Variant, edits: list[SeriesEdit], tried: int) -> Iterator[Explanation]:
     """Changes with one free number on top of others."""
     digits = question.digits
+    if len(digits) < 2:
+        # One number can always be fitted to one row.
+        return
     rows = {row.charge: row for row in question.rows}
     named = named_exponents(question.setting)
     z = _edited(variant.source.z, variant.setting, edits)

@@ -17,7 +17,7 @@ from ratomega.diagrams.tuples import Charge
 from ratomega.errors import InputError
 from ratomega.exact.rational import ZERO, Rational, as_rational
 
-__all__ = ["Given", "given_number", "is_fraction", "read_number"]
+__all__ = ["Given", "given_number", "is_fraction", "last_unit", "read_number"]
 
 DOUBLE_DIGITS = 16
 DOUBLE = Rational(1, 2**48)
@@ -118,11 +118,24 @@ def _precision(text: str, value: Rational, exact_integers: bool) -> tuple[int | 
         if exact_integers or value == 0:
             return None, ZERO
         return len(text.lstrip("+-").lstrip("0")), Rational(1, 2)
+    match = _parts(text)
+    digits = len((match["whole"] + match["decimals"]).lstrip("0")) or 1
+    return digits, last_unit(text) * UNIT_SHARE
+
+
+def _parts(text: str) -> re.Match[str]:
     match = _DECIMAL.fullmatch(text)
     if match is None:
-        raise ValueError(f"{text!r} was read as a number and is none")
-    decimals = match["decimals"]
-    exponent = int(match["exponent"] or 0) - len(decimals)
-    digits = len((match["whole"] + decimals).lstrip("0")) or 1
-    unit = Rational(10) ** exponent if exponent >= 0 else 1 / Rational(10) ** -exponent
-    return digits, unit * UNIT_SHARE
+        raise ValueError(f"{text!r} is no decimal number")
+    return match
+
+
+def last_unit(text: str) -> Rational:
+    """One unit of the last digit of a decimal text.
+
+    >>> last_unit("0.25"), last_unit("1.5e3")
+    (1/100, 100)
+    """
+    match = _parts(text)
+    exponent = int(match["exponent"] or 0) - len(match["decimals"])
+    return Rational(10) ** exponent if exponent >= 0 else 1 / Rational(10) ** -exponent

@@ -67,6 +67,9 @@ def offsets(
 ) -> Iterator[Explanation]:
     """Offsets that explain all rows; with ``change`` (in ``words``) on top of another change."""
     digits = question.digits
+    if len(digits) < 2:
+        # One number can always be fitted to one row.
+        return
     if not enough_evidence(digits, fitted=1, tried=tried) and not enough_evidence(digits, fitted=0, tried=tried * 10):
         return
     for direction in directions(question):

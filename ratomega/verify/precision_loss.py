@@ -15,6 +15,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 from dataclasses import dataclass
+from itertools import pairwise
 from math import floor, log10, sqrt
 
 from ratomega.diagrams.tuples import Charge, configurations
@@ -38,7 +39,8 @@ LEAST_DIGITS = 14
 # Orders of magnitude by which noise may be above the most, or below the least, that is typical.
 SPREAD = 2.0
 LEAST_SPREAD = 3.5
-LEAST_GROWTH = 1.5
+LEAST_GROWTH = 1.0
+COMMON = ("double", "single")
 MOST_PIVOTS = 4
 GRID = [Rational(1, 10**n) for n in range(2, 13)]
 LARGEST_FLOAT = 1e300
@@ -65,6 +67,7 @@ class _Noisy:
     rest: float
     most: float
     least: float
+    order: int
 
 
 def singular_orders(question: Question) -> dict[Charge, int]:
@@ -185,7 +188,7 @@ def _noise(
             continue
         most = _typical(source, question.quantity, row.charge, profile)
         if rest > row.tolerance:
-            noisy.append(_Noisy(row, _float(rest), most, most * abs(_float(delta)) ** order))
+            noisy.append(_Noisy(row, _float(rest), most, most * abs(_float(delta)) ** order, order))
         else:
             quiet.append((row, most * abs(_float(delta)) ** order))
     return _judged(question, delta, uncertainty, noisy, quiet, clean)
@@ -214,13 +217,23 @@ def _judged(
         lucky = sum(1 for row, least in quiet if least * u > 10**SPREAD * max(_float(row.tolerance), 1e-300))
         if top - level > SPREAD or low + lucky > 1:
             continue
-        rests = [one.rest for one in noisy]
-        grows = log10(max(rests) / min(rests)) >= LEAST_GROWTH
-        # Without a row that shows the offset itself, the growth must.
-        if visible or (grows and len(noisy) >= 2 and abs(top - level) <= SPREAD):
+        # Without a row that shows the offset itself, offset and precision are both guessed: the growth must be clear.
+        if visible or (name in COMMON and abs(top - level) <= SPREAD and _grows(question, noisy)):
             rows = tuple(one.row for one in noisy)
             return Noise(delta, uncertainty, u, rows, visible, abs(top - level), name)
     return None
+
+
+def _grows(question: Question, noisy: list[_Noisy]) -> bool:
+    """Do three rows at least show noise, and the relative error rise with every further order that cancels?"""
+    exact = {row.charge: value for row, value in zip(question.rows, question.exact, strict=True)}
+    worst: dict[int, float] = {}
+    for one in noisy:
+        size = abs(_float(exact[one.row.charge])) or 1.0
+        worst[one.order] = max(worst.get(one.order, 0.0), one.rest / size)
+    errors = [worst[order] for order in sorted(worst)]
+    steps = pairwise(errors)
+    return len(noisy) >= 3 and len(errors) >= 2 and all(b >= a * 10**LEAST_GROWTH for a, b in steps)
 
 
 def _explanation(

@@ -4,10 +4,13 @@ from __future__ import annotations
 
 from ratomega.exact.rational import Rational, decimal_text, exact_text
 from ratomega.verify.explanation import Explanation
-from ratomega.verify.given import Given
+from ratomega.verify.given import Given, last_unit
 from ratomega.verify.question import Question
 
 __all__ = ["misprint", "single_entry"]
+
+# With a digit too few or too many the last place stands for another power of ten.
+SHIFTS = (Rational(1, 10), Rational(10))
 
 
 def single_entry(question: Question) -> Explanation | None:
@@ -53,9 +56,11 @@ def misprint(row: Given, exact: Rational) -> str:
             scale = Rational(10) ** power if power > 0 else 1 / Rational(10) ** -power
             if abs(row.value / scale - exact) <= row.tolerance / scale:
                 return f"a factor {exact_text(scale)}"
-    given, right = _digits(row.text, row.text), _digits(right_text(row, exact), row.text)
+    given, right = _digits(row, exact)
     if len(given) != len(right):
         return "one digit left out or added" if _one_more(given, right) else ""
+    if row.digits is not None and any(_one_more(given, _rounded(exact, last_unit(row.text) * u)) for u in SHIFTS):
+        return "one digit left out or added"
     differ = [n for n, (a, b) in enumerate(zip(given, right, strict=True)) if a != b]
     if len(differ) == 1:
         return "one digit"
@@ -66,13 +71,20 @@ def misprint(row: Given, exact: Rational) -> str:
     return ""
 
 
-def _digits(text: str, like: str) -> str:
-    """The text without its sign, zeros at the end filled up so that positions match."""
-    text = text.lstrip("+-")
-    like = like.lstrip("+-")
-    if "." in text and "e" not in text and "e" not in like.lower():
-        text = text.ljust(len(like), "0")
-    return text
+def _digits(row: Given, exact: Rational) -> tuple[str, str]:
+    """The digits of the given number and those of the right one, to the same last place; of a fraction its text."""
+    if row.digits is None:
+        return row.text.lstrip("+-"), exact_text(exact).lstrip("-")
+    unit = last_unit(row.text)
+    given, right = _rounded(row.value, unit), _rounded(exact, unit)
+    if row.value * exact < 0:
+        return "", "the sign and more"
+    width = max(len(given), len(right)) if abs(len(given) - len(right)) != 1 else 0
+    return given.zfill(width), right.zfill(width)
+
+
+def _rounded(value: Rational, unit: Rational) -> str:
+    return str(int((abs(value) / unit + Rational(1, 2)).floor()))
 
 
 def _one_more(one: str, other: str) -> bool:

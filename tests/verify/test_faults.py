@@ -1,14 +1,14 @@
-"""Tables with one known fault, drawn at random: each is diagnosed as what it is, and correct numbers are not accused."""
+"""Tables with one known fault, drawn at random: each is diagnosed as what it is; correct numbers are not accused."""
 
 from __future__ import annotations
 
 import random
 
-import pytest
-
 import faulty_tables
-import ratomega
+import pytest
 from faulty_tables import BACKGROUNDS, FAULTS, draw_theory
+
+import ratomega
 
 QUICK = [0, 1]
 
@@ -81,3 +81,13 @@ def test_correct_numbers_of_double_precision_at_a_negative_ratio():
         mapping = draw_theory(draw, draw.choice([1, 2, 3]), "-3/4")
         result = ratomega.compare(mapping, dict(enumerate(faulty_tables.in_floats(mapping, 0))))
         assert result.agree, result
+
+
+def test_lost_precision_is_seen_by_its_growth_where_no_row_shows_the_offset():
+    """Without charge 1, which shows the offset at the twelfth digit, and with few digits."""
+    mapping = {"charge": 2, "background": {"eps1": "1", "eps2": "1"}, "node": [{"coulomb": ["1/3", "-1/3"]}]}
+    values = faulty_tables.in_floats(mapping, faulty_tables.fmpq(1, 10**6))
+    rows = [(k, f"{value:.6e}") for k, value in enumerate(values) if k >= 2]
+    first = ratomega.compare(mapping, rows, as_="z").diagnosis[0]
+    assert first.kind == "precision-loss"
+    assert 1e-7 <= float(dict(first.parameters)["offset"]) <= 1e-5
