@@ -217,11 +217,18 @@ def _judged(
         lucky = sum(1 for row, least in quiet if least * u > 10**SPREAD * max(_float(row.tolerance), 1e-300))
         if top - level > SPREAD or low + lucky > 1:
             continue
-        # Without a row that shows the offset itself, offset and precision are both guessed: the growth must be clear.
-        if visible or (name in COMMON and abs(top - level) <= SPREAD and _grows(question, noisy)):
+        # Without a row that shows the offset itself, or with an unusual precision, the growth must be clear.
+        plain = visible and name == "double" and _clearly(question, visible)
+        if plain or (name in COMMON and abs(top - level) <= SPREAD and _grows(question, noisy)):
             rows = tuple(one.row for one in noisy)
             return Noise(delta, uncertainty, u, rows, visible, abs(top - level), name)
     return None
+
+
+def _clearly(question: Question, rows: tuple[Given, ...]) -> bool:
+    """Does one of these rows deviate by a digit more than what was given allows?"""
+    exact = {row.charge: value for row, value in zip(question.rows, question.exact, strict=True)}
+    return any(abs(row.value - exact[row.charge]) >= 10 * row.tolerance for row in rows)
 
 
 def _grows(question: Question, noisy: list[_Noisy]) -> bool:

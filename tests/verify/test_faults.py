@@ -91,3 +91,13 @@ def test_lost_precision_is_seen_by_its_growth_where_no_row_shows_the_offset():
     first = ratomega.compare(mapping, rows, as_="z").diagnosis[0]
     assert first.kind == "precision-loss"
     assert 1e-7 <= float(dict(first.parameters)["offset"]) <= 1e-5
+
+
+def test_random_numbers_are_unexplained():
+    for seed in range(4):
+        draw = random.Random(f"junk/{seed}")
+        mapping = draw_theory(draw, draw.choice([1, 2]), "1")
+        exact = faulty_tables.exact_limits(mapping)
+        values = [exact[0], *(x * faulty_tables.fmpq(draw.randint(500, 900), 1000) for x in exact[1:])]
+        result = ratomega.compare(mapping, faulty_tables.table(values, draw.choice([3, 4, 12])), as_="z")
+        assert [one.kind for one in result.diagnosis] == ["unexplained"], result.diagnosis
