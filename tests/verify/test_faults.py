@@ -101,3 +101,17 @@ def test_random_numbers_are_unexplained():
         values = [exact[0], *(x * faulty_tables.fmpq(draw.randint(500, 900), 1000) for x in exact[1:])]
         result = ratomega.compare(mapping, faulty_tables.table(values, draw.choice([3, 4, 12])), as_="z")
         assert [one.kind for one in result.diagnosis] == ["unexplained"], result.diagnosis
+
+
+def test_what_was_left_out_is_said():
+    mapping, rows, _ = drawn("singular terms", 7)
+    first = ratomega.compare(mapping, rows).diagnosis[0]
+    assert first.changes == ("the singular configurations were left out",)
+
+
+def test_few_digits_prove_no_explanation():
+    """One digit a row: a factor exp(-q/5) and others fit, as something among so many always does."""
+    mapping = {**draw_theory(random.Random(0), 2, "1"), "node": [{"coulomb": ["2/7", "-2/7"]}]}
+    mapping["node"][0]["antifundamental"] = ["1/2", "1/5"]
+    result = ratomega.compare(mapping, {1: "-0.5", 2: "0.06"}, as_="z")
+    assert [one.kind for one in result.diagnosis] == ["unexplained"]
