@@ -29,6 +29,7 @@ from ratomega.pipeline import clusters, detect, limit, validate
 from ratomega.results import Coefficient, DetectResult, LimitResult, ValidateResult
 from ratomega.validator.verdict import Check, Kind, Verdict
 from ratomega.verify.approach import Approach, approach
+from ratomega.verify.comparing import CompareResult, compare
 from ratomega.version import VERSION as __version__
 
 __all__ = [
@@ -41,6 +42,7 @@ __all__ = [
     "Case",
     "Check",
     "Coefficient",
+    "CompareResult",
     "DetectResult",
     "Explanation",
     "InputError",
@@ -61,6 +63,7 @@ __all__ = [
     "block",
     "bundled_names",
     "clusters",
+    "compare",
     "detect",
     "explain",
     "limit",

@@ -46,10 +46,22 @@ from ratomega.results import (
 from ratomega.validator.checklist import depth_of
 from ratomega.validator.verdict import Check, Kind, Verdict
 from ratomega.verify.approach import Approach
+from ratomega.verify.compare_documents import compare_body, read_compare
+from ratomega.verify.comparing import CompareResult
 
 __all__ = ["Result", "error_document", "load_result", "to_document", "to_json"]
 
-Result = LimitResult | DetectResult | ValidateResult | AverageResult | Atlas | BlockResult | Approach | Explanation
+Result = (
+    LimitResult
+    | DetectResult
+    | ValidateResult
+    | AverageResult
+    | Atlas
+    | BlockResult
+    | Approach
+    | CompareResult
+    | Explanation
+)
 Document = dict[str, Any]
 
 LARGEST_DOCUMENT = 512 * 1024 * 1024
@@ -89,6 +101,8 @@ def to_document(result: Result) -> Document:
         return {"result": "explain", **_header(result.header), "partial": result.partial, "paragraphs": paragraphs}
     if isinstance(result, Approach):
         return {"result": "approach", **_header(result.header), "partial": result.partial, **approach_body(result)}
+    if isinstance(result, CompareResult):
+        return {"result": "compare", **_header(result.header), "partial": result.partial, **compare_body(result)}
     body = {"depth": result.depth, "checks": [_check(c) for c in result.checks], "summary": result.summary}
     return {"result": "validate", **_header(result.header), "partial": result.partial, **body}
 
@@ -151,7 +165,10 @@ def _from_document(document: Document) -> Result:
         return Explanation(header, paragraphs, partial)
     if kind == "approach":
         return read_approach(document, header, partial)
-    raise ValueError(f'"result" is {kind!r}, not limit, detect, validate, average, block, approach, explain or atlas')
+    if kind == "compare":
+        return read_compare(document, header, partial)
+    known = "limit, detect, validate, average, block, approach, compare, explain or atlas"
+    raise ValueError(f'"result" is {kind!r}, not {known}')
 
 
 # ---- small pieces, each with its way back ----

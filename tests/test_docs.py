@@ -16,7 +16,7 @@ from ratomega.cli.main import cli
 
 ROOT = Path(__file__).resolve().parent.parent
 README = (ROOT / "README.md").read_text(encoding="utf-8")
-FILES = re.findall(r"<!-- file: (\S+) -->\n```toml\n(.*?)```", README, re.DOTALL)
+FILES = re.findall(r"<!-- file: (\S+) -->\n```(?:toml|csv)\n(.*?)```", README, re.DOTALL)
 CONSOLE = re.findall(r"```console\n\$ (.*?)\n(.*?)```", README, re.DOTALL)
 
 

@@ -23,6 +23,7 @@ from ratomega.cli.approach import approach
 from ratomega.cli.atlas import atlas
 from ratomega.cli.average import average
 from ratomega.cli.block import block
+from ratomega.cli.compare import compare
 from ratomega.cli.explain import explain
 from ratomega.cli.new import new
 from ratomega.cli.options import case_options, form_option, probes_option, worker_options
@@ -188,6 +189,7 @@ cli.add_command(explain)
 cli.add_command(new)
 cli.add_command(average)
 cli.add_command(block)
+cli.add_command(compare)
 
 
 @cli.command()

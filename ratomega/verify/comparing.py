@@ -1,0 +1,204 @@
+"""From a case and a table to a result: exact limits -> rows -> diagnosis."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, replace
+
+from ratomega.case.case import Case
+from ratomega.case.reading import CaseSource, load_case
+from ratomega.diagrams.tuples import Charge, configurations, count_all, count_configurations
+from ratomega.errors import InputError, Problem
+from ratomega.exact.quadratic import Number
+from ratomega.exact.rational import Rational
+from ratomega.exact.rational_function import RationalFunction
+from ratomega.job import MOST_CONFIGURATIONS, Job
+from ratomega.pipeline import limit_result
+from ratomega.results import Header
+from ratomega.verify.diagnosis import diagnose
+from ratomega.verify.explanation import Explanation
+from ratomega.verify.given import Given
+from ratomega.verify.precision_loss import rounding
+from ratomega.verify.quantities import Quantity, quantities
+from ratomega.verify.question import Question
+from ratomega.verify.rows import Row, compared, real_value
+from ratomega.verify.series import Series, below
+from ratomega.verify.source import Source
+from ratomega.verify.table import NumbersSource, read_table
+
+__all__ = ["CompareResult", "compare"]
+
+# The diagnosis sums the configurations of a row many times over; rows beyond this are compared and not diagnosed from.
+MOST_DIAGNOSED = 2000
+ROUNDING_AT_MOST = Rational(1, 10**8)
+
+
+@dataclass(frozen=True, slots=True)
+class CompareResult:
+    """Row by row, then what explains the rows. ``quantity`` is what the numbers are compared with as coefficients of.
+
+    ``used`` is how many rows the diagnosis was made from.
+    """
+
+    header: Header
+    quantity: str
+    rows: tuple[Row, ...]
+    diagnosis: tuple[Explanation, ...]
+    used: int
+    partial: bool = False
+
+    @property
+    def agree(self) -> bool:
+        return all(row.agrees for row in self.rows)
+
+    @property
+    def exit_status(self) -> int:
+        """0 when all rows agree, else 1."""
+        return 0 if self.agree else 1
+
+
+def compare(
+    case: CaseSource, numbers: NumbersSource, *, as_: str | None = None, most_configurations: int = MOST_CONFIGURATIONS
+) -> CompareResult:
+    """Someone's numbers against the exact limits, with a diagnosis where they differ.
+
+    ``numbers`` is a CSV or JSON file, a JSON text, a mapping from charges to values or a list of rows (``verify.table``
+    says how they look). ``as_`` says what they are: "z", "log", "prepotential" (-eps1 eps2 log Z) or "block"; without
+    it each is tried, and the first that all rows agree with is taken.
+
+    Raises ``InputError`` for a bad table (row and column named), a case with symbols or with u, and a row whose charge
+    has no finite limit. Cost: the exact limits, and where rows deviate some thousand sums at low charges.
+
+    >>> case = {"charge": 1, "background": {"eps1": 1, "eps2": 1}, "node": [{"coulomb": [0]}]}
+    >>> compare(case, {1: "1.00", 2: "0.50", 3: "0.17"}).agree            # exp(q)
+    True
+    >>> [one.changes for one in compare(case, {1: "-1.0000", 2: "0.5000", 3: "-0.1667"}, as_="z").diagnosis][0]
+    ('q -> -q',)
+    """
+    loaded = load_case(case)
+    if loaded.symbols:
+        message = f"numbers are compared with numbers; give values for {', '.join(loaded.symbols)}"
+        raise InputError.single(message, "symbols")
+    table = read_table(numbers, [node.name for node in loaded.theory.nodes])
+    job = Job.prepare(_covering(loaded, table), most_configurations=most_configurations)
+    chosen = quantities(as_, job.setting)
+    result = limit_result(job, list(job.limits(probes=1)))
+    z = _exact_series(result.coefficients, table)
+    source = Source(job.setting)
+    found = {one: _rows(table, one, one.of(z, job.setting), source) for one in chosen}
+    for quantity, rows in found.items():
+        if all(row.agrees for row in rows):
+            return CompareResult(result.header, quantity.name, rows, (), 0)
+    used = _affordable(table, job.setting.ranks)
+    explanations = _diagnosis(job, source, table, used, found)
+    best = explanations[0].quantity
+    shown = next(rows for one, rows in found.items() if one.name == best)
+    return CompareResult(result.header, best, shown, explanations, len(used))
+
+
+def _covering(case: Case, table: tuple[Given, ...]) -> Case:
+    """The case up to the charges of the table: by node or by total charge, whichever is less work."""
+    nodes = len(case.theory.nodes)
+    bounds = [max(row.charge[v] for row in table) for v in range(nodes)]
+    whole = max(sum(row.charge) for row in table)
+    if nodes == 1:
+        return case.with_charge(whole)
+    ranks = case.theory.ranks
+    by_node = case.with_charge(bounds)
+    by_total = case.with_charge(whole)
+    return by_node if count_all(ranks, bounds) <= count_all(ranks, whole) else by_total
+
+
+def _exact_series(coefficients: object, table: tuple[Given, ...]) -> Series:
+    assert isinstance(coefficients, tuple)
+    needed = {j for row in table for j in below(row.charge)}
+    known: dict[Charge, Number] = {}
+    problems = []
+    for one in coefficients:
+        if one.charge not in needed:
+            continue
+        if one.status != "finite" or one.value is None or isinstance(one.value, RationalFunction):
+            shown = ",".join(str(k) for k in one.charge)
+            what = "a pole survives" if one.status == "pole" else "the limit depends on the path"
+            problems.append(Problem(f"{what} at charge {shown}, so there is no number to compare with", "case"))
+        else:
+            known[one.charge] = one.value
+    if problems:
+        raise InputError(problems)
+    return known.__getitem__
+
+
+def _rows(table: tuple[Given, ...], quantity: Quantity, series: Series, source: Source) -> tuple[Row, ...]:
+    """Raises ``InputError`` where an exact value is not real: tables hold real numbers."""
+    rows = []
+    for given in table:
+        exact = series(given.charge)
+        real = real_value(exact)
+        if real is None:
+            shown = ",".join(str(k) for k in given.charge)
+            message = f"the exact value at charge {shown} is not real, and a table holds real numbers"
+            raise InputError.single(message, "case")
+        row = compared(given, exact, real)
+        if not row.agrees and given.double and _may_be_rounding(given, real):
+            row = compared(_with_rounding(given, quantity, source), exact, real)
+        rows.append(row)
+    return tuple(rows)
+
+
+def _may_be_rounding(given: Given, real: Rational) -> bool:
+    """Worth looking at: a number of double precision that is off in its last half."""
+    return bool(abs(given.value - real) <= ROUNDING_AT_MOST * (1 + abs(real)))
+
+
+def _with_rounding(given: Given, quantity: Quantity, source: Source) -> Given:
+    """The number with the rounding errors of a sum in double precision allowed, where nothing is singular."""
+    ranks = source.setting.ranks
+    regular = all(
+        source.weights.weight(c).vanishing_denominators == 0
+        for j in below(given.charge)
+        for c in configurations(ranks, j)
+    )
+    if source.weights.radicand or not regular:
+        return given
+    allowed = Rational(*rounding(source, quantity, given.charge).as_integer_ratio())
+    return replace(given, tolerance=max(given.tolerance, allowed))
+
+
+def _affordable(table: tuple[Given, ...], ranks: tuple[int, ...]) -> tuple[Given, ...]:
+    """The rows that the diagnosis is made from, cheapest first."""
+    costs = {row.charge: count_configurations(ranks, row.charge) for row in table}
+    rows = sorted(table, key=lambda row: (costs[row.charge], sum(row.charge), row.charge))
+    kept: list[Given] = []
+    total = 0
+    for row in rows:
+        total += costs[row.charge]
+        if total > MOST_DIAGNOSED and len(kept) > 1:
+            break
+        kept.append(row)
+    return tuple(kept)
+
+
+def _diagnosis(
+    job: Job,
+    source: Source,
+    table: tuple[Given, ...],
+    used: tuple[Given, ...],
+    found: dict[Quantity, tuple[Row, ...]],
+) -> tuple[Explanation, ...]:
+    questions: list[Question] = []
+    for quantity, rows in found.items():
+        tolerances = {row.charge: row.tolerance for row in rows}
+        allowed = tuple(replace(row, tolerance=tolerances[row.charge]) for row in used)
+        exact: dict[Charge, Rational] = {}
+        for row in rows:
+            real = real_value(row.exact)
+            assert real is not None
+            exact[row.charge] = real
+        values = tuple(exact[row.charge] for row in used)
+        question = Question(job.case, job.setting, source, quantity, allowed, values)
+        if question.deviating and all(values != other.exact for other in questions):
+            questions.append(question)
+    if not questions:
+        charges = tuple(row.charge for row in table if row not in used)
+        sentence = "The rows that deviate are at charges too high for a diagnosis; those at lower charges agree."
+        return (Explanation("unexplained", next(iter(found)).name, sentence, charges=charges),)
+    return diagnose(questions)

@@ -1,0 +1,214 @@
+"""Offset: the numbers were taken near the limit point, at t = delta on the path or with another eps moved by delta.
+
+The row that moves most for its precision gives delta, by the secant method with exact values; then the sum at this
+delta must give every row, all orders in delta included. A short delta inside what the row allows (0.001, say) is
+preferred.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Iterator
+from dataclasses import dataclass, replace
+
+from ratomega.case.background import Background
+from ratomega.case.setting import Setting, own_setting
+from ratomega.exact.path import Linear
+from ratomega.exact.rational import ONE, ZERO, Rational, decimal_text
+from ratomega.verify.explanation import Explanation, enough_evidence
+from ratomega.verify.given import Given
+from ratomega.verify.question import Question
+from ratomega.verify.rows import real_value
+from ratomega.verify.series import Series
+from ratomega.verify.source import Source, moved
+
+__all__ = ["Direction", "directions", "offset_at", "offsets", "solved"]
+
+STEP = Rational(1, 10**20)
+SECANT_STEPS = 15
+SMALLEST = Rational(1, 10**40)
+# An offset beyond this share of eps1 or eps2 is another background.
+LARGEST_SHARE = Rational(1, 20)
+MOST_PIVOTS = 3
+
+Change = Callable[[Series, Setting], Series]
+
+
+@dataclass(frozen=True, slots=True)
+class Direction:
+    """Which way the background was moved, in words with the number left open, and the setting that moves so."""
+
+    words: str
+    setting: Setting
+
+
+def directions(question: Question) -> Iterator[Direction]:
+    """The case's own path first; then eps2 and eps1 alone, where the case does not itself say what moves."""
+    case, own = question.case, question.case.background
+    simple = own.eps1.slope == 0 and own.eps2.slope == 1
+    words = "eps2 moved by {}" if simple else "t = {} on the path of the case"
+    yield Direction(words, question.setting)
+    if any(x.t != 0 for _, x in case.theory.parameters()):
+        return
+    for name, slopes in (("eps2", (ZERO, ONE)), ("eps1", (ONE, ZERO))):
+        if (own.eps1.slope, own.eps2.slope) != slopes:
+            background = Background(Linear(own.eps1.constant, slopes[0]), Linear(own.eps2.constant, slopes[1]))
+            yield Direction(f"{name} moved by {{}}", own_setting(replace(case, background=background)))
+
+
+def offset_at(direction: Direction, delta: Rational, change: Change | None = None) -> tuple[Series, Setting]:
+    """Z and the numbers of the theory at an offset."""
+    setting = moved(direction.setting, delta)
+    z: Series = Source(setting).z
+    return (z if change is None else change(z, setting)), setting
+
+
+def offsets(
+    question: Question, *, change: Change | None = None, words: str = "", tried: int = 3
+) -> Iterator[Explanation]:
+    """Offsets that explain all rows; with ``change`` (in ``words``) on top of another change."""
+    digits = question.digits
+    if len(digits) < 2:
+        # One number can always be fitted to one row.
+        return
+    if not enough_evidence(digits, fitted=1, tried=tried) and not enough_evidence(digits, fitted=0, tried=tried * 10):
+        return
+    for direction in directions(question):
+        for pivot in _pivots(question, direction, change):
+            found = _at_pivot(question, direction, pivot, change, tried)
+            if found is not None:
+                delta, free, predicted = found
+                yield _explanation(question, direction, delta, free, predicted, words)
+                break
+
+
+def _at_pivot(
+    question: Question, direction: Direction, pivot: Given, change: Change | None, tried: int
+) -> tuple[Rational, bool, tuple[Rational, ...]] | None:
+    solution = solved(question, direction, pivot, change)
+    if solution is None:
+        return None
+    delta, uncertainty = solution
+    short = _round_decimal(delta, uncertainty)
+    if short is not None and enough_evidence(question.digits, fitted=0, tried=tried * 100):
+        predicted = question.fit(*offset_at(direction, short, change))
+        if predicted is not None:
+            return short, False, predicted
+    if not enough_evidence(question.digits, fitted=1, tried=tried):
+        return None
+    # The pivot moves most for its precision: within its uncertainty no other row moves by more than its own.
+    extra = [row.tolerance for row in question.rows]
+    predicted = question.fit(*offset_at(direction, delta, change), extra=extra)
+    return None if predicted is None else (delta, True, predicted)
+
+
+def _round_decimal(delta: Rational, uncertainty: Rational) -> Rational | None:
+    """A decimal of one or two digits within the uncertainty."""
+    for digits in (1, 2):
+        short = Rational(*_decimal(delta, digits))
+        if abs(short - delta) <= uncertainty:
+            return short
+    return None
+
+
+def _decimal(value: Rational, digits: int) -> tuple[int, int]:
+    exponent = 0
+    while abs(value) * 10**exponent < 10 ** (digits - 1):
+        exponent += 1
+    return int((value * 10**exponent + Rational(1, 2)).floor()), 10**exponent
+
+
+def _pivots(question: Question, direction: Direction, change: Change | None) -> list[Given]:
+    """The rows that resolve delta best: the derivative over the tolerance, largest first.
+
+    Empty where the derivatives say at once that there is no such delta: it is too large, or most rows deviate by
+    another amount than the derivative makes them.
+    """
+    near, here = offset_at(direction, STEP, change), offset_at(direction, ZERO, change)
+    moved_series, still = question.quantity.of(*near), question.quantity.of(*here)
+    found: list[tuple[Rational, int, Given, Rational, Rational]] = []
+    for n, row in enumerate(question.rows):
+        a, b = question.value(moved_series, row), question.value(still, row)
+        if a is None or b is None:
+            return []
+        slope = (a - b) / STEP
+        tolerance = row.tolerance if row.tolerance != 0 else Rational(1, 10**60)
+        if slope != 0 and not row.agrees(b):
+            found.append((abs(slope) / tolerance, -n, row, slope, row.value - b))
+    if not found:
+        return []
+    found.sort(key=lambda one: one[:2], reverse=True)
+    delta = found[0][4] / found[0][3]
+    if abs(delta) > 2 * _largest(question):
+        return []
+    alike = sum(1 for *_, row, slope, shift in found if abs(shift - slope * delta) <= abs(shift) / 2 + row.tolerance)
+    return [one[2] for one in found[:MOST_PIVOTS]] if 2 * alike >= len(found) else []
+
+
+def _largest(question: Question) -> Rational:
+    e1, e2 = real_value(question.setting.eps1.constant), real_value(question.setting.eps2.constant)
+    assert e1 is not None
+    assert e2 is not None
+    return LARGEST_SHARE * min(abs(e1), abs(e2))
+
+
+def solved(
+    question: Question, direction: Direction, pivot: Given, change: Change | None = None
+) -> tuple[Rational, Rational] | None:
+    """delta and its uncertainty from one row, by the secant method; None when it does not lead to a small delta."""
+
+    def miss(delta: Rational) -> Rational | None:
+        value = question.value(question.quantity.of(*offset_at(direction, delta, change)), pivot)
+        return None if value is None else value - pivot.value
+
+    largest = _largest(question)
+    before, delta = ZERO, STEP
+    miss_before, miss_here = miss(before), miss(delta)
+    for _ in range(SECANT_STEPS):
+        if miss_before is None or miss_here is None or miss_before == miss_here:
+            return None
+        slope = (miss_here - miss_before) / (delta - before)
+        uncertainty = abs(pivot.tolerance / slope)
+        correction = miss_here / slope
+        rounding = max(SMALLEST, uncertainty / 10**4)
+        places = 10 ** max(1, len(str(int((1 / rounding).floor()))))
+        before, miss_before = delta, miss_here
+        delta = Rational(((delta - correction) * places + Rational(1, 2)).floor(), places)
+        if abs(delta) > largest:
+            return None
+        if abs(correction) <= max(uncertainty / 100, SMALLEST):
+            return (delta, uncertainty) if delta != 0 else None
+        miss_here = miss(delta)
+    return None
+
+
+def _explanation(
+    question: Question, direction: Direction, delta: Rational, free: bool, predicted: tuple[Rational, ...], words: str
+) -> Explanation:
+    shown = decimal_text(delta, 6)
+    change = direction.words.format(shown)
+    orders = "" if words else _orders(question, direction, delta)
+    also = f", and {words}" if words else ""
+    sentence = (
+        f"The numbers were taken at an offset: {change}{also}; the exact sum there gives all {len(question.rows)} rows"
+        f"{orders}."
+    )
+    return Explanation(
+        "offset", question.quantity.name, sentence,
+        changes=(change, *((words,) if words else ())),
+        parameters=(("offset", decimal_text(delta, 15)),),
+        charges=question.charges,
+        length=2 if words else 1,
+        fitted=int(free),
+        predicted=predicted,
+    )
+
+
+def _orders(question: Question, direction: Direction, delta: Rational) -> str:
+    """How many rows need more than the derivative: the check of the next order."""
+    near = question.quantity.of(*offset_at(direction, STEP))
+    second = 0
+    for row, exact in zip(question.rows, question.exact, strict=True):
+        value = question.value(near, row)
+        if value is not None and not row.agrees(exact + (value - exact) / STEP * delta):
+            second += 1
+    return f", {second} of them only with the next order in the offset" if second else ""
