@@ -34,7 +34,7 @@ from ratomega.pipeline import (
     limit_result,
     validate_result,
 )
-from ratomega.regulator.routes import ROUTES
+from ratomega.regulator.routes import ROUTES, uses_primes
 from ratomega.version import VERSION
 from ratomega.workers.cluster import cluster_hands
 from ratomega.workers.crew import Crew, Progress
@@ -139,8 +139,8 @@ def limit(
     """
     job = _job(**case_options, route=route, clusterwise=terms is not None)
     with _crew(job, workers, cluster, keep) as crew:
-        if crew is not None and job.way.short_cut:
-            click.echo("note: this route works in one process and keeps no parts", err=True)
+        if crew is not None and job.way.short_cut and not uses_primes(job.way, job.case):
+            click.echo("note: so low a charge is done in one process, and no parts are kept", err=True)
         limits = job.limits(probes=probes, terms=terms, crew=crew, certify=certify)
         found, interrupted = _collect(job, limits, lambda one: one.charge, crew)
     return _finish(limit_result(job, found, terms=terms, partial=interrupted), limit_text, as_json, interrupted)
