@@ -35,6 +35,8 @@ __all__ = [
 SPARE_BITS = 45
 # The primes that are used lie so little below 2^bits: for planning.
 LOST_BITS = 0.01
+# Rounds of further primes without a further coefficient; they make at least seven times as many primes.
+PATIENCE = 16
 
 
 @dataclass(frozen=True, slots=True)
@@ -126,18 +128,23 @@ def collect(
 ) -> Collected:
     """The coefficients Z_0 ... Z_charge of the setting, from the residues of those of the integer parameters.
 
-    ``wanted`` primes are tried first. Raises ``RatomegaError`` when ``most_primes`` do not suffice.
+    ``wanted`` primes are tried first. Raises ``RatomegaError`` when ``most_primes`` do not suffice, or when more and
+    more primes bring no further coefficient: then a residue is wrong.
     """
     found: list[Rational] = []
     spare: list[int] = []
-    count = 0
+    count = stalled = 0
     while len(found) <= charge:
         if count + wanted > most_primes:
             raise RatomegaError(f"{most_primes} primes do not determine the coefficients up to charge {charge}")
         count += wanted
         primes, table = stream.first(count)
+        known = len(found)
         if count >= 2:
             _extend(setup, charge, table, primes, found, spare)
+        stalled = stalled + 1 if len(found) == known else 0
+        if stalled > PATIENCE:
+            raise RatomegaError(f"charge {known}: no fraction fits the residues modulo {count} primes")
         wanted = max(2, count // 8)
     return Collected(tuple(found), tuple(spare), count)
 
