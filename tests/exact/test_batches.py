@@ -47,7 +47,7 @@ DENOMINATORS = {
 
 
 @pytest.mark.parametrize("name", DENOMINATORS)
-@settings(deadline=None, max_examples=25)
+@settings(deadline=None, max_examples=12)
 @given(data=st.data())
 def test_batches_of_any_size_give_the_same_stream(name, data):
     d = DENOMINATORS[name]

@@ -14,7 +14,7 @@ from odd_chunks import Held, Marked, traces
 
 import ratomega
 from ratomega.workers import crew as crews
-from ratomega.workers.crew import AHEAD, Crew
+from ratomega.workers.crew import Crew
 from ratomega.workers.hands import LentExecutor, ThisProcess
 from ratomega.workers.pool import OwnPool
 from ratomega.workers.store import Store
@@ -94,9 +94,9 @@ def test_beyond_what_is_foreseen_only_a_few_are_given_out(folder, monkeypatch):
         assert (given, chunks.drawn) == ([5], 5)
         for n in range(5, 20):
             assert next(results) == f"result of c{n}"
-            assert chunks.drawn <= n + 1 + AHEAD
+            assert chunks.drawn <= n + 3
         results.close()
-    assert max(given[1:]) <= 1 + AHEAD
+    assert max(given[1:]) <= 3
 
 
 def test_order_and_surplus_with_threads(folder, tmp_path):
@@ -108,7 +108,7 @@ def test_order_and_surplus_with_threads(folder, tmp_path):
         # A crew that was through with one piece of work takes another.
         more = [Marked(folder, f"d{n}") for n in range(3)]
         assert list(crew.results(more)) == [f"result of d{n}" for n in range(3)]
-    assert len(ran(folder)) == len(set(ran(folder))) <= 9 + AHEAD + 3
+    assert len(ran(folder)) == len(set(ran(folder))) <= 9 + 2 + 3
     with Store.open(tmp_path / "kept", case) as again:
         assert {f"c{n}" for n in range(9)} <= again.keys() <= set(ran(folder))
 
