@@ -20,6 +20,7 @@ from ratomega.detector.accidents import check_path, dead_colours, frozen_number_
 from ratomega.detector.geometry import compact_by_parameters
 from ratomega.diagrams.tuples import Charge, count_all
 from ratomega.errors import InputError
+from ratomega.exact.batches import here
 from ratomega.exact.path import SMALL_PARAMETERS
 from ratomega.exact.rational import ZERO, Rational
 from ratomega.regulator.limits import ChargeLimit, charge_limit
@@ -33,6 +34,7 @@ from ratomega.workers.charges import charge_cost, charge_limits, cut
 from ratomega.workers.crew import Crew
 from ratomega.workers.hands import Hands, LentExecutor, ThisProcess
 from ratomega.workers.pool import OwnPool
+from ratomega.workers.primes import prime_supplier
 from ratomega.workers.store import Store
 
 __all__ = ["MOST_CONFIGURATIONS", "CaseSource", "Found", "Job", "ShortLimit", "check_count"]
@@ -134,7 +136,7 @@ class Job:
     ) -> Iterator[Found]:
         """The limits charge by charge, to t^terms; computed here, or in chunks by a crew: they do not depend on which.
 
-        A short cut is taken in this process, all charges at once; ``certify`` makes it prove what it found.
+        A short cut gives all charges at once; ``certify`` makes it prove what it found.
         Raises ``InputError`` for terms of a case with symbols, or a crew for it.
         """
         last = checked_terms(terms)
@@ -150,7 +152,8 @@ class Job:
         needed = always_probe or not compact_by_parameters(self.setting, self.case.bounds)
         further = self.probes(probes if needed else 0)
         if self.way.short_cut:
-            done = short_cut(self.way, self.case, self.setting, certify=certify)
+            supplier = here if crew is None else prime_supplier(self.case, crew)
+            done = short_cut(self.way, self.case, self.setting, certify=certify, supplier=supplier)
             for charge, value in zip(self.case.charges, done.values, strict=True):
                 yield ShortLimit(charge, value, done)
             return

@@ -9,6 +9,7 @@ import os
 import signal
 import time
 from dataclasses import dataclass
+from multiprocessing.connection import Connection
 from pathlib import Path
 
 from ratomega.workers.chunks import STAMP
@@ -104,3 +105,25 @@ class Surroundings(Marked):
 
     def run(self) -> str:
         return " ".join(f"{key}={os.environ.get(key)}" for key in ("OMP_NUM_THREADS", "OPENBLAS_NUM_THREADS"))
+
+
+@dataclass(frozen=True)
+class BreaksOff(Marked):
+    """The first time that it is run, its worker gets no further than the half of sending the result: then it dies, or,
+    with ``seconds``, hangs."""
+
+    def run(self) -> str:
+        first = self.name not in [name for _, name in traces(self.folder)]
+        trace(self.folder, self.name)
+        if first:
+            send = Connection._send
+
+            def half(connection, data, *rest):
+                send(connection, data[: len(data) // 2], *rest)
+                trace(self.folder, "half")
+                if not self.seconds:
+                    os.kill(os.getpid(), signal.SIGKILL)
+                time.sleep(self.seconds)
+
+            Connection._send = half
+        return f"result of {self.name}"

@@ -46,7 +46,7 @@ from ratomega.errors import InputError, RatomegaError, WorkerError
 from ratomega.exact.rational import exact_text
 from ratomega.nesting import nested_checks, refuse_other_ways
 from ratomega.pipeline import detect_result, limit_result, validate_checks
-from ratomega.regulator.routes import ROUTES
+from ratomega.regulator.routes import ROUTES, uses_primes
 from ratomega.results import ValidateResult
 from ratomega.validator.checklist import DEPTHS, depth_of
 from ratomega.validator.verdict import Check
@@ -123,8 +123,8 @@ def limit(
         return finish(nested_limits_of(loaded, **options_given), write, as_json, False)
     job = prepared_job(loaded, **options_given, route=route, clusterwise=terms is not None)
     with crew_of(job, workers, cluster, keep) as crew:
-        if crew is not None and job.way.short_cut:
-            click.echo("note: this route works in one process and keeps no parts", err=True)
+        if crew is not None and job.way.short_cut and not uses_primes(job.way, job.case):
+            click.echo("note: so low a charge is done in one process, and no parts are kept", err=True)
         limits = job.limits(probes=probes, terms=terms, crew=crew, certify=certify)
         found, interrupted = collect(job, limits, lambda one: one.charge, crew)
     return finish(limit_result(job, found, terms=terms, partial=interrupted), write, as_json, interrupted)

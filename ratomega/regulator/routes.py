@@ -12,20 +12,24 @@ from collections.abc import Callable
 from dataclasses import dataclass
 
 from ratomega.case.case import Case
-from ratomega.case.setting import Setting
+from ratomega.case.setting import Setting, own_setting
 from ratomega.diagrams.tuples import Charge, count_all
 from ratomega.errors import InputError
+from ratomega.exact.batches import ResidueTask, Supplier, here
 from ratomega.exact.quadratic import only_rational
 from ratomega.exact.rational import Rational
 from ratomega.regulator.direct import direct_total
+from ratomega.regulator.fast.setup import prepare
 from ratomega.regulator.fast.sums import applies as fast_applies
 from ratomega.regulator.fast.sums import fast_sum, worthwhile
+from ratomega.regulator.fast.task import FAST, FastTask
 from ratomega.regulator.poles.problem import applies as poles_apply
 from ratomega.regulator.poles.problem import case_problem
-from ratomega.regulator.poles.recursion import pole_coefficients
+from ratomega.regulator.poles.recursion import by_series, pole_coefficients
+from ratomega.regulator.poles.task import POLES, POLES_AT_POINT, PoleTask
 from ratomega.weights import Weights
 
-__all__ = ["ROUTES", "ShortCut", "Way", "choose", "point_values", "short_cut"]
+__all__ = ["ROUTES", "ShortCut", "Way", "choose", "point_values", "residue_task", "short_cut", "uses_primes"]
 
 ROUTES = ("auto", "direct", "poles")
 # Up to here the sum is done cluster by cluster in a fraction of a second, and its certificate looks at every weight.
@@ -94,15 +98,36 @@ def _no_poles(case: Case) -> str:
     return poles_apply(case).reason
 
 
-def short_cut(way: Way, case: Case, setting: Setting, *, certify: bool = False) -> ShortCut:
-    """All coefficients by the short cut of a way. Cost: see ``fast`` and ``poles``."""
+def uses_primes(way: Way, case: Case) -> bool:
+    """Does the way go through residues, which can be computed elsewhere (``supplier``)?"""
+    return bool(way.short_cut) and not (way.short_cut == "poles" and by_series(case.bounds[0]))
+
+
+def short_cut(
+    way: Way, case: Case, setting: Setting, *, certify: bool = False, supplier: Supplier = here
+) -> ShortCut:
+    """All coefficients by the short cut of a way. ``supplier`` says where residues come from (by default they are
+    computed here); nothing in the result depends on it. Cost: see ``fast`` and ``poles``."""
     charge = case.bounds[0]
     if way.short_cut == "poles":
-        found = pole_coefficients(case_problem(case), charge, certify=certify)
+        found = pole_coefficients(case_problem(case), charge, certify=certify, supplier=supplier)
         method = "exact" if not found.primes else "proved" if found.certified else "residues"
         return ShortCut(found.coefficients, method, found.spare_bits, found.primes)
-    done = fast_sum(setting, charge, certify=certify)
+    done = fast_sum(setting, charge, certify=certify, supplier=supplier)
     return ShortCut(done.coefficients, "proved" if done.proved else "residues", min(done.spare_bits), done.primes)
+
+
+def residue_task(name: str, case: Case, charge: int) -> ResidueTask:
+    """The task that a short cut gives to its supplier, from its name, the case and the charge of the task: what another
+    process needs to compute the same residues. The charge of the case does not matter.
+
+    Raises ``ValueError`` for a name that no task has.
+    """
+    if name == FAST:
+        return FastTask.make(prepare(own_setting(case)), charge)
+    if name in (POLES, POLES_AT_POINT):
+        return PoleTask.make(case_problem(case), charge, at_square=name == POLES_AT_POINT)
+    raise ValueError(f"no short cut has a task {name!r}")
 
 
 def point_values(setting: Setting, highest: tuple[int, ...]) -> Callable[[Charge], Rational]:

@@ -6,14 +6,12 @@ them has. Charges come in the order of the case, its own path first, then the fu
 
 from __future__ import annotations
 
-import json
 from collections import Counter
 from collections.abc import Iterable, Iterator, Sequence
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
 from functools import lru_cache
 
 from ratomega.case.case import Case
-from ratomega.case.reading import case_from_mapping, case_to_mapping
 from ratomega.case.setting import Setting, own_setting, probe_setting
 from ratomega.case.theory import Theory
 from ratomega.detector.geometry import compact_by_parameters
@@ -24,7 +22,16 @@ from ratomega.regulator.direct import ChargeSum, direct_sum, direct_total, merge
 from ratomega.regulator.limits import ChargeLimit, charge_limit_of
 from ratomega.weights import Weights
 from ratomega.workers.chunks import STAMP
-from ratomega.workers.texts import read_list, series_data, series_from, sum_data, sum_from, written
+from ratomega.workers.texts import (
+    canonical_text,
+    case_from,
+    read_list,
+    series_data,
+    series_from,
+    sum_data,
+    sum_from,
+    written,
+)
 
 __all__ = ["Piece", "SumChunk", "charge_cost", "charge_limits", "cut"]
 
@@ -107,7 +114,7 @@ def _sum_of(piece: Piece, data: object) -> ChargeSum | Laurent:
 @lru_cache(maxsize=32)
 def _weights(case: str, path: int) -> Weights:
     """Diagrams are met again in chunk after chunk: a worker keeps what it computed once for each path of a case."""
-    read = case_from_mapping(json.loads(case))
+    read = case_from(case)
     return Weights(own_setting(read) if path == OWN_PATH else probe_setting(read, path))
 
 
@@ -141,7 +148,7 @@ def cut(case: Case, setting: Setting, *, last: int, probes: int, always_probe: b
 
     ``setting`` is the case's own path; the other arguments are those of ``charge_limit``.
     """
-    canonical = written(case_to_mapping(replace(case, title="", charge=0)))
+    canonical = canonical_text(case)
     chunks: list[SumChunk] = []
     gathered: list[Piece] = []
     weight = 0.0

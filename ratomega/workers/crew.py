@@ -1,7 +1,8 @@
 """A crew: hands out chunks, collects the results in order, keeps them in a store, and knows how long it will take.
 
 Results are given in the order of the chunks whatever the order in which they arrive, so that nothing after this can
-depend on it.
+depend on it. Chunks may come from an iterator that never ends, for work whose end shows in its results: then a few more
+are given out than were asked for, and what they bring is not used, though kept.
 """
 
 from __future__ import annotations
@@ -22,6 +23,9 @@ __all__ = ["Crew", "Progress"]
 
 MOST_DEATHS = 3
 """So many workers may die over one chunk; then the chunk is taken to be what kills them."""
+
+AHEAD = 2
+"""So many chunks more than were asked for are given out once those that were foreseen are used up."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -45,7 +49,7 @@ class Crew:
         self._hands = hands
         self._store = store
         self.watch = watch
-        self._chunks: Sequence[Chunk] = ()
+        self._chunks: list[Chunk] = []
         self._keys: list[str] = []
         self._todo: deque[int] = deque()
         self._under_way: dict[Future[str], int] = {}
@@ -61,32 +65,58 @@ class Crew:
         Raises ``WorkerError`` when the hands fail, ``InputError`` when the store does; an error in a chunk is raised as
         it is. What arrived before is kept.
         """
+        return self.stream(iter(chunks), len(chunks))
+
+    def stream(self, chunks: Iterator[Chunk], foreseen: int) -> Iterator[str]:
+        """The same for chunks that are drawn one by one, perhaps without end; close it when it was enough.
+
+        The first ``foreseen`` are given out as fast as there is room, those after them at most ``AHEAD`` before they
+        are asked for. Which results come, and in which order, depends on the chunks alone.
+        """
         try:
-            yield from self._results(chunks)
+            yield from self._results(chunks, foreseen)
         except WorkerError as error:
             raise WorkerError(f"{error}; {self.kept_text()}") from error
+        finally:
+            self._todo.clear()
 
-    def _results(self, chunks: Sequence[Chunk]) -> Iterator[str]:
-        self._chunks, self._keys = chunks, [chunk.key() for chunk in chunks]
-        kept = set() if self._store is None else self._store.keys() & set(self._keys)
-        self._todo = deque(n for n, key in enumerate(self._keys) if key not in kept)
-        self._done = len(chunks) - len(self._todo)
-        clock = _Clock(sum(chunks[n].cost for n in self._todo))
-        for n, key in enumerate(self._keys):
-            if self._store is not None and key in kept:
-                yield self._store.get(key)
+    def _results(self, chunks: Iterator[Chunk], foreseen: int) -> Iterator[str]:
+        kept = set() if self._store is None else self._store.keys()
+        clock = _Clock()
+        n = len(self._chunks)
+        planned = n + foreseen
+        while True:
+            self._draw(chunks, planned if n < planned else n + 1 + AHEAD, kept, clock)
+            if n == len(self._chunks):
+                return
+            if self._store is not None and self._keys[n] in kept:
+                yield self._store.get(self._keys[n])
+                n += 1
                 continue
             while n not in self._arrived:
                 for number in self._advance():
-                    clock.finished(chunks[number].cost)
+                    clock.finished(self._chunks[number].cost)
                 if self.watch is not None:
-                    self.watch(Progress(self._done, len(chunks), clock.seconds_left()))
+                    total = max(planned, n + 1)
+                    self.watch(Progress(min(self._done, total), total, clock.seconds_left()))
             # No worker is to wait while results that came early are put to use.
             if back := {future for future in self._under_way if future.done()}:
                 for number in self._collect(back):
-                    clock.finished(chunks[number].cost)
+                    clock.finished(self._chunks[number].cost)
                 self._give_out()
             yield self._arrived.pop(n)
+            n += 1
+
+    def _draw(self, chunks: Iterator[Chunk], number: int, kept: set[str], clock: _Clock) -> None:
+        """Draw chunks until there are ``number`` in all, or no more."""
+        while len(self._chunks) < number and (chunk := next(chunks, None)) is not None:
+            self._chunks.append(chunk)
+            self._keys.append(chunk.key())
+            if self._keys[-1] in kept:
+                self._done += 1
+            else:
+                self._todo.append(len(self._chunks) - 1)
+                clock.planned(chunk.cost)
 
     def _advance(self) -> list[int]:
         """Give out what there is room for, wait until something comes back; the numbers of what arrived."""
@@ -173,9 +203,12 @@ class Crew:
 class _Clock:
     """Estimates the time that is left from the cost of what is done and what is not."""
 
-    def __init__(self, cost: float) -> None:
-        self._left, self._spent = cost, 0.0
+    def __init__(self) -> None:
+        self._left = self._spent = 0.0
         self._start = time.monotonic()
+
+    def planned(self, cost: float) -> None:
+        self._left += cost
 
     def finished(self, cost: float) -> None:
         self._left -= cost

@@ -149,8 +149,10 @@ class _Lane:
         else:
             with _surroundings_of_a_worker():
                 future = self._executor.submit(run_chunk, chunk)
-            # The process has its own copy by now.
+            # The process has its own copies by now. Without ours the end of the process is seen also in the middle of a
+            # result that it was sending; else the executor would wait for the rest for ever. There is no public way.
             self._their_end.close()
+            self._executor._result_queue._writer.close()  # type: ignore[attr-defined]
             self._started = True
         self.queue.append(future)
         return future

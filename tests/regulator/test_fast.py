@@ -17,8 +17,9 @@ from ratomega.case.setting import own_setting
 from ratomega.diagrams.tuples import configurations
 from ratomega.diagrams.young import diagrams_of_size, transpose
 from ratomega.errors import InputError, RatomegaError
+from ratomega.exact import batches
 from ratomega.exact.rational import Rational
-from ratomega.exact.residues import Moduli
+from ratomega.exact.residues import Moduli, PrimeSource
 from ratomega.regulator.direct import direct_total
 from ratomega.regulator.fast import cluster_sums, collect, generic, layout, limit, three
 from ratomega.regulator.fast import sums as fast
@@ -334,12 +335,12 @@ def test_bad_primes_are_replaced(monkeypatch) -> None:
     setting = setting_of("1", antifundamental=["1/3"])
     expected = fast_sum(setting, 5).coefficients
 
-    class Small(collect.PrimeSource):
+    class Small(PrimeSource):
         def __init__(self, bits):
             super().__init__(bits)
             self._ready = [7, 11, 13, 1000003, 1000033]
 
-    monkeypatch.setattr(collect, "PrimeSource", Small)
+    monkeypatch.setattr(batches, "PrimeSource", Small)
     answer = fast_sum(setting, 5)
     assert answer.coefficients == expected
 
@@ -454,15 +455,15 @@ def test_certified(ratio, coulomb, matter) -> None:
 def test_certification_refutes_a_wrong_coefficient(ratio, monkeypatch) -> None:
     """A wrong reconstruction that passed: off by little, off by much, with a foreign denominator."""
     setting = setting_of(ratio)
-    right = fast._collected
+    right = fast.collect
     for k, change in ((1, Rational(1)), (3, Rational(10) ** 4000), (2, Rational(1, 10007))):
 
-        def wrong(*given, k=k, change=change):
-            found = right(*given)
+        def wrong(*given, k=k, change=change, **options):
+            found = right(*given, **options)
             values = [z + change * (n == k) for n, z in enumerate(found.coefficients)]
             return collect.Collected(tuple(values), found.spare_bits, found.primes)
 
-        monkeypatch.setattr(fast, "_collected", wrong)
+        monkeypatch.setattr(fast, "collect", wrong)
         with pytest.raises(RatomegaError, match=f"charge {k}"):
             fast_sum(setting, 4, certify=True)
 
@@ -509,12 +510,12 @@ def test_power_sums_keep_their_bound(ratio, coulomb, top, monkeypatch) -> None:
 
 def test_the_prime_that_is_kept_out_must_agree() -> None:
     setup = fast.prepare(setting_of("103/71"))
-    primes = list(collect.PrimeSource(26).take(12))
-    table = generic.two_colours(setup, layout.Forest.make(3), Moduli.make(primes, last=True))
+    primes = PrimeSource(26).take(12)
+    table = generic.two_colours(setup, layout.Forest.make(3), Moduli.make(primes, last=True)).T
     found: list[Rational] = []
     collect._extend(setup, 3, table, primes, found, [])
     assert len(found) == 4
-    table[2, -1] += 1
+    table[-1, 2] += 1
     found.clear()
     collect._extend(setup, 3, table, primes, found, [])
     assert len(found) == 2

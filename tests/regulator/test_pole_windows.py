@@ -10,7 +10,7 @@ from flint import fmpq
 from pole_oracle import limit
 
 from ratomega.exact.residues import Moduli, PrimeSource, residues_of
-from ratomega.regulator.poles import engine, plan, recovery, schedule
+from ratomega.regulator.poles import engine, plan, schedule, task
 from ratomega.regulator.poles.bound import ProvedBound
 from ratomega.regulator.poles.engine import PoleEngine, PoleSolver
 from ratomega.regulator.poles.fractions import ConsistencyError
@@ -338,7 +338,7 @@ def test_the_search_is_the_same_every_time():
 def test_batches_of_any_size_give_the_same(monkeypatch):
     problem = problem_of((1, 2), MATTER["two"])
     whole = pole_coefficients(problem, 12, exact=False)
-    monkeypatch.setattr(recovery, "BATCH_BYTES", 1)
+    monkeypatch.setattr(task, "BATCH_BYTES", 1)
     assert pole_coefficients(problem, 12, exact=False) == whole
     solver = PoleSolver(PoleEngine.make(problem, 5), 2)
     with pytest.raises(ValueError, match="2 primes at a time, not 3"):

@@ -10,7 +10,8 @@ import ratomega
 from ratomega.errors import InputError
 from ratomega.job import Job
 from ratomega.pipeline import limit_result
-from ratomega.workers import charges
+from ratomega.regulator import routes
+from ratomega.workers import charges, primes
 from ratomega.workers.cluster import cluster_hands
 
 CASE = make_case("1", "1", [{"coulomb": ["1", "-1"], "antifundamental": ["1/2"]}], charge=4)
@@ -42,6 +43,17 @@ def test_the_executor_of_a_client(cluster, plain):
             assert ratomega.to_json(ratomega.limit(CASE, executor=executor, workers=2)) == plain
             # It is still the caller's.
             assert executor.submit(abs, -3).result() == 3
+
+
+def test_short_cuts_on_a_cluster(cluster, monkeypatch):
+    monkeypatch.setattr(primes, "portion", lambda task: 3)
+    monkeypatch.setattr(routes, "CLUSTERWISE", 20)
+    case = make_case("1", "2", [{"coulomb": ["1/3", "-1/5"]}], charge=10)
+    with distributed.Client(cluster, set_as_default=False) as client, client.get_executor() as executor:
+        for route in ("direct", "poles"):
+            alone = ratomega.limit(case, route=route)
+            assert alone.route.primes > 6
+            assert ratomega.to_json(ratomega.limit(case, route=route, executor=executor)) == ratomega.to_json(alone)
 
 
 def test_the_address_of_a_scheduler(cluster, plain, tmp_path):

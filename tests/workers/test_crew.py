@@ -10,7 +10,7 @@ import time
 from concurrent.futures import CancelledError, Executor, Future, ProcessPoolExecutor, ThreadPoolExecutor
 
 import pytest
-from odd_chunks import Deadly, Held, Interrupted, Marked, Patient, Surroundings, Wrong, traces
+from odd_chunks import BreaksOff, Deadly, Held, Interrupted, Marked, Patient, Surroundings, Wrong, traces
 
 import ratomega
 from ratomega.errors import WorkerError
@@ -110,6 +110,22 @@ def test_a_worker_that_dies_idle_costs_nothing(folder):
         found += results
     assert found == expected(chunks)
     assert [name for _, name in traces(folder)] == [chunk.name for chunk in chunks]
+
+
+def test_a_worker_that_dies_while_it_sends_a_result(folder):
+    """Half of a result has arrived, and the other half never will."""
+    chunks = [Marked(folder, "c0"), BreaksOff(folder, "c1"), Marked(folder, "c2")]
+    with Crew(OwnPool(1)) as crew:
+        assert list(crew.results(chunks)) == expected(chunks)
+    assert [name for _, name in traces(folder)] == ["c0", "c1", "half", "c1", "c2"]
+
+
+def test_leaving_while_a_result_is_being_sent(folder):
+    chunks = [Marked(folder, "c0"), BreaksOff(folder, "c1", seconds=600)]
+    with Crew(OwnPool(1)) as crew:
+        assert next(crew.results(chunks)) == "result of c0"
+        until(lambda: "half" in [name for _, name in traces(folder)])
+    assert all(gone(pid) for pid, _ in traces(folder))
 
 
 def test_workers_leave_ctrl_c_to_us(folder):

@@ -9,24 +9,34 @@ reconstruction and must agree with every coefficient.
 
 from __future__ import annotations
 
-from collections.abc import Callable, Sequence
+from collections.abc import Sequence
 from dataclasses import dataclass
 from itertools import combinations
 from math import ceil, lgamma, log, log2, prod
 
-import numpy as np
-
 from ratomega.errors import RatomegaError
+from ratomega.exact.batches import ResidueStream
 from ratomega.exact.rational import ONE, Rational
-from ratomega.exact.residues import BadPrimes, Floats, Moduli, PrimeSource, combine, reconstruct, residues_of
+from ratomega.exact.residues import Floats, Moduli, combine, reconstruct, residues_of
 from ratomega.regulator.fast.setup import FastSetup
 
-__all__ = ["SPARE_BITS", "Collected", "bits_needed", "collect", "new_poles", "residues_beyond"]
+__all__ = [
+    "SPARE_BITS",
+    "Collected",
+    "bits_needed",
+    "collect",
+    "first_primes",
+    "new_poles",
+    "primes_beyond",
+    "residues_beyond",
+]
 
 # A wrong fraction passes with a probability of about 2^-45 per coefficient, and then meets one more prime.
 SPARE_BITS = 45
-# Of some thousand factors about one in 2^22 vanishes modulo a prime by chance.
-MOST_BAD_PRIMES = 100
+# The primes that are used lie so little below 2^bits: for planning.
+LOST_BITS = 0.01
+# Rounds of further primes without a further coefficient; they make at least seven times as many primes.
+PATIENCE = 16
 
 
 @dataclass(frozen=True, slots=True)
@@ -104,85 +114,65 @@ def _log2_integer(n: int) -> float:
     return log2(n >> shift) + shift if n else 0.0
 
 
-def collect(
-    setup: FastSetup,
-    charge: int,
-    residues: Callable[[Moduli], Floats],
-    *,
-    bits: int,
-    estimate: int,
-    batch: int = 64,
-    most_primes: int = 4000,
-) -> Collected:
-    """The coefficients Z_0 ... Z_charge of the setting, from residues modulo primes of ``bits`` bits.
+def first_primes(estimate: int, bits: int) -> int:
+    """How many primes of ``bits`` bits are tried first for coefficients of ``estimate`` bits.
 
-    ``residues`` gives the coefficients of the integer parameters modulo a batch of primes (prime axis last) or raises
-    ``BadPrimes``; at most ``batch`` primes are handed over at once. ``estimate`` is the expected size in bits of the
-    last one. Raises ``RatomegaError`` when ``most_primes`` do not suffice.
+    >>> first_primes(1000, 26)
+    42
     """
-    source = PrimeSource(bits)
-    primes: list[int] = []
-    columns: list[Floats] = []
+    return ceil((estimate + SPARE_BITS) / (bits - LOST_BITS)) + 1
+
+
+def collect(
+    setup: FastSetup, charge: int, stream: ResidueStream, *, wanted: int, most_primes: int = 4000
+) -> Collected:
+    """The coefficients Z_0 ... Z_charge of the setting, from the residues of those of the integer parameters.
+
+    ``wanted`` primes are tried first. Raises ``RatomegaError`` when ``most_primes`` do not suffice, or when more and
+    more primes bring no further coefficient: then a residue is wrong.
+    """
     found: list[Rational] = []
     spare: list[int] = []
-    wanted = ceil((estimate + SPARE_BITS) / (bits - 0.01)) + 1
+    count = stalled = 0
     while len(found) <= charge:
-        if len(primes) + wanted > most_primes:
+        if count + wanted > most_primes:
             raise RatomegaError(f"{most_primes} primes do not determine the coefficients up to charge {charge}")
-        for taken, values in _batches(source, wanted, batch, residues):
-            primes.extend(taken)
-            columns.append(values)
-        table = np.concatenate(columns, axis=1)
-        if len(primes) >= 2:
+        count += wanted
+        primes, table = stream.first(count)
+        known = len(found)
+        if count >= 2:
             _extend(setup, charge, table, primes, found, spare)
-        wanted = max(2, len(primes) // 8)
-    return Collected(tuple(found), tuple(spare), len(primes))
+        stalled = stalled + 1 if len(found) == known else 0
+        if stalled > PATIENCE:
+            raise RatomegaError(f"charge {known}: no fraction fits the residues modulo {count} primes")
+        wanted = max(2, count // 8)
+    return Collected(tuple(found), tuple(spare), count)
 
 
-def residues_beyond(
-    residues: Callable[[Moduli], Floats], size: int, *, bits: int, batch: int = 64
-) -> tuple[tuple[int, ...], Floats]:
-    """Primes whose product exceeds ``size``, and the residues of the coefficients: (coefficients, primes)."""
-    source = PrimeSource(bits)
-    primes: list[int] = []
-    columns: list[Floats] = []
+def primes_beyond(size: int, bits: int) -> int:
+    """About how many primes of ``bits`` bits have a product that exceeds ``size``; hardly ever one too few."""
+    return ceil(size.bit_length() / (bits - LOST_BITS)) + 1
+
+
+def residues_beyond(stream: ResidueStream, size: int, *, bits: int) -> tuple[tuple[int, ...], Floats]:
+    """The first primes whose product exceeds ``size``, and the residues modulo them: (primes, coefficients)."""
+    count = 0
     product = 1
     while product <= size:
-        missing = (size.bit_length() - product.bit_length()) // bits + 1
-        for taken, values in _batches(source, missing, batch, residues):
-            primes.extend(taken)
-            columns.append(values)
-            product *= prod(taken)
-    return tuple(primes), np.concatenate(columns, axis=1)
-
-
-def _batches(
-    source: PrimeSource, count: int, largest: int, residues: Callable[[Moduli], Floats]
-) -> list[tuple[tuple[int, ...], Floats]]:
-    """Residues for ``count`` further primes, bad ones replaced."""
-    pieces = -(-count // largest)
-    done = []
-    replaced = 0
-    for n in range(pieces):
-        todo = list(source.take(count * (n + 1) // pieces - count * n // pieces))
-        while True:
-            try:
-                done.append((tuple(todo), residues(Moduli.make(todo, last=True))))
-                break
-            except BadPrimes as bad:
-                todo = [p for p in todo if p not in bad.primes]
-                todo += source.take(len(bad.primes))
-                replaced += len(bad.primes)
-                if replaced > count + MOST_BAD_PRIMES:
-                    raise RatomegaError("a denominator vanishes modulo every prime, so it is zero") from bad
-    return done
+        count += (size.bit_length() - product.bit_length()) // bits + 1
+        primes, _ = stream.first(count)
+        product = prod(primes)
+    return stream.first(count)
 
 
 def _extend(
-    setup: FastSetup, charge: int, table: Floats, primes: list[int], found: list[Rational], spare: list[int]
+    setup: FastSetup, charge: int, table: Floats, primes: Sequence[int], found: list[Rational], spare: list[int]
 ) -> None:
-    """Reconstruct coefficients from the first missing one on, as far as the primes reach; the last prime checks."""
-    totals, modulus = combine(np.ascontiguousarray(table[len(found) :, :-1].T), primes[:-1])
+    """Reconstruct coefficients from the first missing one on, as far as the primes reach; the last prime checks.
+
+    ``table`` has shape (primes, coefficients).
+    """
+    totals, modulus = combine(table[:-1, len(found) :], primes[:-1])
     check = Moduli.make(primes[-1:])
     for total in totals:
         k = len(found)
@@ -198,7 +188,7 @@ def _extend(
             return
         scaled = answer.value / factor
         seen = residues_of([scaled], check)[0, 0]
-        if (int(seen) - int(table[k, -1])) % primes[-1]:
+        if (int(seen) - int(table[-1, k])) % primes[-1]:
             return
         found.append(setup.rescaled(scaled, k))
         spare.append(answer.spare_bits)

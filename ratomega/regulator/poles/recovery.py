@@ -7,28 +7,20 @@ from math import ceil, floor, lcm, log2
 
 import numpy as np
 
+from ratomega.exact.batches import ResidueStream, Supplier, here
 from ratomega.exact.rational import ONE, ZERO, Rational
-from ratomega.exact.residues import (
-    PRIME_BITS,
-    BadPrimes,
-    Floats,
-    Moduli,
-    PrimeSource,
-    combine,
-    reconstruct,
-    residues_of,
-)
+from ratomega.exact.residues import PRIME_BITS, Floats, combine, reconstruct
 from ratomega.regulator.poles.bound import ProvedBound
-from ratomega.regulator.poles.engine import PoleEngine, PoleSolver
-from ratomega.regulator.poles.fractions import ConsistencyError, PartialFractions, Term
+from ratomega.regulator.poles.fractions import ConsistencyError, PartialFractions, PoleLayout, Term
 from ratomega.regulator.poles.problem import PoleProblem
+from ratomega.regulator.poles.task import PoleTask
 
 __all__ = ["Evidence", "Recovery"]
 
 # Bits of the modulus that a fraction must leave unused before it is believed.
 SPARE_BITS = 45
-BATCH_BYTES = 2**28
-LARGEST_BATCH = 24
+# The primes that are used lie so little below 2^PRIME_BITS: for planning.
+LOST_BITS = 0.01
 # Sizes of answers grow a little faster than the charge; a few primes cost hardly more than one.
 GROWTH = 1.3
 FEWEST_PRIMES = 4
@@ -52,27 +44,27 @@ class Evidence:
 
 
 class Recovery:
-    """The residues of one problem, by as many primes as it takes."""
+    """The residues of one problem, by as many primes as it takes. ``supplier`` says where they come from."""
 
-    def __init__(self, problem: PoleProblem, charge: int) -> None:
+    def __init__(self, problem: PoleProblem, charge: int, supplier: Supplier = here) -> None:
         self.problem, self.charge = problem, charge
-        engine = PoleEngine.make(problem, charge)
-        size = max(1, min(LARGEST_BATCH, BATCH_BYTES // max(1, engine.bytes_per_prime)))
-        self._layout = engine.layout
-        self._solver = PoleSolver(engine, size)
-        self._source = PrimeSource()
-        self.primes: list[int] = []
+        self._supplier = supplier
+        self._layout = PoleLayout.make(problem.steps, charge)
+        self.primes: tuple[int, ...] = ()
 
     def values_by_bound(self) -> tuple[list[Rational], list[Evidence]]:
         """W_0 ... W_charge at the x^2 of the problem, proved: denominators times W are integers of known size."""
         bound = ProvedBound.make(self.problem, self.charge)
-        rows: list[Floats] = []
+        # One bit for the sign, and one so that the modulus exceeds the bound.
+        needed = max(bound.bits) + 2
+        task = PoleTask.make(self.problem, self.charge, at_square=True)
+        stream = ResidueStream(self._supplier(task, (ceil(needed / (PRIME_BITS - LOST_BITS)),)))
         values: list[Rational] = []
         evidence: list[Evidence] = []
-        # One bit for the sign, and one so that the modulus exceeds the bound.
-        while (missing := max(bound.bits) + 2 - self._bits()) > 0:
-            self._more(ceil(missing / PRIME_BITS), rows, at_square=True)
-        residues, modulus = combine(np.concatenate(rows), self.primes)
+        table: Floats = np.zeros((0, self.charge + 1))
+        while (missing := needed - self._bits()) > 0:
+            self.primes, table = stream.first(len(self.primes) + ceil(missing / PRIME_BITS))
+        residues, modulus = combine(table, self.primes)
         for residue, denominator, size in zip(residues, bound.denominators, bound.bits, strict=True):
             value = residue * int(denominator.p) * pow(int(denominator.q), -1, modulus) % modulus
             values.append(Rational(value if 2 * value < modulus else value - modulus) / denominator)
@@ -86,15 +78,16 @@ class Recovery:
         """
         functions = [PartialFractions(ONE, ())]
         evidence = [Evidence("exact")]
-        rows: list[Floats] = []
         denominator, stalled = 1, 0
         wanted = FEWEST_PRIMES + self.charge // 2
+        task = PoleTask.make(self.problem, self.charge, at_square=False)
+        stream = ResidueStream(self._supplier(task, (wanted, self.charge // 3)))
         while True:
-            self._more(wanted, rows, at_square=False)
+            self.primes, table = stream.first(len(self.primes) + wanted)
             known = len(functions)
-            needed, denominator = self._reconstruct(rows, functions, evidence, denominator)
+            needed, denominator = self._reconstruct(table[:-1], functions, evidence, denominator)
             if len(functions) > self.charge:
-                wrong = self._refuted(rows[-1][-1], functions)
+                wrong = self._refuted(table[-1], functions)
                 if wrong is None:
                     confirmed = [Evidence(e.kind, e.spare_bits, self.primes[-1]) for e in evidence[1:]]
                     return functions, [evidence[0], *confirmed]
@@ -110,54 +103,16 @@ class Recovery:
         """The product of all primes so far has more bits than this."""
         return floor(sum(log2(p) for p in self.primes) - 1e-6)
 
-    def _more(self, count: int, rows: list[Floats], *, at_square: bool) -> None:
-        """Append residues modulo ``count`` further primes: of all coefficients, or of W at the x^2 of the problem.
-
-        Bad primes are replaced.
-        """
-        while count > 0:
-            batch = list(self._source.take(min(count, self._solver.size)))
-            while batch:
-                try:
-                    moduli = Moduli.make(batch)
-                    inverse = self._inverse_distances(moduli) if at_square else None
-                    residues = self._solver.solve(moduli)
-                except BadPrimes as bad:
-                    batch = [p for p in batch if p not in bad.primes]
-                else:
-                    rows.append(residues if inverse is None else self._at_square(moduli, residues, inverse))
-                    self.primes += batch
-                    count -= len(batch)
-                    break
-
-    def _inverse_distances(self, moduli: Moduli) -> Floats:
-        """1/(S^2 - x^2) for every pole of the layout: shape (primes, squares). Raises ``BadPrimes``."""
-        distances = [Rational(square) - self.problem.square for square in self._layout.squares]
-        return moduli.inverses(residues_of(distances, moduli))
-
-    def _at_square(self, moduli: Moduli, residues: Floats, inverse: Floats) -> Floats:
-        """W_0 ... W_charge at the x^2 of the problem: shape (primes, charge + 1)."""
-        if not self._layout.powers:
-            return np.ones((len(moduli), 1))
-        powers = [inverse]
-        while len(powers) < max(self._layout.powers):
-            powers.append(moduli.multiply(powers[-1], inverse))
-        terms = zip(self._layout.powers, self._layout.places, strict=True)
-        weights = np.stack([powers[power - 1][:, place] for power, place in terms], axis=1)
-        values = moduli.reduce((moduli.multiply(residues, weights[:, None, :])).sum(axis=2))
-        values[:, 0] += 1.0
-        return values
-
     def _reconstruct(
-        self, rows: list[Floats], functions: list[PartialFractions], evidence: list[Evidence], denominator: int
+        self, table: Floats, functions: list[PartialFractions], evidence: list[Evidence], denominator: int
     ) -> tuple[int, int]:
-        """Append the next functions, as far as the primes reach, with their evidence.
+        """Append the next functions, as far as all primes but the last reach, with their evidence.
 
         ``denominator`` is a common denominator of what is known; coefficients of W_k times it are nearly integers, so
         that hardly more than their numerators have to fit. Returns an estimate of the bits for all, and the new one.
         """
         used = 0
-        table, keys = np.concatenate(rows)[:-1], self._layout.keys
+        keys = self._layout.keys
         for order in range(len(functions), self.charge + 1):
             terms = [i for i, born in enumerate(self._layout.born) if born <= order]
             residues, modulus = combine(table[:, order, terms], self.primes[:-1])

@@ -17,13 +17,14 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 
 from ratomega.errors import InputError
+from ratomega.exact.batches import Supplier, here
 from ratomega.exact.rational import ONE, Rational
 from ratomega.regulator.poles.fractions import PartialFractions
 from ratomega.regulator.poles.problem import PoleProblem, pole_sentence
 from ratomega.regulator.poles.recovery import Evidence, Recovery
 from ratomega.regulator.poles.series import regular_functions
 
-__all__ = ["Evidence", "PoleFunctions", "PoleResult", "pole_coefficients", "pole_functions"]
+__all__ = ["Evidence", "PoleFunctions", "PoleResult", "by_series", "pole_coefficients", "pole_functions"]
 
 # Up to this charge the exact series take a few hundredths of a second and leave nothing to confirm.
 LAST_EXACT_CHARGE = 8
@@ -66,10 +67,22 @@ class PoleResult:
         return all(e.kind != "residues" for e in self.evidence)
 
 
-def pole_functions(problem: PoleProblem, charge: int, *, exact: bool | None = None) -> PoleFunctions:
+def by_series(charge: int) -> bool:
+    """Is this charge so low that the rule takes exact series, and no primes?
+
+    >>> by_series(8), by_series(9)
+    (True, False)
+    """
+    return charge <= LAST_EXACT_CHARGE
+
+
+def pole_functions(
+    problem: PoleProblem, charge: int, *, exact: bool | None = None, supplier: Supplier = here
+) -> PoleFunctions:
     """W_0 ... W_charge as exact partial fractions in x^2. The Coulomb parameters of the problem do not matter.
 
-    ``exact`` chooses exact series (True) or primes (False); by default the charge decides.
+    ``exact`` chooses exact series (True) or primes (False); by default the charge decides (``by_series``).
+    ``supplier`` says where residues come from; the answer does not depend on it.
     Cost: measured by ``python -m benchmarks.poles``.
 
     >>> from ratomega.regulator.poles.problem import mixed_problem
@@ -77,20 +90,25 @@ def pole_functions(problem: PoleProblem, charge: int, *, exact: bool | None = No
     Term(square=4, power=1, coefficient=1)
     """
     _check(problem, charge)
-    if charge <= LAST_EXACT_CHARGE if exact is None else exact:
+    if by_series(charge) if exact is None else exact:
         return PoleFunctions(regular_functions(problem, charge), (Evidence("exact"),) * (charge + 1), 0)
-    recovery = _recovery(problem, charge)
+    recovery = _recovery(problem, charge, supplier)
     functions, evidence = recovery.functions_by_spare_bits()
     return PoleFunctions(tuple(functions), tuple(evidence), len(recovery.primes))
 
 
 def pole_coefficients(
-    problem: PoleProblem, charge: int, *, certify: bool = False, exact: bool | None = None
+    problem: PoleProblem,
+    charge: int,
+    *,
+    certify: bool = False,
+    exact: bool | None = None,
+    supplier: Supplier = here,
 ) -> PoleResult:
     """Z_0 ... Z_charge of a U(2) problem at its limit point.
 
-    ``exact`` chooses exact series (True) or primes (False); by default the charge decides. ``certify`` makes the prime
-    route take as many primes as the proved bound asks for.
+    ``exact`` and ``supplier`` as in ``pole_functions``. ``certify`` makes the prime route take as many primes as the
+    proved bound asks for.
 
     Raises ``InputError`` when a1 - a2 sits at a pole: there the limit can be infinite or depend on the path.
     Cost: measured by ``python -m benchmarks poles``.
@@ -104,12 +122,11 @@ def pole_coefficients(
     pole = problem.pole(charge)
     if pole is not None:
         raise InputError.single(pole_sentence(*pole), "coulomb")
-    by_bound = certify and not (charge <= LAST_EXACT_CHARGE if exact is None else exact)
-    if by_bound:
-        recovery = _recovery(problem, charge)
+    if certify and not (by_series(charge) if exact is None else exact):
+        recovery = _recovery(problem, charge, supplier)
         values, evidence = recovery.values_by_bound()
         return _result(problem, values, tuple(evidence), len(recovery.primes))
-    known = pole_functions(problem, charge, exact=exact)
+    known = pole_functions(problem, charge, exact=exact, supplier=supplier)
     return _result(problem, [f.at(problem.square) for f in known.functions], known.evidence, known.primes)
 
 
@@ -118,14 +135,14 @@ def _check(problem: PoleProblem, charge: int) -> None:
         raise InputError.single(f"a charge is zero or more, not {charge}", "charge")
 
 
-def _recovery(problem: PoleProblem, charge: int) -> Recovery:
+def _recovery(problem: PoleProblem, charge: int, supplier: Supplier) -> Recovery:
     if 2 * charge * (problem.steps[0] + abs(problem.steps[1])) >= WIDEST_FORM:
         raise InputError.single(
             f"eps2/eps1 = {problem.steps[1]}/{problem.steps[0]} has too long a numerator or denominator for residues "
             f"at charge {charge}; exact series still take it",
             "eps2",
         )
-    return Recovery(problem, charge)
+    return Recovery(problem, charge, supplier)
 
 
 def _result(
