@@ -17,6 +17,11 @@ from ratomega.averaging import average
 from ratomega.case.bundled import bundled_names
 from ratomega.case.case import Case
 from ratomega.case.reading import load_case
+from ratomega.desk.diagram_pictures import draw
+from ratomega.desk.figures import plot, plot_approach, save_plot
+from ratomega.desk.notebook import register as _register
+from ratomega.desk.plot_data import Approach
+from ratomega.desk.report import Report, report
 from ratomega.detector.atlas import Atlas, atlas
 from ratomega.documents import load_result, to_json
 from ratomega.errors import InputError, PathError, Problem, RatomegaError, WorkerError
@@ -28,6 +33,7 @@ from ratomega.validator.verdict import Check, Kind, Verdict
 from ratomega.version import VERSION as __version__
 
 __all__ = [
+    "Approach",
     "Atlas",
     "Average",
     "AverageResult",
@@ -43,6 +49,7 @@ __all__ = [
     "Quadratic",
     "RationalFunction",
     "RatomegaError",
+    "Report",
     "ValidateResult",
     "Verdict",
     "WorkerError",
@@ -52,9 +59,17 @@ __all__ = [
     "bundled_names",
     "clusters",
     "detect",
+    "draw",
     "limit",
     "load_case",
     "load_result",
+    "plot",
+    "plot_approach",
+    "report",
+    "save_plot",
     "to_json",
     "validate",
 ]
+
+# How values show in a notebook is the desk's matter; see there.
+_register()

@@ -22,6 +22,8 @@ from ratomega.case.case import Case
 from ratomega.case.reading import case_from_mapping, case_to_mapping, load_case
 from ratomega.cli.atlas import atlas, read_charge
 from ratomega.cli.average import average_command
+from ratomega.cli.plotting import plot_option, write_plot
+from ratomega.cli.report import report_command
 from ratomega.desk.text import charge_word, detect_text, limit_text, table, theory_text, validate_text
 from ratomega.diagrams.tuples import Charge
 from ratomega.documents import Result, error_document, to_json
@@ -109,14 +111,17 @@ def _workers(function: Callable[..., Any]) -> Callable[..., Any]:
     metavar="N",
     help="Show which boxes are exchanged inside clusters of at most N members.",
 )
-def detect(exchanges: int, as_json: bool, **case_options: Any) -> int:
+@plot_option
+def detect(exchanges: int, plot: str | None, as_json: bool, **case_options: Any) -> int:
     """List the singular configurations, the guilty factors and the clusters.
 
     Example: ratomega detect u2-pure --charge 3
     """
     job = _job(_loaded(**case_options), **case_options)
     found, interrupted = _collect(job, job.scans(exchanges=exchanges), lambda report: report.charge)
-    return _finish(detect_result(job, found, partial=interrupted), detect_text, as_json, interrupted)
+    result = detect_result(job, found, partial=interrupted)
+    write_plot(result, plot)
+    return _finish(result, detect_text, as_json, interrupted)
 
 
 @cli.command()
@@ -374,6 +379,7 @@ def _fail(error: RatomegaError, as_json: bool) -> int:
     return error.exit_status
 
 
+cli.add_command(report_command(loaded=_loaded))
 cli.add_command(average_command(common=_common, probes=_probes, job=_job, collect=_collect, finish=_finish))
 
 
