@@ -66,7 +66,7 @@ def draw(what: Configuration | SingularReport) -> Picture:
     if isinstance(what, SingularReport):
         return singular_picture(what)
     if not _is_configuration(what):
-        message = "a configuration holds, for every node, a tuple of diagrams, and a diagram is a decreasing tuple of rows"
+        message = "a configuration holds, for every node, a tuple of diagrams; a diagram is a decreasing tuple of rows"
         raise InputError.single(message, "draw")
     return diagrams_picture(what)
 

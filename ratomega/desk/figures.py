@@ -83,6 +83,7 @@ def _axes(x_name: str, y_name: str) -> tuple[Figure, Axes]:
     axes.set_ylabel(y_name)
     axes.spines[["top", "right"]].set_visible(False)
     axes.grid(axis="y", alpha=0.25)
+    axes.set_axisbelow(True)
     return figure, axes
 
 

@@ -57,7 +57,7 @@ class Picture:
         return self.svg(standalone=True).text
 
     def save(self, file: str | os.PathLike[str]) -> None:
-        """Write the picture as a file of its own, which is replaced. Raises ``InputError`` when it cannot be written."""
+        """Write the picture as a file, which is replaced. Raises ``InputError`` when it cannot be written."""
         try:
             Path(file).write_text(self.svg(standalone=True).text + "\n", encoding="utf-8", newline="\n")
         except OSError as error:
