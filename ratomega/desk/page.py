@@ -116,7 +116,7 @@ def _notes(notes: Sequence[str]) -> Markup | None:
     if not notes:
         return None
     listed = element("ul", *(element("li", note) for note in notes))
-    return element("div", element("strong", "Left out, to keep this page quick"), listed, class_="note")
+    return element("div", element("strong", "Left out of this page"), listed, class_="note")
 
 
 def _coefficients(findings: Findings) -> Markup:
@@ -143,11 +143,11 @@ def _orders(findings: Findings) -> Markup:
         "Bars: how strongly the worst single weight diverges, t^-order, with the number of singular weights above. "
         "Dashes: the worst order at generic Coulomb parameters and masses. The sum of all weights has the limits above."
     )
-    return joined(
-        element("p", said, class_="faint small"),
-        element("figure", orders_chart(orders, generic).svg(), class_="chart"),
-        counts_table(findings.detect.charges),
-    )
+    counts = counts_table(findings.detect.charges)
+    if not any((*orders.worst, *generic)):
+        return joined(element("p", "No single weight diverges at any of these charges."), counts)
+    figure = element("figure", orders_chart(orders, generic).svg(), class_="chart")
+    return joined(element("p", said, class_="faint small"), figure, counts)
 
 
 def generic_orders(atlas: Atlas, length: int) -> tuple[int, ...]:
