@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-HOSTILE = "<script>alert(1)</script>\"'><img src=x onerror=alert(2)> & </style></textarea>"
+HOSTILE = "<script>alert(1)</script>\"'><img src=x onerror=alert(2)> & </style></textarea> " + 80 * "w"
 
 
 def hostile_case(charge=2):
