@@ -20,7 +20,7 @@ from ratomega.case.reading import load_case
 from ratomega.desk.diagram_pictures import draw
 from ratomega.desk.figures import plot, plot_approach, save_plot
 from ratomega.desk.notebook import register as _register
-from ratomega.desk.plot_data import Approach
+from ratomega.desk.plot_data import ApproachCurve
 from ratomega.desk.report import Report, report
 from ratomega.detector.atlas import Atlas, atlas
 from ratomega.documents import load_result, to_json
@@ -33,7 +33,7 @@ from ratomega.validator.verdict import Check, Kind, Verdict
 from ratomega.version import VERSION as __version__
 
 __all__ = [
-    "Approach",
+    "ApproachCurve",
     "Atlas",
     "Average",
     "AverageResult",

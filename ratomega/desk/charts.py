@@ -12,7 +12,7 @@ from fractions import Fraction
 
 from ratomega.desk.markup import Child, Markup, element, joined, number
 from ratomega.desk.picture import GUILTY, KEEN, Picture, label
-from ratomega.desk.plot_data import Approach, Orders, Stems
+from ratomega.desk.plot_data import ApproachCurve, Orders, Stems
 
 __all__ = ["approach_chart", "atlas_chart", "orders_chart"]
 
@@ -145,7 +145,7 @@ def _ratio_ticks(reach: float) -> list[tuple[float, str]]:
     return [(n, str(2**n) if n >= 0 else f"1/{2**-n}") for n in powers if n % step == 0]
 
 
-def approach_chart(curves: Sequence[Approach]) -> Picture:
+def approach_chart(curves: Sequence[ApproachCurve]) -> Picture:
     """Distance from the exact limit against the offset of the ratio, both logarithmic; bars are rigorous radii."""
     xs = [x for curve in curves for x in curve.offsets]
     ys = [y for curve in curves for y in (*curve.distances, *curve.radii) if y is not None] or [0.0]
@@ -159,7 +159,7 @@ def approach_chart(curves: Sequence[Approach]) -> Picture:
     return Picture(joined(*parts), WIDTH, HEIGHT, f"Distance from the exact limit over the offset: {names}")
 
 
-def _curve(curve: Approach, frame: _Frame, low: int, place: int) -> list[Child]:
+def _curve(curve: ApproachCurve, frame: _Frame, low: int, place: int) -> list[Child]:
     parts: list[Child] = []
     colour, class_ = ((KEEN, "keen"), (GUILTY, "guilty"), ("currentColor", "stem"))[place % 3]
     rows = sorted(zip(curve.offsets, curve.distances, curve.radii, strict=True))

@@ -16,7 +16,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING
 
 from ratomega.desk.picture import GUILTY, INK, KEEN
-from ratomega.desk.plot_data import Approach, orders_of, stems_of
+from ratomega.desk.plot_data import ApproachCurve, orders_of, stems_of
 from ratomega.detector.atlas import Atlas
 from ratomega.errors import InputError
 from ratomega.results import DetectResult
@@ -130,7 +130,7 @@ def _atlas(atlas: Atlas) -> Figure:
     return figure
 
 
-def plot_approach(curves: Sequence[Approach]) -> Figure:
+def plot_approach(curves: Sequence[ApproachCurve]) -> Figure:
     """Distances from the exact limit over the offset of the ratio, both logarithmic, with the rigorous radii.
 
     Axes are decimal logarithms, because distances can be far below the range of floats. A distance of 0 is an open dot

@@ -16,7 +16,7 @@ from ratomega.desk.charts import approach_chart, atlas_chart, orders_chart
 from ratomega.desk.detector_parts import clusters_part, configurations_part, counts_table
 from ratomega.desk.findings import Findings
 from ratomega.desk.markup import Child, Markup, element, joined, verbatim
-from ratomega.desk.plot_data import Approach, orders_of, stems_of
+from ratomega.desk.plot_data import ApproachCurve, orders_of, stems_of
 from ratomega.desk.style import PAGE, PARTS
 from ratomega.desk.text import theory_text
 from ratomega.desk.value_parts import (
@@ -39,7 +39,7 @@ __all__ = ["page"]
 MOST_RATIOS = 40
 
 
-def page(findings: Findings, *, command: str, approach: Sequence[Approach] = ()) -> str:
+def page(findings: Findings, *, command: str, approach: Sequence[ApproachCurve] = ()) -> str:
     """The whole page as HTML text. ``command`` is what repeats it."""
     title = findings.case.title or theory_text(findings.case)
     sections = _sections(findings, command, approach)
@@ -82,7 +82,7 @@ def _section(key: str, name: str, content: Markup) -> Markup:
     return element("section", element("h2", name, id=key), content, aria_labelledby=key)
 
 
-def _sections(findings: Findings, command: str, approach: Sequence[Approach]) -> list[tuple[str, str, Markup]]:
+def _sections(findings: Findings, command: str, approach: Sequence[ApproachCurve]) -> list[tuple[str, str, Markup]]:
     """(id, heading, content) of every section that this case has."""
     detect = findings.detect
     case = joined(_notes(findings.notes), case_facts(findings.limit.header), case_file(findings.case))

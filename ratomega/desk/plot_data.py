@@ -10,14 +10,15 @@ from fractions import Fraction
 
 from ratomega.detector.atlas import Atlas, SingularRatio
 from ratomega.errors import InputError
+from ratomega.exact.rational import Rational
 from ratomega.results import DetectResult
 
-__all__ = ["Approach", "Orders", "Stems", "orders_of", "stems_of"]
+__all__ = ["ApproachCurve", "Orders", "Stems", "orders_of", "stems_of"]
 
 # More stems than these run into each other.
 MOST_STEMS = 150
 
-Measured = int | float | str | Decimal | Fraction
+Measured = int | float | str | Decimal | Fraction | Rational
 
 
 @dataclass(frozen=True, slots=True)
@@ -67,11 +68,11 @@ def stems_of(atlas: Atlas) -> Stems:
 
 
 @dataclass(frozen=True, slots=True)
-class Approach:
+class ApproachCurve:
     """One coefficient approached through irrational ratios: decimal logarithms, None where a number is 0.
 
     ``offsets`` are the distances from the rational ratio, ``distances`` those from the exact limit, ``radii`` the
-    radii within which the values are known. Build it with ``Approach.make``.
+    radii within which the values are known. Build it with ``ApproachCurve.make``.
     """
 
     name: str
@@ -82,10 +83,10 @@ class Approach:
     @classmethod
     def make(
         cls, name: str, offsets: Sequence[Measured], distances: Sequence[Measured], radii: Sequence[Measured]
-    ) -> Approach:
+    ) -> ApproachCurve:
         """From numbers of any size, as numbers or decimal texts ("3.2e-410"). Raises ``InputError``.
 
-        >>> Approach.make("charge 2", ["1e-2", "1e-4"], ["2e-3", 0], [0, "1e-500"]).radii
+        >>> ApproachCurve.make("charge 2", ["1e-2", "1e-4"], ["2e-3", 0], [0, "1e-500"]).radii
         (None, -500.0)
         """
         if not len(offsets) == len(distances) == len(radii) >= 1:
@@ -105,6 +106,8 @@ class Approach:
 
 def _logarithm(value: Measured, where: str) -> float | None:
     """log10 |value|; through decimals, because what is measured may be far below the range of floats."""
+    if isinstance(value, Rational):
+        value = Fraction(int(value.p), int(value.q))
     try:
         decimal = Decimal(value.numerator) / Decimal(value.denominator) if isinstance(value, Fraction) else Decimal(
             str(value)

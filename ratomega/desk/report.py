@@ -12,7 +12,7 @@ from ratomega.case.case import Case
 from ratomega.desk.findings import Findings, gather
 from ratomega.desk.markup import element
 from ratomega.desk.page import page
-from ratomega.desk.plot_data import Approach
+from ratomega.desk.plot_data import ApproachCurve
 from ratomega.errors import InputError
 from ratomega.job import CaseSource
 
@@ -47,7 +47,7 @@ def report(
     *,
     depth: str = "quick",
     allow_tilt: bool = True,
-    approach: Sequence[Approach] = (),
+    approach: Sequence[ApproachCurve] = (),
     command: str | None = None,
 ) -> Report:
     """Everything about a case on one self-contained page of HTML.

@@ -49,7 +49,7 @@ def test_files_are_the_same_each_time(ending, found, tmp_path):
 
 def test_an_approach_is_drawn_curve_by_curve(tmp_path):
     rows = ["1e-2", "1e-4"], ["1e-3", 0], ["1e-900", "1e-9"]
-    curves = [ratomega.Approach.make(f"charge {k}", *rows) for k in (2, 4)]
+    curves = [ratomega.ApproachCurve.make(f"charge {k}", *rows) for k in (2, 4)]
     figure = ratomega.plot_approach(curves)
     assert [text.get_text() for text in figure.axes[0].get_legend().get_texts()] == ["charge 2", "charge 4"]
     ratomega.save_plot(figure, tmp_path / "a.png")

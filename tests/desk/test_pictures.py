@@ -14,7 +14,8 @@ from ratomega.case.setting import own_setting
 from ratomega.desk.charts import approach_chart, atlas_chart, orders_chart
 from ratomega.desk.cluster_pictures import MOST_MEMBERS, cluster_picture
 from ratomega.desk.diagram_pictures import MOST_BOXES, diagrams_picture, marks_of, singular_picture
-from ratomega.desk.plot_data import Approach, orders_of, stems_of
+from ratomega.desk.plot_data import ApproachCurve, orders_of, stems_of
+from ratomega.exact.rational import Rational
 
 CELL = 18
 
@@ -106,7 +107,7 @@ def test_many_stems_are_cut_whole_charges_at_a_time():
 
 
 def test_an_approach_takes_numbers_of_any_size():
-    curve = Approach.make("charge 2", ["1e-2", 1e-4], ["3e-500", 0], [0, "1e-600"])
+    curve = ApproachCurve.make("charge 2", [Rational(1, 100), 1e-4], ["3e-500", 0], [0, "1e-600"])
     assert curve.offsets == (-2.0, -4.0)
     assert curve.distances[0] == pytest.approx(-499.5229, abs=1e-4)
     assert curve.distances[1] is None
@@ -114,7 +115,7 @@ def test_an_approach_takes_numbers_of_any_size():
     well_formed(approach_chart([curve]).svg(standalone=True).text)
     for bad in (([], [], []), (["1e-2"], ["x"], [0]), ([0], [1], [1]), (["1e-2"], ["nan"], [0]), ([1, 2], [1], [1])):
         with pytest.raises(ratomega.InputError):
-            Approach.make("x", *bad)
+            ApproachCurve.make("x", *bad)
 
 
 def test_draw_takes_configurations_and_says_what_is_none():

@@ -139,7 +139,7 @@ def test_a_case_of_many_colours_is_cut_by_the_work():
 
 def test_an_approach_adds_a_section():
     case = {"charge": 1, "background": {"eps1": 1, "eps2": 1}, "node": [{"coulomb": ["0"]}]}
-    curve = ratomega.Approach.make("charge <1>", ["1e-2", "1e-4"], ["1e-3", "1e-5"], [0, 0])
+    curve = ratomega.ApproachCurve.make("charge <1>", ["1e-2", "1e-4"], ["1e-3", "1e-5"], [0, 0])
     page = check_page(ratomega.report(case, approach=[curve]).html)
     assert "approach" in [attributes.get("id") for _, attributes in page.elements]
     assert "charge <1>" in page.text
