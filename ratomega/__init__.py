@@ -14,33 +14,39 @@ The public API in one screen; nothing is defined here.
 
 from ratomega.average_results import Average, AverageResult
 from ratomega.averaging import average
+from ratomega.block_results import BlockCoefficient, BlockResult
+from ratomega.blocks import block
 from ratomega.case.bundled import bundled_names
 from ratomega.case.case import Case
 from ratomega.case.reading import load_case
 from ratomega.desk.diagram_pictures import draw
-from ratomega.desk.figures import plot, plot_approach, save_plot
+from ratomega.desk.figures import plot, save_plot
 from ratomega.desk.notebook import register as _register
-from ratomega.desk.plot_data import ApproachCurve
 from ratomega.desk.report import Report, report
 from ratomega.detector.atlas import Atlas, atlas
 from ratomega.documents import load_result, to_json
 from ratomega.errors import InputError, PathError, Problem, RatomegaError, WorkerError
 from ratomega.exact.quadratic import Quadratic
 from ratomega.exact.rational_function import RationalFunction
+from ratomega.explaining import Explanation, explain
 from ratomega.pipeline import clusters, detect, limit, validate
 from ratomega.results import Coefficient, DetectResult, LimitResult, ValidateResult
 from ratomega.validator.verdict import Check, Kind, Verdict
+from ratomega.verify.approach import Approach, approach
 from ratomega.version import VERSION as __version__
 
 __all__ = [
-    "ApproachCurve",
+    "Approach",
     "Atlas",
     "Average",
     "AverageResult",
+    "BlockCoefficient",
+    "BlockResult",
     "Case",
     "Check",
     "Coefficient",
     "DetectResult",
+    "Explanation",
     "InputError",
     "Kind",
     "LimitResult",
@@ -54,17 +60,19 @@ __all__ = [
     "Verdict",
     "WorkerError",
     "__version__",
+    "approach",
     "atlas",
     "average",
+    "block",
     "bundled_names",
     "clusters",
     "detect",
     "draw",
+    "explain",
     "limit",
     "load_case",
     "load_result",
     "plot",
-    "plot_approach",
     "report",
     "save_plot",
     "to_json",

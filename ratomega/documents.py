@@ -13,9 +13,12 @@ from collections.abc import Callable, Mapping, Sequence
 from pathlib import Path
 from typing import Any
 
+from ratomega.approach_documents import approach_body, read_approach
 from ratomega.atlas_documents import atlas_document, read_atlas
 from ratomega.average_documents import average_body, read_average
 from ratomega.average_results import AverageResult
+from ratomega.block_documents import block_document, read_block
+from ratomega.block_results import BlockResult
 from ratomega.case.case import Case
 from ratomega.case.reading import case_from_mapping, case_to_mapping
 from ratomega.detector.atlas import Atlas
@@ -24,6 +27,7 @@ from ratomega.errors import InputError
 from ratomega.exact.function_text import function_text, parse_function
 from ratomega.exact.quadratic import Number, from_number_text, number_text
 from ratomega.exact.rational_function import RationalFunction
+from ratomega.explaining import Explanation, Paragraph
 from ratomega.regulator.outcome import PathValue
 from ratomega.results import (
     ChargeReport,
@@ -41,10 +45,11 @@ from ratomega.results import (
 )
 from ratomega.validator.checklist import depth_of
 from ratomega.validator.verdict import Check, Kind, Verdict
+from ratomega.verify.approach import Approach
 
 __all__ = ["Result", "error_document", "load_result", "to_document", "to_json"]
 
-Result = LimitResult | DetectResult | ValidateResult | AverageResult | Atlas
+Result = LimitResult | DetectResult | ValidateResult | AverageResult | Atlas | BlockResult | Approach | Explanation
 Document = dict[str, Any]
 
 LARGEST_DOCUMENT = 512 * 1024 * 1024
@@ -65,6 +70,8 @@ def to_document(result: Result) -> Document:
     """The result as plain dictionaries, lists, strings, integers and truth values."""
     if isinstance(result, Atlas):
         return atlas_document(result)
+    if isinstance(result, BlockResult):
+        return block_document(result, [_check(c) for c in result.checks])
     if isinstance(result, LimitResult):
         body: Document = {
             "route": _route(result.route),
@@ -77,6 +84,11 @@ def to_document(result: Result) -> Document:
         return {"result": "detect", **_header(result.header), "partial": result.partial, **body}
     if isinstance(result, AverageResult):
         return {"result": "average", **_header(result.header), "partial": result.partial, **average_body(result)}
+    if isinstance(result, Explanation):
+        paragraphs = [{"title": p.title, "text": p.text} for p in result.paragraphs]
+        return {"result": "explain", **_header(result.header), "partial": result.partial, "paragraphs": paragraphs}
+    if isinstance(result, Approach):
+        return {"result": "approach", **_header(result.header), "partial": result.partial, **approach_body(result)}
     body = {"depth": result.depth, "checks": [_check(c) for c in result.checks], "summary": result.summary}
     return {"result": "validate", **_header(result.header), "partial": result.partial, **body}
 
@@ -115,6 +127,8 @@ def _text_of(source: str | os.PathLike[str]) -> tuple[str, str]:
 def _from_document(document: Document) -> Result:
     if document["result"] == "atlas":
         return read_atlas(document)
+    if document["result"] == "block":
+        return read_block(document, _each(_read_check, document["checks"]))
     header = _read_header(document)
     partial = _flag(document["partial"])
     kind = document["result"]
@@ -132,7 +146,12 @@ def _from_document(document: Document) -> Result:
         return result
     if kind == "average":
         return read_average(document, header, partial)
-    raise ValueError(f'"result" is {kind!r}, not limit, detect, validate, average or atlas')
+    if kind == "explain":
+        paragraphs = tuple(Paragraph(_word(p["title"]), _word(p["text"])) for p in document["paragraphs"])
+        return Explanation(header, paragraphs, partial)
+    if kind == "approach":
+        return read_approach(document, header, partial)
+    raise ValueError(f'"result" is {kind!r}, not limit, detect, validate, average, block, approach, explain or atlas')
 
 
 # ---- small pieces, each with its way back ----

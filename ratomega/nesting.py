@@ -5,17 +5,20 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Iterator, Sequence
+from dataclasses import replace
 from itertools import islice
 
 from ratomega.case.affine import Affine
 from ratomega.case.case import Case
 from ratomega.case.expression import INNER
 from ratomega.case.setting import own_setting
+from ratomega.conformal.dictionary import gauge_path, why_not_covered
+from ratomega.conformal.gauge_sum import gauge_coefficients
 from ratomega.detector.accidents import check_path, dead_colours
 from ratomega.errors import InputError, PathError
 from ratomega.exact.path import SMALL_PARAMETERS
-from ratomega.exact.quadratic import number_text
+from ratomega.exact.quadratic import Number, number_text, only_rational
 from ratomega.exact.rational import ZERO, Rational
 from ratomega.job import check_count
 from ratomega.regulator.limits import charge_limit
@@ -24,8 +27,9 @@ from ratomega.regulator.outcome import Independence
 from ratomega.regulator.poles.problem import applies, case_problem
 from ratomega.regulator.poles.recursion import pole_coefficients
 from ratomega.results import Coefficient, Header, LimitResult, PathRecord, RouteRecord
-from ratomega.validator.finiteness import CANCELLATION, charge_text
+from ratomega.validator.finiteness import CANCELLATION, charge_text, reach_text
 from ratomega.validator.verdict import Check, Kind, Verdict
+from ratomega.validator.virasoro import GRAM_NAME, GRAM_SOURCE, MOST_LEVEL, deepest_level
 from ratomega.version import VERSION
 from ratomega.weights import Weights
 
@@ -35,7 +39,7 @@ __all__ = ["nested_checks", "nested_result", "refuse_other_ways"]
 DIRECTIONS = tuple(Rational(*kappa) for kappa in ((1, 7), (-3, 5), (5, 11), (-2, 13), (7, 3), (4, 17), (-9, 19)))
 MOST_DIRECTIONS = 3
 
-_WHY = "u -> 0 at fixed t, then t -> 0; the inner limits cluster by cluster at t = P, a prime"
+_WHY = "u -> 0 at fixed t, then t -> 0; the inner limits are taken at t = P, a prime"
 _NESTED = "limit inside the limit"
 _ORDER = "order of the two limits"
 _SOURCE = "P-adic evaluation: a fraction is found from its residue when the prime is longer than both of its parts"
@@ -93,12 +97,10 @@ def _check(found: NestedLimits) -> Check:
 
 
 def nested_checks(case: Case, result: LimitResult) -> Iterator[Check]:
-    """What ``validate`` says of a case with u: its own check, the order of the limits, the pole recursion."""
+    """What ``validate`` says of a case with u: its own check, the order of the limits, independent routes."""
     yield from result.checks
     yield _order_check(case, result)
-    recursion = _recursion_check(case, result)
-    if recursion is not None:
-        yield recursion
+    yield from _route_checks(case, result)
 
 
 def along(case: Case, direction: Rational) -> Case:
@@ -151,12 +153,12 @@ def _text(order: int, value: object) -> str:
     return f"{number_text(value)}{f' at a pole of order {order}' if order else ''}"  # type: ignore[arg-type]
 
 
-def _recursion_check(case: Case, result: LimitResult) -> Check | None:
-    """The pole recursion at the number t = P, u = P^m, m beyond every pole: modulo P it gives the nested limit."""
+def _route_checks(case: Case, result: LimitResult) -> Iterator[Check]:
+    """Independent routes at the numbers t = P, u = P^m, m beyond every pole: modulo P they give the nested limit."""
     if not isinstance(case.charge, int) or case.charge < 1 or any(c.order for c in result.coefficients):
-        return None
+        return
     if any(c.value is None or not isinstance(c.value, Rational) for c in result.coefficients):
-        return None
+        return
     prime = 2**127 - 1
     # Every order of a pole in t that an expansion in u/t can bring stays below this (two for a box and a colour).
     power = 4 * case.charge + 2
@@ -166,20 +168,36 @@ def _recursion_check(case: Case, result: LimitResult) -> Check | None:
     eps1, eps2 = (Affine(e.constant + e.slope * u) for e in (background.eps1, background.eps2))
     theory = at_t.theory.each(lambda x: Affine(x.constant + x.t * u, x.eps1, x.eps2))
     near = Case.make(theory, type(background).make(eps1, eps2), case.charge)
-    if not applies(near).applies:
-        return None
-    name = "pole recursion in the Coulomb parameter"
-    statement = "the recursion over the poles in a, run at the numbers t = P and u = P^m, P = 2^127 - 1; modulo P"
-    source = "Al. Zamolodchikov 1984; R. Poghossian, arXiv 0909.3412"
-    for coefficient, value in zip(
-        result.coefficients, pole_coefficients(case_problem(near), case.charge).coefficients, strict=True
-    ):
+    at = "at the numbers t = P and u = P^m, P = 2^127 - 1, is the limit modulo P"
+    if applies(near).applies:
+        recursion = pole_coefficients(case_problem(near), case.charge).coefficients
+        name = "pole recursion in the Coulomb parameter"
+        source = "Al. Zamolodchikov 1984; R. Poghossian, arXiv 0909.3412"
+        check = Check(name, Verdict.AGREES, Kind.INDEPENDENT, f"Z by the recursion over its poles in a, {at}", source)
+        yield _compared(check, result, recursion, prime)
+    setting = own_setting(near)
+    if not why_not_covered(setting):
+        gauge = gauge_path(setting)
+        blocks = gauge_coefficients(gauge, min(case.charge, deepest_level(gauge, MOST_LEVEL)))
+        check = Check(GRAM_NAME, Verdict.AGREES, Kind.INDEPENDENT, f"Z by Gram matrices, {at}", GRAM_SOURCE)
+        yield _compared(check, result, [z.coefficient(0) for z in blocks], prime)
+
+
+def _compared(check: Check, result: LimitResult, values: Sequence[Number], prime: int) -> Check:
+    """The check with its verdict: values at the numbers against the limits, as far as there are values."""
+    compared = result.coefficients[: len(values)]
+    for coefficient, value in zip(compared, values, strict=True):
         assert isinstance(coefficient.value, Rational)
-        rest = value - coefficient.value
+        rest = only_rational(value) - coefficient.value
         if int(rest.p) % prime or int(rest.q) % prime == 0:
-            evidence = f"{statement}; first difference at {charge_text(coefficient.charge)}"
-            return Check(name, Verdict.REFUTED, Kind.INDEPENDENT, evidence, source)
-    return Check(name, Verdict.AGREES, Kind.INDEPENDENT, f"{statement}; equal at all charges", source, True)
+            below = int(only_rational(value).q)
+            this = int(only_rational(value).p) * pow(below, -1, prime) % prime if below % prime else "a pole"
+            there = int(coefficient.value.p) * pow(int(coefficient.value.q), -1, prime) % prime
+            where = charge_text(coefficient.charge)
+            said = f"first difference at {where}: this way {this}, the limit {coefficient.value} is {there} modulo P"
+            return replace(check, verdict=Verdict.REFUTED, evidence=f"{check.evidence}; {said}")
+    evidence = f"{check.evidence}; equal {reach_text([c.charge for c in compared])}"
+    return replace(check, evidence=evidence, complete=len(compared) == len(result.coefficients))
 
 
 def refuse_other_ways(**given: object) -> None:

@@ -285,9 +285,11 @@ class ValidateResult:
             word = "independent route agrees" if len(routes) == 1 else "independent routes agree"
             parts.append(f"{len(routes)} {word} with the limits of this case at all its charges")
         else:
+            parts.append("no independent route covers all charges of this case")
             relatives = sum(1 for c in self.checks if c.kind is Kind.SIBLING and c.verdict is Verdict.AGREES)
-            beside = f", {relatives} on relatives of it agree, which does not prove this case" if relatives else ""
-            parts.append(f"no independent route covers all charges of this case{beside}")
+            if relatives:
+                word = "check on a relative of it agrees" if relatives == 1 else "checks on relatives of it agree"
+                parts.append(f"{relatives} {word}, which does not prove this case")
         if undecided:
             parts.append(f"undecided: {', '.join(undecided)}")
         return f"{len(self.checks)} checks at depth {self.depth}: {'; '.join(parts)}."

@@ -184,7 +184,7 @@ GOOD = CASE.format(
         ('["1/3", "-1/3"]', '["' + "1+" * 50_000 + '1"]', "characters"),
         ('["1/3", "-1/3"]', '["' + "(" * 500 + "1" + ")" * 500 + '"]', "nest"),
         ('eps1 = "1"', 'eps1 = "0"', "zero"),
-        ('eps1 = "1"', 'eps1 = "eps2"', "only t"),
+        ('eps1 = "1"', 'eps1 = "eps2"', "only numbers and t, u"),
         ("charge = 1", "charge = -1", "zero or more"),
         ("charge = 1", "charge = 400", "configurations"),
         ("charge = 1", "charge = 10000000000", "beyond"),

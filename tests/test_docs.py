@@ -42,7 +42,9 @@ def test_the_readme_has_examples():
 
 @pytest.mark.parametrize(("command", "output"), CONSOLE, ids=[command for command, _ in CONSOLE])
 def test_console_examples_print_what_the_readme_shows(command, output, folder):
-    assert run(command, folder).stdout == output
+    done = run(command, folder)
+    assert (done.stdout, done.stderr) == (output, "")
+    assert output
 
 
 def test_python_examples():

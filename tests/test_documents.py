@@ -31,7 +31,7 @@ def small(name):
     return case.with_charge(min(case.charge, 3)) if isinstance(case.charge, int) else case
 
 
-@pytest.mark.parametrize("name", ratomega.bundled_names())
+@pytest.mark.parametrize("name", [n for n in ratomega.bundled_names() if not ratomega.load_case(n).nested])
 @pytest.mark.parametrize("command", COMMANDS)
 def test_every_result_reads_back_equal(name, command):
     result = COMMANDS[command](small(name))
@@ -71,7 +71,7 @@ def test_keys_of_a_limit():
     [
         (lambda d: d.pop("hash"), "hash"),
         (lambda d: d.update(hash="0" * 16), "does not belong to the case"),
-        (lambda d: d.update(result="other"), "not limit, detect, validate, average or atlas"),
+        (lambda d: d.update(result="other"), "not limit, detect, validate, average, block, approach, explain or atlas"),
         (lambda d: d["coefficients"][1].update(value="1.5"), "not an exact number"),
         (lambda d: d["coefficients"][1].update(value="2/4"), "lowest terms"),
         (lambda d: d["coefficients"][1].update(charge="1"), "expected a list"),

@@ -3,7 +3,7 @@
 A case is a table with the keys ``title``, ``charge``, ``symbols`` (a list of names), ``background`` (``eps1``,
 ``eps2``), ``node`` (a list of tables with ``name``, ``coulomb``, ``antifundamental``, ``fundamental``, ``adjoint``) and
 ``edge`` (a list of tables with ``from``, ``to``, ``mass``). All mistakes of a case are collected and raised together;
-places count from 1.
+places count from 1. Tables in conformal terms (``conformal_reading``) become the gauge case that they stand for.
 """
 
 from __future__ import annotations
@@ -16,6 +16,8 @@ from ratomega.case.affine import Affine
 from ratomega.case.background import Background
 from ratomega.case.bundled import bundled_names, bundled_text
 from ratomega.case.case import Case, checked_charge, checked_symbols, checked_title
+from ratomega.case.conformal import ConformalCase, gauge_case
+from ratomega.case.conformal_reading import conformal_from_mapping
 from ratomega.case.expression import INNER, SYMBOLS, as_affine
 from ratomega.case.tables import file_label, text_of_file, toml_tables
 from ratomega.case.theory import HIGHEST_RANK, MOST_EDGES, MOST_MASSES, MOST_NODES, Edge, Node, Theory
@@ -24,7 +26,14 @@ from ratomega.errors import InputError, Problem
 from ratomega.exact.path import SMALL_PARAMETERS
 from ratomega.exact.rational import ONE
 
-__all__ = ["CaseSource", "case_from_mapping", "case_from_text", "case_to_mapping", "load_case"]
+__all__ = [
+    "CaseSource",
+    "case_from_mapping",
+    "case_from_text",
+    "case_to_mapping",
+    "load_case",
+    "load_case_as_written",
+]
 
 CaseSource = str | os.PathLike[str] | Mapping[str, object] | Case
 T = TypeVar("T")
@@ -61,17 +70,33 @@ def load_case(source: CaseSource) -> Case:
     """
     if isinstance(source, Case):
         return source
+    tables, where = _tables(source)
+    return case_from_mapping(tables, where=where)
+
+
+def load_case_as_written(source: CaseSource | ConformalCase) -> Case | ConformalCase:
+    """The same, but a case in conformal terms stays one."""
+    if isinstance(source, (Case, ConformalCase)):
+        return source
+    tables, where = _tables(source)
+    if "conformal" in tables:
+        return conformal_from_mapping(tables, where=where)
+    return case_from_mapping(tables, where=where)
+
+
+def _tables(source: str | os.PathLike[str] | Mapping[str, object]) -> tuple[Mapping[str, object], str]:
+    """The tables of a case, and the name that messages give it."""
     if isinstance(source, Mapping):
-        return case_from_mapping(source)
+        return source, "case"
     if not isinstance(source, (str, os.PathLike)):
         message = f"a case is the name of a file, the name of a bundled case, or a mapping, not {kind(source)}"
         raise InputError.single(message, "case")
     path = os.fsdecode(source)
     # A pipe or a directory is taken for a file too, unless a bundled case has that name, to say what it is.
     if os.path.isfile(path) or path.endswith(".toml") or (os.path.exists(path) and path not in bundled_names()):
-        text = text_of_file(path)
-        return case_from_text(text, file_label(path))
-    return case_from_text(bundled_text(path), path)
+        label = file_label(path)
+        return toml_tables(text_of_file(path), label), label
+    return toml_tables(bundled_text(path), path), path
 
 
 def case_from_text(text: str, where: str = "case") -> Case:
@@ -92,6 +117,12 @@ def case_from_mapping(data: Mapping[str, object], *, where: str = "case") -> Cas
     case: node[1].coulomb: a node needs at least one Coulomb parameter; their number is the rank
     """
     reader = _Reader(where)
+    if "conformal" in data:
+        conformal = conformal_from_mapping(data, where=where)
+        translated = reader.attempt(lambda: gauge_case(conformal), "conformal")
+        reader.finish()
+        assert translated is not None
+        return translated
     known = ("title", "charge", "symbols", "background", "node", "edge")
     reader.keys(data, "", known, needed=("charge", "background", "node"))
     title = reader.title(data)

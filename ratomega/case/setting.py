@@ -160,8 +160,10 @@ def _tilts(ranks: dict[str, int], stream: Iterator[int], number: int) -> dict[st
 def own_setting(case: Case, *, allow_tilt: bool = True) -> Setting:
     """The case's own path, tilted once for the whole case where denominators can vanish identically.
 
-    Raises ``PathError`` when a tilt is needed and ``allow_tilt`` is false.
+    Raises ``PathError`` when a tilt is needed and ``allow_tilt`` is false, ``ValueError`` for a case with u.
     """
+    if case.nested:
+        raise ValueError("a case with u has no path of its own; its inner case has one")
     eps1, eps2 = case.background.eps1, case.background.eps2
     setting = _settle(case, eps1, eps2, {})
     frozen = list(frozen_pairs(setting))

@@ -7,6 +7,7 @@ import click
 from ratomega.desk.figures import check_plot_file, plot, save_plot
 from ratomega.detector.atlas import Atlas
 from ratomega.results import DetectResult
+from ratomega.verify.approach import Approach
 
 __all__ = ["plot_option", "write_plot"]
 
@@ -23,7 +24,7 @@ plot_option = click.option(
 )
 
 
-def write_plot(result: DetectResult | Atlas, file: str | None) -> None:
+def write_plot(result: DetectResult | Atlas | Approach, file: str | None) -> None:
     """Draw the result to the file; nothing where none was asked for."""
     if file is not None:
         save_plot(plot(result), file)

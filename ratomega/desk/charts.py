@@ -18,7 +18,7 @@ __all__ = ["approach_chart", "atlas_chart", "orders_chart"]
 
 # Narrow, with large letters: on a phone the whole is shown at two thirds of its size.
 WIDTH, HEIGHT = 480.0, 300.0
-LEFT, RIGHT, TOP, BOTTOM = 50.0, 12.0, 16.0, 46.0
+LEFT, RIGHT, TOP, BOTTOM = 66.0, 12.0, 16.0, 46.0
 MOST_TICKS = 9
 LETTERS = 13.0
 
@@ -150,7 +150,9 @@ def approach_chart(curves: Sequence[ApproachCurve]) -> Picture:
     xs = [x for curve in curves for x in curve.offsets]
     ys = [y for curve in curves for y in (*curve.distances, *curve.radii) if y is not None] or [0.0]
     low, high = math.floor(min(ys)), math.ceil(max(ys))
-    frame = _Frame(min(xs) - 0.5, max(xs) + 0.5, low - 0.5, max(high, low + 1) + 0.5)
+    # Room above all points for the names of the curves.
+    room = (high - low + 1) * 0.08 * len(curves)
+    frame = _Frame(min(xs) - 0.5, max(xs) + 0.5, low - 0.5, max(high, low + 1) + 0.5 + room)
     x_ticks, y_ticks = _decades(min(xs), max(xs)), _decades(low, high)
     parts: list[Child] = [frame.axes("offset of the ratio", "distance from the limit", x_ticks, y_ticks)]
     for place, curve in enumerate(curves):
@@ -178,7 +180,7 @@ def _curve(curve: ApproachCurve, frame: _Frame, low: int, place: int) -> list[Ch
             parts.append(element("circle", element("title", "exact"), cx=at, cy=frame.y(low - 0.3), r=4, fill="none",
                                  stroke=colour, class_=f"{class_} line"))
         else:
-            parts.append(element("circle", cx=at, cy=frame.y(y), r=3.5, fill=colour, class_=class_))
+            parts.append(element("circle", cx=at, cy=frame.y(y), r=3.5, fill=colour, class_=f"{class_} dot"))
     y = TOP + 10 + 17 * place
     parts.append(label(curve.name, WIDTH - RIGHT, y, size=LETTERS, anchor="end", class_=f"{class_} key"))
     return parts

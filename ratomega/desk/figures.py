@@ -16,10 +16,11 @@ from pathlib import Path
 from typing import TYPE_CHECKING
 
 from ratomega.desk.picture import GUILTY, INK, KEEN
-from ratomega.desk.plot_data import ApproachCurve, orders_of, stems_of
+from ratomega.desk.plot_data import ApproachCurve, curves_of, orders_of, stems_of
 from ratomega.detector.atlas import Atlas
 from ratomega.errors import InputError
 from ratomega.results import DetectResult
+from ratomega.verify.approach import Approach
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
@@ -45,8 +46,8 @@ def _check_matplotlib(where: str) -> None:
         raise InputError.single("plots need matplotlib: pip install 'ratomega[plots]'", where)
 
 
-def plot(thing: DetectResult | Atlas) -> Figure:
-    """Pole orders over charge (of what ``detect`` found), or the singular ratios (of an atlas), as a figure.
+def plot(thing: DetectResult | Atlas | Approach) -> Figure:
+    """Pole orders over charge (what ``detect`` found), the singular ratios (an atlas), or an approach, as a figure.
 
     Raises ``InputError`` for anything else, and where matplotlib is not installed.
     """
@@ -54,7 +55,9 @@ def plot(thing: DetectResult | Atlas) -> Figure:
         return _orders(thing)
     if isinstance(thing, Atlas):
         return _atlas(thing)
-    message = f"a plot is made from what detect or atlas gives, not from {type(thing).__name__}"
+    if isinstance(thing, Approach):
+        return plot_approach(curves_of(thing))
+    message = f"a plot is made from what detect, atlas or approach gives, not from {type(thing).__name__}"
     raise InputError.single(message, "plot")
 
 

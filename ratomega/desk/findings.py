@@ -1,6 +1,6 @@
 """Everything that a report shows, computed within bounds: a big case is cut to the charges that are quickly done.
 
-    case -> coefficients, singular configurations, checks, atlas, each up to a charge of its own -> findings
+    case -> coefficients, singular configurations, checks, atlas, approach, each up to a charge of its own -> findings
 
 What was cut is said in ``notes``. The bounds are estimates made from the case alone, never a timing: the same case
 gives the same report everywhere.
@@ -24,12 +24,13 @@ from ratomega.regulator.routes import choose
 from ratomega.results import DetectResult, LimitResult, ValidateResult
 from ratomega.symbolic.structure import structure
 from ratomega.validator.checklist import depth_of
+from ratomega.verify.approach import Approach, approach
 from ratomega.workers.charges import charge_cost
 
 __all__ = ["Findings", "gather"]
 
 # Estimated seconds of a plain sum over diagrams; scans and checks take some ten and more times as long.
-LIMIT_COST, SCAN_COST, CHECK_COST = 2.0, 0.3, 0.12
+LIMIT_COST, SCAN_COST, CHECK_COST, APPROACH_COST = 2.0, 0.3, 0.12, 0.06
 FAST_COST, HIGHEST_BY_POLES, HIGHEST_ATLAS = 20.0, 60, 20
 # Enumerating more charges than this, for their estimates, would take time itself.
 MOST_COUNTED = 200_000
@@ -38,13 +39,17 @@ LARGEST_GRAPH = 12
 
 @dataclass(frozen=True, slots=True)
 class Findings:
-    """The results that a report is made from; ``detect`` is None for a limit inside the limit: there is no one path."""
+    """The results that a report is made from.
+
+    ``detect`` is None for a limit inside the limit, where there is no one path; ``approach`` also with symbols.
+    """
 
     case: Case
     limit: LimitResult
     detect: DetectResult | None
     validate: ValidateResult
     atlas: Atlas
+    approach: Approach | None
     notes: tuple[str, ...]
 
 
@@ -75,7 +80,12 @@ def gather(source: CaseSource, *, depth: str = "quick", allow_tilt: bool = True)
     part = bounded("checks", _cheap(case, CHECK_COST * effort), "ratomega validate goes further")
     checks = validate(part, depth=depth, allow_tilt=allow_tilt)
     part = bounded("atlas", _atlas_case(case), "ratomega atlas goes further")
-    return Findings(case, limits, found, checks, atlas(part), tuple(notes))
+    whole = atlas(part)
+    near = None
+    if not case.nested and not case.symbols:
+        part = bounded("approach", _cheap(case, APPROACH_COST * effort), "ratomega approach goes further")
+        near = approach(part, allow_tilt=allow_tilt)
+    return Findings(case, limits, found, checks, whole, near, tuple(notes))
 
 
 def _bound(case: Case) -> str:

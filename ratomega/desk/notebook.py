@@ -11,7 +11,12 @@ from __future__ import annotations
 from collections.abc import Callable
 from typing import Any
 
+from ratomega.average_results import AverageResult
+from ratomega.block_results import BlockResult
 from ratomega.case.case import Case
+from ratomega.desk.approach_text import approach_text
+from ratomega.desk.average_text import average_text
+from ratomega.desk.block_text import block_text
 from ratomega.desk.charts import atlas_chart
 from ratomega.desk.detector_parts import (
     cluster_figure,
@@ -22,6 +27,7 @@ from ratomega.desk.detector_parts import (
     singular_figure,
 )
 from ratomega.desk.markup import Child, Markup, element, verbatim
+from ratomega.desk.page import approach_part
 from ratomega.desk.plot_data import stems_of
 from ratomega.desk.style import PARTS
 from ratomega.desk.text import charge_word, theory_text
@@ -46,10 +52,12 @@ from ratomega.results import (
     ValidateResult,
 )
 from ratomega.validator.verdict import Check
+from ratomega.verify.approach import Approach
 
 __all__ = ["register"]
 
 MOST_FIGURES = 18
+LONGEST_TEXT = 100_000
 
 
 def _case(case: Case) -> tuple[Child, ...]:
@@ -103,6 +111,12 @@ def _atlas(atlas: Atlas) -> tuple[Child, ...]:
     return element("p", said), element("figure", atlas_chart(stems_of(atlas)).svg(), class_="chart")
 
 
+def _text(table: str) -> Markup:
+    """A result without pictures: its text, line by line."""
+    cut = element("p", "cut here; ratomega.to_json has all", class_="note") if len(table) > LONGEST_TEXT else None
+    return sheet("result", element("pre", table[:LONGEST_TEXT], class_="lines"), cut)
+
+
 REPRESENTATIONS: dict[type, Callable[[Any], tuple[Child, ...]]] = {
     Case: _case,
     LimitResult: _limit,
@@ -114,6 +128,9 @@ REPRESENTATIONS: dict[type, Callable[[Any], tuple[Child, ...]]] = {
     ValidateResult: _validate,
     Check: lambda check: (check_list([check]),),
     Atlas: _atlas,
+    Approach: lambda near: (approach_part(near), _text(approach_text(near))),
+    AverageResult: lambda result: (_text(average_text(result)),),
+    BlockResult: lambda result: (_text(block_text(result)),),
 }
 
 

@@ -16,7 +16,7 @@ from ratomega.desk.charts import approach_chart, atlas_chart, orders_chart
 from ratomega.desk.detector_parts import clusters_part, configurations_part, counts_table
 from ratomega.desk.findings import Findings
 from ratomega.desk.markup import Child, Markup, element, joined, verbatim
-from ratomega.desk.plot_data import ApproachCurve, orders_of, stems_of
+from ratomega.desk.plot_data import curves_of, orders_of, stems_of
 from ratomega.desk.style import PAGE, PARTS
 from ratomega.desk.text import theory_text
 from ratomega.desk.value_parts import (
@@ -33,16 +33,17 @@ from ratomega.desk.value_parts import (
 )
 from ratomega.detector.atlas import Atlas
 from ratomega.exact.rational import exact_text
+from ratomega.verify.approach import Approach
 
 __all__ = ["page"]
 
 MOST_RATIOS = 40
 
 
-def page(findings: Findings, *, command: str, approach: Sequence[ApproachCurve] = ()) -> str:
+def page(findings: Findings, *, command: str) -> str:
     """The whole page as HTML text. ``command`` is what repeats it."""
     title = findings.case.title or theory_text(findings.case)
-    sections = _sections(findings, command, approach)
+    sections = _sections(findings, command)
     sheet_ = verbatim(PARTS + PAGE)
     head = element(
         "head",
@@ -82,7 +83,7 @@ def _section(key: str, name: str, content: Markup) -> Markup:
     return element("section", element("h2", name, id=key), content, aria_labelledby=key)
 
 
-def _sections(findings: Findings, command: str, approach: Sequence[ApproachCurve]) -> list[tuple[str, str, Markup]]:
+def _sections(findings: Findings, command: str) -> list[tuple[str, str, Markup]]:
     """(id, heading, content) of every section that this case has."""
     detect = findings.detect
     case = joined(_notes(findings.notes), case_facts(findings.limit.header), case_file(findings.case))
@@ -97,13 +98,8 @@ def _sections(findings: Findings, command: str, approach: Sequence[ApproachCurve
             ("orders", "Pole orders", _orders(findings)),
         ]
     sections.append(("atlas", "Singular ratios", atlas_part(findings.atlas)))
-    if approach:
-        said = (
-            "The same sum in ball arithmetic at irrational ratios near this one: how far each value is from the exact "
-            "limit, and, as short bars, the radius within which it is known."
-        )
-        content = joined(element("p", said), element("figure", approach_chart(approach).svg(), class_="chart"))
-        sections.append(("approach", "Approach by irrational ratios", content))
+    if findings.approach is not None:
+        sections.append(("approach", "Approach by irrational ratios", approach_part(findings.approach)))
     checks = findings.validate
     sections += [
         ("checks", "Checks", joined(element("p", checks.summary), check_list(checks.checks))),
@@ -198,6 +194,23 @@ def atlas_part(atlas: Atlas) -> Markup:
         element("figure", atlas_chart(stems).svg(), class_="chart"),
         *notes,
         table if rows else None,
+    )
+
+
+def approach_part(approach: Approach) -> Markup:
+    """How sums at irrational ratios come near the limits, drawn."""
+    curves = curves_of(approach)
+    if not curves:
+        return element("p", "No limit beyond charge 0 that sums at irrational ratios could come near to.")
+    said = (
+        f"The same sum in ball arithmetic with {approach.digits} digits at irrational ratios near this one: dots are "
+        "distances from the exact limit, short bars the radius within which a value is known, an open dot a distance "
+        "of nothing. Digits cancel in the sum as single weights diverge."
+    )
+    more = " No weight is singular here: there is nothing to lose." if approach.nothing_lost else None
+    return joined(
+        element("p", said, more, class_="faint small"),
+        element("figure", approach_chart(curves).svg(), class_="chart"),
     )
 
 

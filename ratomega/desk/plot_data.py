@@ -12,11 +12,14 @@ from ratomega.detector.atlas import Atlas, SingularRatio
 from ratomega.errors import InputError
 from ratomega.exact.rational import Rational
 from ratomega.results import DetectResult
+from ratomega.verify.approach import Approach
 
-__all__ = ["ApproachCurve", "Orders", "Stems", "orders_of", "stems_of"]
+__all__ = ["ApproachCurve", "Orders", "Stems", "curves_of", "orders_of", "stems_of"]
 
 # More stems than these run into each other.
 MOST_STEMS = 150
+# So do more curves than these.
+MOST_CURVES = 5
 
 Measured = int | float | str | Decimal | Fraction | Rational
 
@@ -102,6 +105,19 @@ class ApproachCurve:
             tuple(_logarithm(x, "distances") for x in distances),
             tuple(_logarithm(x, "radii") for x in radii),
         )
+
+
+def curves_of(approach: Approach) -> tuple[ApproachCurve, ...]:
+    """A curve for every worst order of a single weight: the first charge, beyond 0, that has it and a limit."""
+    curves: dict[int, ApproachCurve] = {}
+    for one in approach.charges:
+        if one.exact is None or not any(one.charge) or one.worst_order in curves:
+            continue
+        name = f"charge {','.join(str(k) for k in one.charge)}, order {one.worst_order}"
+        points = one.points
+        columns = [p.offset for p in points], [p.distance for p in points], [p.radius for p in points]
+        curves[one.worst_order] = ApproachCurve.make(name, *columns)
+    return tuple(curves.values())[:MOST_CURVES]
 
 
 def _logarithm(value: Measured, where: str) -> float | None:

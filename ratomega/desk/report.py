@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import os
 import shlex
-from collections.abc import Mapping, Sequence
+from collections.abc import Mapping
 from dataclasses import dataclass
 from pathlib import Path
 
@@ -12,7 +12,6 @@ from ratomega.case.case import Case
 from ratomega.desk.findings import Findings, gather
 from ratomega.desk.markup import element
 from ratomega.desk.page import page
-from ratomega.desk.plot_data import ApproachCurve
 from ratomega.errors import InputError
 from ratomega.job import CaseSource
 
@@ -47,15 +46,14 @@ def report(
     *,
     depth: str = "quick",
     allow_tilt: bool = True,
-    approach: Sequence[ApproachCurve] = (),
     command: str | None = None,
 ) -> Report:
     """Everything about a case on one self-contained page of HTML.
 
     ``source`` is a case, a mapping, a file or the name of a bundled case; ``depth`` as in ``validate`` ("full" also
-    goes to higher charges); ``approach`` adds a plot of values at irrational ratios; ``command`` is the one that the
-    page names to repeat it. Raises ``InputError`` for bad input. Cost: bounded, up to some twenty seconds at "quick";
-    big cases are cut to fewer charges, and ``notes`` and the page say so.
+    goes to higher charges); ``command`` is the one that the page names to repeat it. Raises ``InputError`` for bad
+    input. Cost: bounded, up to some twenty seconds at "quick"; big cases are cut to fewer charges, and ``notes`` and
+    the page say so.
 
     >>> made = report({"charge": 1, "background": {"eps1": 1, "eps2": 1}, "node": [{"coulomb": ["0"]}]})
     >>> made.html[:15], made.notes
@@ -63,7 +61,7 @@ def report(
     """
     findings = gather(source, depth=depth, allow_tilt=allow_tilt)
     words = _command(source, depth, allow_tilt) if command is None else command
-    return Report(page(findings, command=words, approach=approach), findings)
+    return Report(page(findings, command=words), findings)
 
 
 def _command(source: CaseSource, depth: str, allow_tilt: bool) -> str:

@@ -18,6 +18,7 @@ overflow-wrap:anywhere}
 .rz code,.rz pre,.rz textarea{font:.86rem/1.45 ui-monospace,Menlo,Consolas,monospace}
 .rz pre{background:var(--leaf);border-left:3px solid var(--rule);padding:.6rem .8rem;margin:.5rem 0;
 white-space:pre-wrap;user-select:all}
+.rz pre.lines{white-space:pre;overflow-wrap:normal;width:max-content}
 .rz .exact{user-select:all}
 .rz textarea{width:100%;color:inherit;background:var(--leaf);border:1px solid var(--rule);padding:.5rem;resize:vertical}
 .rz .faint{color:var(--faint)}
@@ -55,7 +56,8 @@ align-items:start;margin:.6rem 0}
 .rz .picture .guilty{fill:var(--guilty)}
 .rz .picture .keen{fill:none;stroke:var(--keen)}
 .rz .picture .keen.key{fill:var(--keen);stroke:none}
-.rz .picture circle.keen:not(.line){stroke:var(--keen)}
+.rz .picture .keen.dot{fill:var(--keen);stroke:none}
+.rz .picture circle.keen:not(.line):not(.dot){stroke:var(--keen)}
 .rz .picture .line.guilty{stroke:var(--guilty);fill:none}
 .rz .picture .cross{stroke:var(--mark)}
 .rz .picture .figure{fill:var(--mark)}

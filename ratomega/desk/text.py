@@ -23,7 +23,7 @@ from ratomega.results import (
 )
 from ratomega.validator.verdict import Check
 
-__all__ = ["detect_text", "heading", "limit_text", "table", "theory_text", "validate_text"]
+__all__ = ["check_lines", "detect_text", "heading", "limit_text", "table", "theory_text", "validate_text"]
 
 # A terminal page shows this many singular configurations and clusters a charge; JSON has them all.
 MOST_SHOWN = 12
@@ -89,7 +89,7 @@ def heading(header: Header, partial: bool) -> list[str]:
     return [*lines, ""]
 
 
-def _checks(checks: Iterable[Check]) -> list[str]:
+def check_lines(checks: Iterable[Check]) -> list[str]:
     lines = []
     for check in checks:
         lines.append(f"  {check.verdict.value:<9}  {check.name} ({check.kind.value})")
@@ -117,7 +117,7 @@ def limit_text(result: LimitResult) -> str:
         if c.terms is not None:
             lines += ["", f"charge {charge_word(c.charge)}, expansion in t on the case's own path"]
             lines += table(["power", "coefficient"], [[str(n), number_text(v)] for n, v in c.terms], left=[1])
-    lines += ["", "certificate", *_checks(result.checks)]
+    lines += ["", "certificate", *check_lines(result.checks)]
     return "\n".join(lines) + "\n"
 
 
@@ -149,7 +149,7 @@ def _limit_row(c: Coefficient) -> list[str]:
 
 def validate_text(result: ValidateResult) -> str:
     """Every check with its verdict, and a sentence that sums up."""
-    lines = heading(result.header, result.partial) + _checks(result.checks)
+    lines = heading(result.header, result.partial) + check_lines(result.checks)
     return "\n".join([*lines, "", result.summary]) + "\n"
 
 

@@ -13,7 +13,7 @@ __all__ = ["check_functions", "point_text"]
 
 _NAME = "functions of the symbols"
 _SOURCE = (
-    "poles and growth of Z: Nekrasov hep-th/0206161; Nakajima, Yoshioka math/0306198; "
+    "poles and growth of Z: N. Nekrasov, arXiv hep-th/0206161; H. Nakajima, K. Yoshioka, arXiv math/0306198; "
     "values: the same limits at further points"
 )
 

@@ -29,6 +29,7 @@ from ratomega.exact.quadratic import Number, number_text
 from ratomega.exact.rational import ZERO, Rational
 from ratomega.regulator.limits import ChargeLimit
 from ratomega.regulator.outcome import FiniteLimit
+from ratomega.validator.depth import FULL, too_costly
 from ratomega.validator.finiteness import charge_text
 from ratomega.validator.verdict import Check, Kind, Verdict
 from ratomega.weights import Weights
@@ -172,4 +173,6 @@ def _said(point: MinimalPoint) -> str:
 
 
 def _too_many(said: str, count: int, most: int) -> str:
-    return f"{said}; {count} configurations, more than {most}: lower the charge to have this check"
+    full = FULL.configurations if count <= FULL.configurations else most
+    what = f"{count} configurations, more than {most}"
+    return f"{said}; not run: {too_costly(what, most=most, full=full)}"

@@ -8,17 +8,17 @@ that applies and would cost more than the depth allows is undecided and says so.
 from __future__ import annotations
 
 from collections.abc import Callable, Iterator, Sequence
-from dataclasses import dataclass
 
 from ratomega.case.case import Case
-from ratomega.errors import InputError
 from ratomega.regulator.limits import ChargeLimit
 from ratomega.validator.burge import check_burge_pairs, check_burge_sum
 from ratomega.validator.closed_forms_minimal import minimal_forms
 from ratomega.validator.comparison import check_adjoint_clusters, check_closed_forms, compare
 from ratomega.validator.components import check_components
+from ratomega.validator.depth import DEPTHS, Depth, depth_of
 from ratomega.validator.finiteness import certificate, check_orders
 from ratomega.validator.identities.blow_up import check_blow_up
+from ratomega.validator.identities.collapse import check_collapse
 from ratomega.validator.identities.prepotential import check_one_instanton, check_seiberg_witten
 from ratomega.validator.identities.rectangles import check_rectangles
 from ratomega.validator.identities.siblings import Evaluate
@@ -33,28 +33,6 @@ from ratomega.weights import Weights
 __all__ = ["DEPTHS", "Depth", "depth_of", "first_checks", "outside_checks"]
 
 Clusterwise = Callable[[Case], Sequence[ChargeLimit]]
-
-
-@dataclass(frozen=True, slots=True)
-class Depth:
-    """How much work a single check may be: configurations, levels of Gram matrices, effort of regularity in x."""
-
-    name: str
-    configurations: int
-    level: int
-    effort: int
-
-
-DEPTHS = (Depth("quick", 2_000, 8, 1), Depth("full", 20_000, 10, 10))
-
-
-def depth_of(name: str) -> Depth:
-    """The depth of that name. Raises ``InputError``."""
-    for depth in DEPTHS:
-        if depth.name == name:
-            return depth
-    known = ", ".join(depth.name for depth in DEPTHS)
-    raise InputError.single(f'"{name}" is not a depth; the depths are {known}', "depth")
 
 
 def first_checks(limits: Sequence[ChargeLimit]) -> Iterator[Check]:
@@ -115,3 +93,4 @@ def _relatives(case: Case, evaluate: Evaluate, clusterwise: Clusterwise, depth: 
     ):
         if check is not None:
             yield check
+    yield from check_collapse(case, evaluate, most=depth.configurations)

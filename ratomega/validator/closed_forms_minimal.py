@@ -39,7 +39,7 @@ def minimal_forms(setting: Setting, charges: Sequence[Charge]) -> tuple[ClosedFo
                 f"{known.name}, {one.model}",
                 f"Z = (1-q)^({one.exponent}) times the block of the {one}; {known.statement}"
                 f"{'' if one.fields == known.fields else ' for the fields in another order'}",
-                f"{known.source}; Alday, Gaiotto, Tachikawa, arXiv 0906.3219",
+                f"{known.source}; L. Alday, D. Gaiotto, Y. Tachikawa, arXiv 0906.3219",
                 {charge: z.coefficients[charge[0]] for charge in charges},
             )
     return tuple(forms.values())

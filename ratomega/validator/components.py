@@ -26,7 +26,8 @@ from ratomega.detector.zeros import scan
 from ratomega.diagrams.tuples import Charge, count_configurations
 from ratomega.exact.quadratic import as_integer, only_rational
 from ratomega.exact.rational import Rational
-from ratomega.validator.finiteness import charge_text
+from ratomega.validator.depth import FULL, beyond, too_costly
+from ratomega.validator.finiteness import charge_text, reach_text
 from ratomega.validator.verdict import Check, Kind, Verdict
 from ratomega.weights import Weights
 
@@ -55,7 +56,8 @@ def check_components(weights: Weights, charges: Sequence[Charge], *, most: int =
             break
         reached.append(charge)
     if not any(any(charge) for charge in reached):
-        why = f"not run: more than {most} configurations at the first charge; allow more work"
+        what = f"more than {most} configurations at the first charge"
+        why = f"not run: {too_costly(what, most=most, full=FULL.configurations, less='take fewer colours')}"
         return tuple(
             Check(name, Verdict.UNDECIDED, kind, why, source)
             for name, kind, source in (_PLAIN_CELLS, *([_PLAIN_PRODUCT] if product else []))
@@ -76,8 +78,9 @@ def check_components(weights: Weights, charges: Sequence[Charge], *, most: int =
                 open_ones += 1
         if product and not difference:
             difference = _difference(charge, found, _expected(tables, charge))
-    last = charge_text(reached[-1]) + (" (beyond is too costly)" if len(reached) < len(charges) else "")
-    return tuple(_checks(product, disagreement, difference, compact, open_ones, last))
+    cut = f" ({beyond(most=most, full=FULL.configurations)})" if len(reached) < len(charges) else ""
+    reach = reach_text(reached) + cut
+    return tuple(_checks(product, disagreement, difference, compact, open_ones, reach))
 
 
 _PLAIN_CELLS = (_CELLS, Kind.CONSISTENCY, "A. Bialynicki-Birula 1973")
@@ -85,7 +88,7 @@ _PLAIN_PRODUCT = (_PRODUCT, Kind.GEOMETRY, "A. Buryak, B. Feigin, arXiv 1206.564
 
 
 def _checks(
-    product: bool, disagreement: str, difference: str, compact: int, open_ones: int, last: str
+    product: bool, disagreement: str, difference: str, compact: int, open_ones: int, reach: str
 ) -> Iterator[Check]:
     name, kind, source = _PLAIN_CELLS
     if disagreement:
@@ -94,12 +97,16 @@ def _checks(
     else:
         note = f"; {open_ones} components are not compact and have no polynomial" if open_ones else ""
         evidence = f"{compact} compact components have the same cells from three directions and their opposites{note}"
-        yield Check(name, Verdict.AGREES, kind, f"{evidence}; up to {last}", source)
+        yield Check(name, Verdict.AGREES, kind, f"{evidence}; {reach}", source)
     if product:
         name, kind, source = _PLAIN_PRODUCT
-        evidence = "their sum is the coefficient of a product over box numbers, for every colour"
+        evidence = (
+            "at eps1 : eps2 = alpha : beta they add up, over all components, to a coefficient of the product over "
+            "colours and i >= 1 of 1/(1 - t^i), or 1/(1 - q t^i) where alpha + beta divides i (for no i at a negative "
+            "ratio)"
+        )
         verdict = Verdict.REFUTED if difference else Verdict.AGREES
-        yield Check(name, verdict, kind, f"{evidence}; {difference or f'equal up to {last}'}", source)
+        yield Check(name, verdict, kind, f"{evidence}; {difference or f'equal {reach}'}", source)
 
 
 def _generic(setting: Setting) -> bool:

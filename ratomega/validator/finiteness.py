@@ -10,12 +10,12 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 
-from ratomega.diagrams.tuples import Charge
+from ratomega.diagrams.tuples import Charge, charges_up_to
 from ratomega.regulator.limits import ChargeLimit
 from ratomega.regulator.outcome import FiniteLimit, Pole
 from ratomega.validator.verdict import Check, Kind, Verdict
 
-__all__ = ["CANCELLATION", "PATHS", "certificate", "check_orders"]
+__all__ = ["CANCELLATION", "PATHS", "certificate", "charge_text", "check_orders", "reach_text"]
 
 CANCELLATION = "cancellation of poles"
 PATHS = "independence of the path"
@@ -23,7 +23,8 @@ FORESIGHT = "finiteness foreseen"
 ORDERS = "equal orders in a cluster"
 
 _LOCALISATION = (
-    "fixed-point localisation on compact components: Nekrasov hep-th/0206161; Nakajima, Yoshioka math/0306198"
+    "fixed-point localisation on compact components: N. Nekrasov, arXiv hep-th/0206161; H. Nakajima, K. Yoshioka, "
+    "arXiv math/0306198"
 )
 _COUNT = "exact count of vanishing factors"
 _PROBES = "further paths, computed from the same weights"
@@ -52,6 +53,35 @@ def charge_text(charge: Charge) -> str:
     return f"charge {charge[0]}" if len(charge) == 1 else f"charge ({', '.join(str(k) for k in charge)})"
 
 
+def counted(number: int, noun: str) -> str:
+    """The number with its noun, plural where it has to be."""
+    return f"{number} {noun}{'' if number == 1 else 's'}"
+
+
+def reach_text(charges: Sequence[Charge]) -> str:
+    """Up to where charges go that stand in the order of a case: by the total charge, or node by node.
+
+    >>> reach_text([(0,), (1,), (2,)]), reach_text([(1,)]), reach_text([(1,), (2,)])
+    ('up to charge 2', 'at charge 1', 'from charge 1 to charge 2')
+    >>> reach_text([(0, 0), (1, 0), (0, 1)]), reach_text([(0, 0), (1, 0), (0, 1), (1, 1)])
+    ('up to total charge 1', 'up to charge (1, 1)')
+    >>> reach_text([(0, 0), (1, 0), (0, 1), (2, 0)])
+    'at 4 charges, the last of them (2, 0)'
+    """
+    last = charges[-1]
+    if len(charges) == 1:
+        return f"at {charge_text(last)}"
+    if len(last) == 1:
+        first = charges[0]
+        return f"from {charge_text(first)} to {charge_text(last)}" if any(first) else f"up to {charge_text(last)}"
+    bounds = tuple(max(charge[v] for charge in charges) for v in range(len(last)))
+    # A list of bounds that leaves out no charge of its total is that total as well.
+    for bound in (sum(last), bounds):
+        if tuple(charges) == charges_up_to(bound, len(last)):
+            return f"up to total charge {bound}" if isinstance(bound, int) else f"up to {charge_text(bound)}"
+    return f"at {len(charges)} charges, the last of them ({', '.join(map(str, last))})"
+
+
 def check_cancellation(limits: Sequence[ChargeLimit]) -> Check:
     """(a). A cluster that is not compact and does not cancel alone is no fault of the total."""
     poles = [limit for limit in limits if isinstance(limit.outcome, Pole)]
@@ -78,7 +108,9 @@ def check_cancellation(limits: Sequence[ChargeLimit]) -> Check:
         if not limit.is_compact(c) and c.series.valuation < 0
     )
     note = f"; {loose} non-compact clusters cancel only against each other" if loose else ""
-    found = f"{singular} singular weights in {clusters} clusters" if singular else "no single weight is singular"
+    found = "no single weight is singular"
+    if singular:
+        found = f"{counted(singular, 'singular weight')} in {counted(clusters, 'cluster')}"
     evidence = f"{found}; every negative power of t cancels exactly{note}" if singular else f"{found}{note}"
     return Check(CANCELLATION, Verdict.PROVED, Kind.THEOREM, evidence, "exact cancellation in the Laurent expansion")
 
@@ -100,14 +132,16 @@ def check_paths(limits: Sequence[ChargeLimit]) -> Check:
         return Check(PATHS, Verdict.REFUTED, Kind.CONSISTENCY, evidence, _PROBES)
     open_limits = [limit for limit in limits if not limit.compact]
     probed = max((len(limit.further) for limit in limits), default=0)
-    agreeing = f"; {probed} further paths give the same values" if probed else ""
+    give = "gives" if probed == 1 else "give"
+    agreeing = f"; {counted(probed, 'further path')} {give} the same values" if probed else ""
     if not open_limits:
         evidence = f"every component is compact at these charges{agreeing}"
         return Check(PATHS, Verdict.PROVED, Kind.THEOREM, evidence, _LOCALISATION)
     first = open_limits[0]
     why = f"compactness does not decide from {charge_text(first.charge)} on ({first.resonance})"
     if any(not limit.further for limit in open_limits):
-        return Check(PATHS, Verdict.UNDECIDED, Kind.CONSISTENCY, f"{why}, and no further path was probed", _PROBES)
+        evidence = f"{why}, and no further path was probed; ask for some with --probes"
+        return Check(PATHS, Verdict.UNDECIDED, Kind.CONSISTENCY, evidence, _PROBES)
     return Check(PATHS, Verdict.AGREES, Kind.CONSISTENCY, f"{why}{agreeing}", _PROBES)
 
 
@@ -135,5 +169,5 @@ def check_orders(limits: Sequence[ChargeLimit]) -> Check:
         evidence = f"{charge_text(first.charge)}: {first.uneven_clusters} clusters have members of different order"
         return Check(ORDERS, Verdict.REFUTED, Kind.CONSISTENCY, evidence, _COUNT)
     clusters = sum(len(limit.sum.clusters) for limit in limits)
-    evidence = f"{clusters} clusters, each with one order for all its members"
+    evidence = f"{counted(clusters, 'cluster')}, each with one order for all its members"
     return Check(ORDERS, Verdict.PROVED, Kind.CONSISTENCY, evidence, _COUNT)

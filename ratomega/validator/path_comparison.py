@@ -11,7 +11,7 @@ from collections.abc import Sequence
 from ratomega.case.case import Case
 from ratomega.case.setting import Setting
 from ratomega.regulator.limits import ChargeLimit
-from ratomega.validator.finiteness import charge_text
+from ratomega.validator.finiteness import charge_text, reach_text
 from ratomega.validator.verdict import Check, Kind, Verdict
 from ratomega.validator.virasoro import MOST_LEVEL, Leading, PathForm, elementary_path_form, gram_path_form
 
@@ -32,18 +32,11 @@ def compare_on_path(form: PathForm, limits: Sequence[ChargeLimit]) -> Check | No
             )
             return Check(form.name, Verdict.REFUTED, Kind.INDEPENDENT, evidence, form.source)
     poles = [charge_text(limit.charge) for limit in compared if limit.own.order > 0]
-    parts = [form.statement, f"equal {_range(compared)}"]
+    parts = [form.statement, f"equal {reach_text([limit.charge for limit in compared])}"]
     parts += [f"the same surviving pole at {', '.join(poles)}"] if poles else []
     parts += [form.note] if form.note else []
     complete = len(compared) == len(limits)
     return Check(form.name, Verdict.AGREES, Kind.INDEPENDENT, "; ".join(parts), form.source, complete)
-
-
-def _range(compared: Sequence[ChargeLimit]) -> str:
-    first, last = compared[0].charge, compared[-1].charge
-    if len(compared) == 1:
-        return f"at {charge_text(last)}"
-    return f"up to {charge_text(last)}" if not any(first) else f"from {charge_text(first)} to {charge_text(last)}"
 
 
 def check_gram(

@@ -31,7 +31,8 @@ from ratomega.exact.line_function import LineFunction
 from ratomega.exact.path import Linear
 from ratomega.exact.quadratic import Number, number_text
 from ratomega.exact.rational import ONE, ZERO, Rational
-from ratomega.validator.finiteness import charge_text
+from ratomega.validator.depth import FULL, beyond, too_costly
+from ratomega.validator.finiteness import charge_text, reach_text
 from ratomega.validator.verdict import Check, Kind, Verdict
 from ratomega.weights import Weights
 
@@ -51,8 +52,11 @@ MOST_FUNCTIONS = 2_000
 MOST_NUMBERS = 10_000
 """The same for observables that are numbers."""
 
-SOURCE = "Nekrasov 1512.05388"
-TRACES = "Losev, Marshakov, Nekrasov hep-th/0302191; Flume, Fucito, Morales, Poghossian hep-th/0403057"
+SOURCE = "N. Nekrasov, arXiv 1512.05388"
+TRACES = (
+    "A. Losev, A. Marshakov, N. Nekrasov, arXiv hep-th/0302191; R. Flume, F. Fucito, J. Morales, R. Poghossian, arXiv "
+    "hep-th/0403057"
+)
 # Evidence is a sentence, not a table: longer polynomials are left out of it.
 LONGEST_TEXT = 160
 
@@ -106,7 +110,7 @@ def check_regularity(regular: Regular) -> Check | None:
     setting = regular.weights.setting
     name = _name("regularity in x", setting, regular.node)
     if not regular.reach:
-        return _too_costly(name, regular.most)
+        return _too_costly(name, regular.most, MOST_FUNCTIONS)
     highest = max(term.monomial.degree(setting.ranks) for term in regular.terms)
     shown = []
     for charge in regular.reach:
@@ -117,8 +121,8 @@ def check_regularity(regular: Regular) -> Check | None:
                 return _check(name, Verdict.REFUTED, f"{_where(charge, power)}: T(x) {what}: {_short(function)}")
         times = f"t^-{series.order} times " if series.order else ""
         shown.append(f"{charge_text(charge)}: {times}{_short(series.leading)}")
-    head = f"T(x) = <{_statement(setting, regular.node)}> is a polynomial of degree {highest} at most"
-    extent = _extent(regular.reach, regular.charges)
+    head = f"T(x) = {_statement(setting, regular.node)} is a polynomial of degree {highest} at most"
+    extent = _extent(regular.reach, regular.charges, regular.most, MOST_FUNCTIONS)
     return _check(name, Verdict.AGREES, f"{head}, {extent}; {'; '.join(shown[:3])}")
 
 
@@ -139,7 +143,7 @@ def check_regular_coefficients(regular: Regular) -> Check | None:
     name = _name("coefficients of the regular average", setting, regular.node)
     reach = [charge for charge in regular.reach if charge in compact]
     if not any(any(charge) for charge in reach):
-        return _too_costly(name, regular.most)
+        return _too_costly(name, regular.most, MOST_FUNCTIONS)
     sizes = number_averages(regular.weights, size_sums(regular.weights, Wanted("size", (regular.node,), 1)))
     known = {charge: sizes.at(charge)[0].coefficient(0) for charge in reach}
     # A polynomial of degree N is its values at N + 1 points.
@@ -155,8 +159,12 @@ def check_regular_coefficients(regular: Regular) -> Check | None:
                 return _check(name, Verdict.REFUTED, evidence)
     sign = "+" if here.rank == 2 else "-"
     more = "" if here.rank == 1 else f" + eps1 eps2 {'(1 - q) ' if flavours == 4 else ''}q d/dq log Z"
-    extent = _extent(reach, regular.charges, "not compact or too costly")
-    return _check(name, Verdict.AGREES, f"T(x) = A(x + eps) {sign} q [P/A]_+{more}, {extent}")
+    known_as = "with A = prod (x - a), P = prod (x + m), []_+ the polynomial part"
+    if len(reach) < len(regular.reach):
+        extent = f"{reach_text(reach)} (beyond, not every component is compact)"
+    else:
+        extent = _extent(reach, regular.charges, regular.most, MOST_FUNCTIONS)
+    return _check(name, Verdict.AGREES, f"T(x) = A(x + eps) {sign} q [P/A]_+{more} {known_as}, {extent}")
 
 
 def check_dyson_schwinger(
@@ -173,7 +181,7 @@ def check_dyson_schwinger(
     terms = character_terms(setting, node, charges)
     reach = _affordable(setting, charges, terms, most=most)
     if not reach:
-        return _too_costly(name, most)
+        return _too_costly(name, most, MOST_NUMBERS)
     averages = number_averages(weights, _tail_sums(weights, terms))
     example = ""
     for charge in reach:
@@ -187,8 +195,8 @@ def check_dyson_schwinger(
                 return _check(name, Verdict.REFUTED, f"{_where(charge, power)}: {evidence}")
             if not example and any(value != 0 for value in values):
                 example = f"; {_where(charge, power)}: {', '.join(number_text(value) for value in values)}"
-    head = f"the coefficients of 1/x of the terms of <{_statement(setting, node)}> add up to zero"
-    return _check(name, Verdict.AGREES, f"{head}, {_extent(reach, charges)}{example}")
+    head = f"the coefficients of 1/x of the terms of T(x) = {_statement(setting, node)} add up to zero"
+    return _check(name, Verdict.AGREES, f"{head}, {_extent(reach, charges, most, MOST_NUMBERS)}{example}")
 
 
 def check_trace_square(
@@ -204,7 +212,7 @@ def check_trace_square(
     name = _name("second chiral trace", setting, node)
     reach = _affordable(setting, charges, None, most=most)
     if not reach:
-        return _too_costly(name, most)
+        return _too_costly(name, most, MOST_NUMBERS)
     traces = number_averages(weights, trace_sums(weights, Wanted("trace-powers", (node,), 2)))
     sizes = number_averages(weights, size_sums(weights, Wanted("size", (node,), 1)))
     for charge in reach:
@@ -218,7 +226,7 @@ def check_trace_square(
             evidence = f"{charge_text(charge)}: the two sides differ by {difference}"
             return _check(name, Verdict.REFUTED, evidence, TRACES)
     statement = "<Tr phi^2> = sum a^2 - 2 eps1 eps2 q d/dq log Z"
-    return _check(name, Verdict.AGREES, f"{statement}, {_extent(reach, charges)}", TRACES)
+    return _check(name, Verdict.AGREES, f"{statement}, {_extent(reach, charges, most, MOST_NUMBERS)}", TRACES)
 
 
 # ---- what they are made of ----
@@ -306,19 +314,20 @@ def _affordable(
 
 
 def _statement(setting: Setting, node: int) -> str:
-    """T in words: the first terms."""
+    """T in words: the average of its first terms."""
     if len(setting.nodes) == 1:
-        return f"Y(x + eps) {'-' if setting.nodes[0].rank % 2 else '+'} q P(x)/Y(x)"
-    return f"Y(x + eps) + ... of node {setting.nodes[node].name}"
+        return f"<Y(x + eps) {'-' if setting.nodes[0].rank % 2 else '+'} q P(x)/Y(x)>"
+    return f"<Y(x + eps) + ...>, Y that of node {setting.nodes[node].name},"
 
 
 def _where(charge: Charge, power: int) -> str:
     return f"{charge_text(charge)}{f', t^{power}' if power else ''}"
 
 
-def _extent(reach: Sequence[Charge], charges: Sequence[Charge], why: str = "too costly") -> str:
-    cut = "" if len(reach) == len(charges) else f" (higher charges: {why} for this check)"
-    return f"up to {charge_text(reach[-1])}{cut}"
+def _extent(reach: Sequence[Charge], charges: Sequence[Charge], most: int, unit: int) -> str:
+    """Up to where was compared; ``most`` values were allowed, ``unit`` are at the lowest effort."""
+    cut = "" if len(reach) == len(charges) else f" ({beyond(most=most, full=unit * FULL.effort)})"
+    return f"{reach_text(reach)}{cut}"
 
 
 def _short(function: LineFunction) -> str:
@@ -334,6 +343,7 @@ def _check(name: str, verdict: Verdict, evidence: str, source: str = SOURCE) -> 
     return Check(name, verdict, Kind.CONSISTENCY, evidence, source)
 
 
-def _too_costly(name: str, most: int) -> Check:
-    evidence = f"even the first charge needs more than {most} values of observables; effort= raises the bound"
-    return _check(name, Verdict.UNDECIDED, evidence)
+def _too_costly(name: str, most: int, unit: int) -> Check:
+    what = f"more than {most} values of observables up to the first charge"
+    why = too_costly(what, most=most, full=unit * FULL.effort, less="take fewer colours")
+    return _check(name, Verdict.UNDECIDED, f"not run: {why}")

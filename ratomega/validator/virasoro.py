@@ -21,9 +21,12 @@ from ratomega.exact.path import Linear
 from ratomega.exact.quadratic import Number, is_quadratic, number_text, only_rational, rational_parts
 from ratomega.exact.rational import Rational
 from ratomega.validator.closed_forms_u2 import ELEMENTARY_SOURCE, ELEMENTARY_STATEMENT
+from ratomega.validator.depth import FULL
 from ratomega.validator.limit_point import Charge, ClosedForm
 
 __all__ = [
+    "GRAM_NAME",
+    "GRAM_SOURCE",
     "MOST_LEVEL",
     "Leading",
     "PathForm",
@@ -40,7 +43,7 @@ MOST_LEVEL = 8
 _DEPTHS = ((12, 10), (40, 8), (200, 6))
 _ALWAYS = 4
 
-_NAME = "Gram matrix of Virasoro descendants"
+GRAM_NAME = "Gram matrix of Virasoro descendants"
 _FLAVOURS = (
     "Z_k is the contraction of two states with the inverse Gram matrix of level k of the Verma module, times the U(1) "
     "factor"
@@ -49,7 +52,7 @@ _ADJOINT = (
     "Z is the trace of a primary field over the Verma module, level by level with the inverse Gram matrix, times "
     "prod_n (1-q^n)^(2 m (eps-m)/(eps1 eps2) - 1)"
 )
-_SOURCE = (
+GRAM_SOURCE = (
     "L. Alday, D. Gaiotto, Y. Tachikawa, arXiv 0906.3219; D. Gaiotto, arXiv 0908.0307; A. Marshakov, A. Mironov, "
     "A. Morozov, arXiv 0909.2052"
 )
@@ -117,8 +120,12 @@ def gram_path_form(case: Case, setting: Setting, *, most_level: int = MOST_LEVEL
     where = "" if singular > last else f", in series in t from level {singular} on, where the Kac determinant vanishes"
     statement = (_FLAVOURS if gauge.adjoint is None else _ADJOINT) + where
     left_out = case.bounds[0] > last
-    note = f"charges beyond {last} were not computed this way (Gram matrices to level {depth} here)" if left_out else ""
-    return PathForm(_NAME, statement, _SOURCE, values, note)
+    note = ""
+    if left_out:
+        deeper = deepest_level(gauge, FULL.level)
+        more = f", to level {deeper} with --depth full" if deeper > depth else ""
+        note = f"charges beyond {last} were not computed this way (Gram matrices to level {depth} here{more})"
+    return PathForm(GRAM_NAME, statement, GRAM_SOURCE, values, note)
 
 
 def _leading(series: Laurent) -> Leading:

@@ -59,8 +59,9 @@ def test_no_two_are_the_same_theory():
     assert len({load_case(name).hash for name in NAMES}) == len(NAMES)
 
 
-@pytest.mark.parametrize("name", NAMES)
+@pytest.mark.parametrize("name", [name for name in NAMES if not load_case(name).nested])
 def test_the_engine_agrees_with_the_plain_reference(name):
+    """Limits inside limits have their own comparison, in test_nesting."""
     case = load_case(name)
     point = {symbol: f"{n}/23" for n, symbol in enumerate(case.symbols, 7)}
     theory = plain_theory(own_setting(case.at(**point)))

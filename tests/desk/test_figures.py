@@ -11,6 +11,7 @@ from page_reading import well_formed
 import ratomega
 from ratomega.cli.main import main
 from ratomega.desk import figures
+from ratomega.desk.plot_data import ApproachCurve, curves_of
 
 
 @pytest.fixture(scope="module")
@@ -49,16 +50,27 @@ def test_files_are_the_same_each_time(ending, found, tmp_path):
 
 def test_an_approach_is_drawn_curve_by_curve(tmp_path):
     rows = ["1e-2", "1e-4"], ["1e-3", 0], ["1e-900", "1e-9"]
-    curves = [ratomega.ApproachCurve.make(f"charge {k}", *rows) for k in (2, 4)]
-    figure = ratomega.plot_approach(curves)
+    curves = [ApproachCurve.make(f"charge {k}", *rows) for k in (2, 4)]
+    figure = figures.plot_approach(curves)
     assert [text.get_text() for text in figure.axes[0].get_legend().get_texts()] == ["charge 2", "charge 4"]
     ratomega.save_plot(figure, tmp_path / "a.png")
     with pytest.raises(ratomega.InputError, match="one curve"):
-        ratomega.plot_approach([])
+        figures.plot_approach([])
+
+
+def test_an_approach_shows_each_order_once():
+    """U(2) at ratio 1: the order floor(k/2) first comes at charge 2 floor(k/2)."""
+    near = ratomega.approach("u2-pure", offsets=["1e-2", "1e-5"])
+    curves = curves_of(near)
+    assert [c.name for c in curves] == [f"charge {max(1, 2 * n)}, order {n}" for n in range(5)]
+    # Distances shrink with the offset itself: a slope of 1 in both logarithms, where the ball is sharp enough.
+    (x1, x2), (y1, y2) = curves[1].offsets, curves[1].distances
+    assert (y2 - y1) / (x2 - x1) == pytest.approx(1, abs=0.02)
+    assert len(ratomega.plot(near).axes[0].get_legend().get_texts()) == 5
 
 
 def test_what_cannot_be_plotted_is_said():
-    with pytest.raises(ratomega.InputError, match="detect or atlas"):
+    with pytest.raises(ratomega.InputError, match="detect, atlas or approach"):
         ratomega.plot(ratomega.limit("surviving-pole"))
 
 

@@ -67,7 +67,8 @@ def test_a_report_opens_at_every_width_and_in_every_light(chromium, page, width,
 def test_marked_boxes_are_filled(chromium, page):
     chromium.view(1400)
     chromium.open(page.as_uri())
-    fills = chromium.run("return [...document.querySelectorAll('svg path.guilty')].map(e => getComputedStyle(e).fill)")
+    marked = "return [...document.querySelectorAll('figure svg path.guilty:not(.line)')]"
+    fills = chromium.run(f"{marked}.map(e => getComputedStyle(e).fill)")
     assert fills
     assert set(fills) == {"rgb(189, 61, 23)"}
 

@@ -20,7 +20,8 @@ def values():
     singular = [s for report in found.charges for s in report.singular_configurations]
     clusters = [c for report in found.charges for c in report.clusters]
     return [case, limit, limit[2, 0], found, found[2, 0], clusters[0], singular[0], checks, checks.checks[0],
-            ratomega.atlas(case)]
+            ratomega.atlas(case), ratomega.approach("u1-pure", offsets=["1e-2"]), ratomega.average(case, of="size"),
+            ratomega.block("ising-energy")]
 
 
 def test_every_type_of_the_table_shows_itself(values):
@@ -32,7 +33,9 @@ def test_every_type_of_the_table_shows_itself(values):
 
 
 def test_representations_hold_what_they_show(values):
-    case, limit, coefficient, found, report, cluster, singular, checks, check, atlas = (v._repr_html_() for v in values)
+    case, limit, coefficient, found, report, cluster, singular, checks, check, atlas, near, average, block = (
+        value._repr_html_() for value in values
+    )
     assert all(html.escape(values[0].title) in text for text in (case, limit, found))
     assert values[0].hash in case
     assert str(values[1][2, 0].value) in limit
@@ -43,6 +46,9 @@ def test_representations_hold_what_they_show(values):
     assert html.escape(values[7].summary) in checks
     assert html.escape(values[8].evidence) in check
     assert f"{len(values[9].ratios)} ratios" in atlas
+    assert "charge 2, order 1" in near
+    assert html.escape(values[0].title) in average
+    assert html.escape(ratomega.load_case("ising-energy").title) in block
 
 
 def test_results_do_not_know_the_desk(values):

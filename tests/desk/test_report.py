@@ -30,7 +30,7 @@ def test_the_page_holds_what_was_found(plain_report):
     for c in ratomega.limit("b1-four-flavours"):
         assert number_text(c.value) in page.text
     found = ratomega.detect("b1-four-flavours")
-    assert len(page.named("figure")) == sum(r.singular + len(r.clusters) for r in found.charges) + 2
+    assert len(page.named("figure")) == sum(r.singular + len(r.clusters) for r in found.charges) + 3
     checks = ratomega.validate("b1-four-flavours")
     assert checks.summary in page.text
     for check in checks.checks:
@@ -122,7 +122,7 @@ def test_every_bundled_case_has_a_page(name):
 def test_a_big_case_is_cut_and_says_so(name, charge):
     made = ratomega.report(ratomega.load_case(name).with_charge(charge))
     page = check_page(made.html)
-    assert len(made.notes) == 4
+    assert len(made.notes) == 5
     assert all(note in page.text for note in made.notes)
     assert len(made.html) < 4_000_000
 
@@ -137,12 +137,13 @@ def test_a_case_of_many_colours_is_cut_by_the_work():
     assert all(note in page.text for note in made.notes)
 
 
-def test_an_approach_adds_a_section():
-    case = {"charge": 1, "background": {"eps1": 1, "eps2": 1}, "node": [{"coulomb": ["0"]}]}
-    curve = ratomega.ApproachCurve.make("charge <1>", ["1e-2", "1e-4"], ["1e-3", "1e-5"], [0, 0])
-    page = check_page(ratomega.report(case, approach=[curve]).html)
-    assert "approach" in [attributes.get("id") for _, attributes in page.elements]
-    assert "charge <1>" in page.text
+def test_the_approach_has_its_section_where_there_is_one_path_of_numbers(plain_report):
+    def sections(html):
+        return {attributes.get("id") for _, attributes in check_page(html).elements}
+
+    assert "approach" in sections(plain_report.html)
+    assert "charge 4, order 2" in check_page(plain_report.html).text
+    assert "approach" not in sections(ratomega.report("free-momentum").html)
 
 
 def run(*words):

@@ -73,7 +73,8 @@ def test_work_is_bounded():
     cells, product = checked("1", "1", [{"coulomb": GENERIC[:2]}], charge=6, most=10)
     assert cells.verdict is product.verdict is Verdict.AGREES
     # 1 + 2 + 5 configurations, and 10 more would be too many.
-    assert "up to charge 2 (beyond is too costly)" in product.evidence
+    assert "up to charge 2 (more is too costly; --depth full allows more)" in product.evidence
     for check in checked("1", "1", [{"coulomb": GENERIC[:2]}], most=2):
         assert check.verdict is Verdict.UNDECIDED
         assert "more than 2 configurations at the first charge" in check.evidence
+        assert "ask for it with --depth full" in check.evidence

@@ -344,7 +344,7 @@ def test_too_many_configurations_leave_it_undecided() -> None:
     for check in (check_burge_pairs, check_burge_sum):
         found = check(job.weights, limits, most_configurations=138)
         assert found.verdict is Verdict.UNDECIDED
-        assert "139 configurations, more than 138" in found.evidence
+        assert "139 configurations, more than 138; ask for it with --depth full" in found.evidence
         assert check(job.weights, limits, most_configurations=139).verdict is Verdict.AGREES
 
 

@@ -129,7 +129,7 @@ def check_two_nodes(eps, ranks):
     names = [name.format(v) for v in ("n1", "n2") for name in (
         "regularity in x, node {}", "first Dyson-Schwinger identity, node {}", "second chiral trace, node {}")]
     checks = all_agree(case, names)
-    assert all("up to charge (0, 3)" in check.evidence for check in checks)
+    assert all("up to total charge 3" in check.evidence for check in checks)
     assert [f"a polynomial of degree {ranks[v]} at most" in checks[3 * v].evidence for v in (0, 1)] == [True, True]
 
 
@@ -299,12 +299,13 @@ def test_what_costs_too_much_is_undecided_and_says_so():
     assert short.reach == ((0,), (1,), (2,))
     check = check_regularity(short)
     assert check.verdict is Verdict.AGREES
-    assert "up to charge 2 (higher charges: too costly for this check)" in check.evidence
+    assert "up to charge 2 (more is too costly; --depth full allows more)" in check.evidence
     none = Regular(weights, case.charges, 0, most=2)
     found = [check_regularity(none), check_regular_coefficients(none)]
     found += [check(weights, case.charges, 0, most=2) for check in (check_dyson_schwinger, check_trace_square)]
     assert {check.verdict for check in found} == {Verdict.UNDECIDED}
     assert all("more than 2 values" in check.evidence for check in found)
+    assert all("ask for it with --depth full" in check.evidence for check in found)
 
 
 # ---- faults: each must turn the checks red

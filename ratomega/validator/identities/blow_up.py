@@ -28,11 +28,11 @@ from ratomega.validator.identities.siblings import (
     Identity,
     affordable,
     is_smooth,
+    nothing_allowed,
     reach_text,
     sibling,
     single_node,
     smooth_charge,
-    too_costly,
 )
 from ratomega.validator.limit_point import LimitPoint, limit_point
 from ratomega.validator.verdict import Check, Kind
@@ -66,7 +66,7 @@ def check_blow_up(case: Case, evaluate: Evaluate, *, most: int = MOST_WORK) -> C
         return identity.undecided("at eps1 = eps2 a patch of the blow-up has a vanishing rotation, and is no case")
     charge = affordable(case, wanted, lambda k: 2 * (2 * isqrt(k) + 1) + 1, most)
     if charge < 1:
-        return identity.undecided(too_costly(most))
+        return identity.undecided(nothing_allowed(most))
     a = (point.nodes[0].coulomb[0] - point.nodes[0].coulomb[1]) / 2
     patches = {k: _patches(case, point, a, k, charge - k * k) for k in range(-isqrt(charge), isqrt(charge) + 1)}
     for k, pair in patches.items():
@@ -76,7 +76,7 @@ def check_blow_up(case: Case, evaluate: Evaluate, *, most: int = MOST_WORK) -> C
     found = {k: (evaluate(one), evaluate(two)) for k, (one, two) in patches.items()}
     rows = _rows(point, a, own, found, charge)
     places = ", ".join(f"({e1}, {e2})" for e1, e2 in _backgrounds(point))
-    note = f"Z at (eps1, eps2) = {places} and shifted a, orders u^0 to u^3; {reach_text(charge, wanted)}"
+    note = f"Z at (eps1, eps2) = {places} and shifted a, orders u^0 to u^3; {reach_text(charge, wanted, most)}"
     return identity.judged(rows, note)
 
 

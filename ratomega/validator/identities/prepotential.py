@@ -23,6 +23,7 @@ from ratomega.case.case import Case
 from ratomega.case.setting import own_setting
 from ratomega.exact.quadratic import Number
 from ratomega.exact.rational import ONE, ZERO, Rational
+from ratomega.validator.depth import FULL
 from ratomega.validator.identities.newton import leading_two
 from ratomega.validator.identities.siblings import (
     MOST_WORK,
@@ -30,11 +31,11 @@ from ratomega.validator.identities.siblings import (
     Identity,
     affordable,
     is_smooth,
+    nothing_allowed,
     reach_text,
     sibling,
     single_node,
     smooth_charge,
-    too_costly,
 )
 from ratomega.validator.limit_point import LimitPoint, limit_point
 from ratomega.validator.qseries import Series, hypergeometric
@@ -110,7 +111,7 @@ def check_seiberg_witten(case: Case, evaluate: Evaluate, *, most: int = MOST_WOR
     wanted = min(smooth, HIGHEST_CHARGE)
     charge = affordable(case, wanted, _points_needed, most)
     if charge < 1:
-        return identity.undecided(too_costly(most))
+        return identity.undecided(nothing_allowed(most))
     point = limit_point(own_setting(case))
     momenta = _momenta(case, point, charge)
     logarithms = []
@@ -118,7 +119,9 @@ def check_seiberg_witten(case: Case, evaluate: Evaluate, *, most: int = MOST_WOR
         one = case.with_charge(charge) if n == 0 else sibling(case, charge, coulomb=[a, -a])
         logarithms.append(Series(tuple(evaluate(one))).log())
     rows = _growth_rows(point, momenta, logarithms, charge)
-    note = f"from limits at {len(momenta)} values of a, the case's own among them; {reach_text(charge, smooth)}"
+    allowed = most if charge < wanted else FULL.configurations
+    reach = reach_text(charge, smooth, allowed)
+    note = f"from limits at {len(momenta)} values of a, the case's own among them; {reach}"
     return identity.judged(rows, note)
 
 
@@ -194,7 +197,7 @@ def check_one_instanton(case: Case, evaluate: Evaluate, *, most: int = MOST_WORK
     degree = rank * (rank - 1) + 2 - 2 * rank + len(flavours)
     needed = degree + 1
     if affordable(case, 1, lambda k: needed, most) < 1:
-        return identity.undecided(too_costly(most))
+        return identity.undecided(nothing_allowed(most))
     differences = [a - b for n, a in enumerate(colours) for b in colours[:n]]
     scales: list[Rational] = []
     values: list[Number] = []

@@ -29,11 +29,11 @@ from ratomega.validator.identities.siblings import (
     Evaluate,
     Identity,
     affordable,
+    nothing_allowed,
     reach_text,
     sibling,
     single_node,
     smooth_charge,
-    too_costly,
 )
 from ratomega.validator.limit_point import NodePoint, limit_point
 from ratomega.validator.qseries import euler_product
@@ -64,7 +64,7 @@ def check_rectangles(case: Case, evaluate: Evaluate, *, most: int = MOST_WORK) -
     )
     charge = affordable(case, wanted, lambda k: node.rank * k + 1, most)
     if charge < 1:
-        return identity.undecided(too_costly(most))
+        return identity.undecided(nothing_allowed(most))
     setting = own_setting(case)
     point = limit_point(setting)
     own, masses = point.nodes[0].adjoint[0], _masses(point.nodes[0], point.eps, node.rank * charge + 1)
@@ -83,7 +83,8 @@ def check_rectangles(case: Case, evaluate: Evaluate, *, most: int = MOST_WORK) -
         rows.append((f"Z_{k} at m = 0", massless, euler.coefficients[k]))
         rows.append((f"Z_{k} at m = eps1", value, ZERO))
         rows.append((f"the slope of Z_{k} in m (eps - m) at m = eps1", slope, expected))
-    note = f"Z as a polynomial in m from {len(cases)} masses, the case's own among them; {reach_text(charge, wanted)}"
+    reach = reach_text(charge, wanted, most)
+    note = f"Z as a polynomial in m from {len(cases)} masses, the case's own among them; {reach}"
     return identity.judged(rows, note)
 
 

@@ -1,8 +1,8 @@
 """Siblings of a case, the limits that an identity asks for there, and the verdict on what came out.
 
 An identity imports no sum. It is given an ``Evaluate``: a function from a case to the exact limits Z_0, ..., Z_K, K the
-charge of that case. It is asked for cases of one node at which every component is compact, so that the limit is finite
-and the same on every path, and for no more configurations in all than were allowed.
+charge of that case. It is asked for cases at which every component is compact, so that the limit is finite and the same
+on every path, and for no more configurations in all than were allowed.
 """
 
 from __future__ import annotations
@@ -18,6 +18,7 @@ from ratomega.case.theory import Node, Theory
 from ratomega.diagrams.tuples import count_all
 from ratomega.exact.quadratic import Number, number_text
 from ratomega.exact.rational import Rational
+from ratomega.validator.depth import FULL, beyond, too_costly
 from ratomega.validator.verdict import Check, Kind, Verdict
 
 __all__ = [
@@ -26,14 +27,15 @@ __all__ = [
     "Identity",
     "affordable",
     "is_smooth",
+    "nothing_allowed",
+    "reach_text",
     "sibling",
     "single_node",
     "smooth_charge",
-    "too_costly",
 ]
 
 Evaluate = Callable[[Case], Sequence[Number]]
-"""From a case to its limits Z_0, ..., Z_K; the case has one node, no symbols and an integer charge K."""
+"""From a case without symbols to its limits in the order of its charges: Z_0, ..., Z_K for one node."""
 
 MOST_WORK = 20_000
 """How many configurations an identity may ask for in all, unless its caller says otherwise: some seconds."""
@@ -120,11 +122,13 @@ class Identity:
         return Check(self.name, Verdict.UNDECIDED, self.kind, f"{self.statement}; not run: {why}", self.source)
 
 
-def too_costly(most: int) -> str:
+def nothing_allowed(most: int) -> str:
     """Why a check did not run, and what to do."""
-    return f"more than {most} configurations at charge 1 already; allow more work"
+    what = f"more than {most} configurations at charge 1 already"
+    return too_costly(what, most=most, full=FULL.configurations, less="take fewer colours")
 
 
-def reach_text(reached: int, wanted: int) -> str:
-    """Up to which charge was compared, and that more was wanted."""
-    return f"equal up to charge {reached}" + (f" (of {wanted}: more is too costly)" if reached < wanted else "")
+def reach_text(reached: int, wanted: int, most: int) -> str:
+    """Up to which charge was compared, and that more was wanted; ``most`` configurations were allowed."""
+    more = f" (of {wanted}: {beyond(most=most, full=FULL.configurations)})" if reached < wanted else ""
+    return f"equal up to charge {reached}{more}"

@@ -20,23 +20,24 @@ from ratomega.validator.identities.siblings import (
     Evaluate,
     Identity,
     affordable,
+    nothing_allowed,
     reach_text,
     sibling,
     single_node,
     smooth_charge,
-    too_costly,
 )
 from ratomega.validator.qseries import Series, euler_product
 from ratomega.validator.verdict import Check, Kind
 
-__all__ = ["SOFT", "check_special_adjoint", "soft_sibling"]
+__all__ = ["SOFT", "adjoint_node", "check_special_adjoint", "soft_sibling"]
 
 SOFT = Affine(t=Rational(1, 5))
 NEAR_EPS1 = Affine(eps1=ONE, t=Rational(1, 7))
 NEAR_EPS2 = Affine(eps2=ONE, t=Rational(-1, 3))
 
 
-def _adjoint_node(case: Case) -> Node | None:
+def adjoint_node(case: Case) -> Node | None:
+    """The one node of a case whose only matter is one adjoint; None for any other case."""
     node = single_node(case)
     if node is None or node.antifundamental or node.fundamental or len(node.adjoint) != 1:
         return None
@@ -49,7 +50,7 @@ def check_special_adjoint(case: Case, evaluate: Evaluate, *, most: int = MOST_WO
     None for any other theory, or where a resonance sits at charge 1. Cost: three limits, at most ``most``
     configurations in all; the charge is lowered to what is allowed.
     """
-    node = _adjoint_node(case)
+    node = adjoint_node(case)
     if node is None or smooth_charge(case) < 1:
         return None
     identity = Identity(
@@ -62,14 +63,14 @@ def check_special_adjoint(case: Case, evaluate: Evaluate, *, most: int = MOST_WO
     wanted = smooth_charge(case)
     charge = affordable(case, wanted, lambda k: 3, most)
     if charge < 1:
-        return identity.undecided(too_costly(most))
+        return identity.undecided(nothing_allowed(most))
     euler = euler_product(Rational(-node.rank), charge)
     one = Series.one(charge)
     rows: list[tuple[str, Number, Number]] = []
     for mass, series in ((SOFT, euler), (NEAR_EPS1, one), (NEAR_EPS2, one)):
         values = evaluate(sibling(case, charge, adjoint=mass))
         rows += [(f"Z_{k} at mass {mass}", values[k], series.coefficients[k]) for k in range(1, charge + 1)]
-    return identity.judged(rows, reach_text(charge, wanted))
+    return identity.judged(rows, reach_text(charge, wanted, most))
 
 
 def soft_sibling(case: Case, *, most: int = MOST_WORK) -> Case | None:
@@ -77,7 +78,7 @@ def soft_sibling(case: Case, *, most: int = MOST_WORK) -> Case | None:
 
     None for any other theory, where a resonance sits at charge 1, or where nothing is allowed.
     """
-    node = _adjoint_node(case)
+    node = adjoint_node(case)
     if node is None:
         return None
     charge = affordable(case, smooth_charge(case), lambda k: 1, most)

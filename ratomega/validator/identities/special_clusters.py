@@ -14,11 +14,14 @@ from ratomega.case.case import Case
 from ratomega.case.setting import own_setting
 from ratomega.regulator.limits import ChargeLimit
 from ratomega.validator.comparison import check_adjoint_clusters
-from ratomega.validator.identities.siblings import MOST_WORK
-from ratomega.validator.identities.special_adjoint import SOFT, soft_sibling
-from ratomega.validator.verdict import Check, Kind
+from ratomega.validator.identities.siblings import MOST_WORK, nothing_allowed, smooth_charge
+from ratomega.validator.identities.special_adjoint import SOFT, adjoint_node, soft_sibling
+from ratomega.validator.verdict import Check, Kind, Verdict
 
 __all__ = ["check_special_clusters"]
+
+_NAME = "Euler numbers of the clusters at adjoint mass t/5"
+_SOURCE = "C. Vafa, E. Witten, arXiv hep-th/9408074"
 
 
 def check_special_clusters(
@@ -26,11 +29,13 @@ def check_special_clusters(
 ) -> Check | None:
     """Every cluster of the sibling of mass t/5 sums to its Euler number, for U(N) with one adjoint.
 
-    ``clusterwise`` gives the limits of a case cluster by cluster. None where ``soft_sibling`` is, and where the case
-    has that mass itself, so that its own clusters are checked already.
+    ``clusterwise`` gives the limits of a case cluster by cluster. None for any other theory, where a resonance sits at
+    charge 1, and where the case has that mass itself, so that its own clusters are checked already.
     """
-    other = soft_sibling(case, most=most)
-    if other is None or case.theory.nodes[0].adjoint == (SOFT,):
+    if adjoint_node(case) is None or smooth_charge(case) < 1 or case.theory.nodes[0].adjoint == (SOFT,):
         return None
+    other = soft_sibling(case, most=most)
+    if other is None:
+        return Check(_NAME, Verdict.UNDECIDED, Kind.CONSISTENCY, f"not run: {nothing_allowed(most)}", _SOURCE)
     found = check_adjoint_clusters(own_setting(other), clusterwise(other))
-    return None if found is None else replace(found, name=f"{found.name} at adjoint mass t/5", kind=Kind.SIBLING)
+    return None if found is None else replace(found, name=_NAME)

@@ -143,7 +143,7 @@ def test_clusters_of_the_soft_sibling_sum_to_their_numbers():
     assert check_special_clusters(case, lambda one: clusterwise(case)).verdict is Verdict.REFUTED
     # The case has that mass itself, or nothing is allowed.
     assert check_special_clusters(adjoint_case("1", "1", TWO, mass="t/5"), clusterwise) is None
-    assert check_special_clusters(case, clusterwise, most=0) is None
+    assert check_special_clusters(case, clusterwise, most=0).verdict is Verdict.UNDECIDED
 
 
 # ---- one pole
@@ -233,11 +233,12 @@ def test_work_is_bounded_before_it_starts(check):
     lowered = check(case, asked, most=200)
     assert asked.configurations <= 200
     assert lowered.verdict is Verdict.AGREES
-    assert "(of 6: more is too costly)" in lowered.evidence
+    assert "(of 6: more is too costly; --depth full allows more)" in lowered.evidence
     nothing = Counting()
     refused = check(case, nothing, most=3)
     assert refused.verdict is Verdict.UNDECIDED
     assert "more than 3 configurations" in refused.evidence
+    assert "ask for it with --depth full" in refused.evidence
     assert nothing.cases == []
 
 

@@ -254,11 +254,12 @@ def test_work_is_bounded_before_it_starts(check):
     lowered = check(case, asked, most=150)
     assert asked.configurations <= 150
     assert lowered.verdict is Verdict.AGREES
-    assert ("(of 6: more is too costly)" in lowered.evidence) == (check is not check_one_instanton)
+    assert ("(of 6: more is too costly; --depth full" in lowered.evidence) == (check is not check_one_instanton)
     nothing = Counting()
     refused = check(case, nothing, most=2)
     assert refused.verdict is Verdict.UNDECIDED
     assert "more than 2 configurations" in refused.evidence
+    assert "ask for it with --depth full" in refused.evidence
     assert nothing.cases == []
 
 

@@ -1,0 +1,1 @@
+"""Numbers that were found in other ways, against the exact limits."""
