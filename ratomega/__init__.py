@@ -19,6 +19,10 @@ from ratomega.blocks import block
 from ratomega.case.bundled import bundled_names
 from ratomega.case.case import Case
 from ratomega.case.reading import load_case
+from ratomega.desk.diagram_pictures import draw
+from ratomega.desk.figures import plot, save_plot
+from ratomega.desk.notebook import register as _register
+from ratomega.desk.report import Report, report
 from ratomega.detector.atlas import Atlas, atlas
 from ratomega.documents import load_result, to_json
 from ratomega.errors import InputError, PathError, Problem, RatomegaError, WorkerError
@@ -53,6 +57,7 @@ __all__ = [
     "Quadratic",
     "RationalFunction",
     "RatomegaError",
+    "Report",
     "ValidateResult",
     "Verdict",
     "WorkerError",
@@ -65,10 +70,17 @@ __all__ = [
     "clusters",
     "compare",
     "detect",
+    "draw",
     "explain",
     "limit",
     "load_case",
     "load_result",
+    "plot",
+    "report",
+    "save_plot",
     "to_json",
     "validate",
 ]
+
+# How values show in a notebook is the desk's matter; see there.
+_register()

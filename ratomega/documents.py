@@ -325,11 +325,13 @@ def _factor(f: FactorReport) -> Document:
         "leg": f.leg,
         "form": f.form,
         "on_path": f.on_path,
+        "within": list(f.within),
     }
 
 
 def _read_factor(d: Document) -> FactorReport:
     row, column = _each(_number, d["box"])
+    node, colour = _each(_number, d["within"])
     return FactorReport(
         _word(d["multiplet"]),
         _word(d["place"]),
@@ -339,6 +341,7 @@ def _read_factor(d: Document) -> FactorReport:
         None if d["leg"] is None else _number(d["leg"]),
         _word(d["form"]),
         _word(d["on_path"]),
+        (node, colour),
     )
 
 

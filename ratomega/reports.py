@@ -49,7 +49,7 @@ def _singular_report(weights: Weights, zeros: Zeros, index: dict[Configuration, 
 
 
 def _factor_report(f: Factor) -> FactorReport:
-    return FactorReport(f.multiplet, f.place, f.colours, f.box, f.arm, f.leg, f.form, str(f.value))
+    return FactorReport(f.multiplet, f.place, f.colours, f.box, f.arm, f.leg, f.form, str(f.value), f.within)
 
 
 def _cluster_report(weights: Weights, cluster: Cluster, exchanges: int) -> ClusterReport:

@@ -142,7 +142,10 @@ def _exit_status(checks: tuple[Check, ...]) -> int:
 
 @dataclass(frozen=True, slots=True)
 class FactorReport:
-    """One vanishing factor. ``form`` is what vanishes at the limit point, ``on_path`` its value c + d t on the path."""
+    """One vanishing factor. ``form`` is what vanishes at the limit point, ``on_path`` its value c + d t on the path.
+
+    ``within`` is the (node, colour), from 1, of the diagram in which the box lies.
+    """
 
     multiplet: str
     place: str
@@ -152,6 +155,7 @@ class FactorReport:
     leg: int | None
     form: str
     on_path: str
+    within: tuple[int, int]
 
 
 @dataclass(frozen=True, slots=True)

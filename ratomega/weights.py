@@ -67,7 +67,8 @@ class Factor:
     """One factor of a weight, with everything that names it.
 
     ``place`` is the node's name, or "source -> target" for an edge; colours count from 1 (one colour for flavours,
-    which have no arm and leg). ``value`` is the factor on the path; ``exponent`` is -1 in a denominator.
+    which have no arm and leg). ``value`` is the factor on the path; ``exponent`` is -1 in a denominator. ``within`` is
+    the (node, colour), from 1, of the diagram in which the box lies.
     """
 
     multiplet: str
@@ -79,6 +80,7 @@ class Factor:
     form: str
     value: Linear
     exponent: int
+    within: tuple[int, int]
 
     @property
     def vanishes(self) -> bool:
@@ -310,23 +312,28 @@ class Weights:
             points = [(i - 1, j - 1) for i, j in boxes(diagram)]
             for link in self._contents[slot]:
                 for box, (p, q) in zip(boxes(diagram), points, strict=True):
-                    yield self._named(link, box, None, None, p, q)
+                    yield self._named(link, slot, box, None, None, p, q)
         for (first, second), links in self._pairs.items():
             for link in links:
-                lam, mu = (flat[second], flat[first]) if link.reverse else (flat[first], flat[second])
+                one, two = (second, first) if link.reverse else (first, second)
+                lam, mu = flat[one], flat[two]
                 points = pair_points(lam, mu, self.columns(lam), self.columns(mu))
                 inside = sum(lam)
                 for n, (box, (p, q)) in enumerate(zip([*boxes(lam), *boxes(mu)], points, strict=True)):
                     arm, leg = (q - 1, -p) if n < inside else (-q, p - 1)
-                    yield self._named(link, box, arm, leg, p, q)
+                    yield self._named(link, one if n < inside else two, box, arm, leg, p, q)
 
-    def _named(self, link: _Link, box: Box, arm: int | None, leg: int | None, p: int, q: int) -> Factor:
+    def _named(
+        self, link: _Link, slot: int, box: Box, arm: int | None, leg: int | None, p: int, q: int
+    ) -> Factor:
         c = link.root[0] + p * self.eps1[0] + q * self.eps2[0]
         s = link.root[1] + p * self.eps1[1] + q * self.eps2[1]
         unit = ONE / self.scale
         form = _sum_text(link.label, p, q)
         value = Linear(unit * c, unit * s)
-        return Factor(link.multiplet, link.place, link.colours, box, arm, leg, form, value, link.exponent)
+        node, colour = self.slots[slot]
+        within = node + 1, colour + 1
+        return Factor(link.multiplet, link.place, link.colours, box, arm, leg, form, value, link.exponent, within)
 
     def tangent_points(self, configuration: Configuration) -> Iterator[tuple[int, int, int, int]]:
         """(first slot, second slot, p, q) of every vector factor that vanishes at the limit point.

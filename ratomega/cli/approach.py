@@ -7,6 +7,7 @@ from typing import Any
 import click
 
 from ratomega.cli.options import case_options
+from ratomega.cli.plotting import plot_option, write_plot
 from ratomega.cli.running import finish, loaded_case
 from ratomega.desk.approach_text import approach_text
 from ratomega.verify.approach import DEFAULT_DIGITS, DEFAULT_OFFSETS
@@ -21,8 +22,15 @@ __all__ = ["approach"]
     "--offsets", default=",".join(DEFAULT_OFFSETS), show_default=True, metavar="LIST", help="Offsets, by commas."
 )
 @click.option("--digits", type=int, default=DEFAULT_DIGITS, show_default=True, help="Decimal digits to work with.")
+@plot_option
 def approach(
-    offsets: str, digits: int, as_json: bool, no_tilt: bool, most_configurations: int, **options_given: Any
+    offsets: str,
+    digits: int,
+    plot: str | None,
+    as_json: bool,
+    no_tilt: bool,
+    most_configurations: int,
+    **options_given: Any,
 ) -> int:
     """Evaluate the sum at irrational ratios near the limit, in balls, and see what it loses.
 
@@ -35,4 +43,5 @@ def approach(
         allow_tilt=not no_tilt,
         most_configurations=most_configurations,
     )
+    write_plot(result, plot)
     return finish(result, approach_text, as_json, False)

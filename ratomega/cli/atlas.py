@@ -6,6 +6,7 @@ import re
 
 import click
 
+from ratomega.cli.plotting import plot_option, write_plot
 from ratomega.desk.atlas_text import atlas_text
 from ratomega.detector.atlas import atlas as make_atlas
 from ratomega.documents import to_json
@@ -22,7 +23,10 @@ _INTEGERS = re.compile(r"[+-]?\d{1,9}(,[+-]?\d{1,9})*")
 @click.option("--charge", metavar="K", help="Highest total charge, or one bound a node: 2,1.")
 @click.option("--ratio", metavar="R", help="List the Coulomb poles at eps2/eps1 = R, such as 1/2 or -3.")
 @click.option("--json", "as_json", is_flag=True, help="One JSON document on standard output.")
-def atlas(case: str | None, ranks: str | None, charge: str | None, ratio: str | None, as_json: bool) -> int:
+@plot_option
+def atlas(
+    case: str | None, ranks: str | None, charge: str | None, ratio: str | None, plot: str | None, as_json: bool
+) -> int:
     """List the ratios at which some weight is singular, and the poles in the Coulomb parameters.
 
     Give a CASE, or --ranks with --charge. Coulomb parameters and masses are taken as generic.
@@ -35,6 +39,7 @@ def atlas(case: str | None, ranks: str | None, charge: str | None, ratio: str | 
         charge=None if charge is None else read_charge(charge),
         ratio=ratio,
     )
+    write_plot(found, plot)
     click.echo(to_json(found) if as_json else atlas_text(found), nl=False)
     return found.exit_status
 

@@ -27,6 +27,8 @@ from ratomega.cli.compare import compare
 from ratomega.cli.explain import explain
 from ratomega.cli.new import new
 from ratomega.cli.options import case_options, form_option, probes_option, worker_options
+from ratomega.cli.plotting import plot_option, write_plot
+from ratomega.cli.report import report
 from ratomega.cli.running import (
     INTERRUPTED,
     StatusLine,
@@ -74,7 +76,8 @@ def cli() -> None:
     metavar="N",
     help="Show which boxes are exchanged inside clusters of at most N members.",
 )
-def detect(exchanges: int, as_json: bool, latex: bool, **options_given: Any) -> int:
+@plot_option
+def detect(exchanges: int, plot: str | None, as_json: bool, latex: bool, **options_given: Any) -> int:
     """List the singular configurations, the guilty factors and the clusters.
 
     Example: ratomega detect u2-pure --charge 3
@@ -83,7 +86,9 @@ def detect(exchanges: int, as_json: bool, latex: bool, **options_given: Any) -> 
     job = prepared_job(loaded_case(**options_given), **options_given)
     found, interrupted = collect(job, job.scans(exchanges=exchanges), lambda report: report.charge)
     write = detect_latex if latex else detect_text
-    return finish(detect_result(job, found, partial=interrupted), write, as_json, interrupted)
+    result = detect_result(job, found, partial=interrupted)
+    write_plot(result, plot)
+    return finish(result, write, as_json, interrupted)
 
 
 @cli.command()
@@ -190,6 +195,7 @@ cli.add_command(new)
 cli.add_command(average)
 cli.add_command(block)
 cli.add_command(compare)
+cli.add_command(report)
 
 
 @cli.command()

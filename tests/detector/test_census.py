@@ -420,6 +420,7 @@ def test_names_say_what_vanishes(charge) -> None:
             if f.arm is None:
                 assert f.leg is None
                 assert f.box in plain.boxes(lam)
+                assert f.within == (number_of(setting, left, right)[0] + 1, f.colours[0])
                 assert len(f.colours) == 1
                 phi = a + e1.scaled(i - 1) + e2.scaled(j - 1)
                 mass = [phi + m for m in one.antifundamental] + [phi - m + e1 + e2 for m in one.fundamental]
@@ -431,10 +432,14 @@ def test_names_say_what_vanishes(charge) -> None:
                     "adjoint": one.adjoint,
                     "bifundamental": [m for s, t, m in setting.edges if (s, t) == number_of(setting, left, right)],
                 }[f.multiplet]
+                homes = [(number_of(setting, left, right)[side] + 1, f.colours[side]) for side in (0, 1)]
+                assert f.within in homes
                 sides = []
-                if f.box in plain.boxes(lam) and (f.arm, f.leg) == (plain.arm(lam, f.box), plain.leg(mu, f.box)):
+                hook = (plain.arm(lam, f.box), plain.leg(mu, f.box))
+                if f.within == homes[0] and f.box in plain.boxes(lam) and (f.arm, f.leg) == hook:
                     sides.append(a - b - e1.scaled(f.leg) + e2.scaled(f.arm + 1))
-                if f.box in plain.boxes(mu) and (f.arm, f.leg) == (plain.arm(mu, f.box), plain.leg(lam, f.box)):
+                hook = (plain.arm(mu, f.box), plain.leg(lam, f.box))
+                if f.within == homes[1] and f.box in plain.boxes(mu) and (f.arm, f.leg) == hook:
                     sides.append(a - b + e1.scaled(f.leg + 1) - e2.scaled(f.arm))
                 assert f.value in [side if m is None else side - m for side in sides for m in masses]
             assert written(f, one, two, e1, e2) == (f.value.constant, f.value.slope)

@@ -1,0 +1,83 @@
+"""Formulas as MathML, which browsers show and screen readers read without any help."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+
+from ratomega.desk.markup import Child, Markup, element
+from ratomega.exact.rational import Rational
+
+__all__ = ["formula", "fraction", "polynomial", "ratio", "series"]
+
+LONGEST_TERM = 9
+MOST_TERMS = 6
+
+
+def formula(*children: Child, block: bool = False) -> Markup:
+    return element("math", element("mrow", *children), display="block" if block else "inline")
+
+
+def _name(letter: str, below: str = "") -> Markup:
+    name = element("mi", letter)
+    return element("msub", name, element("mn", below)) if below else name
+
+
+def _sign(text: str) -> Markup:
+    return element("mo", text)
+
+
+def fraction(value: Rational) -> Markup:
+    """A rational number, as a fraction where it is one."""
+    top, bottom = abs(int(value.p)), int(value.q)
+    size = element("mn", top) if bottom == 1 else element("mfrac", element("mn", top), element("mn", bottom))
+    return element("mrow", _sign("−"), size) if value < 0 else size
+
+
+def ratio(value: Rational) -> Markup:
+    """eps2/eps1 = value."""
+    return formula(element("mfrac", _name("ε", "2"), _name("ε", "1")), _sign("="), fraction(value))
+
+
+def _power(name: Markup, exponent: int) -> Markup:
+    return name if exponent == 1 else element("msup", name, element("mn", exponent))
+
+
+def polynomial(coefficients: Sequence[int]) -> Markup:
+    """A polynomial in q with coefficients of 1, q, q^2, ..., none of them negative.
+
+    >>> print(polynomial((1, 2)))
+    <math display="inline"><mrow><mn>1</mn><mo>+</mo><mn>2</mn><mi>q</mi></mrow></math>
+    """
+    parts: list[Child] = []
+    for exponent, count in enumerate(coefficients):
+        if not count:
+            continue
+        if parts:
+            parts.append(_sign("+"))
+        if count != 1 or not exponent:
+            parts.append(element("mn", count))
+        if exponent:
+            parts.append(_power(_name("q"), exponent))
+    return formula(*(parts or [element("mn", 0)]))
+
+
+def series(values: Sequence[tuple[tuple[int, ...], Rational]]) -> Markup:
+    """Z = the first terms that are short, and an ellipsis. ``values`` are (charge, coefficient) in their order."""
+    parts: list[Child] = [_name("Z"), _sign("=")]
+    shown = 0
+    for charge, value in values:
+        if len(str(value)) > LONGEST_TERM or shown == MOST_TERMS:
+            break
+        if value == 0:
+            continue
+        if shown or value < 0:
+            parts.append(_sign("−" if value < 0 else "+"))
+        several = len(charge) > 1
+        powers = [
+            _power(_name("q", str(n) if several else ""), k) for n, k in enumerate(charge, 1) if k
+        ]
+        if abs(value) != 1 or not powers:
+            parts.append(fraction(abs(value)))
+        parts += powers
+        shown += 1
+    return formula(*parts, _sign("+"), _sign("⋯"), block=True)
