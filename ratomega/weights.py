@@ -158,6 +158,7 @@ class Weights:
         # Slots with the same factors share their parts: all colours of a node that has no flavours.
         own = [(_roots(self._pairs[n, n]), _roots(self._contents[n])) for n in range(len(self.slots))]
         self._alike = [own.index(one) for one in own]
+        self._crossing = [(first, second) for first, second in self._pairs if first != second]
         # Pair parts are met again only where a third colour varies beside them.
         self._keep_pairs = len(self.slots) > 2
         self._columns: dict[Diagram, Diagram] = {(): ()}
@@ -262,9 +263,10 @@ class Weights:
         """The factored weight of one configuration."""
         flat = [diagram for node in configuration for diagram in node]
         parts = [self._one(slot, diagram) for slot, diagram in zip(self._alike, flat, strict=True) if diagram]
-        for first, second in self._pairs:
-            if first != second and (flat[first] or flat[second]):
-                parts.append(self._two(first, second, flat[first], flat[second]))
+        for first, second in self._crossing:
+            lam, mu = flat[first], flat[second]
+            if lam or mu:
+                parts.append(self._two(first, second, lam, mu))
         return Weight.of(tuple(parts))
 
     def contents(self, configuration: Configuration) -> ContentsKey:

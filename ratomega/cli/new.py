@@ -39,7 +39,7 @@ def new(
 ) -> int:
     """Write a commented case file to start from; without options it asks.
 
-    Example: ratomega new --minimal 3,4 --external 1,2 --external 1,2 --external 1,2 --external 1,2 --internal 1,1
+    Example: ratomega new --rank 2 --flavours 4 --ratio 1
     """
     if minimal is not None:
         if any(x is not None for x in (rank, flavours, ratio)) or adjoint:

@@ -83,7 +83,7 @@ def _decimal(value: arb, digits: int) -> str:
 def size_text(size: arb) -> str:
     """A few digits of a size.
 
-    >>> size_text(arb(fmpq(1, 3))), size_text(arb(0))
+    >>> size_text(arb(Rational(1, 3))), size_text(arb(0))
     ('0.333', '0')
     """
     return str(size.mid().str(DIGITS_OF_DISTANCE, radius=False)) if size.is_finite() else "inf"

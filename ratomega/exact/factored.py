@@ -214,7 +214,14 @@ def expand(parts: Sequence[Factored], last: int) -> Laurent:
 def _short_quotient(parts: Sequence[Factored], length: int, scale: int, exponent: int) -> fmpq_poly:
     """The product of the parts to ``length`` terms times scale^exponent, in plain integers: less work than polynomials
     while few terms are wanted. All coefficients stand over one denominator."""
-    if length == 2:
+    if length == 1:
+        above = below = 1
+        for part in parts:
+            part_up, part_down = part.heads(1)
+            above *= part_up[0]
+            below *= part_down[0]
+        numerators = [above]
+    elif length == 2:
         # Most weights with a pole have a simple one, and this is half the work of the general way.
         u, v, c, d = 1, 0, 1, 0
         for part in parts:
@@ -227,7 +234,9 @@ def _short_quotient(parts: Sequence[Factored], length: int, scale: int, exponent
         up = down = [1] + [0] * (length - 1)
         for part in parts:
             part_up, part_down = part.heads(length)
-            up, down = _low_product(up, part_up, length), _low_product(down, part_down, length)
+            if part.up:
+                up = _low_product(up, part_up, length)
+            down = _low_product(down, part_down, length)
         lead = down[0]
         numerators, below = [up[0]], lead
         for n in range(1, length):
@@ -242,8 +251,10 @@ def _short_quotient(parts: Sequence[Factored], length: int, scale: int, exponent
 
 
 def _low_product(left: list[int], right: list[int], length: int) -> list[int]:
-    if length == 1:
-        return [left[0] * right[0]]
+    if length == 3:
+        a, b, c = left[0], left[1], left[2]
+        x, y, z = right[0], right[1], right[2]
+        return [a * x, a * y + b * x, a * z + b * y + c * x]
     return [sum([left[k] * right[n - k] for k in range(n + 1)]) for n in range(length)]
 
 

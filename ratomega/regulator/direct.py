@@ -51,6 +51,18 @@ class ChargeSum:
     worst_order: int
 
 
+class _Book:
+    """What is known of a cluster while its members are met."""
+
+    __slots__ = ("has_sink", "lowest_order", "order", "singular", "size", "sum")
+
+    def __init__(self, order: int, empty: Sum) -> None:
+        self.size = self.singular = 0
+        self.order = self.lowest_order = order
+        self.has_sink: bool | None = None
+        self.sum = empty
+
+
 def _part(weights: Weights, charge: Charge, part: range | None) -> Iterator[Configuration]:
     """The configurations of a charge, or those whose numbers lie in ``part`` (of step 1)."""
     if part is None:
@@ -66,9 +78,7 @@ def direct_sum(
     With ``sinks`` the singular clusters are searched for a sink, which decides their compactness.
     """
     precision = last + 1
-    sums: dict[ClusterKey, Sum] = {}
-    books: dict[ClusterKey, list[int]] = {}
-    found_sink: dict[ClusterKey, bool] = {}
+    books: dict[ClusterKey, _Book] = {}
     count = singular = indeterminate = worst = 0
     for configuration in _part(weights, charge, part):
         weight = weights.weight(configuration)
@@ -81,21 +91,21 @@ def direct_sum(
             worst = max(worst, order)
         elif weight.vanishing_denominators:
             indeterminate += 1
-        if sinks and order > 0 and not found_sink.get(key, False):
-            found_sink[key] = is_sink(weights, configuration)
         book = books.get(key)
         if book is None:
-            books[key] = [1, order, order, int(diverges)]
-            sums[key] = Sum(precision=precision)
-        else:
-            book[0] += 1
-            book[1] = max(book[1], order)
-            book[2] = min(book[2], order)
-            book[3] += diverges
-        sums[key].add(weight.laurent(last))
+            book = books[key] = _Book(order, Sum(precision=precision))
+        elif order > book.order:
+            book.order = order
+        elif order < book.lowest_order:
+            book.lowest_order = order
+        book.size += 1
+        book.singular += diverges
+        if sinks and order > 0 and not book.has_sink:
+            book.has_sink = is_sink(weights, configuration)
+        book.sum.add(weight.laurent(last))
     clusters = {
-        key: ClusterSum(book[0], book[1], book[2], book[3], found_sink.get(key), sums[key].series())
-        for key, book in books.items()
+        key: ClusterSum(b.size, b.order, b.lowest_order, b.singular, b.has_sink, b.sum.series())
+        for key, b in books.items()
     }
     series = total((cluster.series for cluster in clusters.values()), precision=precision)
     return ChargeSum(charge, series, clusters, count, singular, indeterminate, worst)

@@ -6,7 +6,7 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 
 from ratomega.case.setting import Setting, resonances
-from ratomega.detector.geometry import compact_by_parameters, resonance_text
+from ratomega.detector.geometry import resonance_text
 from ratomega.diagrams.tuples import Charge
 from ratomega.exact.laurent import Laurent
 from ratomega.exact.quadratic import Number
@@ -64,16 +64,24 @@ def charge_limit(
 ) -> ChargeLimit:
     """The limit at one charge. ``probes`` are the further paths; they are summed only where compactness does not
     prove that the limit is the same on every path, or with ``always_probe``."""
-    compact = compact_by_parameters(weights.setting, charge)
-    own_sum = direct_sum(weights, charge, last=last, sinks=not compact)
-    needed = probes if always_probe or not compact else ()
-    return charge_limit_of(weights.setting, own_sum, [(p.setting, direct_total(p, charge)) for p in needed])
+    resonance = next(resonances(weights.setting, charge), None)
+    own_sum = direct_sum(weights, charge, last=last, sinks=resonance is not None)
+    needed = probes if always_probe or resonance is not None else ()
+    return _judged(weights.setting, own_sum, [(p.setting, direct_total(p, charge)) for p in needed], resonance)
 
 
 def charge_limit_of(setting: Setting, own_sum: ChargeSum, further: Sequence[tuple[Setting, Laurent]]) -> ChargeLimit:
     """The limit at one charge from the sums themselves, wherever they were taken: the own path in full, then the
     further paths."""
-    resonance = next(resonances(setting, own_sum.charge), None)
+    return _judged(setting, own_sum, further, next(resonances(setting, own_sum.charge), None))
+
+
+def _judged(
+    setting: Setting,
+    own_sum: ChargeSum,
+    further: Sequence[tuple[Setting, Laurent]],
+    resonance: tuple[int, int, int, int, int] | None,
+) -> ChargeLimit:
     compact = resonance is None
     own = leading(setting.text(), own_sum.series)
     found = tuple(leading(path.text(), series) for path, series in further)

@@ -59,8 +59,6 @@ def misprint(row: Given, exact: Rational) -> str:
     given, right = _digits(row, exact)
     if len(given) != len(right):
         return "one digit left out or added" if _one_more(given, right) else ""
-    if row.digits is not None and any(_one_more(given, _rounded(exact, last_unit(row.text) * u)) for u in SHIFTS):
-        return "one digit left out or added"
     differ = [n for n, (a, b) in enumerate(zip(given, right, strict=True)) if a != b]
     if len(differ) == 1:
         return "one digit"
@@ -68,6 +66,8 @@ def misprint(row: Given, exact: Rational) -> str:
         n = differ[0]
         if given[n] == right[n + 1] and given[n + 1] == right[n]:
             return "neighbouring digits exchanged"
+    if row.digits is not None and any(_one_more(given, _rounded(exact, last_unit(row.text) * u)) for u in SHIFTS):
+        return "one digit left out or added"
     return ""
 
 
