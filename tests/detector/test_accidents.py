@@ -172,8 +172,3 @@ def test_a_path_on_the_ratio_is_refused_exactly_where_a_denominator_vanishes(poi
         # A path that leaves the ratio is never refused.
         free = make_case(e1, f"{e2} + t", [{"coulomb": coulomb}], charge=charge)
         check_path(own_setting(free), (charge,))
-
-
-def fraction(text):
-    top, _, bottom = text.partition("/")
-    return fmpq(int(top), int(bottom or 1))

@@ -135,6 +135,7 @@ def test_workers_leave_ctrl_c_to_us(folder):
         assert list(crew.results(chunks)) == expected(chunks)
 
 
+@pytest.mark.long
 def test_a_chunk_that_always_kills_ends_in_an_error(folder):
     chunks = marked(folder, 8)
     chunks[4] = Deadly(folder, "deadly")

@@ -288,6 +288,7 @@ if __name__ == "__main__":
 """
 
 
+@pytest.mark.long
 def test_workers_that_always_die_exit_4(command):
     (command.folder / "script.py").write_text(FAILING)
     done = subprocess.run(
@@ -305,6 +306,7 @@ def test_workers_that_always_die_exit_4(command):
 UNGUARDED = "import ratomega\nratomega.limit('u2-pure', workers=1)\n"
 
 
+@pytest.mark.long
 def test_a_script_without_a_guard_is_told_so(tmp_path):
     (tmp_path / "script.py").write_text(UNGUARDED)
     done = subprocess.run(

@@ -67,7 +67,7 @@ def test_the_bytes_do_not_depend_on_an_executor(plain, name):
             assert ratomega.to_json(result) == plain[name]
 
 
-@pytest.mark.parametrize("name", CASES)
+@pytest.mark.parametrize("name", ["fast", pytest.param("poles", marks=pytest.mark.long)])
 def test_killed_workers_change_nothing(plain, name):
     """One of two worker processes is killed, whatever it has in hand; what the other has goes on."""
     case, route = CASES[name]
