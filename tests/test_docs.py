@@ -13,7 +13,7 @@ import pytest
 from click.testing import CliRunner
 
 import ratomega
-from ratomega.cli.main import cli
+from ratomega.cli.main import cli, main
 
 ROOT = Path(__file__).resolve().parent.parent
 README = (ROOT / "README.md").read_text(encoding="utf-8")
@@ -22,11 +22,19 @@ CONSOLE = re.findall(r"```console\n\$ (.*?)\n(.*?)```", README, re.DOTALL)
 
 
 def run(command, folder):
+    """The command in a process of its own, as a user has it."""
     words = shlex.split(command)
     assert words[0] == "ratomega"
     return subprocess.run(
         [sys.executable, "-m", *words], capture_output=True, text=True, encoding="utf-8", cwd=folder, check=False
     )
+
+
+def run_here(command, capsys):
+    """The same entry in this process, which has loaded everything already."""
+    with pytest.raises(SystemExit):
+        main(shlex.split(command)[1:])
+    return capsys.readouterr()
 
 
 @pytest.fixture
@@ -42,10 +50,17 @@ def test_the_readme_has_examples():
 
 
 @pytest.mark.parametrize(("command", "output"), CONSOLE, ids=[command for command, _ in CONSOLE])
-def test_console_examples_print_what_the_readme_shows(command, output, folder):
+def test_console_examples_print_what_the_readme_shows(command, output, folder, monkeypatch, capsys):
+    monkeypatch.chdir(folder)
+    done = run_here(command, capsys)
+    assert (done.out, done.err) == (output, "")
+    assert output
+
+
+def test_the_first_example_in_a_process_of_its_own(folder):
+    command, output = CONSOLE[0]
     done = run(command, folder)
     assert (done.stdout, done.stderr) == (output, "")
-    assert output
 
 
 def test_python_examples():

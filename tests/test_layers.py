@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import ast
+from functools import cache
 from pathlib import Path
 
 import pytest
@@ -41,8 +42,13 @@ LEVEL = {room: level for level, rooms in enumerate(LAYERS) for room in rooms}
 MODULES = sorted(ROOT.rglob("*.py"))
 
 
+@cache
 def imported(path):
-    """(module, names) of every import statement, also those inside functions."""
+    """The modules of every import statement, also of those inside functions."""
+    return tuple(_imported(path))
+
+
+def _imported(path):
     for node in ast.walk(ast.parse(path.read_text(encoding="utf-8"))):
         if isinstance(node, ast.Import):
             for alias in node.names:

@@ -87,7 +87,9 @@ def test_units_scale_out(unit, matter):
 
 
 @pytest.mark.parametrize("matter", MATTER.values(), ids=MATTER.keys())
-@pytest.mark.parametrize("ratio", [(1, 1), (1, 2), (1, -1), (3, -2)], ids=str)
+@pytest.mark.parametrize(
+    "ratio", [(1, 1), (3, -2), *(pytest.param(r, marks=pytest.mark.long) for r in [(1, 2), (1, -1)])], ids=str
+)
 def test_primes_exact_series_and_certified_bound_agree(ratio, matter):
     problem = problem_of(ratio, matter)
     exact = pole_coefficients(problem, 9, exact=True)
