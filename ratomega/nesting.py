@@ -38,6 +38,8 @@ __all__ = ["nested_checks", "nested_result", "refuse_other_ways"]
 # u = kappa t: directions that no symmetry relates; the first of them that leave all resonances are taken.
 DIRECTIONS = tuple(Rational(*kappa) for kappa in ((1, 7), (-3, 5), (5, 11), (-2, 13), (7, 3), (4, 17), (-9, 19)))
 MOST_DIRECTIONS = 3
+# A number t at which nothing happens by accident.
+GENERIC = Rational(2**61 - 1)
 
 _WHY = "u -> 0 at fixed t, then t -> 0; the inner limits are taken at t = P, a prime"
 _NESTED = "limit inside the limit"
@@ -50,8 +52,17 @@ def nested_result(case: Case, *, allow_tilt: bool, most_configurations: int) -> 
     """The limits u -> 0, then t -> 0, with their check. Raises ``InputError`` as ``nested_limits`` does."""
     check_count(case, most_configurations)
     found = nested_limits(case, allow_tilt=allow_tilt)
-    inner = own_setting(case.inner(ZERO))
-    header = Header(VERSION, case, _path(case), case.hash, tuple(dead_colours(inner)))
+    # What holds at t = 0 alone, where parameters meet, says nothing of the inner limits.
+    inner = own_setting(case.inner(GENERIC))
+    warnings = list(dead_colours(own_setting(case.inner(ZERO)))) if dead_colours(inner) else []
+    if inner.tilted:
+        names = ", ".join(name for name, _ in inner.tilts)
+        warnings.insert(
+            0,
+            f"the Coulomb parameters of {names} were tilted by multiples of u in the inner limit, because a difference "
+            "stays on the lattice of eps1 and eps2 there; give multiples of u of your own to choose",
+        )
+    header = Header(VERSION, case, _path(case), case.hash, tuple(warnings))
     route = RouteRecord("direct", "residues", _WHY, found.spare_bits, 2)
     return LimitResult(header, route, tuple(_coefficient(one) for one in found.limits), (_check(found),), False)
 

@@ -216,3 +216,27 @@ def test_symbols_and_u_do_not_go_together():
         )
     with pytest.raises(InputError, match="u has its own meaning"):
         load_case({"charge": 1, "symbols": ["u"], "background": {"eps1": 1, "eps2": 1}, "node": [{"coulomb": ["u"]}]})
+
+
+def test_a_tilt_of_the_inner_limit_is_said():
+    """Equal Coulomb parameters that u does not move: tilted where that is harmless, refused where the limit would
+    depend on the tilt, as at a1 - a2 = t = eps1 + eps2."""
+    result = ratomega.limit(nested("1 + t", ["0", "0"], antifundamental=["1/3 + u"], charge=1))
+    assert any("tilted by multiples of u" in warning for warning in result.header.warnings)
+    # Parameters that meet at t = 0 alone are no reason for a warning.
+    for untilted in (CASES["smooth"], load_case("vacuum-from-momentum"), load_case("vacuum-degenerate")):
+        assert not ratomega.limit(untilted).header.warnings
+    with pytest.raises(InputError, match="give multiples of u of your own"):
+        ratomega.limit(nested("-1 + t", ["t/2", "-t/2"], antifundamental=["1/3 + u"], charge=1))
+
+
+def test_a_pole_in_u_is_not_called_one_in_t():
+    from ratomega.desk.latex import limit_latex
+    from ratomega.desk.text import limit_text
+
+    result = ratomega.limit(nested("2 + t", ["(eps1 + eps2)/2 + u", "-(eps1 + eps2)/2"], charge=1))
+    for text in (limit_text(result), limit_latex(result)):
+        assert "pole of order 1" in text
+        assert "pole t^" not in text
+        assert "pole $t" not in text
+    assert "u^-1 t^-0" in result.checks[0].evidence

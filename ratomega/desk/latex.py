@@ -103,12 +103,17 @@ def limit_latex(result: LimitResult) -> str:
     """The coefficients: charge, status, why the path does not matter, value."""
     head = ["charge", "status", "independence", "value"]
     columns = r"rllp{0.55\linewidth}"
-    rows = [[charge_word(c.charge), _status(c), c.independence or "--", _limit(c)] for c in result.coefficients]
+    nested = len(result.header.path.parameters) > 1
+    rows = [
+        [charge_word(c.charge), _status(c, nested=nested), c.independence or "--", _limit(c)]
+        for c in result.coefficients
+    ]
     return "\n".join([*_heading(result.header, result.partial), *_table(columns, head, rows)]) + "\n"
 
 
-def _status(c: Coefficient) -> str:
-    return f"pole $t^{{-{c.order}}}$" if c.status == "pole" else escaped(c.status)
+def _status(c: Coefficient, *, nested: bool) -> str:
+    pole = f"pole of order {c.order}" if nested else f"pole $t^{{-{c.order}}}$"
+    return pole if c.status == "pole" else escaped(c.status)
 
 
 def _limit(c: Coefficient) -> str:

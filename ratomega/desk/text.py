@@ -102,7 +102,8 @@ def limit_text(result: LimitResult) -> str:
     """The coefficients, the paths where they matter, and the certificate."""
     head = ["charge", "weights", "singular", "worst order", "singular clusters", "status", "independence"]
     head += ["approx.", "exact"]
-    rows = [_limit_row(c) for c in result.coefficients]
+    nested = len(result.header.path.parameters) > 1
+    rows = [_limit_row(c, nested=nested) for c in result.coefficients]
     lines = [*heading(result.header, result.partial)[:-1], _route_line(result.route), ""]
     lines += table(head, rows, left=[5, 6, 7, 8])
     for c in result.coefficients:
@@ -130,10 +131,12 @@ def _route_line(route: RouteRecord) -> str:
     return f"route    {route.route} ({route.why}){how}"
 
 
-def _limit_row(c: Coefficient) -> list[str]:
+def _limit_row(c: Coefficient, *, nested: bool) -> list[str]:
     known = (c.configurations, c.singular, c.worst_order, c.singular_clusters)
     counts = ["-" if n is None else str(n) for n in known]
-    status = f"pole t^-{c.order}" if c.status == "pole" else c.status
+    # With two small parameters the order is that of both together; the check beside says which has how much of it.
+    pole = f"pole of order {c.order}" if nested else f"pole t^-{c.order}"
+    status = pole if c.status == "pole" else c.status
     if isinstance(c.value, RationalFunction):
         function = c.value
         return [charge_word(c.charge), *counts, status, c.independence or "", "function", function_text(function)]

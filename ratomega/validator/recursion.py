@@ -1,7 +1,7 @@
 """The pole recursion of U(2) against the sum over diagrams: at the limit point itself, or right beside it.
 
 Where no Coulomb difference is resonant and all is rational the recursion gives the limit. Elsewhere it is run at the
-point t = P of the case's own path, P a prime of 127 bits or so, where nothing is special, and a root sqrt(d) is
+point t = P of the case's own path, P a prime of 127 bits or more, where nothing is special, and a root sqrt(d) is
 replaced by an integer r with r^2 = d modulo P^(n+1), n the worst pole: everything is rational there. The sum over
 diagrams says
 
@@ -43,7 +43,7 @@ _STATEMENT = (
 )
 _BESIDE = (
     "Z is the sum over its poles 2a = ±(m eps1 + n eps2), with residues fixed by lower charges, taken on the own path "
-    "at the number t = P, a prime of 127 bits; modulo P it is the expansion in t"
+    "at the number t = P, a prime of 127 bits or more; modulo P it is the expansion in t"
 )
 _SOURCE = "Al. Zamolodchikov 1984; R. Poghossian, arXiv 0909.3412"
 
