@@ -39,7 +39,7 @@ __all__ = ["nested_checks", "nested_result", "refuse_other_ways"]
 DIRECTIONS = tuple(Rational(*kappa) for kappa in ((1, 7), (-3, 5), (5, 11), (-2, 13), (7, 3), (4, 17), (-9, 19)))
 MOST_DIRECTIONS = 3
 # A number t at which nothing happens by accident.
-GENERIC = Rational(2**61 - 1)
+GENERIC = Rational(2**61 - 1, 1000003)
 
 _WHY = "u -> 0 at fixed t, then t -> 0; the inner limits are taken at t = P, a prime"
 _NESTED = "limit inside the limit"
