@@ -1,6 +1,6 @@
 """Cases with u: the chain for a limit inside the limit, and what is checked of it.
 
-    case -> inner limits at two numbers t = P (regulator.nested) -> coefficients -> checks -> result
+    case -> inner limits at two numbers t = P/Q (regulator.nested) -> coefficients -> checks -> result
 """
 
 from __future__ import annotations
@@ -22,7 +22,7 @@ from ratomega.exact.quadratic import Number, number_text, only_rational
 from ratomega.exact.rational import ZERO, Rational
 from ratomega.job import check_count
 from ratomega.regulator.limits import charge_limit
-from ratomega.regulator.nested import NestedLimit, NestedLimits, nested_limits
+from ratomega.regulator.nested import BELOW, NestedLimit, NestedLimits, nested_limits
 from ratomega.regulator.outcome import Independence
 from ratomega.regulator.poles.problem import applies, case_problem
 from ratomega.regulator.poles.recursion import pole_coefficients
@@ -39,9 +39,9 @@ __all__ = ["nested_checks", "nested_result", "refuse_other_ways"]
 DIRECTIONS = tuple(Rational(*kappa) for kappa in ((1, 7), (-3, 5), (5, 11), (-2, 13), (7, 3), (4, 17), (-9, 19)))
 MOST_DIRECTIONS = 3
 # A number t at which nothing happens by accident.
-GENERIC = Rational(2**61 - 1, 1000003)
+GENERIC = Rational(2**61 - 1, BELOW)
 
-_WHY = "u -> 0 at fixed t, then t -> 0; the inner limits are taken at t = P, a prime"
+_WHY = "u -> 0 at fixed t, then t -> 0; the inner limits are taken at t = P/Q, P and Q primes"
 _NESTED = "limit inside the limit"
 _ORDER = "order of the two limits"
 _SOURCE = "P-adic evaluation: a fraction is found from its residue when the prime is longer than both of its parts"
@@ -97,8 +97,8 @@ def _check(found: NestedLimits) -> Check:
         return Check(CANCELLATION, Verdict.REFUTED, Kind.CONSISTENCY, f"poles survive: {said}", _SOURCE)
     first, second = found.bits
     evidence = (
-        f"inner limits at t = 2^{first} - 1 and t = 2^{second} - 1; no pole in u or t; every value is the fraction "
-        f"behind its residue modulo the first prime, with {found.spare_bits} bits to spare at least, and confirmed by "
+        f"inner limits at t = (2^{first} - 1)/{BELOW} and (2^{second} - 1)/{BELOW}; no pole in u or t; every value is "
+        f"the fraction behind its residue modulo the first prime, with {found.spare_bits} bits to spare at least, and confirmed by "
         "the second"
     )
     return Check(_NESTED, Verdict.AGREES, Kind.CONSISTENCY, evidence, _SOURCE)

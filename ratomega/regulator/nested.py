@@ -1,9 +1,10 @@
 """A limit inside the limit: u -> 0 first, at fixed t, and then t -> 0.
 
-At fixed t the inner limit is an ordinary one, with u as the parameter of its path. It is taken at one number t = P, a
-Mersenne prime, which is small in the P-adic sense: the inner limits are a rational function of t, so
+At fixed t the inner limit is an ordinary one, with u as the parameter of its path. It is taken at one number t = P/Q, P
+a Mersenne prime, which is small in the P-adic sense; Q, another prime, keeps t off the integers, where Coulomb
+differences would meet the lattice of eps1 and eps2 by accident. The inner limits are a rational function of t, so
 
-    Z_k(P) = P^-n (s_0 + s_1 P + ...),    s_0 = P^n Z_k(P) modulo P,
+    Z_k(t) = t^-n (s_0 + s_1 t + ...),    s_0 = t^n Z_k(t) modulo P,
 
 and s_0, a fraction of which numerator and denominator together have fewer bits than P, is found from its residue. The
 bits to spare are counted, and a second prime confirms. Nothing is expanded in t.
@@ -26,11 +27,12 @@ from ratomega.exact.residues import reconstruct
 from ratomega.regulator.direct import direct_total
 from ratomega.weights import Weights
 
-__all__ = ["NestedLimit", "NestedLimits", "nested_limits"]
+__all__ = ["BELOW", "NestedLimit", "NestedLimits", "nested_limits"]
 
 # p with 2^p - 1 prime.
 EXPONENTS = (521, 607, 1279, 2203, 4423, 9689)
 SPARE_BITS = 64
+BELOW = 1_000_003
 
 
 @dataclass(frozen=True, slots=True)
@@ -59,7 +61,7 @@ class NestedLimits:
 
 @dataclass(frozen=True, slots=True)
 class _At:
-    """The inner limits at t = P: by charge the order of the pole in u, and the leading coefficient."""
+    """The inner limits at t = P/Q: by charge the order of the pole in u, and the leading coefficient."""
 
     prime: int
     values: tuple[tuple[Charge, int, Number], ...]
@@ -67,7 +69,7 @@ class _At:
     @classmethod
     def of(cls, case: Case, exponent: int, *, allow_tilt: bool) -> _At:
         prime = 2**exponent - 1
-        weights = Weights(_inner_setting(case, Rational(prime), allow_tilt=allow_tilt))
+        weights = Weights(_inner_setting(case, Rational(prime, BELOW), allow_tilt=allow_tilt))
         return cls(prime, tuple(_leading(weights, charge) for charge in case.charges))
 
 
@@ -115,7 +117,7 @@ def nested_limits(case: Case, *, allow_tilt: bool = True) -> NestedLimits:
 
 
 def _found(value: Number, prime: int) -> tuple[int, Number, int] | None:
-    """(order of the pole in t, leading coefficient, spare bits) behind the value at t = P; None: P is too small."""
+    """(order of the pole in t, leading coefficient, spare bits) behind the value at t = P/Q; None: P is too small."""
     parts = rational_parts(value)
     order = max(_poles(part, prime) for part in parts)
     fractions = []
@@ -156,6 +158,6 @@ def _poles(value: Rational, prime: int) -> int:
 
 
 def _residue(value: Rational, order: int, prime: int) -> int:
-    """P^order times the value, modulo P."""
-    scaled = value * Rational(prime) ** order
+    """t^order times the value, modulo P."""
+    scaled = value * Rational(prime, BELOW) ** order
     return int(scaled.p) * pow(int(scaled.q), -1, prime) % prime
