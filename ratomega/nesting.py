@@ -98,8 +98,8 @@ def _check(found: NestedLimits) -> Check:
     first, second = found.bits
     evidence = (
         f"inner limits at t = (2^{first} - 1)/{BELOW} and (2^{second} - 1)/{BELOW}; no pole in u or t; every value is "
-        f"the fraction behind its residue modulo the first prime, with {found.spare_bits} bits to spare at least, and confirmed by "
-        "the second"
+        f"the fraction behind its residue modulo the first prime, with {found.spare_bits} bits to spare at least, and "
+        "confirmed by the second"
     )
     return Check(_NESTED, Verdict.AGREES, Kind.CONSISTENCY, evidence, _SOURCE)
 
