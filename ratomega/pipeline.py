@@ -10,8 +10,7 @@ from collections.abc import Callable, Iterator, Sequence
 from concurrent.futures import Executor
 from contextlib import nullcontext
 from dataclasses import replace
-
-import networkx
+from typing import TYPE_CHECKING
 
 from ratomega.case.case import Case
 from ratomega.case.reading import load_case
@@ -38,6 +37,9 @@ from ratomega.symbolic.functions import SymbolicLimit
 from ratomega.validator.checklist import Depth, depth_of, first_checks, outside_checks
 from ratomega.validator.finiteness import certificate, short_cut_certificate
 from ratomega.validator.verdict import Check
+
+if TYPE_CHECKING:
+    import networkx
 
 __all__ = ["DEFAULT_PROBES", "clusters", "detect", "limit", "validate"]
 

@@ -9,7 +9,7 @@ import click
 from ratomega.cli.plotting import plot_option, write_plot
 from ratomega.desk.atlas_text import atlas_text
 from ratomega.detector.atlas import atlas as make_atlas
-from ratomega.documents import to_json
+from ratomega.documents.results import to_json
 from ratomega.errors import InputError
 
 __all__ = ["atlas", "read_charge"]

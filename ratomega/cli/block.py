@@ -6,7 +6,7 @@ import click
 
 from ratomega.blocks import block as make_block
 from ratomega.desk.block_text import block_text
-from ratomega.documents import to_json
+from ratomega.documents.results import to_json
 
 __all__ = ["block"]
 

@@ -5,7 +5,7 @@ from __future__ import annotations
 import click
 
 from ratomega.desk.compare_text import compare_text
-from ratomega.documents import to_json
+from ratomega.documents.results import to_json
 from ratomega.job import MOST_CONFIGURATIONS
 from ratomega.verify.comparing import compare as make_comparison
 from ratomega.verify.quantities import NAMES

@@ -1,7 +1,7 @@
 """How results show in a notebook: one table of types, entered once.
 
 Notebooks of every kind ask an object for ``_repr_html_``. Results know nothing of the desk, which lies above them; so
-``ratomega/__init__`` calls ``register``, which gives each type of the table that one method. (The other way, a
+``ratomega/api`` calls ``register``, which gives each type of the table that one method. (The other way, a
 formatter registered with IPython, would serve IPython alone and need it imported first.) A representation is a fragment
 that brings its style with it, has no ids, loads nothing and runs nothing; it is bounded like a page.
 """
