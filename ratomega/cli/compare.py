@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import click
 
+from ratomega.cli.completion import CASE, TABLE
 from ratomega.desk.compare_text import compare_text
 from ratomega.documents.results import to_json
 from ratomega.job import MOST_CONFIGURATIONS
@@ -14,8 +15,8 @@ __all__ = ["compare"]
 
 
 @click.command()
-@click.argument("case")
-@click.argument("numbers")
+@click.argument("case", type=CASE)
+@click.argument("numbers", type=TABLE)
 @click.option("--as", "as_", type=click.Choice(NAMES), help="What the numbers are; without it each is tried.")
 @click.option(
     "--most-configurations",

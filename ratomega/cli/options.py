@@ -7,6 +7,7 @@ from typing import Any
 
 import click
 
+from ratomega.cli.completion import CASE, FILE
 from ratomega.job import MOST_CONFIGURATIONS
 from ratomega.pipeline import DEFAULT_PROBES
 
@@ -28,7 +29,7 @@ def case_options(function: Callable[..., Any]) -> Callable[..., Any]:
         click.option("--eps2", metavar="EXPR", help="Replace eps2 of the case; t may occur."),
         click.option("--eps1", metavar="EXPR", help="Replace eps1 of the case; t may occur."),
         click.option("--charge", metavar="K", help="Highest total charge, or one bound a node: 2,1."),
-        click.argument("case"),
+        click.argument("case", type=CASE),
     ):
         function = decorate(function)
     return function
@@ -51,7 +52,12 @@ def form_option(function: Callable[..., Any]) -> Callable[..., Any]:
 def worker_options(function: Callable[..., Any]) -> Callable[..., Any]:
     """The options that say who does the work."""
     for decorate in (
-        click.option("--keep", metavar="FILE", help="Keep finished parts in FILE, and go on from what is there."),
+        click.option(
+            "--keep",
+            type=FILE,
+            metavar="FILE",
+            help="Keep finished parts in FILE, and go on from what is there.",
+        ),
         click.option("--cluster", metavar="ADDRESS", help="Work on the dask cluster with this scheduler."),
         click.option("--workers", type=int, metavar="N", help="Work in N processes."),
     ):
