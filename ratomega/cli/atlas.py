@@ -18,7 +18,7 @@ __all__ = ["atlas", "read_charge"]
 _INTEGERS = re.compile(r"[+-]?\d{1,9}(,[+-]?\d{1,9})*")
 
 
-@click.command()
+@click.command("atlas", short_help="List the ratios with singular weights, and the Coulomb poles.")
 @click.argument("case", type=CASE, required=False)
 @click.option("--ranks", metavar="N", help="Instead of a case: the rank of every node, such as 2 or 2,1.")
 @click.option("--charge", metavar="K", help="Highest total charge, or one bound a node: 2,1.")

@@ -12,7 +12,7 @@ from ratomega.documents.results import to_json
 __all__ = ["block"]
 
 
-@click.command()
+@click.command("block", short_help="Give a conformal block, its gauge theory and the dictionary.")
 @click.argument("case", type=CASE)
 @click.option("--order", "--charge", "order", type=int, metavar="K", help="Highest power of x, or of q on the torus.")
 @click.option("--json", "as_json", is_flag=True, help="One JSON document on standard output.")

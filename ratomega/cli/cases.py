@@ -17,7 +17,7 @@ from ratomega.version import VERSION
 __all__ = ["cases"]
 
 
-@click.command("cases")
+@click.command("cases", short_help="List the bundled demo cases, or print the file of one.")
 @click.argument("name", type=CASE_NAME, required=False)
 @click.option("--json", "as_json", is_flag=True, help="One JSON document on standard output.")
 def cases(name: str | None, as_json: bool) -> int:

@@ -14,7 +14,7 @@ from ratomega.verify.quantities import NAMES
 __all__ = ["compare"]
 
 
-@click.command()
+@click.command("compare", short_help="Find what is the matter with someone's numbers.")
 @click.argument("case", type=CASE)
 @click.argument("numbers", type=TABLE)
 @click.option("--as", "as_", type=click.Choice(NAMES), help="What the numbers are; without it each is tried.")

@@ -19,7 +19,7 @@ from ratomega.regulator.routes import ROUTES, uses_primes
 __all__ = ["limit"]
 
 
-@click.command("limit")
+@click.command("limit", short_help="Take the limit of every coefficient exactly, with a certificate.")
 @case_options
 @probes_option
 @worker_options

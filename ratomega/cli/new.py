@@ -17,7 +17,7 @@ __all__ = ["new"]
 _PAIR = re.compile(r"(\d{1,4}),(\d{1,4})")
 
 
-@click.command("new")
+@click.command("new", short_help="Write a commented case file, from options or by asking.")
 @click.option("--rank", type=int, help="The number of colours N of U(N).")
 @click.option("--flavours", type=int, help="How many antifundamentals.")
 @click.option("--adjoint", is_flag=True, help="With an adjoint.")

@@ -17,7 +17,7 @@ from ratomega.version import VERSION
 __all__ = ["report"]
 
 
-@click.command("report")
+@click.command("report", short_help="Write one self-contained HTML page on a case.")
 @click.argument("case", type=CASE)
 @click.option(
     "-o",

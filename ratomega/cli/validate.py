@@ -28,7 +28,7 @@ from ratomega.validator.verdict import Check
 __all__ = ["validate"]
 
 
-@click.command("validate")
+@click.command("validate", short_help="Run every outside check that applies to a case.")
 @case_options
 @probes_option
 @worker_options
