@@ -6,12 +6,13 @@ from collections.abc import Callable
 from typing import Any
 
 import click
+from click.core import ParameterSource
 
 from ratomega.cli.completion import CASE, FILE
 from ratomega.job import MOST_CONFIGURATIONS
 from ratomega.pipeline import DEFAULT_PROBES
 
-__all__ = ["case_options", "form_option", "probes_option", "worker_options"]
+__all__ = ["case_options", "form_option", "probes_option", "was_typed", "worker_options"]
 
 
 def case_options(function: Callable[..., Any]) -> Callable[..., Any]:
@@ -42,6 +43,11 @@ probes_option = click.option(
     show_default=True,
     help="How many further paths are tried.",
 )
+
+
+def was_typed(name: str) -> bool:
+    """Whether the option of the running command was given, be it as the default."""
+    return click.get_current_context().get_parameter_source(name) is not ParameterSource.DEFAULT
 
 
 def form_option(function: Callable[..., Any]) -> Callable[..., Any]:
