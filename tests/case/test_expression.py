@@ -223,7 +223,7 @@ def test_numbers_from_python():
         (float("nan"), "not exact"),
         (float("inf"), "not exact"),
         (True, "truth value"),
-        (None, "NoneType"),
+        (None, "exact number, not null"),
         (1j, "the complex 1j is not exact"),
         (sympy.pi, "not an exact number"),
         (sympy.sqrt(2) + sympy.sqrt(3), "does not lie in one quadratic field"),
