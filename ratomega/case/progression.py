@@ -118,12 +118,12 @@ def read_counting(given: object, nodes: int, background: Background) -> tuple[Co
 def _counting(given: object, background: Background) -> Counting:
     if not isinstance(given, str) or "+/-" not in given:
         return Counting(read_number(given, "q", background))
-    # A real ball as flint prints it has brackets around it.
+    # A real ball as flint prints it has brackets around it, and no middle where no digit of it is known.
     middle, _, around = given.strip().removeprefix("[").removesuffix("]").partition("+/-")
     radius = as_rational(around, "q")
     if radius < 0:
         raise InputError.single(f"the radius of {quoted(given)} is below zero", "q")
-    return Counting(read_number(middle, "q", background), radius)
+    return Counting(read_number(middle if middle.strip() else "0", "q", background), radius)
 
 
 def _short(number: Number, where: str) -> Number:
