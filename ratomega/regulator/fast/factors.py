@@ -200,15 +200,21 @@ def diagram_factors(hooks: Floats, place: Integers, forest: Forest, bench: Bench
     return result
 
 
+def hook_numerators(setup: FastSetup, e: Floats, other: Floats, moduli: Moduli) -> Floats:
+    """What adjoints multiply the factor of one box of D by, from E and ``other`` = eps - E."""
+    product = np.ones_like(e)
+    for mass in setup.adjoints:
+        m = whole(mass, moduli)
+        product = moduli.multiply(product, moduli.multiply(moduli.reduce(e - m), moduli.reduce(other - m)))
+    return product
+
+
 def hook_values(setup: FastSetup, charge: int, parameters: Parameters, moduli: Moduli) -> tuple[Floats, Integers]:
     """The factor of one box of D by arm and leg, where no denominator vanishes."""
     p, q, place = hook_forms(charge)
     e = forms(0, p, q, parameters, moduli)
     other = moduli.reduce(parameters.eps - e)
-    up = np.ones_like(e)
-    for mass in setup.adjoints:
-        m = whole(mass, moduli)
-        up = moduli.multiply(up, moduli.multiply(moduli.reduce(e - m), moduli.reduce(other - m)))
+    up = hook_numerators(setup, e, other, moduli)
     return moduli.multiply(up, moduli.inverses(moduli.multiply(e, other))), place
 
 
