@@ -13,6 +13,7 @@ from ratomega.case.case import Case
 from ratomega.case.reading import load_case
 from ratomega.desk.diagram_pictures import draw
 from ratomega.desk.figures import plot, save_plot
+from ratomega.desk.grid_csv import grid_csv
 from ratomega.desk.notebook import register as _register
 from ratomega.desk.report import Report, report
 from ratomega.detector.atlas import Atlas, atlas
@@ -21,6 +22,8 @@ from ratomega.errors import InputError, PathError, Problem, RatomegaError, Worke
 from ratomega.exact.quadratic import Quadratic
 from ratomega.exact.rational_function import RationalFunction
 from ratomega.explaining import Explanation, explain
+from ratomega.grid_results import GridResult, GridRow
+from ratomega.grids import grid
 from ratomega.pipeline import clusters, detect, limit, validate
 from ratomega.results import Coefficient, DetectResult, LimitResult, ValidateResult
 from ratomega.validator.verdict import Check, Kind, Verdict
@@ -40,6 +43,8 @@ __all__ = [
     "CompareResult",
     "DetectResult",
     "Explanation",
+    "GridResult",
+    "GridRow",
     "InputError",
     "Kind",
     "LimitResult",
@@ -62,6 +67,8 @@ __all__ = [
     "detect",
     "draw",
     "explain",
+    "grid",
+    "grid_csv",
     "limit",
     "load_case",
     "load_result",

@@ -31,6 +31,7 @@ COMMANDS = (
     "compare",
     "detect",
     "explain",
+    "grid",
     "limit",
     "new",
     "report",

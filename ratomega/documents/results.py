@@ -23,12 +23,14 @@ from ratomega.documents.blocks import block_document, read_block
 from ratomega.documents.comparing import compare_body, read_compare
 from ratomega.documents.detecting import detect_body, read_detect
 from ratomega.documents.explaining import explanation_body, read_explanation
+from ratomega.documents.grids import grid_body, read_grid
 from ratomega.documents.header import header_document, read_header
 from ratomega.documents.limits import limit_body, read_limit
 from ratomega.documents.pieces import Document, flag
 from ratomega.documents.validating import read_validate, validate_body
 from ratomega.errors import InputError
 from ratomega.explaining import Explanation
+from ratomega.grid_results import GridResult
 from ratomega.results import DetectResult, Header, LimitResult, ValidateResult
 from ratomega.verify.approach import Approach
 from ratomega.verify.comparing import CompareResult
@@ -45,6 +47,7 @@ Result = (
     | Approach
     | CompareResult
     | Explanation
+    | GridResult
 )
 
 LARGEST_DOCUMENT = 512 * 1024 * 1024
@@ -66,6 +69,7 @@ _FORMS = {
     "average": _Form(AverageResult, average_body, read_average),
     "approach": _Form(Approach, approach_body, read_approach),
     "compare": _Form(CompareResult, compare_body, read_compare),
+    "grid": _Form(GridResult, grid_body, read_grid),
     "explain": _Form(Explanation, explanation_body, read_explanation),
 }
 

@@ -16,7 +16,7 @@ from ratomega.case.setting import Setting, own_setting
 from ratomega.diagrams.tuples import Charge, count_all
 from ratomega.errors import InputError
 from ratomega.exact.batches import ResidueTask, Supplier, here
-from ratomega.exact.quadratic import only_rational
+from ratomega.exact.quadratic import Number, only_rational
 from ratomega.exact.rational import Rational
 from ratomega.regulator.direct import direct_total
 from ratomega.regulator.fast.setup import prepare
@@ -55,7 +55,7 @@ class ShortCut:
     beyond a proved bound); ``primes`` counts the primes used.
     """
 
-    values: tuple[Rational, ...]
+    values: tuple[Number, ...]
     method: str
     spare_bits: int | None
     primes: int
@@ -134,6 +134,6 @@ def point_values(setting: Setting, highest: tuple[int, ...]) -> Callable[[Charge
     """The limit at every charge within the highest, for a setting without resonances: what interpolation asks for."""
     if len(highest) == 1 and worthwhile(setting, highest[0]):
         coefficients = fast_sum(setting, highest[0]).coefficients
-        return lambda wanted: coefficients[wanted[0]]
+        return lambda wanted: only_rational(coefficients[wanted[0]])
     weights = Weights(setting)
     return lambda wanted: only_rational(direct_total(weights, wanted).coefficient(0))
