@@ -29,7 +29,7 @@ def average_body(result: AverageResult) -> Document:
 
 
 def read_average(document: Mapping[str, Any], header: Header, partial: bool) -> AverageResult:
-    """The way back. Raises ``KeyError``, ``TypeError`` or ``ValueError`` for anything else."""
+    """The way back. Raises ``Misfit``, or what Python raises, for anything else."""
     of = one_of(document, "of", KINDS)
     averages = tuple(
         Average(word(a["name"]), tuple(_read_limit(c, of in FUNCTIONS) for c in listed(a["coefficients"])))

@@ -25,7 +25,7 @@ def limit_body(result: LimitResult) -> Document:
 
 
 def read_limit(document: Mapping[str, Any], header: Header, partial: bool) -> LimitResult:
-    """The way back. Raises ``KeyError``, ``TypeError`` or ``ValueError`` for anything else."""
+    """The way back. Raises ``Misfit``, or what Python raises, for anything else."""
     coefficients = tuple(_read_coefficient(c, header.case.symbols) for c in listed(document["coefficients"]))
     checks = read_checks(document["checks"])
     return LimitResult(header, _read_route(document["route"]), coefficients, checks, partial)
