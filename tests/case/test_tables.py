@@ -23,15 +23,6 @@ def refusal(work, *arguments):
     return problem
 
 
-def places(work, *arguments):
-    """Where the mistakes are; none when there is no mistake. Anything but ``InputError`` goes through."""
-    try:
-        work(*arguments)
-    except InputError as error:
-        return [problem.where for problem in error.problems]
-    return []
-
-
 @pytest.mark.parametrize(
     ("text", "where", "said"),
     [
