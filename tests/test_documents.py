@@ -91,6 +91,31 @@ def test_a_damaged_document_is_refused(change, said):
         ratomega.load_result(json.dumps(document))
 
 
+FOUR_FIELDS = [{"weight": "1/5"}, {"weight": "1/7"}, {"weight": "1/3"}, {"weight": "1/11"}]
+# The internal weight is degenerate, and no fusion rule holds.
+DEGENERATE = {"conformal": {"c": "1/2", "external": FOUR_FIELDS, "internal": {"kac": [2, 1]}, "order": 2}}
+
+
+@pytest.mark.parametrize("order", ["order", "leading"])
+@pytest.mark.parametrize("kind", ["limit", "average", "block"])
+def test_half_a_pole_is_refused(kind, order):
+    case = ratomega.load_case("surviving-pole").with_charge(1)
+    match kind:
+        case "limit":
+            result = ratomega.limit(case)
+        case "average":
+            result = ratomega.average(case, of="size")
+        case "block":
+            result = ratomega.block(DEGENERATE)
+    document = json.loads(ratomega.to_json(result))
+    assert ratomega.load_result(json.dumps(document)) == result
+    coefficients = document["averages"][0]["coefficients"] if kind == "average" else document["coefficients"]
+    half = next(c for c in coefficients if "leading" in c)
+    del half["pole_order" if (kind, order) == ("block", "order") else order]
+    with pytest.raises(ratomega.InputError, match='order" and "leading" go together'):
+        ratomega.load_result(json.dumps(document))
+
+
 def test_what_is_not_a_document_is_refused(tmp_path):
     with pytest.raises(ratomega.InputError, match="not a JSON document"):
         ratomega.load_result("{ nothing")

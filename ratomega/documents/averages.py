@@ -12,7 +12,7 @@ from typing import Any
 from ratomega.average_results import Average, AverageResult
 from ratomega.averages.functions import SYMBOL
 from ratomega.averages.limits import FUNCTIONS, KINDS, AverageLimit, AveragePath, AverageValue
-from ratomega.documents.pieces import Document, each, exact, if_given, listed, one_of, whole, word
+from ratomega.documents.pieces import Document, each, exact, if_given, listed, one_of, together, whole, word
 from ratomega.exact.function_text import function_text, parse_function
 from ratomega.exact.line_function import LineFunction
 from ratomega.exact.quadratic import number_text, square_root
@@ -50,6 +50,7 @@ def _limit(c: AverageLimit) -> Document:
 
 
 def _read_limit(d: Mapping[str, Any], function: bool) -> AverageLimit:
+    together(d, "order", "leading")
     values = listed(d["values"]) if "values" in d else []
     return AverageLimit(
         charge=each(whole, d["charge"]),

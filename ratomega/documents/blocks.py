@@ -20,6 +20,7 @@ from ratomega.documents.pieces import (
     listed,
     optional_text,
     rational,
+    together,
     whole,
     word,
 )
@@ -131,6 +132,7 @@ def _coefficient(c: BlockCoefficient) -> Document:
 
 
 def _read_coefficient(d: Mapping[str, Any]) -> BlockCoefficient:
+    together(d, "pole_order", "leading")
     block, elliptic, gauge, leading = (
         exact(d[name]) if name in d else None for name in ("block", "elliptic", "gauge", "leading")
     )

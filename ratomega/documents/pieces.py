@@ -26,6 +26,7 @@ __all__ = [
     "optional_text",
     "rational",
     "real",
+    "together",
     "whole",
     "word",
 ]
@@ -82,6 +83,12 @@ def each(read: Callable[[Any], T], values: object) -> tuple[T, ...]:
 
 def if_given(read: Callable[[object], T], value: object) -> T | None:
     return None if value is None else read(value)
+
+
+def together(document: Mapping[str, Any], first: str, second: str) -> None:
+    """Two keys of which neither says anything without the other."""
+    if (first in document) != (second in document):
+        raise Misfit(f'"{first}" and "{second}" go together, and one of them is missing')
 
 
 def exact(value: object) -> Number:

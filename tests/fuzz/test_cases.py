@@ -57,7 +57,7 @@ def read_or_refused(case):
         assert isinstance(case, (ConformalCase, InputError))
 
 
-@searches(100)
+@searches(70)
 def test_any_tables(search):
     search(lambda data: read_or_refused(outcome(case_from_mapping, data)), st.dictionaries(keys, anything, max_size=6))
 
@@ -92,7 +92,7 @@ def changed(draw):
     return data
 
 
-@searches(150)
+@searches(100)
 def test_a_good_case_with_something_changed(search):
     def work(data):
         read_or_refused(outcome(case_from_mapping, data))
@@ -117,7 +117,7 @@ def damaged(draw):
     return text
 
 
-@searches(150)
+@searches(100)
 def test_damaged_files(search, tmp_path):
     path = tmp_path / "damaged.toml"
 
@@ -134,7 +134,7 @@ def with_bytes(data):
     return st.builds(lambda at, new: data[:at] + new + data[at:], st.integers(0, len(data)), st.binary(max_size=3))
 
 
-@searches(150)
+@searches(100)
 def test_any_text_is_toml_or_refused(search):
     soup = st.lists(pieces, max_size=12).map("".join)
     texts = st.text(max_size=80) | st.text(alphabet="ab=[]{}.,\"'#\n\\ 1/t", max_size=80) | soup

@@ -24,7 +24,7 @@ nested = st.builds(lambda n, m, inside: "(" * n + inside + ")" * m, st.integers(
 known = st.sampled_from([SYMBOLS, ("t",), ("t", "u"), (*SYMBOLS, "u", "a")])
 
 
-@searches(250)
+@searches(200)
 def test_any_text_is_read_or_refused(search):
     def work(example):
         given, symbols = example

@@ -22,6 +22,10 @@ QUIVER = {
     "edge": [{"from": "left", "to": "right", "mass": "1/5"}],
 }
 
+FOUR_FIELDS = [{"weight": "1/5"}, {"weight": "1/7"}, {"weight": "1/3"}, {"weight": "1/11"}]
+# A block with a pole: the internal weight is degenerate, and no fusion rule holds.
+DEGENERATE = {"conformal": {"c": "1/2", "external": FOUR_FIELDS, "internal": {"kac": [2, 1]}, "order": 2}}
+
 
 @cache
 def documents():
@@ -40,6 +44,10 @@ def documents():
         ratomega.validate(ratomega.load_case("u1-pure").with_charge(1)),
         ratomega.average(case, of="trace-powers", powers=2),
         ratomega.average(ratomega.load_case("u2-pure").with_charge(1), of="Y(x)"),
+        ratomega.average(ratomega.load_case("surviving-pole").with_charge(1), of="size"),
+        ratomega.block(DEGENERATE),
+        ratomega.grid("free-momentum", {"a": ["1/3", "eps1"]}),
+        ratomega.grid("free-momentum", {"a": "0 to 2*i in 2"}, digits=8, q="1/2"),
         ratomega.atlas(ranks=2, charge=2, ratio="1/2"),
         ratomega.block("block-mixed-fields", order=1),
         ratomega.approach(case, offsets=["1e-2"], digits=15),
@@ -105,7 +113,7 @@ def changed(draw):
     return json.dumps(data)
 
 
-@searches(200)
+@searches(150)
 def test_a_document_with_something_changed(search):
     search(read_or_refused, changed())
 
@@ -118,7 +126,7 @@ def damaged(draw):
     return text[:start] + draw(st.sampled_from(pieces)) + text[start + length :]
 
 
-@searches(100)
+@searches(50)
 def test_a_damaged_text(search):
     texts = damaged() | st.text(max_size=20).map("{{{}".format) | st.just("{" * 100_000)
 
@@ -129,7 +137,7 @@ def test_a_damaged_text(search):
     search(work, texts)
 
 
-@searches(60)
+@searches(50)
 def test_any_file(search, tmp_path):
     path = tmp_path / "result.json"
 

@@ -73,7 +73,7 @@ def edited(changes):
     return bytes(data)
 
 
-@searches(120)
+@searches(100)
 def test_a_damaged_store(search, tmp_path):
     path = tmp_path / "kept"
 
@@ -120,7 +120,7 @@ def filled(draw):
     return chunks | {key: json.dumps(data)}
 
 
-@searches(80)
+@searches(60)
 def test_a_store_whose_chunks_say_something_else(search, tmp_path):
     """Checksums are no secret: whoever made the file can have made them too."""
     path = tmp_path / "kept"

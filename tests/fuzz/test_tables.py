@@ -39,7 +39,7 @@ line = st.builds(lambda cells, by: by.join(cells), st.lists(cell, max_size=4), s
 csv_text = st.builds(lambda lines, end: end.join(lines), st.lists(line, max_size=6), st.sampled_from(["\n", "\r\n"]))
 
 
-@searches(200)
+@searches(120)
 def test_any_csv_file(search, tmp_path):
     path = tmp_path / "t.csv"
 
@@ -67,7 +67,7 @@ document = (
 )
 
 
-@searches(150)
+@searches(80)
 def test_any_python_value(search):
     search(lambda example: read_or_refused(*example, "numbers"), st.tuples(document, nodes))
 
@@ -86,7 +86,7 @@ def json_text(draw):
     return text
 
 
-@searches(150)
+@searches(80)
 def test_any_json_text(search):
     def work(example):
         text, names = example
