@@ -11,7 +11,7 @@ import json
 
 import click
 import pytest
-from fuzzing import clear, searches
+from fuzzing import clear, patience, searches
 from hypothesis import strategies as st
 
 from ratomega.cli.main import COMMANDS, cli, main
@@ -155,25 +155,48 @@ def run(words):
     return status, *texts
 
 
-@searches(60)
+def ends_well(words):
+    """The line ends with a result or with clear sentences, and its status says which."""
+    status, out, err = run(words)
+    assert status in (0, 1, 2, 3)
+    asks_help = "-h" in words or "--help" in words
+    if "--json" in words and words[0] != "new" and not asks_help:
+        json.loads(out)
+    elif status == 2:
+        assert out == ""
+    elif words[0] != "new":
+        assert out
+    if status == 2:
+        assert err
+        for line in err.splitlines():
+            assert line.startswith("ratomega: ")
+            clear(line.removeprefix("ratomega: "))
+
+
+def write_files(folder):
+    for name, text in FILES.items():
+        (folder / name).write_text(text)
+
+
+@searches(100)
 def test_any_command_line(search, tmp_path, monkeypatch):
     monkeypatch.chdir(tmp_path)
 
     def work(words):
-        for name, text in FILES.items():
-            (tmp_path / name).write_text(text)
-        status, out, err = run(words)
-        assert status in (0, 1, 2, 3)
-        if "--json" in words and "-h" not in words and "--help" not in words and "new" not in words[:1]:
-            json.loads(out)
-        elif status == 2:
-            assert out == ""
-        if status == 2:
-            assert err
-            for line in err.splitlines():
-                assert line.startswith("ratomega: ")
-                clear(line.removeprefix("ratomega: "))
-        elif words[0] != "new" and words[0] != "report":
-            assert out
+        write_files(tmp_path)
+        ends_well(words)
 
     search(work, command_lines())
+
+
+@pytest.mark.long
+@pytest.mark.parametrize("name", COMMANDS)
+def test_every_value_of_every_option(name, tmp_path, monkeypatch):
+    monkeypatch.chdir(tmp_path)
+    start = STARTS.get(name, ["u1-pure", "--charge", "1"])
+    for option in OPTIONS:
+        values = values_of(option) if any(option in p.opts for p in PARAMETERS[name]) else []
+        for value in [None] if values is None else values:
+            write_files(tmp_path)
+            with patience():
+                ends_well([name, *start, option, *([] if value is None else [value])])

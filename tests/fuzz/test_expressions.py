@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import functools
+
 import pytest
 from fuzzing import outcome, searches
 from hypothesis import strategies as st
@@ -20,7 +22,19 @@ text = st.text(max_size=60) | st.text(alphabet="0123456789.eE+-*/()tps12 ^_x", m
 # What grows: many operands, deep parentheses, long texts, up to the bounds and beyond.
 times = st.integers(0, 60) | st.sampled_from([400, 1999, 2100])
 repeated = st.builds(lambda word, n, rest: word * n + rest, token, times, tokens)
-nested = st.builds(lambda n, m, inside: "(" * n + inside + ")" * m, st.integers(0, 60), st.integers(0, 60), tokens)
+depth = st.integers(0, 60) | st.just(900)
+nested = st.builds(lambda n, m, inside: "(" * n + inside + ")" * m, depth, depth, tokens)
+# Well formed, so that what is refused is refused for its meaning.
+OPERANDS = ["0", "1", "2", "3/7", "0.5", "eps1", "t", "a", "i", "sqrt(2)", "sqrt(3)", "sqrt({})", "(1-1)", "(eps1-t)"]
+steps = st.lists(st.tuples(st.sampled_from("+-*//"), st.sampled_from(OPERANDS)), min_size=2, max_size=6)
+flat = steps.map(lambda pairs: "".join(sign + operand for sign, operand in pairs).lstrip("*/"))
+formed = st.lists(flat, min_size=1, max_size=3).map(lambda parts: functools.reduce(put_in, parts))
+
+
+def put_in(outer, inner):
+    return outer.replace("{}", inner) if "{}" in outer else f"({outer})*({inner})"
+
+
 known = st.sampled_from([SYMBOLS, ("t",), ("t", "u"), (*SYMBOLS, "u", "a")])
 
 
@@ -34,4 +48,4 @@ def test_any_text_is_read_or_refused(search):
         else:
             assert parse_affine(str(read), symbols=symbols) == read
 
-    search(work, st.tuples(text | tokens | repeated | nested, known))
+    search(work, st.tuples(st.one_of(formed, formed, formed, text, tokens, repeated, nested), known))
