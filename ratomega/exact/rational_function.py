@@ -133,10 +133,11 @@ class RationalFunction:
 
     def __add__(self, other: RationalFunction | Number | int) -> RationalFunction:
         other = self._other(other)
-        left, right, below = other.denominator, self.denominator, self.denominator * other.denominator
         if self.denominator == other.denominator:
             left = right = self.numerator.context().constant(1)
             below = self.denominator
+        else:
+            left, right, below = other.denominator, self.denominator, self.denominator * other.denominator
         top = self.numerator * left + other.numerator * right
         if self.irrational is None and other.irrational is None:
             return RationalFunction.make(top, below)
