@@ -48,7 +48,7 @@ def _constant_texts(constant: Number) -> tuple[str, list[str], list[str]]:
         content = math.gcd(int((constant.x * scale).p), int((constant.y * scale).p))
         whole = quadratic(constant.x * scale / content, constant.y * scale / content, constant.d)
         sign, size = signed_text(whole)
-        above, below = [str(Rational(content)), size], str(scale)
+        above, below = [str(Rational(content)), size], str(Rational(scale))
     else:
         sign, size = signed_text(Rational(constant.p))
         above, below = [size], str(constant.q)

@@ -274,3 +274,12 @@ def test_giving_some_of_the_symbols():
 def test_latex_is_that_of_sympy():
     assert line("(a + sqrt(-1))/(a - sqrt(-1))**2").latex() == r"\frac{a + i}{\left(a - i\right)^{2}}"
     assert line("a/sqrt(21)").latex() == r"\frac{\sqrt{21}}{21} a"
+
+
+def test_numbers_of_any_length_are_written():
+    """Python's own integers refuse to be written beyond 4300 digits."""
+    digits = "7" * 5000
+    text = f"({digits} + sqrt(-1))*(a + 1{digits}*sqrt(-1))/(3{digits}*a)"
+    function = line(text)
+    assert str(function) == f"({digits} + sqrt(-1))*(a + 1{digits}*sqrt(-1))/(3{digits}*a)"
+    assert line(str(function)) == function
