@@ -9,6 +9,7 @@ import click
 from ratomega.case.bundled import bundled_names, bundled_text
 from ratomega.case.case import Case
 from ratomega.case.reading import load_case
+from ratomega.cli.completion import CASE_NAME
 from ratomega.desk.text import charge_word, table, theory_text
 from ratomega.exact.rational import exact_text
 from ratomega.version import VERSION
@@ -16,8 +17,8 @@ from ratomega.version import VERSION
 __all__ = ["cases"]
 
 
-@click.command("cases")
-@click.argument("name", required=False)
+@click.command("cases", short_help="List the bundled demo cases, or print the file of one.")
+@click.argument("name", type=CASE_NAME, required=False)
 @click.option("--json", "as_json", is_flag=True, help="One JSON document on standard output.")
 def cases(name: str | None, as_json: bool) -> int:
     """List the bundled demo cases, or print the file of one: a start for your own.

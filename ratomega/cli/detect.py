@@ -16,7 +16,7 @@ from ratomega.pipeline import detect_result
 __all__ = ["detect"]
 
 
-@click.command("detect")
+@click.command("detect", short_help="List singular configurations, guilty factors and clusters.")
 @case_options
 @form_option
 @click.option(

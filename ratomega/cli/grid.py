@@ -18,7 +18,7 @@ from ratomega.grids import grid as make_grid
 __all__ = ["grid"]
 
 
-@click.command()
+@click.command("grid", short_help="Evaluate coefficients at many values of free parameters.")
 @case_options
 @click.option(
     "--at",

@@ -7,7 +7,7 @@ from typing import Any
 
 import click
 
-from ratomega.cli.options import case_options, form_option, probes_option, worker_options
+from ratomega.cli.options import case_options, form_option, probes_option, was_typed, worker_options
 from ratomega.cli.running import collect, crew_of, finish, loaded_case, nested_limits_of, one_form, prepared_job
 from ratomega.desk.csv_text import limit_csv
 from ratomega.desk.latex import limit_latex
@@ -19,7 +19,7 @@ from ratomega.regulator.routes import ROUTES, uses_primes
 __all__ = ["limit"]
 
 
-@click.command("limit")
+@click.command("limit", short_help="Take the limit of every coefficient exactly, with a certificate.")
 @case_options
 @probes_option
 @worker_options
@@ -52,7 +52,7 @@ def limit(
     loaded = loaded_case(**options_given)
     if loaded.nested:
         asked = {"terms": terms is not None, "route": route == "poles", "certify": certify}
-        refuse_other_ways(**asked, workers=workers, cluster=cluster, keep=keep)
+        refuse_other_ways(**asked, probes=was_typed("probes"), workers=workers, cluster=cluster, keep=keep)
         return finish(nested_limits_of(loaded, **options_given), write, as_json, False)
     job = prepared_job(loaded, **options_given, route=route, clusterwise=terms is not None)
     with crew_of(job, workers, cluster, keep) as crew:

@@ -6,7 +6,7 @@ from typing import Any
 
 import click
 
-from ratomega.cli.options import case_options, form_option, probes_option, worker_options
+from ratomega.cli.options import case_options, form_option, probes_option, was_typed, worker_options
 from ratomega.cli.running import (
     StatusLine,
     collect,
@@ -28,7 +28,7 @@ from ratomega.validator.verdict import Check
 __all__ = ["validate"]
 
 
-@click.command("validate")
+@click.command("validate", short_help="Run every outside check that applies to a case.")
 @case_options
 @probes_option
 @worker_options
@@ -58,7 +58,7 @@ def validate(
     write = validate_latex if latex else validate_text
     loaded = loaded_case(**options_given)
     if loaded.nested:
-        refuse_other_ways(workers=workers, cluster=cluster, keep=keep)
+        refuse_other_ways(probes=was_typed("probes"), workers=workers, cluster=cluster, keep=keep)
         limits_found = nested_limits_of(loaded, **options_given)
         nested = ValidateResult(limits_found.header, tuple(nested_checks(loaded, limits_found)), depth)
         return finish(nested, write, as_json, False)
