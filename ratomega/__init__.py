@@ -9,78 +9,28 @@
     >>> [str(coefficient.value) for coefficient in ratomega.limit(case)]
     ['1', '9/16', '23409/189728']
 
-The public API in one screen; nothing is defined here.
+``ratomega.api`` lists the public names in one screen. It is read when the first of them is asked for, not before.
 """
 
-from ratomega.average_results import Average, AverageResult
-from ratomega.averaging import average
-from ratomega.block_results import BlockCoefficient, BlockResult
-from ratomega.blocks import block
-from ratomega.case.bundled import bundled_names
-from ratomega.case.case import Case
-from ratomega.case.reading import load_case
-from ratomega.desk.diagram_pictures import draw
-from ratomega.desk.figures import plot, save_plot
-from ratomega.desk.notebook import register as _register
-from ratomega.desk.report import Report, report
-from ratomega.detector.atlas import Atlas, atlas
-from ratomega.documents import load_result, to_json
-from ratomega.errors import InputError, PathError, Problem, RatomegaError, WorkerError
-from ratomega.exact.quadratic import Quadratic
-from ratomega.exact.rational_function import RationalFunction
-from ratomega.explaining import Explanation, explain
-from ratomega.pipeline import clusters, detect, limit, validate
-from ratomega.results import Coefficient, DetectResult, LimitResult, ValidateResult
-from ratomega.validator.verdict import Check, Kind, Verdict
-from ratomega.verify.approach import Approach, approach
-from ratomega.verify.comparing import CompareResult, compare
-from ratomega.version import VERSION as __version__
+from importlib import import_module
+from typing import TYPE_CHECKING, Any
 
-__all__ = [
-    "Approach",
-    "Atlas",
-    "Average",
-    "AverageResult",
-    "BlockCoefficient",
-    "BlockResult",
-    "Case",
-    "Check",
-    "Coefficient",
-    "CompareResult",
-    "DetectResult",
-    "Explanation",
-    "InputError",
-    "Kind",
-    "LimitResult",
-    "PathError",
-    "Problem",
-    "Quadratic",
-    "RationalFunction",
-    "RatomegaError",
-    "Report",
-    "ValidateResult",
-    "Verdict",
-    "WorkerError",
-    "__version__",
-    "approach",
-    "atlas",
-    "average",
-    "block",
-    "bundled_names",
-    "clusters",
-    "compare",
-    "detect",
-    "draw",
-    "explain",
-    "limit",
-    "load_case",
-    "load_result",
-    "plot",
-    "report",
-    "save_plot",
-    "to_json",
-    "validate",
-]
+from ratomega.version import VERSION as __version__  # noqa: F401
 
-# How values show in a notebook is the desk's matter; see there.
-_register()
+if TYPE_CHECKING:
+    from ratomega.api import *  # noqa: F403
+else:
+
+    def __getattr__(name: str) -> Any:
+        """A public name, from ``ratomega.api``."""
+        # The import machinery also asks for names like __path__, which no module of ours defines.
+        if name == "__all__" or not name.startswith("__"):
+            api = import_module("ratomega.api")
+            if name == "__all__":
+                return ["__version__", *api.__all__]
+            if name in api.__all__:
+                return globals().setdefault(name, getattr(api, name))
+        raise AttributeError(f"module {__name__!r} has no attribute {name!r}")
+
+    def __dir__() -> list[str]:
+        return sorted({*globals(), *import_module("ratomega.api").__all__})

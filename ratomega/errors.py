@@ -13,7 +13,10 @@ from collections.abc import Iterable
 from dataclasses import dataclass
 from typing import Self
 
-__all__ = ["InputError", "PathError", "PrecisionError", "Problem", "RatomegaError", "WorkerError"]
+__all__ = ["INTERRUPTED", "InputError", "PathError", "PrecisionError", "Problem", "RatomegaError", "WorkerError"]
+
+INTERRUPTED = 130
+"""The exit status of a run that was interrupted from the keyboard; those of errors stand with them."""
 
 
 @dataclass(frozen=True, slots=True)

@@ -22,7 +22,8 @@ from ratomega.diagrams.tuples import Charge, count_all
 from ratomega.errors import InputError
 from ratomega.exact.batches import here
 from ratomega.exact.path import SMALL_PARAMETERS
-from ratomega.exact.rational import ZERO, Rational
+from ratomega.exact.quadratic import Number
+from ratomega.exact.rational import ZERO
 from ratomega.regulator.limits import ChargeLimit, charge_limit
 from ratomega.regulator.routes import ShortCut, Way, choose, point_values, short_cut
 from ratomega.reports import charge_report
@@ -51,7 +52,7 @@ class ShortLimit:
     """The limit at one charge by a short cut: no weight was looked at."""
 
     charge: Charge
-    value: Rational
+    value: Number
     evidence: ShortCut
 
 

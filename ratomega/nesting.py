@@ -42,6 +42,8 @@ MOST_DIRECTIONS = 3
 GENERIC = Rational(2**61 - 1, BELOW)
 
 _WHY = "u -> 0 at fixed t, then t -> 0; the inner limits are taken at t = P/Q, P and Q primes"
+_ONE_WAY = "a limit inside the limit (u) is taken in one way, in one process"
+_NO_PATHS = "a limit inside the limit (u) follows no single path, so there is no number of further ones to be tried"
 _NESTED = "limit inside the limit"
 _ORDER = "order of the two limits"
 _SOURCE = "P-adic evaluation: a fraction is found from its residue when the prime is longer than both of its parts"
@@ -215,5 +217,4 @@ def refuse_other_ways(**given: object) -> None:
     """A case with u takes one way. Raises ``InputError`` for an option of another."""
     for name, value in given.items():
         if value:
-            raise InputError.single("a limit inside the limit (u) is taken in one way, in one process", name)
-
+            raise InputError.single(_NO_PATHS if name == "probes" else _ONE_WAY, name)

@@ -10,8 +10,7 @@ from collections.abc import Callable, Iterator, Sequence
 from concurrent.futures import Executor
 from contextlib import nullcontext
 from dataclasses import replace
-
-import networkx
+from typing import TYPE_CHECKING
 
 from ratomega.case.case import Case
 from ratomega.case.reading import load_case
@@ -39,6 +38,9 @@ from ratomega.validator.checklist import Depth, depth_of, first_checks, outside_
 from ratomega.validator.finiteness import certificate, short_cut_certificate
 from ratomega.validator.verdict import Check
 
+if TYPE_CHECKING:
+    import networkx
+
 __all__ = ["DEFAULT_PROBES", "clusters", "detect", "limit", "validate"]
 
 DEFAULT_PROBES = 3
@@ -50,7 +52,7 @@ def limit(
     source: CaseSource,
     *,
     terms: int | None = None,
-    probes: int = DEFAULT_PROBES,
+    probes: int | None = None,
     allow_tilt: bool = True,
     most_configurations: int = MOST_CONFIGURATIONS,
     watch: Watcher | None = None,
@@ -63,8 +65,9 @@ def limit(
     """The exact limit of every coefficient of Z up to the case's charge, with its certificate.
 
     ``source`` is a case, a mapping, a file or the name of a bundled case. ``terms=n`` adds the expansion on the own
-    path up to t^n. ``probes`` further paths are tried where compactness does not prove path-independence. ``watch`` is
-    called with every finished charge. Raises ``InputError`` for bad input; a surviving pole is a result, not an error.
+    path up to t^n. ``probes`` further paths, 3 unless said, are tried where compactness does not prove independence of
+    the path. ``watch`` is called with every finished charge. Raises ``InputError`` for bad input; a surviving pole is a
+    result, not an error.
 
     ``workers=n`` does the sum in n processes, which are started again when they die; ``executor`` does it in one of the
     caller's, which stays the caller's (``workers`` then says how many workers it has, if that is to be known). ``keep``
@@ -93,9 +96,8 @@ def limit(
     case = load_case(source)
     if case.nested:
         poles = route == "poles"
-        refuse_other_ways(
-            terms=terms is not None, route=poles, certify=certify, workers=workers, executor=executor, keep=keep
-        )
+        asked = {"terms": terms is not None, "route": poles, "certify": certify, "probes": probes is not None}
+        refuse_other_ways(**asked, workers=workers, executor=executor, keep=keep)
         return nested_result(case, allow_tilt=allow_tilt, most_configurations=most_configurations)
     job = Job.prepare(
         case,
@@ -105,8 +107,9 @@ def limit(
         clusterwise=terms is not None,
     )
     found = []
+    further = DEFAULT_PROBES if probes is None else probes
     with job.crew(workers=workers, executor=executor, keep=keep) or nullcontext() as crew:
-        for one in job.limits(probes=probes, terms=terms, crew=crew, certify=certify):
+        for one in job.limits(probes=further, terms=terms, crew=crew, certify=certify):
             found.append(one)
             if watch is not None:
                 watch(one.charge)
@@ -218,7 +221,7 @@ def clusters(
 def validate(
     source: CaseSource,
     *,
-    probes: int = DEFAULT_PROBES,
+    probes: int | None = None,
     allow_tilt: bool = True,
     most_configurations: int = MOST_CONFIGURATIONS,
     watch: Watcher | None = None,
@@ -229,9 +232,9 @@ def validate(
 ) -> ValidateResult:
     """Every check that applies to the case: finiteness, further paths, independent routes, identities.
 
-    Further paths are run here also where compactness proves the outcome. A check that does not apply is left out; one
-    that costs more than ``depth`` ("quick" or "full") allows is undecided and says so. ``workers``, ``executor`` and
-    ``keep`` are those of ``limit`` and serve the limits of the case itself.
+    Further paths, ``probes`` of them or 3, are run here also where compactness proves the outcome. A check that does
+    not apply is left out; one that costs more than ``depth`` ("quick" or "full") allows is undecided and says so.
+    ``workers``, ``executor`` and ``keep`` are those of ``limit`` and serve the limits of the case itself.
 
     >>> case = {"charge": 3, "background": {"eps1": 1, "eps2": 1}, "node": [{"coulomb": ["1/3", "-1/3"]}]}
     >>> result = validate(case)
@@ -243,15 +246,16 @@ def validate(
     asked = depth_of(depth)
     case = load_case(source)
     if case.nested:
-        refuse_other_ways(workers=workers, executor=executor, keep=keep)
+        refuse_other_ways(probes=probes is not None, workers=workers, executor=executor, keep=keep)
         found_limits = nested_result(case, allow_tilt=allow_tilt, most_configurations=most_configurations)
         return ValidateResult(found_limits.header, tuple(nested_checks(case, found_limits)), asked.name)
     job = Job.prepare(
         case, allow_tilt=allow_tilt, most_configurations=most_configurations, clusterwise=True
     )
     found = []
+    further = DEFAULT_PROBES if probes is None else probes
     with job.crew(workers=workers, executor=executor, keep=keep) or nullcontext() as crew:
-        for one in job.limits(probes=probes, always_probe=True, crew=crew):
+        for one in job.limits(probes=further, always_probe=True, crew=crew):
             found.append(one)
             if watch is not None:
                 watch(one.charge)

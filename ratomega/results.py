@@ -7,8 +7,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 from dataclasses import dataclass
-
-import networkx
+from typing import TYPE_CHECKING
 
 from ratomega.case.case import Case
 from ratomega.detector.clusters import add_exchanges
@@ -18,6 +17,9 @@ from ratomega.exact.rational_function import RationalFunction
 from ratomega.regulator.outcome import PathValue
 from ratomega.validator.finiteness import CANCELLATION, PATHS
 from ratomega.validator.verdict import Check, Kind, Verdict
+
+if TYPE_CHECKING:
+    import networkx
 
 __all__ = [
     "ChargeReport",
@@ -231,6 +233,8 @@ class ChargeReport:
 
     def graph(self) -> networkx.Graph:
         """The singular clusters as a graph: members are nodes, two are joined when no third lies between them."""
+        import networkx
+
         graph = networkx.Graph()
         for index, cluster in enumerate(self.clusters):
             graph.add_nodes_from(cluster.members, cluster=index, order=cluster.order)

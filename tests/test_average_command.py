@@ -10,8 +10,8 @@ import pytest
 
 import ratomega
 from ratomega import averaging
-from ratomega.average_documents import average_body
 from ratomega.cli.main import main
+from ratomega.documents.averages import average_body
 
 KINDS = ["Y(x)", "1/Y(x)", "trace-powers", "size"]
 

@@ -12,6 +12,7 @@ from flint import fmpq
 import ratomega
 from ratomega.case.case import Case
 from ratomega.case.reading import case_from_mapping, case_to_mapping, load_case
+from ratomega.cli.main import main
 from ratomega.errors import InputError
 from ratomega.exact.quadratic import Quadratic
 from ratomega.exact.rational import Rational
@@ -207,6 +208,22 @@ def test_commands_that_follow_one_path_refuse(call):
 def test_options_of_other_ways_are_refused(options):
     with pytest.raises(InputError, match="taken in one way"):
         ratomega.limit(CASES["smooth"], **options)
+
+
+@pytest.mark.parametrize("number", [0, 1, 3])
+def test_a_number_of_further_paths_is_refused(number, capsys):
+    """Also 0, and the number that other cases take by themselves."""
+    for call in (ratomega.limit, ratomega.validate):
+        with pytest.raises(InputError, match=r"probes: .*follows no single path"):
+            call(CASES["smooth"], probes=number)
+    for command in ("limit", "validate"):
+        with pytest.raises(SystemExit) as stopped:
+            main([command, "vacuum-degenerate", "--probes", str(number)])
+        assert stopped.value.code == 2
+        shown = capsys.readouterr()
+        assert shown.out == ""
+        assert shown.err.startswith("ratomega: probes: a limit inside the limit (u) follows no single path")
+        assert shown.err.count("\n") == 1
 
 
 def test_symbols_and_u_do_not_go_together():

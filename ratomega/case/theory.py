@@ -9,12 +9,14 @@ from __future__ import annotations
 
 from collections.abc import Callable, Iterable, Iterator, Mapping
 from dataclasses import dataclass, replace
-
-import networkx
+from typing import TYPE_CHECKING
 
 from ratomega.case.affine import Affine
 from ratomega.case.wording import quoted
 from ratomega.errors import InputError, Problem
+
+if TYPE_CHECKING:
+    import networkx
 
 __all__ = ["HIGHEST_RANK", "MOST_EDGES", "MOST_MASSES", "MOST_NODES", "Edge", "Node", "Theory"]
 
@@ -88,6 +90,9 @@ class Theory:
     @property
     def graph(self) -> networkx.MultiDiGraph:
         """The quiver as a multigraph: nodes by name with ``rank``, edges with ``mass``; adjoints are loops."""
+        # Here, since neither the command line nor a worker asks for it, and it takes longer to import than all of them.
+        import networkx
+
         graph = networkx.MultiDiGraph()
         for node in self.nodes:
             graph.add_node(node.name, rank=node.rank)

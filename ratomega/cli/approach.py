@@ -16,7 +16,7 @@ from ratomega.verify.approach import approach as approach_limits
 __all__ = ["approach"]
 
 
-@click.command("approach")
+@click.command("approach", short_help="See what the sum loses at irrational ratios near the limit.")
 @case_options
 @click.option(
     "--offsets", default=",".join(DEFAULT_OFFSETS), show_default=True, metavar="LIST", help="Offsets, by commas."

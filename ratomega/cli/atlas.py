@@ -6,10 +6,11 @@ import re
 
 import click
 
+from ratomega.cli.completion import CASE
 from ratomega.cli.plotting import plot_option, write_plot
 from ratomega.desk.atlas_text import atlas_text
 from ratomega.detector.atlas import atlas as make_atlas
-from ratomega.documents import to_json
+from ratomega.documents.results import to_json
 from ratomega.errors import InputError
 
 __all__ = ["atlas", "read_charge"]
@@ -17,8 +18,8 @@ __all__ = ["atlas", "read_charge"]
 _INTEGERS = re.compile(r"[+-]?\d{1,9}(,[+-]?\d{1,9})*")
 
 
-@click.command()
-@click.argument("case", required=False)
+@click.command("atlas", short_help="List the ratios with singular weights, and the Coulomb poles.")
+@click.argument("case", type=CASE, required=False)
 @click.option("--ranks", metavar="N", help="Instead of a case: the rank of every node, such as 2 or 2,1.")
 @click.option("--charge", metavar="K", help="Highest total charge, or one bound a node: 2,1.")
 @click.option("--ratio", metavar="R", help="List the Coulomb poles at eps2/eps1 = R, such as 1/2 or -3.")

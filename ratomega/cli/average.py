@@ -15,7 +15,7 @@ from ratomega.desk.average_text import average_text
 __all__ = ["average"]
 
 
-@click.command("average")
+@click.command("average", short_help="Take exact limits of Y(x), chiral traces or the number of boxes.")
 @case_options
 @probes_option
 @click.option("--of", "of", type=click.Choice(KINDS), default=KINDS[0], show_default=True, help="What to average.")

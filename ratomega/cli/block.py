@@ -5,14 +5,15 @@ from __future__ import annotations
 import click
 
 from ratomega.blocks import block as make_block
+from ratomega.cli.completion import CASE
 from ratomega.desk.block_text import block_text
-from ratomega.documents import to_json
+from ratomega.documents.results import to_json
 
 __all__ = ["block"]
 
 
-@click.command()
-@click.argument("case")
+@click.command("block", short_help="Give a conformal block, its gauge theory and the dictionary.")
+@click.argument("case", type=CASE)
 @click.option("--order", "--charge", "order", type=int, metavar="K", help="Highest power of x, or of q on the torus.")
 @click.option("--json", "as_json", is_flag=True, help="One JSON document on standard output.")
 def block(case: str, order: int | None, as_json: bool) -> int:

@@ -4,8 +4,9 @@ from __future__ import annotations
 
 import click
 
+from ratomega.cli.completion import CASE, TABLE
 from ratomega.desk.compare_text import compare_text
-from ratomega.documents import to_json
+from ratomega.documents.results import to_json
 from ratomega.job import MOST_CONFIGURATIONS
 from ratomega.verify.comparing import compare as make_comparison
 from ratomega.verify.quantities import NAMES
@@ -13,9 +14,9 @@ from ratomega.verify.quantities import NAMES
 __all__ = ["compare"]
 
 
-@click.command()
-@click.argument("case")
-@click.argument("numbers")
+@click.command("compare", short_help="Find what is the matter with someone's numbers.")
+@click.argument("case", type=CASE)
+@click.argument("numbers", type=TABLE)
 @click.option("--as", "as_", type=click.Choice(NAMES), help="What the numbers are; without it each is tried.")
 @click.option(
     "--most-configurations",

@@ -14,7 +14,7 @@ from ratomega.explaining import explain as explain_case
 __all__ = ["explain"]
 
 
-@click.command("explain")
+@click.command("explain", short_help="Say in words what is singular, why, and what cancels it.")
 @case_options
 def explain(as_json: bool, no_tilt: bool, most_configurations: int, **options_given: Any) -> int:
     """Say in words what is singular, why, what cancels it, and what the limit means.

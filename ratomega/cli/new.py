@@ -9,6 +9,7 @@ from pathlib import Path
 import click
 
 from ratomega.case.drafting import draft, draft_minimal
+from ratomega.cli.completion import FILE
 from ratomega.errors import InputError
 
 __all__ = ["new"]
@@ -16,7 +17,7 @@ __all__ = ["new"]
 _PAIR = re.compile(r"(\d{1,4}),(\d{1,4})")
 
 
-@click.command("new")
+@click.command("new", short_help="Write a commented case file, from options or by asking.")
 @click.option("--rank", type=int, help="The number of colours N of U(N).")
 @click.option("--flavours", type=int, help="How many antifundamentals.")
 @click.option("--adjoint", is_flag=True, help="With an adjoint.")
@@ -25,7 +26,13 @@ _PAIR = re.compile(r"(\d{1,4}),(\d{1,4})")
 @click.option("--external", metavar="R,S", multiple=True, help="Kac label of the field at 0; again for x, 1, infinity.")
 @click.option("--internal", metavar="R,S", help="The Kac label between them.")
 @click.option("--charge", type=int, default=4, show_default=True, help="The highest charge, or order of the block.")
-@click.option("-o", "--output", metavar="FILE", help="Write FILE, which must not exist; otherwise the text is printed.")
+@click.option(
+    "-o",
+    "--output",
+    type=FILE,
+    metavar="FILE",
+    help="Write FILE, which must not exist; otherwise the text is printed.",
+)
 def new(
     rank: int | None,
     flavours: int | None,

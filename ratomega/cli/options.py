@@ -6,11 +6,13 @@ from collections.abc import Callable
 from typing import Any
 
 import click
+from click.core import ParameterSource
 
+from ratomega.cli.completion import CASE, FILE
 from ratomega.job import MOST_CONFIGURATIONS
 from ratomega.pipeline import DEFAULT_PROBES
 
-__all__ = ["case_options", "form_option", "probes_option", "worker_options"]
+__all__ = ["case_options", "form_option", "probes_option", "was_typed", "worker_options"]
 
 
 def case_options(function: Callable[..., Any]) -> Callable[..., Any]:
@@ -28,7 +30,7 @@ def case_options(function: Callable[..., Any]) -> Callable[..., Any]:
         click.option("--eps2", metavar="EXPR", help="Replace eps2 of the case; t may occur."),
         click.option("--eps1", metavar="EXPR", help="Replace eps1 of the case; t may occur."),
         click.option("--charge", metavar="K", help="Highest total charge, or one bound a node: 2,1."),
-        click.argument("case"),
+        click.argument("case", type=CASE),
     ):
         function = decorate(function)
     return function
@@ -43,6 +45,11 @@ probes_option = click.option(
 )
 
 
+def was_typed(name: str) -> bool:
+    """Whether the option of the running command was given, be it as the default."""
+    return click.get_current_context().get_parameter_source(name) is not ParameterSource.DEFAULT
+
+
 def form_option(function: Callable[..., Any]) -> Callable[..., Any]:
     """A table for LaTeX in place of text."""
     return click.option("--latex", is_flag=True, help="A LaTeX table; needs the package longtable.")(function)
@@ -51,7 +58,12 @@ def form_option(function: Callable[..., Any]) -> Callable[..., Any]:
 def worker_options(function: Callable[..., Any]) -> Callable[..., Any]:
     """The options that say who does the work."""
     for decorate in (
-        click.option("--keep", metavar="FILE", help="Keep finished parts in FILE, and go on from what is there."),
+        click.option(
+            "--keep",
+            type=FILE,
+            metavar="FILE",
+            help="Keep finished parts in FILE, and go on from what is there.",
+        ),
         click.option("--cluster", metavar="ADDRESS", help="Work on the dask cluster with this scheduler."),
         click.option("--workers", type=int, metavar="N", help="Work in N processes."),
     ):

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import click
 
+from ratomega.cli.completion import FILE
 from ratomega.desk.figures import check_plot_file, plot, save_plot
 from ratomega.detector.atlas import Atlas
 from ratomega.results import DetectResult
@@ -20,7 +21,11 @@ def _checked(_context: click.Context, _option: click.Parameter, file: str | None
 
 
 plot_option = click.option(
-    "--plot", metavar="FILE", callback=_checked, help="Also draw it to FILE, which ends in .svg or .png."
+    "--plot",
+    type=FILE,
+    metavar="FILE",
+    callback=_checked,
+    help="Also draw it to FILE, which ends in .svg or .png.",
 )
 
 

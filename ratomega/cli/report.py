@@ -8,6 +8,7 @@ from typing import Any
 
 import click
 
+from ratomega.cli.completion import CASE, FILE
 from ratomega.cli.running import loaded_case
 from ratomega.desk.report import report as make_report
 from ratomega.validator.checklist import DEPTHS
@@ -16,9 +17,16 @@ from ratomega.version import VERSION
 __all__ = ["report"]
 
 
-@click.command("report")
-@click.argument("case")
-@click.option("-o", "--output", metavar="FILE", required=True, help="The page to write; a file there is replaced.")
+@click.command("report", short_help="Write one self-contained HTML page on a case.")
+@click.argument("case", type=CASE)
+@click.option(
+    "-o",
+    "--output",
+    type=FILE,
+    metavar="FILE",
+    required=True,
+    help="The page to write; a file there is replaced.",
+)
 @click.option("--charge", metavar="K", help="Highest total charge, or one bound a node: 2,1.")
 @click.option("--eps1", metavar="EXPR", help="Replace eps1 of the case; t may occur.")
 @click.option("--eps2", metavar="EXPR", help="Replace eps2 of the case; t may occur.")

@@ -15,8 +15,8 @@ from ratomega.case.reading import case_from_mapping, case_to_mapping, load_case
 from ratomega.cli.atlas import read_charge
 from ratomega.desk.text import charge_word
 from ratomega.diagrams.tuples import Charge
-from ratomega.documents import Result, to_json
-from ratomega.errors import InputError
+from ratomega.documents.results import Result, to_json
+from ratomega.errors import INTERRUPTED, InputError
 from ratomega.job import Job
 from ratomega.nesting import nested_result
 from ratomega.results import LimitResult
@@ -24,7 +24,6 @@ from ratomega.workers.cluster import cluster_hands
 from ratomega.workers.crew import Crew, Progress
 
 __all__ = [
-    "INTERRUPTED",
     "StatusLine",
     "collect",
     "crew_of",
@@ -34,8 +33,6 @@ __all__ = [
     "one_form",
     "prepared_job",
 ]
-
-INTERRUPTED = 130
 
 Item = TypeVar("Item")
 

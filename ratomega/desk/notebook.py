@@ -1,7 +1,7 @@
 """How results show in a notebook: one table of types, entered once.
 
 Notebooks of every kind ask an object for ``_repr_html_``. Results know nothing of the desk, which lies above them; so
-``ratomega/__init__`` calls ``register``, which gives each type of the table that one method. (The other way, a
+``ratomega/api`` calls ``register``, which gives each type of the table that one method. (The other way, a
 formatter registered with IPython, would serve IPython alone and need it imported first.) A representation is a fragment
 that brings its style with it, has no ids, loads nothing and runs nothing; it is bounded like a page.
 """
@@ -26,6 +26,7 @@ from ratomega.desk.detector_parts import (
     legend,
     singular_figure,
 )
+from ratomega.desk.grid_csv import grid_csv
 from ratomega.desk.markup import Child, Markup, element, verbatim
 from ratomega.desk.page import approach_part
 from ratomega.desk.plot_data import stems_of
@@ -42,6 +43,7 @@ from ratomega.desk.value_parts import (
     values_by_path,
 )
 from ratomega.detector.atlas import Atlas
+from ratomega.grid_results import GridResult
 from ratomega.results import (
     ChargeReport,
     ClusterReport,
@@ -131,6 +133,7 @@ REPRESENTATIONS: dict[type, Callable[[Any], tuple[Child, ...]]] = {
     Approach: lambda near: (approach_part(near), _text(approach_text(near))),
     AverageResult: lambda result: (_text(average_text(result)),),
     BlockResult: lambda result: (_text(block_text(result)),),
+    GridResult: lambda result: (_text(grid_csv(result)),),
 }
 
 

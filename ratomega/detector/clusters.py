@@ -9,14 +9,16 @@ from __future__ import annotations
 from collections import Counter
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
-
-import networkx
+from typing import TYPE_CHECKING
 
 from ratomega.detector.geometry import Compactness, cluster_compactness, component_dimension
 from ratomega.detector.zeros import Zeros
 from ratomega.diagrams.tuples import Charge, Configuration
 from ratomega.diagrams.young import boxes
 from ratomega.weights import ContentsKey, Weights
+
+if TYPE_CHECKING:
+    import networkx
 
 __all__ = ["Cluster", "TaggedBox", "add_exchanges", "cluster_graph", "find_clusters"]
 
@@ -80,6 +82,8 @@ def cluster_graph(clusters: Sequence[Cluster], *, exchanges: bool = False, large
 
     Cost of the exchanges: cubic in the size of a cluster.
     """
+    import networkx
+
     graph = networkx.Graph()
     for index, cluster in enumerate(clusters):
         for member in cluster.members:

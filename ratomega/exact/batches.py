@@ -41,6 +41,11 @@ class ResidueTask(Protocol):
     def bits(self) -> int: ...
 
     @property
+    def radicand(self) -> int:
+        """d where the numbers lie in Q(sqrt(d)), 0 where they are rational: the primes are to split."""
+        ...
+
+    @property
     def shape(self) -> tuple[int, ...]: ...
 
     @property
@@ -89,7 +94,7 @@ def computed(task: ResidueTask, primes: Sequence[int]) -> Batch:
 
 def here(task: ResidueTask, stages: tuple[int, ...] = ()) -> Supply:
     """A supply that computes just what is asked for, in batches as large as the memory takes."""
-    source = PrimeSource(task.bits)
+    source = PrimeSource(task.bits, task.radicand)
 
     def further(count: int) -> Batch:
         pieces = -(-count // task.largest)

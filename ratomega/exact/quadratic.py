@@ -9,7 +9,7 @@ from __future__ import annotations
 
 import math
 import re
-from collections.abc import Iterable
+from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 from typing import TypeGuard, overload
 
@@ -35,11 +35,13 @@ __all__ = [
     "as_integer",
     "as_number",
     "from_number_text",
+    "from_parts",
     "is_quadratic",
     "is_whole",
     "number_text",
     "one_field",
     "only_rational",
+    "parts_in",
     "quadratic",
     "rational_parts",
     "split_square",
@@ -282,6 +284,22 @@ def two_fields(first: int, second: int) -> str:
 def rational_parts(value: Number) -> tuple[Rational, ...]:
     """(x,) of a rational number, (x, y) of a quadratic one."""
     return (value.x, value.y) if isinstance(value, Quadratic) else (value,)
+
+
+def parts_in(value: Number, radicand: int) -> tuple[Rational, ...]:
+    """(x,) where all numbers are rational (radicand 0), (x, y) in a quadratic field, also of a rational number.
+
+    >>> parts_in(ONE, 0), parts_in(ONE, 5)
+    ((1,), (1, 0))
+    """
+    if isinstance(value, Quadratic):
+        return value.x, value.y
+    return (value, ZERO) if radicand else (value,)
+
+
+def from_parts(parts: Sequence[Rational], radicand: int) -> Number:
+    """Back from ``parts_in``."""
+    return quadratic(parts[0], parts[1], radicand) if radicand else parts[0]
 
 
 def only_rational(value: Number) -> Rational:

@@ -263,6 +263,16 @@ class RationalFunction:
         message = f"the factor {factor_text(factor)} of the denominator is not linear in {self.symbols[place]}"
         raise InputError.single(message, "symbol")
 
+    def valuation(self, location: object, symbol: str | None = None) -> int:
+        """The order of vanishing in one symbol, negative at a pole. The function is not zero.
+
+        >>> a = RationalFunction.symbol("a", ("a",))
+        >>> f = 1 / (a - square_root(-1))
+        >>> f.valuation("i"), f.valuation("-i")
+        (-1, 0)
+        """
+        return self._laurent(self._place(symbol), location, -1)[0]
+
     def residue(self, location: object, symbol: str | None = None) -> Number | RationalFunction:
         """The residue in one symbol at a number or at the location of a pole; zero where there is no pole."""
         valuation, terms = self._laurent(self._place(symbol), location, -1)
@@ -372,14 +382,28 @@ class RationalFunction:
             balls = {name: ball_value(value) for name, value in given.items()}
             return self._ball_value(balls)
         self._checked_field(exact_values(given), ", ".join(given))
-        numbers = [given[name] for name in self.symbols]
+        numbers: list[Any] = [given[name] for name in self.symbols]
         top, bottom, second = (evaluated(poly, numbers) for poly in self.polynomials())
         if self.radicand:
             top = top + second * square_root(self.radicand)
+            if bottom == 0:
+                # The denominator over the integers can vanish where that in lowest terms does not.
+                top, bottom = self.factored_at(numbers)
         if bottom == 0:
             where = ", ".join(f"{name} = {value}" for name, value in given.items())
             raise InputError.single(f"{where} is a pole", ", ".join(given))
         return top / bottom
+
+    def factored_at(self, values: Sequence[Number]) -> tuple[Number, Number]:
+        """Numerator and denominator in lowest terms over the field, at exact numbers of that field."""
+        constant, factors = self.factors()
+        root = square_root(self.radicand) if self.radicand else None
+        top: Any = constant
+        bottom: Any = Rational(1)
+        for factor, exponent in factors:
+            value = factor_value(factor, values, root) ** abs(exponent)
+            top, bottom = (top * value, bottom) if exponent > 0 else (top, bottom * value)
+        return top, bottom
 
     def _partial(self, given: Mapping[str, Value]) -> RationalFunction:
         self._checked_field(exact_values(given), ", ".join(given))
@@ -392,9 +416,15 @@ class RationalFunction:
             place = result._place(name)
             centre = RationalFunction.constant(value, result.symbols)
             top, bottom = (parts[0] for parts in result._shifted(place, centre))
-            if bottom.is_zero():
+            if not bottom.is_zero():
+                result = (top / bottom)._without(place)
+                continue
+            valuation, terms = result._laurent(place, centre, 0)
+            if valuation < 0:
                 raise InputError.single(f"{name} = {value} is a pole whatever the other symbols are", name)
-            result = (top / bottom)._without(place)
+            result = terms[0] if valuation == 0 else result * 0
+            if valuation > 0:
+                result = result._without(place)
         assert isinstance(result, RationalFunction)
         return result
 

@@ -18,7 +18,7 @@ not proof, so they travel with the answer (M. Monagan, ISSAC 2004, for the maxim
 from __future__ import annotations
 
 from collections.abc import Iterable, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 from flint import fmpz, fmpz_mat
@@ -58,17 +58,21 @@ class BadPrimes(RatomegaError):
 
 
 class PrimeSource:
-    """The primes below 2^bits, downwards, each handed out once.
+    """The primes below 2^bits, downwards, each handed out once; with a ``radicand`` d only those modulo which d is a
+    square other than 0: there Q(sqrt(d)) splits, and a number x + y sqrt(d) has two residues.
 
     Raises ``RatomegaError`` when they run out at 2^19 (there are 110,000 above).
 
     >>> source = PrimeSource()
     >>> source.take(2), source.take(1)
     ((2097143, 2097133), (2097131,))
+    >>> PrimeSource(radicand=-1).take(2)
+    (2097133, 2097097)
     """
 
-    def __init__(self, bits: int = PRIME_BITS) -> None:
+    def __init__(self, bits: int = PRIME_BITS, radicand: int = 0) -> None:
         self._top = 2**bits
+        self._radicand = radicand
         self._ready: list[int] = []
 
     def take(self, count: int) -> tuple[int, ...]:
@@ -85,7 +89,10 @@ class PrimeSource:
         prime = np.ones(width, dtype=bool)
         for divisor in _small_primes(int(high**0.5) + 1):
             prime[-low % divisor :: divisor] = False
-        self._ready += [int(n) for n in (np.nonzero(prime)[0] + low)[::-1]]
+        found = [int(n) for n in (np.nonzero(prime)[0] + low)[::-1]]
+        if self._radicand:
+            found = [p for p in found if fmpz(self._radicand).jacobi(p) == 1]
+        self._ready += found
         self._top = low
 
 
@@ -123,6 +130,7 @@ class Moduli:
     p: Floats
     reciprocal: Floats
     last: bool
+    roots: tuple[int, ...] = ()
 
     @classmethod
     def make(cls, primes: Sequence[int], *, last: bool = False) -> Moduli:
@@ -132,6 +140,19 @@ class Moduli:
                 raise ValueError(f"{p} is not an odd prime below 2^26")
         vector: Floats = np.array(primes, dtype=np.float64)
         return cls(tuple(primes), vector, 1.0 / vector, last)
+
+    @classmethod
+    def split(cls, primes: Sequence[int], radicand: int, *, last: bool = False) -> Moduli:
+        """Every prime twice, with one square root of the radicand and with the other: ``roots``.
+
+        Raises ``ValueError`` for a prime modulo which it has none.
+
+        >>> Moduli.split([13, 17], -1).roots
+        (5, 8, 4, 13)
+        """
+        pairs = [(root := int(fmpz(radicand % p).sqrtmod(p)), p - root) for p in primes]
+        twice = cls.make([p for p in primes for _ in range(2)], last=last)
+        return replace(twice, roots=tuple(root for pair in pairs for root in pair))
 
     def __len__(self) -> int:
         return len(self.primes)

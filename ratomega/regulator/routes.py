@@ -17,7 +17,6 @@ from ratomega.diagrams.tuples import Charge, count_all
 from ratomega.errors import InputError
 from ratomega.exact.batches import ResidueTask, Supplier, here
 from ratomega.exact.quadratic import Number
-from ratomega.exact.rational import Rational
 from ratomega.regulator.direct import direct_total
 from ratomega.regulator.fast.setup import prepare
 from ratomega.regulator.fast.sums import applies as fast_applies
@@ -55,7 +54,7 @@ class ShortCut:
     beyond a proved bound); ``primes`` counts the primes used.
     """
 
-    values: tuple[Rational, ...]
+    values: tuple[Number, ...]
     method: str
     spare_bits: int | None
     primes: int

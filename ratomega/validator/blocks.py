@@ -1,7 +1,7 @@
 """Routes to a conformal block that know of no Gram matrix, and the comparison with what a Gram matrix gives.
 
 * the recursion over the poles in the internal weight, where squares of momenta are rational. Beside a degenerate
-  internal weight it is run at the point t = P of the path, P a prime of 127 bits, and compared modulo P (as in
+  internal weight it is run at the point t = P of the path, P a prime of 127 bits or more, and compared modulo P (as in
   ``validator.recursion``);
 * the elementary block, where the external momenta belong to the family with H = 1;
 * a known function, for blocks of minimal models.

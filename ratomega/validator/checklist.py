@@ -53,7 +53,7 @@ def outside_checks(
     """All other checks on a case without symbols, of the limits on its own path ``weights.setting``.
 
     ``evaluate`` and ``clusterwise`` take the limits of other cases. Cost: bounded check by check by the depth, before
-    any work; a few seconds in all at "quick", up to minutes at "full".
+    any work.
     """
     yield from _routes(case, weights, limits, depth)
     yield from _relatives(case, evaluate, clusterwise, depth)

@@ -106,7 +106,7 @@ def cut_primes(case: str, task: ResidueTask, stages: tuple[int, ...]) -> tuple[I
 
 
 def _chunks(case: str, task: ResidueTask, stages: tuple[int, ...], most: int) -> Iterator[PrimeChunk]:
-    source = PrimeSource(task.bits)
+    source = PrimeSource(task.bits, task.radicand)
     for size in _sizes(stages, most):
         cost = task.seconds * (size + task.overhead)
         yield PrimeChunk(case, task.name, task.charge, task.shape, source.take(size), cost)

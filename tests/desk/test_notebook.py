@@ -21,7 +21,7 @@ def values():
     clusters = [c for report in found.charges for c in report.clusters]
     return [case, limit, limit[2, 0], found, found[2, 0], clusters[0], singular[0], checks, checks.checks[0],
             ratomega.atlas(case), ratomega.approach("u1-pure", offsets=["1e-2"]), ratomega.average(case, of="size"),
-            ratomega.block("ising-energy")]
+            ratomega.block("ising-energy"), ratomega.grid("free-momentum", {"a": "0 to i in 3"})]
 
 
 def test_every_type_of_the_table_shows_itself(values):
@@ -33,7 +33,7 @@ def test_every_type_of_the_table_shows_itself(values):
 
 
 def test_representations_hold_what_they_show(values):
-    case, limit, coefficient, found, report, cluster, singular, checks, check, atlas, near, average, block = (
+    case, limit, coefficient, found, report, cluster, singular, checks, check, atlas, near, average, block, grid = (
         value._repr_html_() for value in values
     )
     assert all(html.escape(values[0].title) in text for text in (case, limit, found))
@@ -49,6 +49,7 @@ def test_representations_hold_what_they_show(values):
     assert "charge 2, order 1" in near
     assert html.escape(values[0].title) in average
     assert html.escape(ratomega.load_case("ising-energy").title) in block
+    assert "1/2*sqrt(-1),1,-11/30," in grid
 
 
 def test_results_do_not_know_the_desk(values):

@@ -19,7 +19,7 @@ PRIMES = PrimeSource(21).take(60)
 class Inverses:
     """1/d and 2/d modulo primes. What divides d is found out one prime at a time, as in the worst case."""
 
-    name, charge, bits, shape, seconds, overhead = "inverses", 0, 21, (2,), 1e-6, 1
+    name, charge, bits, radicand, shape, seconds, overhead = "inverses", 0, 21, 0, (2,), 1e-6, 1
 
     def __init__(self, denominator, largest=7):
         self.denominator, self.largest = denominator, largest

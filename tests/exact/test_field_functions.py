@@ -14,7 +14,8 @@ from hypothesis import strategies as st
 from ratomega.errors import InputError
 from ratomega.exact.field_polynomials import factor_text
 from ratomega.exact.function_text import parse_function
-from ratomega.exact.quadratic import quadratic, square_root
+from ratomega.exact.point_function import PointFunction
+from ratomega.exact.quadratic import as_number, quadratic, square_root
 from ratomega.exact.rational import Rational
 from ratomega.exact.rational_function import RationalFunction
 
@@ -283,3 +284,26 @@ def test_numbers_of_any_length_are_written():
     function = line(text)
     assert str(function) == f"({digits} + sqrt(-1))*(a + 1{digits}*sqrt(-1))/(3{digits}*a)"
     assert line(str(function)) == function
+
+
+def test_values_where_only_the_denominator_over_the_integers_vanishes():
+    """1/(a - i) is (a + i)/(a^2 + 1): at a = -i nothing is wrong with it."""
+    function = line("(a + 2)/((a - sqrt(-1))**2*(a - 1 + sqrt(-1)))")
+    for place in ("-i", "1 + i"):
+        where = sympy.sympify(place.replace("i", "I"))
+        expected = sym(str(function)).subs(A, where)
+        for value in (function.at(a=place), PointFunction(function).at([as_number(place)])):
+            assert equal(sym(str(value)), expected)
+        assert function.taylor("a", 0, place) == (function.at(a=place),)
+        assert function.valuation(place) == 0
+    assert PointFunction(function).at([I]) == "pole of order 2"
+    assert function.valuation("i") == -2
+    with pytest.raises(InputError, match="is a pole"):
+        function.at(a="i")
+    two = read("(a + m)/((a - sqrt(-1)*m)*(m - sqrt(-1)))")
+    assert str(two.at(m="-i")) == "sqrt(-1)*(a - sqrt(-1))/(2*(a - 1))"
+    assert two.at(m="-i").at(a="3") == two.at(a="3", m="-i") == PointFunction(two).at([Rational(3), -I])
+    assert two.at(a="1", m="-1") == 0
+    assert PointFunction(two).at([Rational(0), I]) == "pole"
+    assert PointFunction(two).at([Rational(0), Rational(0)]).startswith("0/0")
+    assert read("a*(m + sqrt(-1))/(m - sqrt(-1))").at(m="-i") == 0

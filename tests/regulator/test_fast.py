@@ -336,8 +336,8 @@ def test_bad_primes_are_replaced(monkeypatch) -> None:
     expected = fast_sum(setting, 5).coefficients
 
     class Small(PrimeSource):
-        def __init__(self, bits):
-            super().__init__(bits)
+        def __init__(self, bits, radicand):
+            super().__init__(bits, radicand)
             self._ready = [7, 11, 13, 1000003, 1000033]
 
     monkeypatch.setattr(batches, "PrimeSource", Small)

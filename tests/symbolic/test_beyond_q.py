@@ -318,3 +318,26 @@ def test_a_damaged_function_is_refused(value):
     document["coefficients"][1]["value"] = value
     with pytest.raises(ratomega.InputError, match="not a result of ratomega"):
         ratomega.load_result(json.dumps(document))
+
+
+@pytest.mark.parametrize("nome", [False, True])
+def test_a_grid_of_values(nome):
+    """Values on a grid against limits at the points one by one, and H against Z by its definition at two points."""
+    case = u2(antifundamental=["1+2*i/3", "1", "1/2 + i/3", "1/5"], charge=2)
+    many = ratomega.grid(case, at={"a": "i/7 to 2*i in 15"}, nome=nome)
+    assert many.way == "functions"
+    for place in ("1/7*sqrt(-1)", "2*sqrt(-1)"):
+        few = ratomega.grid(case, at={"a": [place]}, nome=nome)
+        assert few.way == "points"
+        for charge in range(3):
+            (value,) = (row.value for row in few[charge])
+            assert value in [row.value for row in many[charge]]
+            if not nome:
+                assert value == ratomega.limit(case.at(a=place))[charge].value
+    with pytest.raises(ratomega.InputError, match="that of the case"):
+        ratomega.grid(case, at={"a": "sqrt(2)"})
+    # The pole i/4 - 1 of a + i/2 is named, and at its conjugate there is a value.
+    moved = CASES["root beside a"]
+    rows = ratomega.grid(moved, at={"a": ["-1 - i/4", "-1 + i/4"] + [f"{n}/29" for n in range(1, 20)]}).rows
+    notes = {(str(row.point[0]), row.charge): row.note for row in rows if row.note}
+    assert notes == {("-1 - 1/4*sqrt(-1)", (k,)): "pole of order 1" for k in (1, 2)}

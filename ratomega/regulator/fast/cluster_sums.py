@@ -13,7 +13,7 @@ import numpy as np
 
 from ratomega.exact.residues import Floats, Moduli
 from ratomega.regulator.fast.factors import Bench, Parameters, pair_factors
-from ratomega.regulator.fast.setup import FastSetup
+from ratomega.regulator.fast.setup import FastSetup, Whole
 from ratomega.regulator.fast.tables import Forest, Integers
 
 __all__ = ["Clusters", "pair_constants"]
@@ -83,7 +83,7 @@ def _orders(setup: FastSetup, forest: Forest) -> Integers:
 
 
 def pair_constants(
-    setup: FastSetup, root: int, clusters: Clusters, charge: int, parameters: Parameters, bench: Bench
+    setup: FastSetup, root: Whole, clusters: Clusters, charge: int, parameters: Parameters, bench: Bench
 ) -> list[Floats]:
     """The product of S(root + unit (c - c')) over contents c of one cluster and c' of another, at t = 0.
 

@@ -22,7 +22,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from ratomega.exact.residues import Floats, Moduli
-from ratomega.regulator.fast.setup import FastSetup
+from ratomega.regulator.fast.setup import FastSetup, Whole, less
 from ratomega.regulator.fast.tables import Forest, Integers
 
 __all__ = ["Bench", "Parameters", "box_factors", "diagram_factors", "differences", "pair_factors"]
@@ -84,12 +84,16 @@ class Parameters:
         return cls(eps1, eps2, moduli.reduce(eps1 + eps2))
 
 
-def whole(value: int, moduli: Moduli) -> Floats:
-    """A long integer modulo every prime."""
-    return moduli.reduce(np.array([value % p for p in moduli.primes], dtype=np.float64))
+def whole(value: Whole, moduli: Moduli) -> Floats:
+    """A long integer modulo every prime; x + y sqrt(d) with the square root that goes with each prime."""
+    if isinstance(value, int):
+        return moduli.reduce(np.array([value % p for p in moduli.primes], dtype=np.float64))
+    x, y = int(value.x.p), int(value.y.p)
+    places = zip(moduli.primes, moduli.roots, strict=True)
+    return moduli.reduce(np.array([(x + y * root) % p for p, root in places], dtype=np.float64))
 
 
-def forms(root: int, i: Integers, j: Integers, parameters: Parameters, moduli: Moduli) -> Floats:
+def forms(root: Whole, i: Integers, j: Integers, parameters: Parameters, moduli: Moduli) -> Floats:
     """root + i eps1 + j eps2 for arrays of small integers i, j."""
     return moduli.reduce(
         i[..., None].astype(np.float64) * parameters.eps1
@@ -120,7 +124,7 @@ def differences(charge: int) -> tuple[Integers, Integers, Integers]:
 
 
 def pair_factors(
-    setup: FastSetup, roots: Sequence[int], i: Integers, j: Integers, parameters: Parameters, moduli: Moduli
+    setup: FastSetup, roots: Sequence[Whole], i: Integers, j: Integers, parameters: Parameters, moduli: Moduli
 ) -> Floats:
     """S(root + i eps1 + j eps2), adjoints included: shape (roots, points, primes).
 
@@ -155,7 +159,7 @@ def box_factors(
         up = np.ones((len(i), len(moduli)))
         down = np.ones((len(i), len(moduli)))
         for b in (*setup.coulomb[:colour], *setup.coulomb[colour + 1 :]):
-            y = forms(a - b, i, j, parameters, moduli)
+            y = forms(less(a, b), i, j, parameters, moduli)
             down = moduli.multiply(down, moduli.multiply(-y, moduli.reduce(y + eps)))
             for mass in setup.adjoints:
                 m = whole(mass, moduli)
@@ -196,15 +200,21 @@ def diagram_factors(hooks: Floats, place: Integers, forest: Forest, bench: Bench
     return result
 
 
+def hook_numerators(setup: FastSetup, e: Floats, other: Floats, moduli: Moduli) -> Floats:
+    """What adjoints multiply the factor of one box of D by, from E and ``other`` = eps - E."""
+    product = np.ones_like(e)
+    for mass in setup.adjoints:
+        m = whole(mass, moduli)
+        product = moduli.multiply(product, moduli.multiply(moduli.reduce(e - m), moduli.reduce(other - m)))
+    return product
+
+
 def hook_values(setup: FastSetup, charge: int, parameters: Parameters, moduli: Moduli) -> tuple[Floats, Integers]:
     """The factor of one box of D by arm and leg, where no denominator vanishes."""
     p, q, place = hook_forms(charge)
     e = forms(0, p, q, parameters, moduli)
     other = moduli.reduce(parameters.eps - e)
-    up = np.ones_like(e)
-    for mass in setup.adjoints:
-        m = whole(mass, moduli)
-        up = moduli.multiply(up, moduli.multiply(moduli.reduce(e - m), moduli.reduce(other - m)))
+    up = hook_numerators(setup, e, other, moduli)
     return moduli.multiply(up, moduli.inverses(moduli.multiply(e, other))), place
 
 

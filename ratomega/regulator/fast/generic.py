@@ -20,7 +20,7 @@ from ratomega.regulator.fast.factors import (
     pair_factors,
     tree_products,
 )
-from ratomega.regulator.fast.setup import FastSetup
+from ratomega.regulator.fast.setup import FastSetup, less
 from ratomega.regulator.fast.tables import Forest, Integers, box_arrays, box_list
 
 __all__ = ["one_colour", "two_colours"]
@@ -52,7 +52,7 @@ def two_colours(setup: FastSetup, forest: Forest, moduli: Moduli) -> Floats:
     bench = Bench.make(moduli, len(forest))
     parts = one_colour(setup, forest, parameters, bench)
     i, j, place = differences(charge)
-    difference = setup.coulomb[0] - setup.coulomb[1]
+    difference = less(setup.coulomb[0], setup.coulomb[1])
     # At charge 1 no two diagrams meet.
     table = pair_factors(setup, [difference], i, j, parameters, moduli)[0] if charge > 1 else total[:1]
     # S is even: for colour 2 the difference (i, j) of colour 1 less colour 2 changes sign, nothing else.

@@ -25,7 +25,7 @@ from ratomega.regulator.fast.cluster_sums import pair_constants
 from ratomega.regulator.fast.factors import Bench, Parameters, differences
 from ratomega.regulator.fast.layout import Layout, group_starts
 from ratomega.regulator.fast.powers import pair_shifts, power_sums
-from ratomega.regulator.fast.setup import FastSetup
+from ratomega.regulator.fast.setup import FastSetup, less
 from ratomega.regulator.fast.singles import Single, inverse_factorials, singles
 from ratomega.regulator.fast.tables import Integers, box_arrays
 
@@ -77,7 +77,7 @@ def two_colours_limit(setup: FastSetup, layout: Layout, moduli: Moduli) -> Float
     weighted = bench.reduce(one.constant * layout.weight[:, None])
     half = max(moduli.primes) / 2 + 1
     work = _Work(layout, bench, one, two, weighted, inverse_factorials(layout.depth, moduli), half)
-    root = setup.coulomb[0] - setup.coulomb[1]
+    root = less(setup.coulomb[0], setup.coulomb[1])
     constants = pair_constants(setup, root, layout.clusters, charge, parameters, bench)
     i, j, place = differences(charge)
     powers = power_sums(pair_shifts(setup, root), i, j, layout.depth, setup, parameters, moduli)

@@ -15,30 +15,33 @@ import numpy as np
 
 from ratomega.exact.residues import Floats, Moduli
 from ratomega.regulator.fast.factors import Parameters, forms
-from ratomega.regulator.fast.setup import FastSetup
+from ratomega.regulator.fast.setup import FastSetup, Whole, less
 from ratomega.regulator.fast.tables import Integers
 
 __all__ = ["Shift", "box_shifts", "hook_shifts", "pair_shifts", "power_sums"]
+
+# root + p eps1 + q eps2
+_Form = tuple[Whole, int, int]
 
 
 @dataclass(frozen=True, slots=True)
 class Shift:
     """The factor (root + sign * (p eps1 + q eps2) + dp eps1 + dq eps2)^exponent at a point (p, q)."""
 
-    root: int
+    root: Whole
     sign: int
     dp: int
     dq: int
     exponent: int
 
 
-def pair_shifts(setup: FastSetup, root: int) -> list[Shift]:
+def pair_shifts(setup: FastSetup, root: Whole) -> list[Shift]:
     """The factors of S at y = root + p eps1 + q eps2."""
     shifts = [Shift(root, 1, 0, 0, 2), Shift(root, 1, 1, 1, 1), Shift(root, 1, -1, -1, 1)]
     shifts += [Shift(root, 1, dp, dq, -1) for dp, dq in ((1, 0), (-1, 0), (0, 1), (0, -1))]
     for m in setup.adjoints:
         for sign in (1, -1):
-            r = root - sign * m
+            r = less(root, m if sign == 1 else -m)
             shifts += [Shift(r, 1, sign, 0, 1), Shift(r, 1, 0, sign, 1)]
             shifts += [Shift(r, 1, 0, 0, -1), Shift(r, 1, sign, sign, -1)]
     return shifts
@@ -50,10 +53,10 @@ def box_shifts(setup: FastSetup, colour: int) -> list[Shift]:
     for other, b in enumerate(setup.coulomb):
         if other == colour:
             continue
-        root = setup.coulomb[colour] - b
+        root = less(setup.coulomb[colour], b)
         shifts += [Shift(root, 1, 0, 0, -1), Shift(root, 1, 1, 1, -1)]
         for m in setup.adjoints:
-            shifts += [Shift(root - m, 1, 1, 1, 1), Shift(root + m, 1, 0, 0, 1)]
+            shifts += [Shift(less(root, m), 1, 1, 1, 1), Shift(less(root, -m), 1, 0, 0, 1)]
     return shifts
 
 
@@ -80,7 +83,7 @@ def power_sums(
     when a factor vanishes modulo a prime only. Cost: one inverse and ``depth`` products per distinct factor.
     """
     sums = [np.zeros((len(i), len(moduli))) for _ in range(depth)]
-    keys: dict[tuple[int, int, int], int] = {}
+    keys: dict[_Form, int] = {}
     where: list[Integers] = []
     for shift in shifts:
         p, q = shift.sign * i + shift.dp, shift.sign * j + shift.dq
@@ -97,13 +100,13 @@ def power_sums(
 
 
 def _ratios(
-    keys: list[tuple[int, int, int]], setup: FastSetup, parameters: Parameters, moduli: Moduli
+    keys: list[_Form], setup: FastSetup, parameters: Parameters, moduli: Moduli
 ) -> Floats:
     """slope / constant of every factor (root, p, q), zero where the constant is exactly zero."""
     p = np.array([key[1] for key in keys], dtype=np.int64)
     q = np.array([key[2] for key in keys], dtype=np.int64)
     constants = np.empty((len(keys), len(moduli)))
-    places: dict[int, list[int]] = {}
+    places: dict[Whole, list[int]] = {}
     for place, (root, _, _) in enumerate(keys):
         places.setdefault(root, []).append(place)
     for root, chosen in places.items():

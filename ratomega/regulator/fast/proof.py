@@ -8,6 +8,10 @@ value is at most the sum over all weights of the product of |constant| + |slope|
 Lambda Z_k(0) is an integer of known size: two candidates that agree modulo primes whose product is more than twice the
 bound are equal.
 
+Where parameters lie in Z[sqrt(d)], so does Lambda Z_k(0), and the bound holds for it and for its conjugate when the
+absolute value of every constant is replaced by |x| + |y| sqrt|d|. If Lambda is not rational it is multiplied by its
+conjugate. Both parts of the product are then integers that obey the bound.
+
 How often a form can occur in one weight of charge k:
 
 * E = -eps1 leg + eps2 (arm + 1) and eps - E of a box with itself: at most k/h times, h = arm + leg + 1, because a
@@ -23,14 +27,16 @@ from __future__ import annotations
 from collections.abc import Iterator
 from dataclasses import dataclass
 from itertools import permutations
+from math import isqrt
 
 import numpy as np
 
 from ratomega.diagrams.tuples import coloured_partitions
 from ratomega.errors import RatomegaError
-from ratomega.exact.rational import Rational
+from ratomega.exact.quadratic import Number, Quadratic, parts_in
+from ratomega.exact.rational import ONE, Rational
 from ratomega.exact.residues import BadPrimes, Floats, Moduli, residues_of
-from ratomega.regulator.fast.setup import FastSetup
+from ratomega.regulator.fast.setup import FastSetup, Whole, less
 
 __all__ = ["Bound", "check_proof", "multiplicity", "proof_bound"]
 
@@ -61,7 +67,7 @@ def _boxes_forced(count: int, p: int, q: int) -> int:
     return (count + p - 1) * (count + q - 1) if p >= 1 else count * (count + q - p)
 
 
-def _denominators(setup: FastSetup, charge: int) -> Iterator[tuple[int, int, int, int]]:
+def _denominators(setup: FastSetup, charge: int) -> Iterator[tuple[Whole, int, int, int]]:
     """(root, p, q, multiplicity) of every form that can stand in a denominator."""
     for arm in range(charge):
         for leg in range(charge - arm):
@@ -73,7 +79,7 @@ def _denominators(setup: FastSetup, charge: int) -> Iterator[tuple[int, int, int
             for q in range(-charge, charge + 1):
                 times = multiplicity(p, q, charge)
                 if times:
-                    yield a - b, p, q, times
+                    yield less(a, b), p, q, times
 
 
 def proof_bound(setup: FastSetup, charge: int, *, moving: bool) -> Bound:
@@ -83,15 +89,31 @@ def proof_bound(setup: FastSetup, charge: int, *, moving: bool) -> Bound:
     power for each of some charge^2 forms.
     """
     step = 1 if moving else 0
-    multiple, size = 1, 1
+    multiple, size, conjugate_size = 1, 1, 1
+    beyond: Number = ONE
     for root, p, q, times in _denominators(setup, charge):
-        constant, slope = root + p * setup.eps1 + q * setup.eps2, step * (q - p)
-        multiple *= (abs(constant) or abs(slope)) ** times
-        size *= (abs(constant) + abs(slope)) ** times
+        constant, slope = less(root, -p * setup.eps1 - q * setup.eps2), step * (q - p)
+        if isinstance(constant, int):
+            multiple *= (abs(constant) or abs(slope)) ** times
+        else:
+            beyond = beyond * constant**times
+            conjugate_size *= _house(constant) ** times
+        size *= (_house(constant) + abs(slope)) ** times
     if multiple == 0:
         raise ValueError("a denominator vanishes")
+    if isinstance(beyond, Quadratic):
+        beyond = beyond.norm()
+        size *= conjugate_size
+    multiple *= abs(int(beyond.p))
     size *= coloured_partitions(setup.rank, charge)[charge]
     return Bound(multiple, size * _numerators(setup, charge, step))
+
+
+def _house(value: Whole) -> int:
+    """A bound on the absolute values of a number and of its conjugate."""
+    if isinstance(value, int):
+        return abs(value)
+    return abs(int(value.x.p)) + abs(int(value.y.p)) * (isqrt(abs(value.d)) + 1)
 
 
 def _numerators(setup: FastSetup, charge: int, step: int) -> int:
@@ -100,34 +122,36 @@ def _numerators(setup: FastSetup, charge: int, step: int) -> int:
     reach = charge * (abs(setup.eps1) + abs(setup.eps2) + 2 * step)
     per_box = 1
     for flavour in range(len(setup.flavours[0])):
-        per_box *= max(abs(roots[flavour]) for roots in setup.flavours) + reach
-    widest = max(abs(a - b) for a in setup.coulomb for b in setup.coulomb)
+        per_box *= max(_house(roots[flavour]) for roots in setup.flavours) + reach
+    widest = max(_house(less(a, b)) for a in setup.coulomb for b in setup.coulomb)
     for mass in setup.adjoints:
         # Every box stands in 2 N forms.
-        per_box *= (widest + abs(mass) + reach) ** (2 * setup.rank)
+        per_box *= (widest + _house(mass) + reach) ** (2 * setup.rank)
     return int(per_box**charge)
 
 
 def check_proof(
-    setup: FastSetup, bound: Bound, charge: int, value: Rational, residues: Floats, primes: tuple[int, ...]
+    setup: FastSetup, bound: Bound, charge: int, value: Number, residues: Floats, primes: tuple[int, ...]
 ) -> None:
     """Raise ``RatomegaError`` unless ``value`` is proved to be Z_charge of the setting.
 
-    ``residues`` are those of the coefficient of the integer parameters modulo ``primes``.
+    ``residues`` are those of the coefficient of the integer parameters modulo ``primes``: of both parts (primes, 2)
+    in a quadratic field.
     """
     inner = value / setup.rescaled(Rational(1), charge)
     product = 1
     for p in primes:
         product *= p
-    whole = inner * bound.multiple
+    parts = parts_in(inner, setup.radicand)
+    wholes = [part * bound.multiple for part in parts]
     if product <= 2 * bound.size:
         raise RatomegaError(f"charge {charge}: the primes do not reach the bound")
-    if whole.q != 1 or abs(int(whole.p)) > bound.size:
+    if any(whole.q != 1 or abs(int(whole.p)) > bound.size for whole in wholes):
         raise RatomegaError(f"charge {charge}: the coefficient found from residues contradicts the proved bound")
-    moduli = Moduli.make(primes, last=True)
+    moduli = Moduli.make(primes)
     try:
-        seen = residues_of([inner], moduli)[0]
+        seen = residues_of(parts, moduli)
     except BadPrimes as bad:
         raise RatomegaError(f"charge {charge}: a prime that was used divides the denominator found") from bad
-    if np.any((seen - residues) % moduli.p != 0):
+    if np.any((seen - residues.reshape(seen.shape)) % moduli.p[:, None] != 0):
         raise RatomegaError(f"charge {charge}: the coefficient found from residues is refuted by further primes")

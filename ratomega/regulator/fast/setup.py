@@ -11,16 +11,19 @@ that many powers of the scale give the coefficient back.
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Iterable, Iterator
 from dataclasses import dataclass
 from itertools import permutations
 from math import gcd
 
 from ratomega.case.setting import Setting
-from ratomega.exact.quadratic import Number, only_rational
+from ratomega.exact.quadratic import Number, Quadratic, one_field, only_rational, rational_parts
 from ratomega.exact.rational import Rational, common_denominator
 
-__all__ = ["FastSetup", "applies", "prepare"]
+__all__ = ["FastSetup", "Whole", "applies", "less", "prepare"]
+
+Whole = int | Quadratic
+"""An integer, or x + y sqrt(d) with integers x and y != 0."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -30,19 +33,21 @@ class FastSetup:
     ``inner`` is the scale that eps1, eps2 and the Coulomb differences need on their own.
 
     ``flavours[c]`` holds, for colour c, the roots r of the factors r + i eps1 + j eps2 of its boxes (i, j from 0);
-    ``alpha``, ``beta``, ``unit``: eps1 = alpha * unit and eps2 = beta * unit in lowest terms.
+    ``alpha``, ``beta``, ``unit``: eps1 = alpha * unit and eps2 = beta * unit in lowest terms. ``radicand`` is d where
+    some parameter lies in Q(sqrt(d)), 0 where all are rational; eps1 and eps2 always are.
     """
 
     scale: int
     inner: int
     eps1: int
     eps2: int
-    coulomb: tuple[int, ...]
-    flavours: tuple[tuple[int, ...], ...]
-    adjoints: tuple[int, ...]
+    coulomb: tuple[Whole, ...]
+    flavours: tuple[tuple[Whole, ...], ...]
+    adjoints: tuple[Whole, ...]
     alpha: int
     beta: int
     unit: int
+    radicand: int = 0
 
     @property
     def rank(self) -> int:
@@ -57,34 +62,42 @@ class FastSetup:
         """The least charge at which a single weight diverges; None when the ratio is negative."""
         return self.alpha + self.beta if self.beta > 0 else None
 
-    def rescaled(self, value: Rational, charge: int) -> Rational:
+    def rescaled(self, value: Number, charge: int) -> Number:
         """The coefficient that belongs to the coefficient of the integer parameters."""
         power = Rational(self.scale) ** abs(self.degree * charge)
         return value / power if self.degree > 0 else value * power
 
 
-def _limit_values(setting: Setting) -> list[Number]:
-    """Every parameter of the one node at t = 0."""
-    (node,) = setting.nodes
-    lines = [setting.eps1, setting.eps2, *node.coulomb, *node.antifundamental, *node.fundamental, *node.adjoint]
-    return [line.constant for line in lines]
+def less(a: Whole, b: Whole) -> Whole:
+    """a - b, again an integer where it is one.
+
+    >>> from ratomega.exact.quadratic import square_root
+    >>> less(2 + square_root(5), square_root(5))
+    2
+    """
+    return _settled(a - b)
+
+
+def _settled(value: Number | int) -> Whole:
+    return int(value.p) if isinstance(value, Rational) else value
 
 
 def prepare(setting: Setting) -> FastSetup:
     """The setting at t = 0 in integers. Assumes one node (``applies`` says so)."""
     (node,) = setting.nodes
     eps1, eps2 = only_rational(setting.eps1.constant), only_rational(setting.eps2.constant)
-    coulomb = [only_rational(a.constant) for a in node.coulomb]
-    anti = [only_rational(m.constant) for m in node.antifundamental]
-    fund = [only_rational(m.constant) for m in node.fundamental]
-    adjoints = [only_rational(m.constant) for m in node.adjoint]
-    scale = common_denominator([eps1, eps2, *coulomb, *anti, *fund, *adjoints])
-    inner = common_denominator([eps1, eps2, *(a - coulomb[0] for a in coulomb)])
+    coulomb, anti, fund, adjoints = (
+        [line.constant for line in lines]
+        for lines in (node.coulomb, node.antifundamental, node.fundamental, node.adjoint)
+    )
+    values = [eps1, eps2, *coulomb, *anti, *fund, *adjoints]
+    scale = _clearing(values)
+    inner = _clearing([eps1, eps2, *(a - coulomb[0] for a in coulomb)])
 
-    def whole(value: Rational) -> int:
-        return int((value * scale).p)
+    def whole(value: Number) -> Whole:
+        return _settled(value * scale)
 
-    e1, e2 = whole(eps1), whole(eps2)
+    e1, e2 = int((eps1 * scale).p), int((eps2 * scale).p)
     unit = gcd(e1, e2) * (1 if e1 > 0 else -1)
     flavours = tuple(
         tuple([whole(a + m) for m in anti] + [whole(a - m + eps1 + eps2) for m in fund]) for a in coulomb
@@ -100,7 +113,13 @@ def prepare(setting: Setting) -> FastSetup:
         e1 // unit,
         e2 // unit,
         unit,
+        one_field(values),
     )
+
+
+def _clearing(values: Iterable[Number]) -> int:
+    """The common denominator of all values and of both parts of those that are not rational."""
+    return common_denominator([part for value in values for part in rational_parts(value)])
 
 
 def applies(setting: Setting, charge: int) -> str | None:
@@ -114,14 +133,12 @@ def applies(setting: Setting, charge: int) -> str | None:
     rank = setting.nodes[0].rank
     if rank not in (2, 3):
         return f"the fast sums serve two and three colours, not {rank}"
-    if not all(isinstance(value, Rational) for value in _limit_values(setting)):
-        return "the fast sums take rational parameters"
     setup = prepare(setting)
     threshold = setup.singular_from()
     singular = threshold is not None and threshold <= charge
     for what, root in _roots(setup, singular):
         point = _on_lattice(setup, root, charge)
-        if singular and point is None and root % setup.unit == 0:
+        if singular and point is None and isinstance(root, int) and root % setup.unit == 0:
             # Out of reach of single factors, but the tables of the limit run over more of the lattice.
             return f"{what} is an integer combination of eps1 and eps2 at the limit point"
         if point is not None:
@@ -129,12 +146,12 @@ def applies(setting: Setting, charge: int) -> str | None:
     return None
 
 
-def _roots(setup: FastSetup, singular: bool) -> Iterator[tuple[str, int]]:
+def _roots(setup: FastSetup, singular: bool) -> Iterator[tuple[str, Whole]]:
     for (first, a), (second, b) in permutations(enumerate(setup.coulomb, 1), 2):
         if first < second:
-            yield f"a{first} - a{second}", a - b
+            yield f"a{first} - a{second}", less(a, b)
         for m in setup.adjoints:
-            yield f"a{first} - a{second} less an adjoint mass", a - b - m
+            yield f"a{first} - a{second} less an adjoint mass", less(less(a, b), m)
     if singular:
         for m in setup.adjoints:
             yield "an adjoint mass", m
@@ -143,9 +160,9 @@ def _roots(setup: FastSetup, singular: bool) -> Iterator[tuple[str, int]]:
                 yield "a Coulomb parameter plus a mass", root
 
 
-def _on_lattice(setup: FastSetup, root: int, charge: int) -> tuple[int, int] | None:
+def _on_lattice(setup: FastSetup, root: Whole, charge: int) -> tuple[int, int] | None:
     """(m, n) with root = m eps1 + n eps2 in the window that charges up to ``charge`` can reach, or None."""
-    if root % setup.unit:
+    if isinstance(root, Quadratic) or root % setup.unit:
         return None
     reach = charge + 2
     for m in range(-reach, reach + 1):

@@ -15,6 +15,7 @@ from ratomega.regulator.fast.factors import (
     diagram_factors,
     forms,
     hook_forms,
+    hook_numerators,
     tree_products,
     whole,
 )
@@ -47,10 +48,7 @@ def limit_hooks(setup: FastSetup, charge: int, parameters: Parameters, moduli: M
     p, q, place = hook_forms(charge)
     e = forms(0, p, q, parameters, moduli)
     other = moduli.reduce(parameters.eps - e)
-    up = np.ones_like(e)
-    for mass in setup.adjoints:
-        m = whole(mass, moduli)
-        up = moduli.multiply(up, moduli.multiply(moduli.reduce(e - m), moduli.reduce(other - m)))
+    up = hook_numerators(setup, e, other, moduli)
     for values, i, j in ((e, p, q), (other, 1 - p, 1 - q)):
         zero = i * setup.alpha + j * setup.beta == 0
         values[zero] = moduli.integers((j - i)[zero])

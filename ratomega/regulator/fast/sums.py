@@ -14,7 +14,8 @@ from ratomega.case.setting import Setting
 from ratomega.diagrams.tuples import count_all
 from ratomega.errors import InputError
 from ratomega.exact.batches import ResidueStream, Supplier, here
-from ratomega.exact.rational import ONE, Rational
+from ratomega.exact.quadratic import Number
+from ratomega.exact.rational import ONE
 from ratomega.regulator.fast.collect import bits_needed, collect, first_primes, primes_beyond, residues_beyond
 from ratomega.regulator.fast.proof import check_proof, proof_bound
 from ratomega.regulator.fast.setup import FastSetup, applies, prepare
@@ -35,7 +36,7 @@ class FastSum:
     ``proved``: the primes reach a proved bound on every coefficient, so that no bits are needed as evidence.
     """
 
-    coefficients: tuple[Rational, ...]
+    coefficients: tuple[Number, ...]
     spare_bits: tuple[int, ...]
     primes: int
     proved: bool
@@ -61,6 +62,7 @@ def fast_sum(setting: Setting, charge: int, *, certify: bool = False, supplier: 
 
     >>> from ratomega.case.setting import NodeSetting
     >>> from ratomega.exact.path import Linear
+    >>> from ratomega.exact.rational import Rational
     >>> node = NodeSetting("g", (Linear(Rational(1, 3)), Linear(Rational(-1, 3))), (), (), ())
     >>> answer = fast_sum(Setting(Linear(ONE), Linear(ONE, ONE), (node,), ()), 2)
     >>> [str(z) for z in answer.coefficients]
@@ -70,7 +72,7 @@ def fast_sum(setting: Setting, charge: int, *, certify: bool = False, supplier: 
     if reason is not None:
         raise InputError.single(reason)
     setup = prepare(setting)
-    known: tuple[Rational, ...] = (ONE,)
+    known: tuple[Number, ...] = (ONE,)
     if charge >= REHEARSAL_FROM:
         # The numbers at a fraction of the charge show how long they are going to be, and take no time.
         known = _rehearsal(setup, max(3, charge // 3))
@@ -89,7 +91,7 @@ def fast_sum(setting: Setting, charge: int, *, certify: bool = False, supplier: 
     return FastSum(done.coefficients, done.spare_bits, len(primes), True)
 
 
-def _rehearsal(setup: FastSetup, charge: int) -> tuple[Rational, ...]:
+def _rehearsal(setup: FastSetup, charge: int) -> tuple[Number, ...]:
     task = FastTask.make(setup, charge)
     wanted = first_primes(bits_needed(setup, charge, (ONE,)), task.bits)
     return collect(setup, charge, ResidueStream(here(task)), wanted=wanted).coefficients

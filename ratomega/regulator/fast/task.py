@@ -46,6 +46,7 @@ class FastTask:
     seconds: float
     singular: bool
     compute: Callable[[Moduli], Floats]
+    radicand: int
     name: str = FAST
     overhead: int = OVERHEAD
 
@@ -60,10 +61,10 @@ class FastTask:
         count = count_all([setup.rank], charge)
         if setup.rank == 2:
             method = _on_forest(two_colours, setup, forest)
-            return cls(charge, PRODUCT_BITS, LARGEST_BATCH, PER_PAIR * count, False, method)
+            return cls(charge, PRODUCT_BITS, LARGEST_BATCH, PER_PAIR * count, False, method, setup.radicand)
         batch = _fitting(len(forest) ** 2)
         method = _on_forest(three_colours, setup, forest)
-        return cls(charge, MATRIX_BITS, batch, PER_CONFIGURATION * count, False, method)
+        return cls(charge, MATRIX_BITS, batch, PER_CONFIGURATION * count, False, method, setup.radicand)
 
     @classmethod
     def _limit(cls, setup: FastSetup, charge: int) -> FastTask:
@@ -71,16 +72,31 @@ class FastTask:
         seconds = PER_CONFIGURATION * count_all([setup.rank], charge)
         if setup.rank == 2:
             method = _on_layout(two_colours_limit, setup, layout)
-            return cls(charge, LIMIT_BITS, LARGEST_BATCH, seconds, True, method)
+            return cls(charge, LIMIT_BITS, LARGEST_BATCH, seconds, True, method, setup.radicand)
         batch = _fitting(layout.depth * count_all([2], charge))
-        return cls(charge, LIMIT_BITS, batch, seconds, True, _on_layout(three_colours_limit, setup, layout))
+        method = _on_layout(three_colours_limit, setup, layout)
+        return cls(charge, LIMIT_BITS, batch, seconds, True, method, setup.radicand)
 
     @property
     def shape(self) -> tuple[int, ...]:
-        return (self.charge + 1,)
+        return (self.charge + 1, 2) if self.radicand else (self.charge + 1,)
 
     def residues(self, primes: Sequence[int]) -> Floats:
+        if self.radicand:
+            return self._parts(primes)
         return np.ascontiguousarray(self.compute(Moduli.make(primes, last=True)).T)
+
+    def _parts(self, primes: Sequence[int]) -> Floats:
+        """x and y of the coefficients x + y sqrt(d), from their values with either square root of d."""
+        split = Moduli.split(primes, self.radicand, last=True)
+        values = self.compute(split)
+        plus, minus = values[:, 0::2], values[:, 1::2]
+        moduli = Moduli.make(primes, last=True)
+        root = np.array(split.roots[0::2], dtype=np.float64)
+        halves = moduli.inverses(np.stack([np.full(len(primes), 2.0), moduli.reduce(2 * root)]))
+        x = moduli.multiply(moduli.reduce(plus + minus), halves[0])
+        y = moduli.multiply(moduli.reduce(plus - minus), halves[1])
+        return np.ascontiguousarray(np.stack([x, y]).transpose(2, 1, 0))
 
 
 def _fitting(entries: int) -> int:

@@ -18,7 +18,7 @@ from ratomega.regulator.fast.factors import Bench, Parameters, differences, pair
 from ratomega.regulator.fast.generic import one_colour
 from ratomega.regulator.fast.layout import Layout, group_starts
 from ratomega.regulator.fast.powers import pair_shifts, power_sums
-from ratomega.regulator.fast.setup import FastSetup
+from ratomega.regulator.fast.setup import FastSetup, Whole, less
 from ratomega.regulator.fast.singles import inverse_factorials, singles
 from ratomega.regulator.fast.tables import Forest, Integers, box_arrays, box_list
 
@@ -103,7 +103,7 @@ def _pair_products(setup: FastSetup, forest: Forest, parameters: Parameters, ben
     if charge == 1:
         return [*products, np.ones((len(PAIRS), 1, 1, len(moduli)))]
     i, j, place = differences(charge)
-    roots = [setup.coulomb[a] - setup.coulomb[b] for a, b in PAIRS]
+    roots = [less(setup.coulomb[a], setup.coulomb[b]) for a, b in PAIRS]
     table = pair_factors(setup, roots, i, j, parameters, moduli)
     boxes = box_list(charge)
     number = np.full((charge + 1, charge + 1), -1)
@@ -139,7 +139,7 @@ def three_colours_limit(setup: FastSetup, layout: Layout, moduli: Moduli) -> Flo
     weighted = bench.reduce(alone[0].constant * layout.weight[:, None])
     sums, constants = [], []
     for a, b in PAIRS:
-        root = setup.coulomb[a] - setup.coulomb[b]
+        root = less(setup.coulomb[a], setup.coulomb[b])
         by_size = pair_constants(setup, root, clusters, charge, parameters, bench)
         constants.append(
             np.concatenate([_of_pairs(layout, by_size[n], n).reshape(-1, len(moduli)) for n in range(charge + 1)])
@@ -184,7 +184,7 @@ def _of_pairs(layout: Layout, table: Floats, size: int) -> Floats:
 
 
 def _pair_sums(
-    setup: FastSetup, root: int, layout: Layout, parameters: Parameters, bench: Bench
+    setup: FastSetup, root: Whole, layout: Layout, parameters: Parameters, bench: Bench
 ) -> list[Floats]:
     """The power sums over pairs of boxes, for all pairs of diagrams in the order of the second, then the first."""
     forest, charge, count = layout.forest, layout.charge, len(bench.moduli)

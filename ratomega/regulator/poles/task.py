@@ -37,6 +37,7 @@ class PoleTask:
     at_square: bool
     engine: PoleEngine
     bits: int = PRIME_BITS
+    radicand: int = 0
     overhead: int = OVERHEAD
 
     @classmethod

@@ -1,17 +1,15 @@
-"""The atlas as a JSON document and back; ``documents`` is the door. Ratios travel as "num/den" or "num"."""
+"""The atlas as a whole JSON document and back: it may stand for ranks alone, without a case. Ratios are rational."""
 
 from __future__ import annotations
 
-from collections.abc import Sequence
 from typing import Any
 
 from ratomega.detector.atlas import Atlas, SingularRatio
 from ratomega.detector.coulomb_poles import CoulombPole, PoleMap
-from ratomega.exact.rational import Rational, exact_text, from_exact_text
+from ratomega.documents.pieces import Document, each, if_given, listed, rational, whole, word
+from ratomega.exact.rational import exact_text
 
 __all__ = ["atlas_document", "read_atlas"]
-
-Document = dict[str, Any]
 
 
 def atlas_document(atlas: Atlas) -> Document:
@@ -64,68 +62,42 @@ def read_atlas(document: Document) -> Atlas:
     charge = document["charge"]
     poles = document["poles"]
     return Atlas(
-        _word(document["version"]),
-        None if document["hash"] is None else _word(document["hash"]),
-        _whole_numbers(document["ranks"]),
-        _whole_numbers(charge) if isinstance(charge, list) else _whole(charge),
-        _whole(document["configurations"]),
-        tuple(_read_ratio(entry) for entry in _listed(document["ratios"])),
-        None if poles is None else _read_poles(poles),
+        word(document["version"]),
+        if_given(word, document["hash"]),
+        each(whole, document["ranks"]),
+        each(whole, charge) if isinstance(charge, list) else whole(charge),
+        whole(document["configurations"]),
+        each(_read_ratio, document["ratios"]),
+        if_given(_read_poles, poles),
     )
 
 
 def _read_ratio(d: Document) -> SingularRatio:
-    alpha, beta = _whole_numbers(d["steps"])
+    alpha, beta = each(whole, d["steps"])
     rows = tuple(
-        (_whole(row["charge"]), _whole(row["worst_order"]), _whole(row["singular"])) for row in _listed(d["by_charge"])
+        (whole(row["charge"]), whole(row["worst_order"]), whole(row["singular"])) for row in listed(d["by_charge"])
     )
-    first, worst, singular = (_whole(d[key]) for key in ("first_charge", "worst_order", "singular"))
+    first, worst, singular = (whole(d[key]) for key in ("first_charge", "worst_order", "singular"))
     entry = SingularRatio((alpha, beta), first, worst, singular, rows)
     if exact_text(entry.ratio) != d["ratio"]:
         raise ValueError(f"the ratio {d['ratio']} does not belong to the steps {alpha}:{beta}")
     return entry
 
 
-def _read_poles(d: Document) -> PoleMap:
+def _read_poles(d: Any) -> PoleMap:
     poles = tuple(
         CoulombPole(
-            _exact(pole["difference"]),
-            _whole(pole["first_charge"]),
-            _whole(pole["multiplicity"]),
-            tuple(_pair(pair) for pair in _listed(pole["pairs"])),
+            rational(pole["difference"]),
+            whole(pole["first_charge"]),
+            whole(pole["multiplicity"]),
+            each(_pair, pole["pairs"]),
         )
-        for pole in _listed(d["poles"])
+        for pole in listed(d["poles"])
     )
-    met = None if d["met"] is None else tuple(_word(sentence) for sentence in _listed(d["met"]))
-    return PoleMap(_exact(d["eps1"]), _exact(d["eps2"]), _whole(d["charge"]), poles, met)
+    met = None if d["met"] is None else each(word, d["met"])
+    return PoleMap(rational(d["eps1"]), rational(d["eps2"]), whole(d["charge"]), poles, met)
 
 
 def _pair(value: object) -> tuple[int, int]:
-    m, n = _whole_numbers(value)
+    m, n = each(whole, value)
     return m, n
-
-
-def _word(value: object) -> str:
-    if not isinstance(value, str):
-        raise TypeError(f"expected a text, not {value!r}")
-    return value
-
-
-def _whole(value: object) -> int:
-    if not isinstance(value, int) or isinstance(value, bool):
-        raise TypeError(f"expected an integer, not {value!r}")
-    return value
-
-
-def _listed(value: object) -> Sequence[Any]:
-    if not isinstance(value, list):
-        raise TypeError(f"expected a list, not {value!r}")
-    return value
-
-
-def _whole_numbers(value: object) -> tuple[int, ...]:
-    return tuple(_whole(one) for one in _listed(value))
-
-
-def _exact(value: object) -> Rational:
-    return from_exact_text(_word(value))

@@ -1,0 +1,131 @@
+"""The door of this room: any result as JSON and back.
+
+``load_result(to_json(result)) == result``, and writing again gives the same bytes. Host names, folders and times stay
+out (but for the seconds of an approach): the same case gives the same document everywhere.
+"""
+
+from __future__ import annotations
+
+import json
+import os
+from collections.abc import Callable, Mapping
+from dataclasses import dataclass
+from pathlib import Path
+from typing import Any
+
+from ratomega.average_results import AverageResult
+from ratomega.block_results import BlockResult
+from ratomega.detector.atlas import Atlas
+from ratomega.documents.approach import approach_body, read_approach
+from ratomega.documents.atlas import atlas_document, read_atlas
+from ratomega.documents.averages import average_body, read_average
+from ratomega.documents.blocks import block_document, read_block
+from ratomega.documents.comparing import compare_body, read_compare
+from ratomega.documents.detecting import detect_body, read_detect
+from ratomega.documents.explaining import explanation_body, read_explanation
+from ratomega.documents.grids import grid_body, read_grid
+from ratomega.documents.header import header_document, read_header
+from ratomega.documents.limits import limit_body, read_limit
+from ratomega.documents.pieces import Document, flag
+from ratomega.documents.validating import read_validate, validate_body
+from ratomega.errors import InputError
+from ratomega.explaining import Explanation
+from ratomega.grid_results import GridResult
+from ratomega.results import DetectResult, Header, LimitResult, ValidateResult
+from ratomega.verify.approach import Approach
+from ratomega.verify.comparing import CompareResult
+
+__all__ = ["Result", "load_result", "to_document", "to_json"]
+
+Result = (
+    LimitResult
+    | DetectResult
+    | ValidateResult
+    | AverageResult
+    | Atlas
+    | BlockResult
+    | Approach
+    | CompareResult
+    | Explanation
+    | GridResult
+)
+
+LARGEST_DOCUMENT = 512 * 1024 * 1024
+
+
+@dataclass(frozen=True, slots=True)
+class _Form:
+    """A kind of result that has a header: its type, what it has beside the header, and the way back."""
+
+    type: type[Any]
+    body: Callable[[Any], Document]
+    read: Callable[[Mapping[str, Any], Header, bool], Result]
+
+
+_FORMS = {
+    "limit": _Form(LimitResult, limit_body, read_limit),
+    "detect": _Form(DetectResult, detect_body, read_detect),
+    "validate": _Form(ValidateResult, validate_body, read_validate),
+    "average": _Form(AverageResult, average_body, read_average),
+    "approach": _Form(Approach, approach_body, read_approach),
+    "compare": _Form(CompareResult, compare_body, read_compare),
+    "grid": _Form(GridResult, grid_body, read_grid),
+    "explain": _Form(Explanation, explanation_body, read_explanation),
+}
+
+
+def to_json(result: Result) -> str:
+    """The result as one JSON document, with a final newline. Deterministic."""
+    return json.dumps(to_document(result), indent=1, ensure_ascii=False) + "\n"
+
+
+def to_document(result: Result) -> Document:
+    """The result as plain dictionaries, lists, strings, integers and truth values."""
+    if isinstance(result, Atlas):
+        return atlas_document(result)
+    if isinstance(result, BlockResult):
+        return block_document(result)
+    name, form = next((name, form) for name, form in _FORMS.items() if isinstance(result, form.type))
+    return {"result": name, **header_document(result.header), "partial": result.partial, **form.body(result)}
+
+
+def load_result(source: str | os.PathLike[str]) -> Result:
+    """Read a result back from a JSON text or from a file that holds one.
+
+    Raises ``InputError`` when the file cannot be read or the document is not one of this package's results.
+    """
+    text, where = _text_of(source)
+    try:
+        document = json.loads(text)
+    except (json.JSONDecodeError, RecursionError) as error:
+        raise InputError.single(f"this is not a JSON document: {error}", where) from error
+    try:
+        return _from_document(document)
+    except InputError as error:
+        raise InputError.single(f"this is not a result of ratomega: {error}", where) from error
+    except (KeyError, TypeError, ValueError, AttributeError, IndexError) as error:
+        message = f"this is not a result of ratomega: {type(error).__name__} {error}"
+        raise InputError.single(message, where) from error
+
+
+def _text_of(source: str | os.PathLike[str]) -> tuple[str, str]:
+    if isinstance(source, str) and source.lstrip()[:1] == "{":
+        return source, "document"
+    path = Path(source)
+    try:
+        if path.stat().st_size > LARGEST_DOCUMENT:
+            raise InputError.single(f"the file is larger than {LARGEST_DOCUMENT} bytes", str(path))
+        return path.read_text(encoding="utf-8"), str(path)
+    except (OSError, UnicodeDecodeError, ValueError) as error:
+        raise InputError.single(f"the file cannot be read: {error}", str(path)) from error
+
+
+def _from_document(document: Document) -> Result:
+    kind = document["result"]
+    if kind == "atlas":
+        return read_atlas(document)
+    if kind == "block":
+        return read_block(document)
+    if kind not in _FORMS:
+        raise ValueError(f'"result" is {kind!r}, not {", ".join(_FORMS)}, atlas or block')
+    return _FORMS[kind].read(document, read_header(document), flag(document["partial"]))
