@@ -322,7 +322,7 @@ def test_a_damaged_function_is_refused(value):
 
 @pytest.mark.parametrize("nome", [False, True])
 def test_a_grid_of_values(nome):
-    """Values on a grid against limits at the points one by one, and H against Z by its definition at two points."""
+    """Values on a grid against limits at the points one by one, and H against Z by its definition."""
     case = u2(antifundamental=["1+2*i/3", "1", "1/2 + i/3", "1/5"], charge=2)
     many = ratomega.grid(case, at={"a": "i/7 to 2*i in 15"}, nome=nome)
     assert many.way == "functions"
@@ -334,6 +334,15 @@ def test_a_grid_of_values(nome):
             assert value in [row.value for row in many[charge]]
             if not nome:
                 assert value == ratomega.limit(case.at(a=place))[charge].value
+    if nome:
+        # Order q of Z = (16 q_e/q)^(-a^2) (1-q)^((sum mu + 2)^2/4) theta_3^(2 sum mu^2 - 4) H(16 q_e), eps1 = eps2 = 1,
+        # with 16 q_e = q + q^2/2 + ... and theta_3 = 1 + q/8 + ... (Al. Zamolodchikov 1987; R. Poghossian 0909.3412).
+        mu = [2 * sympy.I / 3, sympy.Integer(0), sympy.I / 3 - sympy.Rational(1, 2), sympy.Rational(-4, 5)]
+        a = 2 * sympy.I
+        factor = -(a**2) / 2 - (sum(mu) + 2) ** 2 / 4 + (2 * sum(x**2 for x in mu) - 4) / 8
+        z = sympy.sympify(str(ratomega.limit(case.at(a="2*i"))[1].value))
+        (row,) = ratomega.grid(case.with_charge(1), at={"a": ["2*i"]}, nome=True)[1]
+        assert sympy.expand(z - factor - sympy.sympify(str(row.value))) == 0
     with pytest.raises(ratomega.InputError, match="that of the case"):
         ratomega.grid(case, at={"a": "sqrt(2)"})
     # The pole i/4 - 1 of a + i/2 is named, and at its conjugate there is a value.
