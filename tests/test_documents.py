@@ -71,7 +71,7 @@ def test_keys_of_a_limit():
     [
         (lambda d: d.pop("hash"), "hash"),
         (lambda d: d.update(hash="0" * 16), "does not belong to the case"),
-        (lambda d: d.update(result="other"), "not limit, detect, validate, average, approach, compare, explain"),
+        (lambda d: d.update(result="other"), "not limit, detect, validate, average, approach, compare, grid, explain"),
         (lambda d: d["coefficients"][1].update(value="1.5"), "not an exact number"),
         (lambda d: d["coefficients"][1].update(value="2/4"), "lowest terms"),
         (lambda d: d["coefficients"][1].update(charge="1"), "expected a list"),

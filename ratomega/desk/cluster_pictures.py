@@ -13,7 +13,7 @@ from ratomega.desk.diagram_pictures import configuration_words, diagrams_picture
 from ratomega.desk.markup import Child, element, joined
 from ratomega.desk.picture import PAPER, Picture, label
 from ratomega.detector.poincare import polynomial_text
-from ratomega.results import ClusterReport, Exchange
+from ratomega.results.detections import ClusterReport, Exchange
 
 __all__ = ["MOST_MEMBERS", "cluster_picture", "cluster_words", "exchange_words"]
 

@@ -11,7 +11,7 @@ from ratomega.desk.diagram_pictures import singular_picture
 from ratomega.desk.markup import Child, Markup, element, joined
 from ratomega.desk.text import charge_word, diagrams_text, factor_text
 from ratomega.desk.value_parts import sheet
-from ratomega.results import ChargeReport, ClusterReport, DetectResult, SingularReport
+from ratomega.results.detections import ChargeReport, ClusterReport, DetectResult, SingularReport
 
 __all__ = ["cluster_figure", "clusters_part", "configurations_part", "counts_table", "legend", "singular_figure"]
 

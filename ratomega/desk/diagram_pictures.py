@@ -15,7 +15,7 @@ from ratomega.desk.picture import GUILTY, KEEN, Picture, label, side_by_side
 from ratomega.diagrams.tuples import Configuration
 from ratomega.diagrams.young import Diagram, boxes
 from ratomega.errors import InputError
-from ratomega.results import FactorReport, SingularReport
+from ratomega.results.detections import FactorReport, SingularReport
 
 __all__ = ["MOST_BOXES", "Marks", "configuration_words", "diagrams_picture", "draw", "marks_of", "singular_picture"]
 

@@ -15,13 +15,15 @@ from dataclasses import dataclass
 from ratomega.case.case import Case
 from ratomega.case.reading import load_case
 from ratomega.case.setting import own_setting
+from ratomega.chain.job import CaseSource
+from ratomega.chain.pipeline import detect, limit, validate
 from ratomega.desk.text import charge_word
 from ratomega.detector.atlas import HIGHEST_TOTAL, Atlas, atlas
 from ratomega.diagrams.tuples import count_all
-from ratomega.job import CaseSource
-from ratomega.pipeline import detect, limit, validate
 from ratomega.regulator.routes import choose
-from ratomega.results import DetectResult, LimitResult, ValidateResult
+from ratomega.results.detections import DetectResult
+from ratomega.results.limits import LimitResult
+from ratomega.results.validations import ValidateResult
 from ratomega.symbolic.structure import structure
 from ratomega.validator.checklist import depth_of
 from ratomega.verify.approach import Approach, approach

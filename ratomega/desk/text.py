@@ -10,17 +10,10 @@ from ratomega.diagrams.tuples import Charge, Configuration
 from ratomega.exact.function_text import function_text
 from ratomega.exact.quadratic import approximate_text, number_text
 from ratomega.exact.rational_function import RationalFunction
-from ratomega.results import (
-    ChargeReport,
-    ClusterReport,
-    Coefficient,
-    DetectResult,
-    FactorReport,
-    Header,
-    LimitResult,
-    RouteRecord,
-    ValidateResult,
-)
+from ratomega.results.detections import ChargeReport, ClusterReport, DetectResult, FactorReport
+from ratomega.results.header import Header
+from ratomega.results.limits import Coefficient, LimitResult, RouteRecord
+from ratomega.results.validations import ValidateResult
 from ratomega.validator.verdict import Check
 
 __all__ = ["check_lines", "detect_text", "heading", "limit_text", "table", "theory_text", "validate_text"]

@@ -13,7 +13,8 @@ from ratomega.exact.function_text import function_text
 from ratomega.exact.quadratic import Number, Quadratic, approximate_text, number_text
 from ratomega.exact.rational import Rational
 from ratomega.exact.rational_function import RationalFunction
-from ratomega.results import Coefficient, Header, LimitResult
+from ratomega.results.header import Header
+from ratomega.results.limits import Coefficient, LimitResult
 from ratomega.validator.verdict import Check
 
 __all__ = ["case_facts", "check_list", "coefficient_table", "copy_box", "sheet", "summary_line", "values_by_path"]

@@ -13,8 +13,7 @@ from dataclasses import dataclass
 from pathlib import Path
 from typing import Any
 
-from ratomega.average_results import AverageResult
-from ratomega.block_results import BlockResult
+from ratomega.chain.explaining import Explanation
 from ratomega.detector.atlas import Atlas
 from ratomega.documents.approach import approach_body, read_approach
 from ratomega.documents.atlas import atlas_document, read_atlas
@@ -29,9 +28,13 @@ from ratomega.documents.limits import limit_body, read_limit
 from ratomega.documents.pieces import Document, flag
 from ratomega.documents.validating import read_validate, validate_body
 from ratomega.errors import InputError
-from ratomega.explaining import Explanation
-from ratomega.grid_results import GridResult
-from ratomega.results import DetectResult, Header, LimitResult, ValidateResult
+from ratomega.results.averages import AverageResult
+from ratomega.results.blocks import BlockResult
+from ratomega.results.detections import DetectResult
+from ratomega.results.grids import GridResult
+from ratomega.results.header import Header
+from ratomega.results.limits import LimitResult
+from ratomega.results.validations import ValidateResult
 from ratomega.verify.approach import Approach
 from ratomega.verify.comparing import CompareResult
 

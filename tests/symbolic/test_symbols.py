@@ -13,11 +13,11 @@ from click.testing import CliRunner
 
 import ratomega
 from ratomega.case.setting import own_setting
+from ratomega.chain.job import Job
+from ratomega.chain.pipeline import limit_result
 from ratomega.cli.main import cli
 from ratomega.exact.quadratic import square_root
 from ratomega.exact.rational import Rational
-from ratomega.job import Job
-from ratomega.pipeline import limit_result
 from ratomega.symbolic import functions as functions_module
 from ratomega.symbolic.functions import Functions, direct_evaluator
 from ratomega.symbolic.structure import even_symbols, structure
