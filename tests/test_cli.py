@@ -313,3 +313,29 @@ def test_output_names_no_folder_and_no_host(tmp_path):
     assert str(tmp_path) not in text
     assert os.uname().nodename not in text or len(os.uname().nodename) < 4
     assert signal.SIGINT.name not in text
+
+
+@pytest.mark.parametrize("words", [["limit", "u1-pure", "--probes"], ["atlas", "--charge", "1", "--ranks"]])
+@pytest.mark.parametrize("typed", ["1\n2", "\x1b[31m", "1" * 5000, "caf\udce9"])
+def test_what_was_typed_is_shown_on_one_line_harmless_to_a_terminal(words, typed):
+    done = run(*words, typed)
+    assert done.returncode == 2
+    assert done.stdout == ""
+    assert done.stderr.endswith("\n")
+    line = done.stderr[:-1]
+    assert line.isprintable()
+    assert len(line) < 700
+
+
+def test_names_that_are_no_text(tmp_path):
+    """Python reads undecodable bytes of a name as lone surrogates, which cannot be written as UTF-8."""
+    words = [b"report", b"u1-pure", b"--charge", b"1", b"-o", b"caf\xe9.html"]
+    command = [os.fsencode(sys.executable), b"-m", b"ratomega"]
+    environment = {**os.environ, "PYTHONIOENCODING": "utf-8:strict"}
+    done = subprocess.run([*command, *words], capture_output=True, cwd=tmp_path, env=environment, check=False)
+    assert (done.returncode, done.stdout) == (0, b"wrote caf\\udce9.html\n")
+    assert os.listdir(os.fsencode(tmp_path)) == [b"caf\xe9.html"]
+    words = [b"approach", b"u1-pure", b"--json", b"--plot", b"caf\xe9.gif"]
+    done = subprocess.run([*command, *words], capture_output=True, cwd=tmp_path, env=environment, check=False)
+    assert done.returncode == 2
+    assert 'not to "caf\udce9.gif"' in json.loads(done.stdout)["error"]["message"]

@@ -47,9 +47,11 @@ def nearest(word: str, known: Collection[str]) -> str:
 def kind(value: object) -> str:
     """What a value is, in the words of a TOML file.
 
-    >>> kind(True), kind(3), kind({}), kind("x"), kind([])
-    ('a truth value', 'an integer', 'a table', 'text', 'a list')
+    >>> kind(True), kind(3), kind({}), kind("x"), kind([]), kind(None)
+    ('a truth value', 'an integer', 'a table', 'text', 'a list', 'null')
     """
+    if value is None:
+        return "null"
     if isinstance(value, bool):
         return "a truth value"
     if isinstance(value, int):

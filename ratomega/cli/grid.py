@@ -18,7 +18,7 @@ from ratomega.errors import InputError
 __all__ = ["grid"]
 
 
-@click.command("grid", short_help="Evaluate coefficients at many values of free parameters.")
+@click.command("grid", short_help="Give the coefficients at many values of the free parameters.")
 @case_options
 @click.option(
     "--at",

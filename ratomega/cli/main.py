@@ -16,11 +16,14 @@ from typing import NoReturn
 
 import click
 
+from ratomega.case.wording import shortened
 from ratomega.documents.failing import error_document
 from ratomega.errors import INTERRUPTED, InputError, RatomegaError, WorkerError
 from ratomega.version import VERSION
 
 __all__ = ["main"]
+
+LONGEST_SENTENCE = 600
 
 COMMANDS = (
     "approach",
@@ -63,11 +66,13 @@ def cli() -> None:
 def _fail(error: RatomegaError, as_json: bool) -> int:
     given = error if isinstance(error, InputError) else InputError.single(str(error))
     if as_json:
-        click.echo(json.dumps(error_document(given), indent=1, ensure_ascii=False))
+        text = json.dumps(error_document(given), indent=1, ensure_ascii=False)
+        # Words that were no text when they were typed are no text here; \udcxx is how JSON writes them.
+        click.echo(text.encode("utf-8", "backslashreplace").decode("utf-8"))
     for problem in given.problems:
-        click.echo(f"ratomega: {problem.text()}", err=True)
+        # What was typed stands in the sentence, and a terminal obeys what cannot be printed.
+        click.echo(f"ratomega: {shortened(problem.text(), LONGEST_SENTENCE)}", err=True)
     return error.exit_status
-
 
 
 def main(arguments: Sequence[str] | None = None) -> NoReturn:

@@ -8,6 +8,7 @@ from typing import Any
 
 import click
 
+from ratomega.case.wording import shortened
 from ratomega.cli.completion import CASE, FILE
 from ratomega.cli.running import loaded_case
 from ratomega.desk.report import report as make_report
@@ -15,6 +16,8 @@ from ratomega.validator.checklist import DEPTHS
 from ratomega.version import VERSION
 
 __all__ = ["report"]
+
+LONGEST_NAME = 4096
 
 
 @click.command("report", short_help="Write one self-contained HTML page on a case.")
@@ -52,11 +55,13 @@ def report(output: str, no_tilt: bool, depth: str, as_json: bool, **case_options
     command = shlex.join([*words, "-o", output])
     made = make_report(loaded_case(**case_options), depth=depth, allow_tilt=not no_tilt, command=command)
     made.save(output)
+    # The name of a file need not be text.
+    shown = shortened(output, LONGEST_NAME)
     if as_json:
-        document = {"result": "report", "version": VERSION, "file": output, "hash": made.findings.case.hash}
+        document = {"result": "report", "version": VERSION, "file": shown, "hash": made.findings.case.hash}
         click.echo(json.dumps({**document, "left_out": list(made.notes)}, indent=1, ensure_ascii=False))
     else:
-        click.echo(f"wrote {output}")
+        click.echo(f"wrote {shown}")
         for note in made.notes:
             click.echo(f"left out  {note}")
     return 0

@@ -6,7 +6,7 @@ from collections.abc import Mapping
 from dataclasses import asdict
 from typing import Any
 
-from ratomega.documents.pieces import Document, each, exact, flag, if_given, listed, rational, real, whole, word
+from ratomega.documents.pieces import Document, Misfit, each, exact, flag, if_given, listed, rational, real, whole, word
 from ratomega.exact.quadratic import number_text
 from ratomega.exact.rational import exact_text
 from ratomega.results.header import Header
@@ -29,11 +29,11 @@ def _charge(one: ApproachCharge) -> Document:
 
 
 def read_approach(document: Mapping[str, Any], header: Header, partial: bool) -> Approach:
-    """The way back. Raises ``KeyError``, ``TypeError`` or ``ValueError`` for anything else."""
+    """The way back. Raises ``Misfit``, or what Python raises, for anything else."""
     charges = each(_read_charge, document["charges"])
     result = Approach(header, whole(document["digits"]), charges, partial)
     if document["exit"] != result.exit_status:
-        raise ValueError('"exit" is not that of the points')
+        raise Misfit('"exit" is not that of the points')
     return result
 
 

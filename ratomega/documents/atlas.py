@@ -6,7 +6,7 @@ from typing import Any
 
 from ratomega.detector.atlas import Atlas, SingularRatio
 from ratomega.detector.coulomb_poles import CoulombPole, PoleMap
-from ratomega.documents.pieces import Document, each, if_given, listed, rational, whole, word
+from ratomega.documents.pieces import Document, Misfit, each, if_given, listed, rational, whole, word
 from ratomega.exact.rational import exact_text
 
 __all__ = ["atlas_document", "read_atlas"]
@@ -58,7 +58,7 @@ def _poles(found: PoleMap) -> Document:
 
 
 def read_atlas(document: Document) -> Atlas:
-    """Read back what ``atlas_document`` wrote. Raises ``KeyError``, ``TypeError`` or ``ValueError``."""
+    """Read back what ``atlas_document`` wrote. Raises ``Misfit``, or what Python raises."""
     charge = document["charge"]
     poles = document["poles"]
     return Atlas(
@@ -80,7 +80,7 @@ def _read_ratio(d: Document) -> SingularRatio:
     first, worst, singular = (whole(d[key]) for key in ("first_charge", "worst_order", "singular"))
     entry = SingularRatio((alpha, beta), first, worst, singular, rows)
     if exact_text(entry.ratio) != d["ratio"]:
-        raise ValueError(f"the ratio {d['ratio']} does not belong to the steps {alpha}:{beta}")
+        raise Misfit(f"the ratio {d['ratio']} does not belong to the steps {alpha}:{beta}")
     return entry
 
 

@@ -11,7 +11,7 @@ from typing import Any
 
 from ratomega.averages.functions import SYMBOL
 from ratomega.averages.limits import FUNCTIONS, KINDS, AverageLimit, AveragePath, AverageValue
-from ratomega.documents.pieces import Document, each, exact, if_given, listed, one_of, whole, word
+from ratomega.documents.pieces import Document, each, exact, if_given, listed, one_of, together, whole, word
 from ratomega.exact.function_text import function_text, parse_function
 from ratomega.exact.line_function import LineFunction
 from ratomega.exact.quadratic import number_text, square_root
@@ -29,7 +29,7 @@ def average_body(result: AverageResult) -> Document:
 
 
 def read_average(document: Mapping[str, Any], header: Header, partial: bool) -> AverageResult:
-    """The way back. Raises ``KeyError``, ``TypeError`` or ``ValueError`` for anything else."""
+    """The way back. Raises ``Misfit``, or what Python raises, for anything else."""
     of = one_of(document, "of", KINDS)
     averages = tuple(
         Average(word(a["name"]), tuple(_read_limit(c, of in FUNCTIONS) for c in listed(a["coefficients"])))
@@ -50,6 +50,7 @@ def _limit(c: AverageLimit) -> Document:
 
 
 def _read_limit(d: Mapping[str, Any], function: bool) -> AverageLimit:
+    together(d, "order", "leading")
     values = listed(d["values"]) if "values" in d else []
     return AverageLimit(
         charge=each(whole, d["charge"]),

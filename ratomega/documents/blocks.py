@@ -10,7 +10,19 @@ from ratomega.case.conformal import ConformalCase
 from ratomega.case.conformal_reading import conformal_from_mapping, conformal_to_mapping
 from ratomega.case.reading import case_from_mapping, case_to_mapping
 from ratomega.documents.header import check_document, path_value, read_checks, read_path_values
-from ratomega.documents.pieces import Document, each, exact, if_given, listed, optional_text, rational, whole, word
+from ratomega.documents.pieces import (
+    Document,
+    Misfit,
+    each,
+    exact,
+    if_given,
+    listed,
+    optional_text,
+    rational,
+    together,
+    whole,
+    word,
+)
 from ratomega.exact.quadratic import number_text
 from ratomega.exact.rational import exact_text
 from ratomega.results.blocks import BlockCoefficient, BlockResult, Dictionary, FieldEntry
@@ -39,11 +51,11 @@ def block_document(result: BlockResult) -> Document:
 
 
 def read_block(document: Mapping[str, Any]) -> BlockResult:
-    """The way back. Raises ``KeyError``, ``TypeError``, ``ValueError`` or ``InputError`` for anything else."""
+    """The way back. Raises ``Misfit``, ``InputError``, or what Python raises, for anything else."""
     tables = document["case"]
     case = conformal_from_mapping(tables) if "conformal" in tables else case_from_mapping(tables)
     if document["hash"] != case.hash:
-        raise ValueError(f'the hash {document["hash"]} does not belong to the case, whose hash is {case.hash}')
+        raise Misfit(f'the hash {document["hash"]} does not belong to the case, whose hash is {case.hash}')
     result = BlockResult(
         version=word(document["version"]),
         case=case,
@@ -59,7 +71,7 @@ def read_block(document: Mapping[str, Any]) -> BlockResult:
         checks=read_checks(document["checks"]),
     )
     if document["summary"] != result.summary:
-        raise ValueError("the summary is not that of the checks")
+        raise Misfit("the summary is not that of the checks")
     return result
 
 
@@ -120,6 +132,7 @@ def _coefficient(c: BlockCoefficient) -> Document:
 
 
 def _read_coefficient(d: Mapping[str, Any]) -> BlockCoefficient:
+    together(d, "pole_order", "leading")
     block, elliptic, gauge, leading = (
         exact(d[name]) if name in d else None for name in ("block", "elliptic", "gauge", "leading")
     )

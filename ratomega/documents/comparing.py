@@ -28,7 +28,7 @@ def compare_body(result: CompareResult) -> Document:
 
 
 def read_compare(document: Mapping[str, Any], header: Header, partial: bool) -> CompareResult:
-    """The way back. Raises ``KeyError``, ``TypeError`` or ``ValueError`` for anything else."""
+    """The way back. Raises ``Misfit``, or what Python raises, for anything else."""
     rows = each(_read_row, document["rows"])
     diagnosis = each(_read_explanation, document["diagnosis"])
     return CompareResult(header, one_of(document, "as", NAMES), rows, diagnosis, whole(document["used"]), partial)

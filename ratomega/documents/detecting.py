@@ -27,7 +27,7 @@ def detect_body(result: DetectResult) -> Document:
 
 
 def read_detect(document: Mapping[str, Any], header: Header, partial: bool) -> DetectResult:
-    """The way back. Raises ``KeyError``, ``TypeError`` or ``ValueError`` for anything else."""
+    """The way back. Raises ``Misfit``, or what Python raises, for anything else."""
     return DetectResult(header, each(lambda c: _read_charge(c, header.case), document["charges"]), partial)
 
 

@@ -18,6 +18,6 @@ def explanation_body(result: Explanation) -> Document:
 
 
 def read_explanation(document: Mapping[str, Any], header: Header, partial: bool) -> Explanation:
-    """The way back. Raises ``KeyError``, ``TypeError`` or ``ValueError`` for anything else."""
+    """The way back. Raises ``Misfit``, or what Python raises, for anything else."""
     paragraphs = tuple(Paragraph(word(p["title"]), word(p["text"])) for p in listed(document["paragraphs"]))
     return Explanation(header, paragraphs, partial)

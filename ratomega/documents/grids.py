@@ -10,7 +10,7 @@ from typing import Any
 from ratomega.case.progression import Axes, Counting
 from ratomega.diagrams.tuples import Charge
 from ratomega.documents.header import check_document, read_checks
-from ratomega.documents.pieces import Document, each, exact, if_given, listed, one_of, rational, whole, word
+from ratomega.documents.pieces import Document, Misfit, each, exact, if_given, listed, one_of, rational, whole, word
 from ratomega.exact.decimals import Decimals, decimal_value
 from ratomega.exact.quadratic import Number, number_text
 from ratomega.exact.rational import exact_text
@@ -56,23 +56,23 @@ def _row(row: GridRow, places: list[dict[Number, int]]) -> Document:
 
 
 def read_grid(document: Mapping[str, Any], header: Header, partial: bool) -> GridResult:
-    """The way back. Raises ``KeyError``, ``TypeError`` or ``ValueError`` for anything else."""
+    """The way back. Raises ``Misfit``, or what Python raises, for anything else."""
     at = document["at"]
     if tuple(at) != header.case.symbols:
-        raise ValueError(f'"at" has values of {", ".join(at)}, not of {", ".join(header.case.symbols)}')
+        raise Misfit(f'"at" has values of {", ".join(at)}, not of {", ".join(header.case.symbols)}')
     axes = tuple(each(exact, axis) for axis in at.values())
     digits = if_given(whole, document["digits"])
     counting = None if document["q"] is None else each(_read_counting, document["q"])
     charges: tuple[Charge | None, ...] = header.case.charges if counting is None else (None,)
     listed_rows = listed(document["rows"])
     if len(listed_rows) != math.prod(map(len, axes)) * len(charges):
-        raise ValueError(f"{len(listed_rows)} rows do not fit the points")
+        raise Misfit(f"{len(listed_rows)} rows do not fit the points")
     wanted = product(*(range(len(axis)) for axis in axes), charges)
     rows = tuple(_read_row(row, axes, place) for row, place in zip(listed_rows, wanted, strict=True))
     for row in rows:
         kinds = (row.value is not None, row.decimals is not None, bool(row.note))
         if kinds.count(True) != 1 or kinds[0 if digits is not None else 1]:
-            raise ValueError("a row has an exact value, or decimals where digits were asked for, or a note")
+            raise Misfit("a row has an exact value, or decimals where digits were asked for, or a note")
     return GridResult(
         header,
         one_of(document, "of", ("Z", "H")),
@@ -95,7 +95,7 @@ def _read_counting(d: Mapping[str, Any]) -> Counting:
 def _read_row(d: Mapping[str, Any], axes: Axes, wanted: tuple[Any, ...]) -> GridRow:
     *places, charge = wanted
     if each(whole, d["place"]) != tuple(places) or (each(whole, d["charge"]) if "charge" in d else None) != charge:
-        raise ValueError(f"a row is not where it belongs, at {places}, charge {charge}")
+        raise Misfit(f"a row is not where it belongs, at {places}, charge {charge}")
     near = None
     if "real" in d:
         near = Decimals(_decimal(d["real"]), _decimal(d["imaginary"]), _decimal(d["radius"]))

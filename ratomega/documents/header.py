@@ -6,7 +6,7 @@ from collections.abc import Mapping
 from typing import Any
 
 from ratomega.case.reading import case_from_mapping, case_to_mapping
-from ratomega.documents.pieces import Document, each, exact, flag, listed, whole, word
+from ratomega.documents.pieces import Document, Misfit, each, exact, flag, listed, whole, word
 from ratomega.exact.quadratic import number_text
 from ratomega.regulator.outcome import PathValue
 from ratomega.results.header import Header, PathRecord
@@ -34,7 +34,7 @@ def header_document(header: Header) -> Document:
 def read_header(document: Mapping[str, Any]) -> Header:
     case = case_from_mapping(document["case"])
     if document["hash"] != case.hash:
-        raise ValueError(f'the hash {document["hash"]} does not belong to the case, whose hash is {case.hash}')
+        raise Misfit(f'the hash {document["hash"]} does not belong to the case, whose hash is {case.hash}')
     path = document["path"]
     record = PathRecord(
         each(word, path["parameters"]),

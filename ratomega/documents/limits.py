@@ -6,7 +6,7 @@ from collections.abc import Mapping
 from typing import Any
 
 from ratomega.documents.header import check_document, path_value, read_checks, read_path_values
-from ratomega.documents.pieces import Document, each, exact, if_given, listed, whole, word
+from ratomega.documents.pieces import Document, each, exact, if_given, listed, together, whole, word
 from ratomega.exact.function_text import function_text, parse_function
 from ratomega.exact.quadratic import Number, number_text
 from ratomega.exact.rational_function import RationalFunction
@@ -26,7 +26,7 @@ def limit_body(result: LimitResult) -> Document:
 
 
 def read_limit(document: Mapping[str, Any], header: Header, partial: bool) -> LimitResult:
-    """The way back. Raises ``KeyError``, ``TypeError`` or ``ValueError`` for anything else."""
+    """The way back. Raises ``Misfit``, or what Python raises, for anything else."""
     coefficients = tuple(_read_coefficient(c, header.case.symbols) for c in listed(document["coefficients"]))
     checks = read_checks(document["checks"])
     return LimitResult(header, _read_route(document["route"]), coefficients, checks, partial)
@@ -59,6 +59,7 @@ def _coefficient(c: Coefficient) -> Document:
 
 
 def _read_coefficient(d: Mapping[str, Any], symbols: tuple[str, ...]) -> Coefficient:
+    together(d, "order", "leading")
     return Coefficient(
         charge=each(whole, d["charge"]),
         status=word(d["status"]),

@@ -10,9 +10,9 @@ import json
 import os
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass
-from pathlib import Path
 from typing import Any
 
+from ratomega.case.wording import kind, quoted, shortened
 from ratomega.chain.explaining import Explanation
 from ratomega.detector.atlas import Atlas
 from ratomega.documents.approach import approach_body, read_approach
@@ -25,9 +25,9 @@ from ratomega.documents.explaining import explanation_body, read_explanation
 from ratomega.documents.grids import grid_body, read_grid
 from ratomega.documents.header import header_document, read_header
 from ratomega.documents.limits import limit_body, read_limit
-from ratomega.documents.pieces import Document, flag
+from ratomega.documents.pieces import Document, Misfit, flag, one_of
 from ratomega.documents.validating import read_validate, validate_body
-from ratomega.errors import InputError
+from ratomega.errors import InputError, Problem
 from ratomega.results.averages import AverageResult
 from ratomega.results.blocks import BlockResult
 from ratomega.results.detections import DetectResult
@@ -54,6 +54,7 @@ Result = (
 )
 
 LARGEST_DOCUMENT = 512 * 1024 * 1024
+LONGEST_SENTENCE = 600
 
 
 @dataclass(frozen=True, slots=True)
@@ -102,33 +103,50 @@ def load_result(source: str | os.PathLike[str]) -> Result:
         document = json.loads(text)
     except (json.JSONDecodeError, RecursionError) as error:
         raise InputError.single(f"this is not a JSON document: {error}", where) from error
+    except ValueError:
+        # Integers beyond Python's limit for text.
+        raise InputError.single("this is not a result of ratomega: an integer has too many digits", where) from None
+    if not isinstance(document, dict):
+        raise InputError.single(f"a result of ratomega is a JSON object, not {kind(document)}", where)
     try:
         return _from_document(document)
     except InputError as error:
-        raise InputError.single(f"this is not a result of ratomega: {error}", where) from error
-    except (KeyError, TypeError, ValueError, AttributeError, IndexError) as error:
-        message = f"this is not a result of ratomega: {type(error).__name__} {error}"
-        raise InputError.single(message, where) from error
+        inside = (f"this is not a result of ratomega: {problem.text()}" for problem in error.problems)
+        raise InputError(Problem(shortened(said, LONGEST_SENTENCE), where) for said in inside) from error
+    except Misfit as error:
+        said = f"this is not a result of ratomega: {error}"
+    except KeyError as error:
+        said = f"this is not a result of ratomega: the key {quoted(str(error.args[0]))} is missing"
+    except (TypeError, ValueError, AttributeError, IndexError, ArithmeticError):
+        # Raised by Python where, say, a list stands in the place of a table.
+        said = "this is not a result of ratomega: a value is not of the kind that belongs in its place"
+    raise InputError.single(shortened(said, LONGEST_SENTENCE), where)
 
 
 def _text_of(source: str | os.PathLike[str]) -> tuple[str, str]:
     if isinstance(source, str) and source.lstrip()[:1] == "{":
         return source, "document"
-    path = Path(source)
+    where = shortened(os.fspath(source), 200)
     try:
-        if path.stat().st_size > LARGEST_DOCUMENT:
-            raise InputError.single(f"the file is larger than {LARGEST_DOCUMENT} bytes", str(path))
-        return path.read_text(encoding="utf-8"), str(path)
-    except (OSError, UnicodeDecodeError, ValueError) as error:
-        raise InputError.single(f"the file cannot be read: {error}", str(path)) from error
+        with open(source, "rb") as stream:
+            # Bounded whatever the file is: a device has no size and no end.
+            data = stream.read(LARGEST_DOCUMENT + 1)
+        if len(data) > LARGEST_DOCUMENT:
+            raise InputError.single(f"the file is larger than {LARGEST_DOCUMENT} bytes", where)
+        return data.decode("utf-8"), where
+    except UnicodeDecodeError:
+        raise InputError.single("the file is not UTF-8 text", where) from None
+    except OSError as error:
+        raise InputError.single(f"the file cannot be read: {error.strerror}", where) from error
+    except ValueError:
+        raise InputError.single("this is not the name of a file", where) from None
 
 
 def _from_document(document: Document) -> Result:
-    kind = document["result"]
-    if kind == "atlas":
+    of = document["result"]
+    if of == "atlas":
         return read_atlas(document)
-    if kind == "block":
+    if of == "block":
         return read_block(document)
-    if kind not in _FORMS:
-        raise ValueError(f'"result" is {kind!r}, not {", ".join(_FORMS)}, atlas or block')
-    return _FORMS[kind].read(document, read_header(document), flag(document["partial"]))
+    form = _FORMS[one_of(document, "result", (*_FORMS, "atlas", "block"))]
+    return form.read(document, read_header(document), flag(document["partial"]))

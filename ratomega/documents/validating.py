@@ -6,7 +6,7 @@ from collections.abc import Mapping
 from typing import Any
 
 from ratomega.documents.header import check_document, read_checks
-from ratomega.documents.pieces import Document
+from ratomega.documents.pieces import Document, Misfit
 from ratomega.results.header import Header
 from ratomega.results.validations import ValidateResult
 from ratomega.validator.depth import depth_of
@@ -21,9 +21,9 @@ def validate_body(result: ValidateResult) -> Document:
 
 
 def read_validate(document: Mapping[str, Any], header: Header, partial: bool) -> ValidateResult:
-    """The way back. Raises ``KeyError``, ``TypeError`` or ``ValueError`` for anything else."""
+    """The way back. Raises ``Misfit``, or what Python raises, for anything else."""
     checks = read_checks(document["checks"])
     result = ValidateResult(header, checks, depth_of(document["depth"]).name, partial)
     if document["summary"] != result.summary:
-        raise ValueError("the summary is not that of the checks")
+        raise Misfit("the summary is not that of the checks")
     return result

@@ -69,7 +69,8 @@ def as_rational(value: object, where: str = "") -> Rational:
         return _from_text(value, where)
     if type(value).__module__.startswith("sympy.") and getattr(value, "is_Rational", False):
         return fmpq(int(value.p), int(value.q))  # type: ignore[attr-defined]
-    raise InputError.single(f"expected an exact number, not {type(value).__name__}", where)
+    shown = "null" if value is None else type(value).__name__
+    raise InputError.single(f"expected an exact number, not {shown}", where)
 
 
 def _suggestion(value: float) -> str:

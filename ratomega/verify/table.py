@@ -16,7 +16,6 @@ import os
 import re
 from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass
-from pathlib import Path
 from typing import Any
 
 from ratomega.case.case import HIGHEST_CHARGE
@@ -164,10 +163,12 @@ def _text_of(source: str | os.PathLike[str]) -> tuple[str, str]:
         return source, "numbers"
     label = shortened(os.fspath(source), 200)
     try:
-        path = Path(source)
-        if path.stat().st_size > LARGEST_FILE:
+        with open(source, "rb") as stream:
+            # Bounded whatever the file is: a device has no size and no end.
+            data = stream.read(LARGEST_FILE + 1)
+        if len(data) > LARGEST_FILE:
             raise InputError.single(f"the table is larger than {LARGEST_FILE} bytes", label)
-        return path.read_text(encoding="utf-8-sig"), label
+        return data.decode("utf-8-sig"), label
     except UnicodeDecodeError as error:
         raise InputError.single("the table is not UTF-8 text", label) from error
     except (OSError, ValueError) as error:

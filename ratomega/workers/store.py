@@ -28,6 +28,8 @@ __all__ = ["Store", "identity"]
 APPLICATION = 0x5241544F
 LARGEST_RESULT = 1 << 28
 PATIENCE = 30.0
+# The messages of SQLite quote what stands in the file, which need not be text.
+_UNREADABLE = (sqlite3.Error, UnicodeDecodeError)
 
 _TABLES = """
 CREATE TABLE about (name TEXT PRIMARY KEY, value TEXT NOT NULL) WITHOUT ROWID;
@@ -69,7 +71,7 @@ class Store:
             connection.execute("BEGIN EXCLUSIVE")
             _make_or_check(connection, identity(case), label)
             connection.execute("COMMIT")
-        except sqlite3.Error as error:
+        except _UNREADABLE as error:
             connection.close()
             raise _refusal(_sentence(error), label) from None
         except BaseException:
@@ -96,9 +98,9 @@ class Store:
         except BaseException as error:
             if self._connection.in_transaction:
                 self._connection.execute("ROLLBACK")
-            if not isinstance(error, sqlite3.Error):
+            if not isinstance(error, _UNREADABLE):
                 raise
-            raise _refusal(f"a result could not be written: {error}", self.label) from None
+            raise _refusal(f"a result could not be written: {shortened(str(error), 200)}", self.label) from None
 
     def __len__(self) -> int:
         return len(self._ask("SELECT key FROM chunk"))
@@ -106,7 +108,7 @@ class Store:
     def _ask(self, question: str, *values: str) -> list[tuple[object, ...]]:
         try:
             return self._connection.execute(question, values).fetchall()
-        except sqlite3.Error as error:
+        except _UNREADABLE as error:
             raise _refusal(_sentence(error), self.label) from None
 
     def close(self) -> None:
@@ -194,7 +196,7 @@ def _refusal(message: str, label: str) -> InputError:
     return InputError.single(message, label)
 
 
-def _sentence(error: sqlite3.Error) -> str:
+def _sentence(error: Exception) -> str:
     text = str(error)
     if "not a database" in text:
         return "this file is no store of chunks; it was left as it is"

@@ -223,7 +223,7 @@ def test_numbers_from_python():
         (float("nan"), "not exact"),
         (float("inf"), "not exact"),
         (True, "truth value"),
-        (None, "NoneType"),
+        (None, "exact number, not null"),
         (1j, "the complex 1j is not exact"),
         (sympy.pi, "not an exact number"),
         (sympy.sqrt(2) + sympy.sqrt(3), "does not lie in one quadratic field"),
@@ -340,11 +340,3 @@ def test_whatever_is_accepted_means_what_python_says(text):
         constant, *slopes = values(read)
         for point in ((Fraction(2), Fraction(-3, 5), Fraction(7)), (Fraction(1, 9), Fraction(4), Fraction(-1, 3))):
             assert constant + sum(s * x for s, x in zip(slopes, point, strict=True)) == by_python(text, *point)
-
-
-@settings(deadline=None, max_examples=300)
-@given(st.text(max_size=60) | st.text(alphabet="0123456789.eE+-*/()tps12 ^_x", max_size=60))
-def test_any_text_is_read_or_refused(text):
-    read = outcome(text)
-    if isinstance(read, Affine):
-        assert parse_affine(str(read)) == read

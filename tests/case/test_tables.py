@@ -5,8 +5,6 @@ from __future__ import annotations
 import os
 
 import pytest
-from hypothesis import given, settings
-from hypothesis import strategies as st
 
 from ratomega.case.bundled import bundled_text
 from ratomega.case.reading import load_case
@@ -23,15 +21,6 @@ def refusal(work, *arguments):
     assert problem.message.isprintable()
     assert len(problem.text()) < 400
     return problem
-
-
-def places(work, *arguments):
-    """Where the mistakes are; none when there is no mistake. Anything but ``InputError`` goes through."""
-    try:
-        work(*arguments)
-    except InputError as error:
-        return [problem.where for problem in error.problems]
-    return []
 
 
 @pytest.mark.parametrize(
@@ -210,23 +199,3 @@ def test_labels():
     assert file_label("a/b/c.toml") == "c.toml"
     assert file_label("a\n.toml") == r"a\n.toml"
     assert len(file_label("x" * 1000)) < 100
-
-
-@settings(deadline=None, max_examples=200)
-@given(
-    st.lists(st.tuples(st.integers(0, len(GOOD)), st.integers(0, 6), st.binary(max_size=4)), min_size=1, max_size=4)
-)
-def test_damaged_files_are_read_or_refused(tmp_path_factory, damage):
-    data = GOOD
-    for start, length, new in damage:
-        data = data[:start] + new + data[start + length :]
-    path = tmp_path_factory.getbasetemp() / "damaged.toml"
-    path.write_bytes(data)
-    wheres = places(load_case, path)
-    assert all(where.startswith("damaged.toml") for where in wheres)
-
-
-@settings(deadline=None, max_examples=200)
-@given(st.text(max_size=80) | st.text(alphabet="ab=[]{}.,\"'#\n\\ 1/t", max_size=80))
-def test_any_text_is_toml_or_refused(text):
-    assert all(where.startswith("demo.toml") for where in places(toml_tables, text, "demo.toml"))

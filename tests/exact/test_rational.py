@@ -79,7 +79,7 @@ def test_seven_in_every_form(value):
         (float("nan"), '"1/3"'),
         (float("-inf"), '"1/3"'),
         (True, "truth value"),
-        (None, "NoneType"),
+        (None, "exact number, not null"),
         (1j, "complex"),
         (Decimal("Infinity"), "Decimal"),
         (sympy.pi, "Pi"),

@@ -137,6 +137,17 @@ def test_rows_that_were_changed_are_refused(path, statement):
     refused(path, "damaged")
 
 
+@pytest.mark.parametrize(
+    ("old", "new"), [(b"CREATE TABLE about", b"CREATE TABLE ab\x80ut"), (b"chunkchunk", b"chunk\x80hunk")]
+)
+def test_a_schema_that_is_no_text_is_refused(path, old, new):
+    """SQLite quotes it in its message, which Python then cannot decode."""
+    data = path.read_bytes()
+    assert old in data
+    path.write_bytes(data.replace(old, new))
+    refused(path, "damaged")
+
+
 def test_a_result_that_unpacks_without_end_is_refused(path, monkeypatch):
     monkeypatch.setattr(store, "LARGEST_RESULT", 1000)
     text = "0" * 5000
