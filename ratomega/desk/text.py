@@ -205,11 +205,11 @@ def poincare_text(cluster: ClusterReport) -> str:
     return f"no Poincaré polynomial{f' ({cluster.poincare_why})' if cluster.poincare_why else ''}"
 
 
-def diagrams_text(configuration: Configuration, case: Case) -> str:
-    """Diagrams by their rows; node names only where there are several nodes."""
+def diagrams_text(configuration: Configuration, case: Case, *, empty: str = "-") -> str:
+    """Diagrams by their rows, ``empty`` where there is no box; node names only where there are several nodes."""
     nodes = []
     for node, diagrams in zip(case.theory.nodes, configuration, strict=True):
-        text = " ".join(f"({','.join(str(row) for row in d)})" if d else "-" for d in diagrams)
+        text = " ".join(f"({','.join(str(row) for row in d)})" if d else empty for d in diagrams)
         nodes.append(f"{node.name} {text}" if len(case.theory.nodes) > 1 else text)
     return "; ".join(nodes)
 
