@@ -8,7 +8,7 @@ from typing import Any
 
 from ratomega.diagrams.tuples import count_all
 from ratomega.exact.rational import Rational
-from ratomega.results import LimitResult
+from ratomega.results.limits import LimitResult
 
 NON_SINGULAR = "103/71"
 

@@ -19,7 +19,7 @@ from typing import Any
 
 import ratomega
 from benchmarks.measure import RUNS, Pace, Report, Row, Times, load
-from ratomega.job import Job
+from ratomega.chain.job import Job
 
 QUESTION = "two workers against one, the same bytes"
 

@@ -4,13 +4,14 @@
 the command line import what they use and no more.
 """
 
-from ratomega.average_results import Average, AverageResult
-from ratomega.averaging import average
-from ratomega.block_results import BlockCoefficient, BlockResult
-from ratomega.blocks import block
 from ratomega.case.bundled import bundled_names
 from ratomega.case.case import Case
 from ratomega.case.reading import load_case
+from ratomega.chain.averaging import average
+from ratomega.chain.blocks import block
+from ratomega.chain.explaining import Explanation, explain
+from ratomega.chain.grids import grid
+from ratomega.chain.pipeline import clusters, detect, limit, validate
 from ratomega.desk.diagram_pictures import draw
 from ratomega.desk.figures import plot, save_plot
 from ratomega.desk.grid_csv import grid_csv
@@ -21,11 +22,12 @@ from ratomega.documents.results import load_result, to_json
 from ratomega.errors import InputError, PathError, Problem, RatomegaError, WorkerError
 from ratomega.exact.quadratic import Quadratic
 from ratomega.exact.rational_function import RationalFunction
-from ratomega.explaining import Explanation, explain
-from ratomega.grid_results import GridResult, GridRow
-from ratomega.grids import grid
-from ratomega.pipeline import clusters, detect, limit, validate
-from ratomega.results import Coefficient, DetectResult, LimitResult, ValidateResult
+from ratomega.results.averages import Average, AverageResult
+from ratomega.results.blocks import BlockCoefficient, BlockResult
+from ratomega.results.detections import DetectResult
+from ratomega.results.grids import GridResult, GridRow
+from ratomega.results.limits import Coefficient, LimitResult
+from ratomega.results.validations import ValidateResult
 from ratomega.validator.verdict import Check, Kind, Verdict
 from ratomega.verify.approach import Approach, approach
 from ratomega.verify.comparing import CompareResult, compare

@@ -7,8 +7,8 @@ from building import plain_values
 
 import ratomega
 from ratomega.case.setting import own_setting
+from ratomega.chain.job import Job
 from ratomega.diagrams.tuples import count_all
-from ratomega.job import Job
 from ratomega.validator.identities.siblings import is_smooth
 
 

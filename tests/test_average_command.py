@@ -9,7 +9,7 @@ import json
 import pytest
 
 import ratomega
-from ratomega import averaging
+from ratomega.chain import averaging
 from ratomega.cli.main import main
 from ratomega.documents.averages import average_body
 

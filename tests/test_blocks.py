@@ -13,8 +13,8 @@ from flint import fmpq
 from test_cli import run
 
 import ratomega
-from ratomega import blocks
 from ratomega.case.setting import own_setting
+from ratomega.chain import blocks
 from ratomega.conformal.correlator import Correlator
 from ratomega.exact.laurent import Laurent
 from ratomega.validator.blocks import GRAM, RECURSION

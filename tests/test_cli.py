@@ -14,7 +14,7 @@ from dataclasses import dataclass
 import pytest
 
 import ratomega
-from ratomega import job
+from ratomega.chain import job
 from ratomega.cli.main import main
 
 CASE = """
@@ -257,7 +257,7 @@ def test_the_limit_on_configurations_can_be_raised():
 
 INTERRUPT = """
 import os, signal, sys
-from ratomega import job
+from ratomega.chain import job
 from ratomega.cli.main import main
 plain = job.charge_limit
 def stopping(weights, charge, *rest, **options):

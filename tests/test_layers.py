@@ -24,13 +24,8 @@ LAYERS = [
     {"validator"},
     {"symbolic"},
     {"results"},
-    {"average_results", "block_results", "grid_results"},
-    {"reports"},
     {"workers"},
-    {"job"},
-    {"nesting"},
-    {"pipeline"},
-    {"averaging", "blocks", "explaining", "grids"},
+    {"chain"},
     {"verify"},
     {"documents"},
     {"desk"},
@@ -38,6 +33,8 @@ LAYERS = [
     {"api"},
     {"__init__", "__main__"},
 ]
+CHAIN = [{"reports"}, {"job"}, {"nesting"}, {"pipeline"}, {"averaging", "blocks", "explaining", "grids"}]
+"""The same within that room."""
 LEVEL = {room: level for level, rooms in enumerate(LAYERS) for room in rooms}
 MODULES = sorted(ROOT.rglob("*.py"))
 
@@ -72,6 +69,16 @@ def test_imports_point_down(path):
         if name == "ratomega" or name.startswith("ratomega."):
             target = name.split(".")[1] if "." in name else "__init__"
             assert LEVEL[target] <= LEVEL[room(path)], f"{path} imports {name}"
+
+
+def test_imports_point_down_within_the_chain():
+    level = {name: number for number, names in enumerate(CHAIN) for name in names}
+    modules = {path.stem: path for path in (ROOT / "chain").glob("*.py") if path.stem != "__init__"}
+    assert set(modules) == set(level)
+    for name, path in modules.items():
+        for other in imported(path):
+            if other.startswith("ratomega.chain."):
+                assert level[other.split(".")[2]] < level[name], f"{path} imports {other}"
 
 
 @pytest.mark.parametrize("path", MODULES, ids=lambda p: str(p.relative_to(ROOT)))

@@ -12,11 +12,11 @@ from flint import fmpq
 import ratomega
 from ratomega.case.case import Case
 from ratomega.case.reading import case_from_mapping, case_to_mapping, load_case
+from ratomega.chain.nesting import nested_checks, nested_result
 from ratomega.cli.main import main
 from ratomega.errors import InputError
 from ratomega.exact.quadratic import Quadratic
 from ratomega.exact.rational import Rational
-from ratomega.nesting import nested_checks, nested_result
 from ratomega.regulator.nested import nested_limits
 from ratomega.validator.verdict import Verdict
 

@@ -13,7 +13,7 @@ from building import make_case
 
 import ratomega
 from ratomega.case.setting import own_setting
-from ratomega.job import Job
+from ratomega.chain.job import Job
 from ratomega.regulator.routes import choose
 
 MATTER = {

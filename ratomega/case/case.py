@@ -148,9 +148,6 @@ def _check_field(theory: Theory, symbols: Sequence[str]) -> None:
                 raise InputError.single(f"{parameter} contains u; a limit inside the limit takes no symbols", where)
             if name not in (*symbols, INNER):
                 raise InputError.single(f"{parameter} contains {name}, which is not among the symbols", where)
-        if symbols and any(is_quadratic(x) for x in parameter.numbers()):
-            message = f"{parameter} is not rational; in a case with symbols all numbers are rational"
-            raise InputError.single(message, where)
         for d in {x.d for x in parameter.numbers() if is_quadratic(x)}:
             if field not in (0, d):
                 raise InputError.single(two_fields(field, d), where)

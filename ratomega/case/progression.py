@@ -16,7 +16,7 @@ from ratomega.case.expression import MOST_DIGITS, as_affine
 from ratomega.case.wording import kind, nearest, quoted
 from ratomega.errors import InputError, Problem
 from ratomega.exact.path import Linear
-from ratomega.exact.quadratic import Number, Quadratic, number_text, one_field, rational_parts
+from ratomega.exact.quadratic import Number, Quadratic, is_quadratic, number_text, one_field, rational_parts
 from ratomega.exact.rational import ZERO, Rational, as_rational
 
 __all__ = ["MOST_VALUES", "Axes", "Counting", "points_of", "read_axes", "read_counting", "split_axis"]
@@ -79,14 +79,16 @@ def read_axes(given: Mapping[str, object], symbols: Sequence[str], background: B
     return tuple(axes)
 
 
-def points_of(axes: Axes, symbols: Sequence[str]) -> Iterator[tuple[Number, ...]]:
-    """The product of the axes, the last one fastest. Raises ``InputError`` where a point does not lie in one field."""
+def points_of(axes: Axes, symbols: Sequence[str], numbers: Sequence[Number] = ()) -> Iterator[tuple[Number, ...]]:
+    """The product of the axes, the last one fastest. Raises ``InputError`` where a point does not lie in one field with
+    the ``numbers`` of the case."""
     for point in product(*axes):
         try:
-            one_field(point)
+            one_field((*numbers, *point))
         except InputError as error:
             shown = ", ".join(f"{name} = {number_text(x)}" for name, x in zip(symbols, point, strict=True))
-            message = f"{shown}: the numbers of one point lie in one quadratic field"
+            own = ", that of the case" if any(is_quadratic(x) for x in numbers) else ""
+            message = f"{shown}: the numbers of one point lie in one quadratic field{own}"
             raise InputError.single(message, "at") from error
         yield point
 

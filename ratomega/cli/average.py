@@ -7,7 +7,7 @@ from typing import Any
 import click
 
 from ratomega.averages.limits import KINDS
-from ratomega.averaging import DEFAULT_POWERS, average_result, averages_of, wanted_of
+from ratomega.chain.averaging import DEFAULT_POWERS, average_result, averages_of, wanted_of
 from ratomega.cli.options import case_options, probes_option
 from ratomega.cli.running import collect, finish, loaded_case, prepared_job
 from ratomega.desk.average_text import average_text

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import click
 
-from ratomega.blocks import block as make_block
+from ratomega.chain.blocks import block as make_block
 from ratomega.cli.completion import CASE
 from ratomega.desk.block_text import block_text
 from ratomega.documents.results import to_json

@@ -4,10 +4,10 @@ from __future__ import annotations
 
 import click
 
+from ratomega.chain.job import MOST_CONFIGURATIONS
 from ratomega.cli.completion import CASE, TABLE
 from ratomega.desk.compare_text import compare_text
 from ratomega.documents.results import to_json
-from ratomega.job import MOST_CONFIGURATIONS
 from ratomega.verify.comparing import compare as make_comparison
 from ratomega.verify.quantities import NAMES
 

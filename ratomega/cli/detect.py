@@ -6,12 +6,12 @@ from typing import Any
 
 import click
 
+from ratomega.chain.pipeline import detect_result
 from ratomega.cli.options import case_options, form_option
 from ratomega.cli.plotting import plot_option, write_plot
 from ratomega.cli.running import collect, finish, loaded_case, one_form, prepared_job
 from ratomega.desk.latex import detect_latex
 from ratomega.desk.text import detect_text
-from ratomega.pipeline import detect_result
 
 __all__ = ["detect"]
 

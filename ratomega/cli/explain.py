@@ -6,10 +6,10 @@ from typing import Any
 
 import click
 
+from ratomega.chain.explaining import explain as explain_case
 from ratomega.cli.options import case_options
 from ratomega.cli.running import finish, loaded_case
 from ratomega.desk.explain_text import explain_text
-from ratomega.explaining import explain as explain_case
 
 __all__ = ["explain"]
 

@@ -9,11 +9,11 @@ import click
 
 from ratomega.case.progression import split_axis
 from ratomega.case.wording import quoted
+from ratomega.chain.grids import grid as make_grid
 from ratomega.cli.options import case_options
 from ratomega.cli.running import finish, loaded_case
 from ratomega.desk.grid_csv import grid_csv
 from ratomega.errors import InputError
-from ratomega.grids import grid as make_grid
 
 __all__ = ["grid"]
 

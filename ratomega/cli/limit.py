@@ -7,13 +7,13 @@ from typing import Any
 
 import click
 
+from ratomega.chain.nesting import refuse_other_ways
+from ratomega.chain.pipeline import limit_result
 from ratomega.cli.options import case_options, form_option, probes_option, was_typed, worker_options
 from ratomega.cli.running import collect, crew_of, finish, loaded_case, nested_limits_of, one_form, prepared_job
 from ratomega.desk.csv_text import limit_csv
 from ratomega.desk.latex import limit_latex
 from ratomega.desk.text import limit_text
-from ratomega.nesting import refuse_other_ways
-from ratomega.pipeline import limit_result
 from ratomega.regulator.routes import ROUTES, uses_primes
 
 __all__ = ["limit"]

@@ -8,9 +8,9 @@ from typing import Any
 import click
 from click.core import ParameterSource
 
+from ratomega.chain.job import MOST_CONFIGURATIONS
+from ratomega.chain.pipeline import DEFAULT_PROBES
 from ratomega.cli.completion import CASE, FILE
-from ratomega.job import MOST_CONFIGURATIONS
-from ratomega.pipeline import DEFAULT_PROBES
 
 __all__ = ["case_options", "form_option", "probes_option", "was_typed", "worker_options"]
 

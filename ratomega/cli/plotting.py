@@ -7,7 +7,7 @@ import click
 from ratomega.cli.completion import FILE
 from ratomega.desk.figures import check_plot_file, plot, save_plot
 from ratomega.detector.atlas import Atlas
-from ratomega.results import DetectResult
+from ratomega.results.detections import DetectResult
 from ratomega.verify.approach import Approach
 
 __all__ = ["plot_option", "write_plot"]

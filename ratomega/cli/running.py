@@ -12,14 +12,14 @@ import click
 
 from ratomega.case.case import Case
 from ratomega.case.reading import case_from_mapping, case_to_mapping, load_case
+from ratomega.chain.job import Job
+from ratomega.chain.nesting import nested_result
 from ratomega.cli.atlas import read_charge
 from ratomega.desk.text import charge_word
 from ratomega.diagrams.tuples import Charge
 from ratomega.documents.results import Result, to_json
 from ratomega.errors import INTERRUPTED, InputError
-from ratomega.job import Job
-from ratomega.nesting import nested_result
-from ratomega.results import LimitResult
+from ratomega.results.limits import LimitResult
 from ratomega.workers.cluster import cluster_hands
 from ratomega.workers.crew import Crew, Progress
 

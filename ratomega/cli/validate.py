@@ -6,6 +6,8 @@ from typing import Any
 
 import click
 
+from ratomega.chain.nesting import nested_checks, refuse_other_ways
+from ratomega.chain.pipeline import validate_checks
 from ratomega.cli.options import case_options, form_option, probes_option, was_typed, worker_options
 from ratomega.cli.running import (
     StatusLine,
@@ -19,9 +21,7 @@ from ratomega.cli.running import (
 )
 from ratomega.desk.latex import validate_latex
 from ratomega.desk.text import validate_text
-from ratomega.nesting import nested_checks, refuse_other_ways
-from ratomega.pipeline import validate_checks
-from ratomega.results import ValidateResult
+from ratomega.results.validations import ValidateResult
 from ratomega.validator.checklist import DEPTHS, depth_of
 from ratomega.validator.verdict import Check
 

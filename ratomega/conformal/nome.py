@@ -22,7 +22,7 @@ from ratomega.conformal.elliptic import euler_power
 from ratomega.conformal.exact_blocks import NomeForm
 from ratomega.exact.path import Linear
 from ratomega.exact.power import logarithmic_derivative, product
-from ratomega.exact.quadratic import only_rational
+from ratomega.exact.quadratic import Number, only_rational
 from ratomega.exact.rational import ONE, ZERO, Rational
 from ratomega.exact.rational_function import RationalFunction
 
@@ -39,7 +39,7 @@ def nome_variable(case: Case) -> str:
 def nome_matrix(case: Case, last: int) -> tuple[Row, ...]:
     """The rows t_k0 ... t_kk for k = 0 ... ``last``, functions of the symbols of the case.
 
-    Assumes U(2) with four flavours or one adjoint, and rational numbers beside the symbols. Cost: last^3 products.
+    Assumes U(2) with four flavours or one adjoint. Cost: last^3 products.
 
     >>> from ratomega.case.reading import load_case
     >>> case = load_case({
@@ -90,7 +90,7 @@ def _inverse_powers(length: int) -> list[list[Rational]]:
     return rows
 
 
-def _constant(case: Case, value: Rational) -> RationalFunction:
+def _constant(case: Case, value: Number) -> RationalFunction:
     return RationalFunction.constant(value, case.symbols)
 
 
@@ -98,9 +98,9 @@ def _function(case: Case, form: Affine) -> RationalFunction:
     """A parameter at the limit point."""
     eps1, eps2 = (Linear(x.constant) for x in (case.background.eps1, case.background.eps2))
     at_limit = Affine(form.constant, form.eps1, form.eps2).on(eps1, eps2).constant
-    result = _constant(case, only_rational(at_limit))
+    result = _constant(case, at_limit)
     for name, coefficient in form.symbols:
-        result = result + RationalFunction.symbol(name, case.symbols) * only_rational(coefficient)
+        result = result + RationalFunction.symbol(name, case.symbols) * coefficient
     return result
 
 

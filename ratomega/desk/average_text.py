@@ -2,13 +2,13 @@
 
 from __future__ import annotations
 
-from ratomega.average_results import Average, AverageResult
 from ratomega.averages.limits import AverageLimit, AverageValue
 from ratomega.desk.text import charge_word, heading, table
 from ratomega.exact.function_text import function_text
 from ratomega.exact.line_function import LineFunction
 from ratomega.exact.quadratic import approximate_text, number_text
 from ratomega.exact.rational_function import RationalFunction
+from ratomega.results.averages import Average, AverageResult
 
 __all__ = ["average_text"]
 

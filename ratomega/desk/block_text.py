@@ -2,11 +2,11 @@
 
 from __future__ import annotations
 
-from ratomega.block_results import BlockCoefficient, BlockResult
 from ratomega.case.case import Case
 from ratomega.case.conformal import PLACES
 from ratomega.desk.text import check_lines, table, theory_text
 from ratomega.exact.quadratic import Number, number_text
+from ratomega.results.blocks import BlockCoefficient, BlockResult
 
 __all__ = ["block_text"]
 

@@ -21,6 +21,10 @@ WIDTH, HEIGHT = 480.0, 300.0
 LEFT, RIGHT, TOP, BOTTOM = 66.0, 12.0, 16.0, 46.0
 MOST_TICKS = 9
 LETTERS = 13.0
+KEY_LINE = 18.0
+COLOURS = ((KEEN, "keen"), (GUILTY, "guilty"), ("currentColor", "stem"))
+# Told apart by dashes and dots too.
+STYLES = tuple(zip((*COLOURS, *COLOURS[:2]), ("none", "6 3", "2 3", "9 3 2 3", "12 4"), strict=True))
 
 
 @dataclass(frozen=True, slots=True)
@@ -104,9 +108,8 @@ def atlas_chart(stems: Stems) -> Picture:
         reach = max(reach, min(abs(math.log2(stems.own)) * 1.08, 8.0))
     frame = _Frame(-reach, reach, 0.5, highest + 0.6)
     worst = max((entry.worst_order for entry in stems.ratios), default=1)
-    parts: list[Child] = [
-        frame.axes("ratio eps2/eps1", "total charge", _ratio_ticks(reach), _integers(1, highest))
-    ]
+    ticks = _ratio_ticks(stems, frame, reach)
+    parts: list[Child] = [frame.axes("ratio eps2/eps1", "total charge", ticks, _integers(1, highest))]
     for entry in stems.ratios:
         ratio = Fraction(entry.steps[1], entry.steps[0])
         x, own = frame.x(math.log2(ratio)), ratio == stems.own
@@ -139,10 +142,22 @@ def _own_place(stems: Stems, frame: _Frame, reach: float) -> Markup | None:
     return element("path", element("title", f"this case: {stems.own}"), d=path, fill=GUILTY, class_="guilty own")
 
 
-def _ratio_ticks(reach: float) -> list[tuple[float, str]]:
-    powers = range(-int(reach), int(reach) + 1)
-    step = max(1, math.ceil(len(powers) / MOST_TICKS))
-    return [(n, str(2**n) if n >= 0 else f"1/{2**-n}") for n in powers if n % step == 0]
+def _ratio_ticks(stems: Stems, frame: _Frame, reach: float) -> list[tuple[float, str]]:
+    """The ratio of the case, then the singular ones, those of the least first charge before others, as room allows."""
+    ratios = [Fraction(e.steps[1], e.steps[0]) for e in sorted(stems.ratios, key=lambda e: e.first_charge)]
+    own = [stems.own] if stems.own is not None and stems.own > 0 else []
+    powers = [Fraction(2) ** n for n in range(-int(reach), int(reach) + 1)]
+    ticks: list[tuple[float, str]] = []
+    for ratio in (*own, *ratios, *powers):
+        place = math.log2(ratio)
+        if abs(place) <= reach and all(_apart(frame, place, str(ratio), *tick) for tick in ticks):
+            ticks.append((place, str(ratio)))
+    return sorted(ticks)
+
+
+def _apart(frame: _Frame, place: float, text: str, other: float, beside: str) -> bool:
+    """Do two labels on the axis leave a gap between them?"""
+    return abs(frame.x(place) - frame.x(other)) >= LETTERS * (0.31 * (len(text) + len(beside)) + 0.5)
 
 
 def approach_chart(curves: Sequence[ApproachCurve]) -> Picture:
@@ -150,9 +165,10 @@ def approach_chart(curves: Sequence[ApproachCurve]) -> Picture:
     xs = [x for curve in curves for x in curve.offsets]
     ys = [y for curve in curves for y in (*curve.distances, *curve.radii) if y is not None] or [0.0]
     low, high = math.floor(min(ys)), math.ceil(max(ys))
-    # Room above all points for the names of the curves.
-    room = (high - low + 1) * 0.08 * len(curves)
-    frame = _Frame(min(xs) - 0.5, max(xs) + 0.5, low - 0.5, max(high, low + 1) + 0.5 + room)
+    # Room above all points for the names of the curves, as much as their lines of letters take.
+    share = (6 + KEY_LINE * len(curves)) / (HEIGHT - TOP - BOTTOM)
+    bottom, top = low - 0.5, max(high, low + 1) + 0.5
+    frame = _Frame(min(xs) - 0.5, max(xs) + 0.5, bottom, bottom + (top - bottom) / (1 - share))
     x_ticks, y_ticks = _decades(min(xs), max(xs)), _decades(low, high)
     parts: list[Child] = [frame.axes("offset of the ratio", "distance from the limit", x_ticks, y_ticks)]
     for place, curve in enumerate(curves):
@@ -163,27 +179,39 @@ def approach_chart(curves: Sequence[ApproachCurve]) -> Picture:
 
 def _curve(curve: ApproachCurve, frame: _Frame, low: int, place: int) -> list[Child]:
     parts: list[Child] = []
-    colour, class_ = ((KEEN, "keen"), (GUILTY, "guilty"), ("currentColor", "stem"))[place % 3]
+    (colour, class_), dashes = STYLES[place % len(STYLES)]
     rows = sorted(zip(curve.offsets, curve.distances, curve.radii, strict=True))
     path = " ".join(
         f"{number(frame.x(x))},{number(frame.y(y))}" for x, y, _ in rows if y is not None
     )
     parts.append(element("polyline", points=path, fill="none", stroke=colour, stroke_width=1.6,
-                         stroke_dasharray=("none", "6 3", "2 3")[place % 3], class_=f"{class_} line"))
+                         stroke_dasharray=dashes, class_=f"{class_} line"))
     for x, y, radius in rows:
         at = frame.x(x)
         if radius is not None:
             up = frame.y(radius)
             parts.append(element("path", d=f"M{number(at - 5)} {number(up)}h10", stroke=colour, fill="none",
-                                 class_=f"{class_} line"))
+                                 stroke_width=1.6, class_=f"{class_} line radius"))
         if y is None:
             parts.append(element("circle", element("title", "exact"), cx=at, cy=frame.y(low - 0.3), r=4, fill="none",
                                  stroke=colour, class_=f"{class_} line"))
         else:
-            parts.append(element("circle", cx=at, cy=frame.y(y), r=3.5, fill=colour, class_=f"{class_} dot"))
-    y = TOP + 10 + 17 * place
-    parts.append(label(curve.name, WIDTH - RIGHT, y, size=LETTERS, anchor="end", class_=f"{class_} key"))
+            parts.append(_dot(at, frame.y(y), place, colour, class_))
+    x, y = LEFT + 10, TOP + 6 + KEY_LINE * place
+    parts += [
+        element("line", x1=x, x2=x + 34, y1=y, y2=y, stroke=colour, stroke_width=1.6, stroke_dasharray=dashes,
+                class_=f"{class_} line sample"),
+        _dot(x + 17, y, place, colour, class_),
+        label(curve.name, x + 42, y + 4.5, size=LETTERS, anchor="start", class_="key"),
+    ]
     return parts
+
+
+def _dot(x: float, y: float, place: int, colour: str, class_: str) -> Markup:
+    """A round dot, or a square one where a colour comes for the second time."""
+    if place < len(COLOURS):
+        return element("circle", cx=x, cy=y, r=3.5, fill=colour, class_=f"{class_} dot")
+    return element("rect", x=x - 3.5, y=y - 3.5, width=7, height=7, fill=colour, class_=f"{class_} dot")
 
 
 def _decades(low: float, high: float) -> list[tuple[float, str]]:

@@ -13,7 +13,7 @@ from ratomega.desk.diagram_pictures import configuration_words, diagrams_picture
 from ratomega.desk.markup import Child, element, joined
 from ratomega.desk.picture import PAPER, Picture, label
 from ratomega.detector.poincare import polynomial_text
-from ratomega.results import ClusterReport, Exchange
+from ratomega.results.detections import ClusterReport, Exchange
 
 __all__ = ["MOST_MEMBERS", "cluster_picture", "cluster_words", "exchange_words"]
 
@@ -49,7 +49,7 @@ def _card(picture: Picture, number: int) -> Picture:
     width, height = picture.width + 2 * PADDING + 8, picture.height + 2 * PADDING
     card = element("rect", x=0.5, y=0.5, width=width - 1, height=height - 1, rx=6, fill=PAPER,
                    stroke="currentColor", stroke_opacity=0.45, class_="card")
-    name = label(str(number), width - 7, 11, size=9, class_="number")
+    name = label(str(number), width - 8, 12, size=10, class_="number")
     return Picture(joined(card, name, picture.at(PADDING, PADDING)), width, height, "")
 
 

@@ -11,7 +11,7 @@ import io
 
 from ratomega.exact.quadratic import Number, Quadratic, approximate_text, number_text
 from ratomega.exact.rational_function import RationalFunction
-from ratomega.results import Coefficient, LimitResult
+from ratomega.results.limits import Coefficient, LimitResult
 
 __all__ = ["guarded", "limit_csv"]
 

@@ -11,7 +11,7 @@ from ratomega.desk.diagram_pictures import singular_picture
 from ratomega.desk.markup import Child, Markup, element, joined
 from ratomega.desk.text import charge_word, diagrams_text, factor_text
 from ratomega.desk.value_parts import sheet
-from ratomega.results import ChargeReport, ClusterReport, DetectResult, SingularReport
+from ratomega.results.detections import ChargeReport, ClusterReport, DetectResult, SingularReport
 
 __all__ = ["cluster_figure", "clusters_part", "configurations_part", "counts_table", "legend", "singular_figure"]
 
@@ -30,7 +30,7 @@ def names_of(case: Case | None) -> tuple[str, ...]:
 
 
 def _diagrams(s: SingularReport, case: Case | None) -> str | None:
-    return None if case is None else diagrams_text(s.diagrams, case)
+    return None if case is None else diagrams_text(s.diagrams, case, empty="∅")
 
 
 def legend() -> Markup:
@@ -38,7 +38,7 @@ def legend() -> Markup:
         "p",
         "Row 1 is at the top, rows run to the right. A filled box with a cross is guilty: one denominator that belongs "
         "to it vanishes in the limit (a figure says how many, where there are more). A ring marks a box of which a "
-        "numerator vanishes, which compensates.",
+        "numerator vanishes, which compensates. A weight of order n grows like 1/tⁿ as t goes to 0.",
         class_="faint small",
     )
 
@@ -58,7 +58,9 @@ def singular_figure(s: SingularReport, case: Case | None = None) -> Markup:
             "figcaption",
             _diagrams(s, case),
             ": " if case is not None else None,
-            f"order {s.order}{dead}" + (f", cluster {s.cluster}" if s.cluster is not None else ""),
+            element("span", f"order {s.order}", class_="together"),
+            dead,
+            joined(", ", element("span", f"cluster {s.cluster}", class_="together")) if s.cluster is not None else None,
             element("details", element("summary", number), element("ul", *listed)),
         ),
     )

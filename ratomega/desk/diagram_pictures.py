@@ -15,7 +15,7 @@ from ratomega.desk.picture import GUILTY, KEEN, Picture, label, side_by_side
 from ratomega.diagrams.tuples import Configuration
 from ratomega.diagrams.young import Diagram, boxes
 from ratomega.errors import InputError
-from ratomega.results import FactorReport, SingularReport
+from ratomega.results.detections import FactorReport, SingularReport
 
 __all__ = ["MOST_BOXES", "Marks", "configuration_words", "diagrams_picture", "draw", "marks_of", "singular_picture"]
 
@@ -25,6 +25,7 @@ MOST_BOXES = 400
 MOST_COLOURS = 8
 MOST_DRAWN = 24
 LONGEST_NAME = 14
+SMALLEST_LETTERS = 10.0
 
 Place = tuple[int, int, int, int]
 """(node, colour, row, column), all from 1."""
@@ -117,8 +118,9 @@ def _node_picture(node: Sequence[Diagram], number_: int, name: str, marks: Marks
         return row
     head = 0.95 * cell
     short = name if len(name) <= LONGEST_NAME else name[: LONGEST_NAME - 1] + "…"
-    width = max(row.width, 0.36 * cell * len(short))
-    body = joined(label(short, 0, 0.65 * cell, size=0.62 * cell, anchor="start", class_="name"), row.at(0, head))
+    size = max(0.62 * cell, SMALLEST_LETTERS)
+    width = max(row.width, 0.58 * size * len(short))
+    body = joined(label(short, 0, 0.65 * cell, size=size, anchor="start", class_="name"), row.at(0, head))
     return Picture(body, width, row.height + head, "")
 
 
@@ -150,8 +152,9 @@ def _diagram_picture(
     else:
         parts.append(label("∅", width / 2, margin + 0.78 * cell, size=0.85 * cell, class_="empty"))
     if labelled:
-        parts.append(label(f"a{colour}", width / 2, height + 0.62 * cell, size=0.58 * cell, class_="colour"))
-        height += 0.8 * cell
+        size = max(0.58 * cell, SMALLEST_LETTERS)
+        parts.append(label(f"a{colour}", width / 2, height + 0.95 * size, size=size, class_="colour"))
+        height += 1.3 * size
     return Picture(joined(*parts), width, height, "")
 
 

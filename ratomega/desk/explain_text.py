@@ -4,8 +4,8 @@ from __future__ import annotations
 
 from textwrap import fill
 
+from ratomega.chain.explaining import Explanation
 from ratomega.desk.text import heading
-from ratomega.explaining import Explanation
 
 __all__ = ["explain_text"]
 

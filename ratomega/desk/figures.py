@@ -19,7 +19,7 @@ from ratomega.desk.picture import GUILTY, INK, KEEN
 from ratomega.desk.plot_data import ApproachCurve, curves_of, orders_of, stems_of
 from ratomega.detector.atlas import Atlas
 from ratomega.errors import InputError
-from ratomega.results import DetectResult
+from ratomega.results.detections import DetectResult
 from ratomega.verify.approach import Approach
 
 if TYPE_CHECKING:

@@ -15,13 +15,15 @@ from dataclasses import dataclass
 from ratomega.case.case import Case
 from ratomega.case.reading import load_case
 from ratomega.case.setting import own_setting
+from ratomega.chain.job import CaseSource
+from ratomega.chain.pipeline import detect, limit, validate
 from ratomega.desk.text import charge_word
 from ratomega.detector.atlas import HIGHEST_TOTAL, Atlas, atlas
 from ratomega.diagrams.tuples import count_all
-from ratomega.job import CaseSource
-from ratomega.pipeline import detect, limit, validate
 from ratomega.regulator.routes import choose
-from ratomega.results import DetectResult, LimitResult, ValidateResult
+from ratomega.results.detections import DetectResult
+from ratomega.results.limits import LimitResult
+from ratomega.results.validations import ValidateResult
 from ratomega.symbolic.structure import structure
 from ratomega.validator.checklist import depth_of
 from ratomega.verify.approach import Approach, approach
@@ -76,7 +78,7 @@ def gather(source: CaseSource, *, depth: str = "quick", allow_tilt: bool = True)
         part = bounded("singular configurations", _cheap(case, SCAN_COST * effort), "ratomega detect goes further")
         found = detect(part, exchanges=LARGEST_GRAPH, allow_tilt=allow_tilt)
     else:
-        notes.append("singular configurations: a limit inside the limit has no one path to scan")
+        notes.append("singular configurations, clusters, pole orders: a limit inside the limit has no one path to scan")
     part = bounded("checks", _cheap(case, CHECK_COST * effort), "ratomega validate goes further")
     checks = validate(part, depth=depth, allow_tilt=allow_tilt)
     part = bounded("atlas", _atlas_case(case), "ratomega atlas goes further")
@@ -85,6 +87,10 @@ def gather(source: CaseSource, *, depth: str = "quick", allow_tilt: bool = True)
     if not case.nested and not case.symbols:
         part = bounded("approach", _cheap(case, APPROACH_COST * effort), "ratomega approach goes further")
         near = approach(part, allow_tilt=allow_tilt)
+    elif case.nested:
+        notes.append("approach: no sum at an irrational ratio stands for a limit inside the limit")
+    else:
+        notes.append("approach: a function of symbols is no number to come near to; give them values")
     return Findings(case, limits, found, checks, whole, near, tuple(notes))
 
 

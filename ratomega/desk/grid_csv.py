@@ -13,7 +13,7 @@ import re
 from ratomega.desk.csv_text import guarded
 from ratomega.exact.decimals import decimals
 from ratomega.exact.quadratic import Number, number_text
-from ratomega.grid_results import GridResult, GridRow
+from ratomega.results.grids import GridResult, GridRow
 
 __all__ = ["grid_csv"]
 

@@ -11,7 +11,10 @@ from collections.abc import Iterable, Sequence
 from ratomega.desk.text import charge_word, diagrams_text, factor_text, theory_text
 from ratomega.exact.quadratic import Number, Quadratic
 from ratomega.exact.rational_function import RationalFunction
-from ratomega.results import Coefficient, DetectResult, Header, LimitResult, ValidateResult
+from ratomega.results.detections import DetectResult
+from ratomega.results.header import Header
+from ratomega.results.limits import Coefficient, LimitResult
+from ratomega.results.validations import ValidateResult
 
 __all__ = ["detect_latex", "escaped", "limit_latex", "number_latex", "validate_latex"]
 

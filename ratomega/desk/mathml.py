@@ -9,7 +9,8 @@ from ratomega.exact.rational import Rational
 
 __all__ = ["formula", "fraction", "polynomial", "ratio", "series"]
 
-LONGEST_TERM = 9
+# In characters: what a line holds, and where reading a series ends.
+LONGEST_TERM, LONGEST_SERIES = 20, 60
 MOST_TERMS = 6
 
 
@@ -64,9 +65,10 @@ def polynomial(coefficients: Sequence[int]) -> Markup:
 def series(values: Sequence[tuple[tuple[int, ...], Rational]]) -> Markup:
     """Z = the first terms that are short, and an ellipsis. ``values`` are (charge, coefficient) in their order."""
     parts: list[Child] = [_name("Z"), _sign("=")]
-    shown = 0
+    shown = length = 0
     for charge, value in values:
-        if len(str(value)) > LONGEST_TERM or shown == MOST_TERMS:
+        length += len(str(value))
+        if len(str(value)) > LONGEST_TERM or length > LONGEST_SERIES or shown == MOST_TERMS:
             break
         if value == 0:
             continue
@@ -80,4 +82,4 @@ def series(values: Sequence[tuple[tuple[int, ...], Rational]]) -> Markup:
             parts.append(fraction(abs(value)))
         parts += powers
         shown += 1
-    return formula(*parts, _sign("+"), _sign("⋯"), block=True)
+    return formula(*parts, _sign("+"), element("mi", "⋯"), block=True)

@@ -11,8 +11,6 @@ from __future__ import annotations
 from collections.abc import Callable
 from typing import Any
 
-from ratomega.average_results import AverageResult
-from ratomega.block_results import BlockResult
 from ratomega.case.case import Case
 from ratomega.desk.approach_text import approach_text
 from ratomega.desk.average_text import average_text
@@ -43,16 +41,12 @@ from ratomega.desk.value_parts import (
     values_by_path,
 )
 from ratomega.detector.atlas import Atlas
-from ratomega.grid_results import GridResult
-from ratomega.results import (
-    ChargeReport,
-    ClusterReport,
-    Coefficient,
-    DetectResult,
-    LimitResult,
-    SingularReport,
-    ValidateResult,
-)
+from ratomega.results.averages import AverageResult
+from ratomega.results.blocks import BlockResult
+from ratomega.results.detections import ChargeReport, ClusterReport, DetectResult, SingularReport
+from ratomega.results.grids import GridResult
+from ratomega.results.limits import Coefficient, LimitResult
+from ratomega.results.validations import ValidateResult
 from ratomega.validator.verdict import Check
 from ratomega.verify.approach import Approach
 

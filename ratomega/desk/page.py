@@ -136,7 +136,8 @@ def _orders(findings: Findings) -> Markup:
     orders = orders_of(findings.detect)
     generic = generic_orders(findings.atlas, len(orders.worst))
     said = (
-        "Bars: how strongly the worst single weight diverges, t^-order, with the number of singular weights above. "
+        "Bars: the order n to which the worst single weight diverges, like 1/tⁿ, with the number of singular weights "
+        "above. "
         "Dashes: the worst order at generic Coulomb parameters and masses. The sum of all weights has the limits above."
     )
     counts = counts_table(findings.detect.charges)
@@ -204,8 +205,9 @@ def approach_part(approach: Approach) -> Markup:
         return element("p", "No limit beyond charge 0 that sums at irrational ratios could come near to.")
     said = (
         f"The same sum in ball arithmetic with {approach.digits} digits at irrational ratios near this one: dots are "
-        "distances from the exact limit, short bars the radius within which a value is known, an open dot a distance "
-        "of nothing. Digits cancel in the sum as single weights diverge."
+        "distances from the exact limit, short bars the rigorous radius of a value, an open dot a distance of zero; "
+        "the order is the worst pole order of a single weight. Digits cancel in the sum as single weights diverge: "
+        "bars rise towards the left, and where they reach a curve no digit of the distance is left."
     )
     more = " No weight is singular here: there is nothing to lose." if approach.nothing_lost else None
     return joined(

@@ -11,7 +11,7 @@ from fractions import Fraction
 from ratomega.detector.atlas import Atlas, SingularRatio
 from ratomega.errors import InputError
 from ratomega.exact.rational import Rational
-from ratomega.results import DetectResult
+from ratomega.results.detections import DetectResult
 from ratomega.verify.approach import Approach
 
 __all__ = ["ApproachCurve", "Orders", "Stems", "curves_of", "orders_of", "stems_of"]

@@ -9,11 +9,11 @@ from dataclasses import dataclass
 from pathlib import Path
 
 from ratomega.case.case import Case
+from ratomega.chain.job import CaseSource
 from ratomega.desk.findings import Findings, gather
 from ratomega.desk.markup import element
 from ratomega.desk.page import page
 from ratomega.errors import InputError
-from ratomega.job import CaseSource
 
 __all__ = ["Report", "report"]
 

@@ -22,6 +22,7 @@ white-space:pre-wrap;user-select:all}
 .rz .exact{user-select:all}
 .rz textarea{width:100%;color:inherit;background:var(--leaf);border:1px solid var(--rule);padding:.5rem;resize:vertical}
 .rz .faint{color:var(--faint)}
+.rz .together{white-space:nowrap}
 .rz .small{font-size:.86rem}
 .rz .sheet{overflow-x:auto;overflow-y:hidden;max-width:100%}
 .rz table{border-collapse:collapse;color:inherit;background:none;font-size:.94rem;margin:.5rem 0}
@@ -90,6 +91,7 @@ body{margin:0}
 .rz dl{grid-template-columns:minmax(0,1fr);gap:0}
 .rz dd{margin-bottom:.4rem}
 .rz th,.rz td{padding-right:.55rem}
+.rz .tag{white-space:normal}
 }
 @media (prefers-color-scheme:dark){
 .rz.page{--paper:#14181e;--leaf:#1d232b;--ink:#e7e4da;--faint:#a2a9b4;--rule:#39414c;--keen:#76cdc5;--guilty:#ff8f66;

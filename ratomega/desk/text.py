@@ -10,17 +10,10 @@ from ratomega.diagrams.tuples import Charge, Configuration
 from ratomega.exact.function_text import function_text
 from ratomega.exact.quadratic import approximate_text, number_text
 from ratomega.exact.rational_function import RationalFunction
-from ratomega.results import (
-    ChargeReport,
-    ClusterReport,
-    Coefficient,
-    DetectResult,
-    FactorReport,
-    Header,
-    LimitResult,
-    RouteRecord,
-    ValidateResult,
-)
+from ratomega.results.detections import ChargeReport, ClusterReport, DetectResult, FactorReport
+from ratomega.results.header import Header
+from ratomega.results.limits import Coefficient, LimitResult, RouteRecord
+from ratomega.results.validations import ValidateResult
 from ratomega.validator.verdict import Check
 
 __all__ = ["check_lines", "detect_text", "heading", "limit_text", "table", "theory_text", "validate_text"]
@@ -212,11 +205,11 @@ def poincare_text(cluster: ClusterReport) -> str:
     return f"no Poincaré polynomial{f' ({cluster.poincare_why})' if cluster.poincare_why else ''}"
 
 
-def diagrams_text(configuration: Configuration, case: Case) -> str:
-    """Diagrams by their rows; node names only where there are several nodes."""
+def diagrams_text(configuration: Configuration, case: Case, *, empty: str = "-") -> str:
+    """Diagrams by their rows, ``empty`` where there is no box; node names only where there are several nodes."""
     nodes = []
     for node, diagrams in zip(case.theory.nodes, configuration, strict=True):
-        text = " ".join(f"({','.join(str(row) for row in d)})" if d else "-" for d in diagrams)
+        text = " ".join(f"({','.join(str(row) for row in d)})" if d else empty for d in diagrams)
         nodes.append(f"{node.name} {text}" if len(case.theory.nodes) > 1 else text)
     return "; ".join(nodes)
 

@@ -11,14 +11,16 @@ from ratomega.desk.markup import Child, Markup, element, joined
 from ratomega.desk.text import charge_word, theory_text
 from ratomega.exact.function_text import function_text
 from ratomega.exact.quadratic import Number, Quadratic, approximate_text, number_text
-from ratomega.exact.rational import Rational
+from ratomega.exact.rational import Rational, as_rational, exact_text
 from ratomega.exact.rational_function import RationalFunction
-from ratomega.results import Coefficient, Header, LimitResult
+from ratomega.results.header import Header
+from ratomega.results.limits import Coefficient, LimitResult
 from ratomega.validator.verdict import Check
 
 __all__ = ["case_facts", "check_list", "coefficient_table", "copy_box", "sheet", "summary_line", "values_by_path"]
 
 SHORT = 72
+RAISED = str.maketrans("0123456789", "⁰¹²³⁴⁵⁶⁷⁸⁹")
 LONGEST_VALUE = 20_000
 MOST_ROWS = 400
 
@@ -46,10 +48,16 @@ def value_text(c: Coefficient) -> tuple[str, Number | RationalFunction]:
 
 def _status(c: Coefficient) -> tuple[str, str]:
     if c.status == "pole":
-        return f"pole t^-{c.order}", "leading coefficient"
+        return f"pole t⁻{str(c.order).translate(RAISED)}", "leading coefficient"
     if c.status == "path-dependent":
         return "path-dependent", "on the case's own path"
     return c.status, ""
+
+
+def _relation(decimal: str, value: Number) -> str:
+    """Is a decimal the value itself, or near it? A long fraction is no decimal that is shown."""
+    short = isinstance(value, Rational) and len(exact_text(value)) <= SHORT
+    return "=" if short and as_rational(decimal) == value else "≈"
 
 
 def coefficient_table(coefficients: Sequence[Coefficient]) -> Markup:
@@ -60,7 +68,7 @@ def coefficient_table(coefficients: Sequence[Coefficient]) -> Markup:
         status, what = _status(c)
         near = None
         if not isinstance(shown, RationalFunction) and text != (decimal := approximate_text(shown)):
-            near = element("div", f"≈ {decimal}", class_="faint small")
+            near = element("div", f"{_relation(decimal, shown)} {decimal}", class_="faint small")
         rows.append(
             element(
                 "tr",
@@ -71,7 +79,8 @@ def coefficient_table(coefficients: Sequence[Coefficient]) -> Markup:
             )
         )
     head = element("tr", *(element("th", name, scope="col") for name in ("charge", "coefficient of Z", "limit")))
-    caption = element("caption", "exact coefficients; below the status, what says that every path gives the same")
+    said = "exact coefficients; below the status, how it is known that every path gives the same value"
+    caption = element("caption", said)
     rest = None
     if len(coefficients) > MOST_ROWS:
         rest = element("p", f"{len(coefficients) - MOST_ROWS} more coefficients are not listed.", class_="note")

@@ -9,7 +9,7 @@ from typing import Any
 from ratomega.documents.pieces import Document, Misfit, each, exact, flag, if_given, listed, rational, real, whole, word
 from ratomega.exact.quadratic import number_text
 from ratomega.exact.rational import exact_text
-from ratomega.results import Header
+from ratomega.results.header import Header
 from ratomega.verify.approach import Approach, ApproachCharge, ApproachPoint
 
 __all__ = ["approach_body", "read_approach"]

@@ -9,7 +9,6 @@ from __future__ import annotations
 from collections.abc import Mapping
 from typing import Any
 
-from ratomega.average_results import Average, AverageResult
 from ratomega.averages.functions import SYMBOL
 from ratomega.averages.limits import FUNCTIONS, KINDS, AverageLimit, AveragePath, AverageValue
 from ratomega.documents.pieces import Document, each, exact, if_given, listed, one_of, together, whole, word
@@ -17,7 +16,8 @@ from ratomega.exact.function_text import function_text, parse_function
 from ratomega.exact.line_function import LineFunction
 from ratomega.exact.quadratic import number_text, square_root
 from ratomega.exact.rational_function import RationalFunction
-from ratomega.results import Header
+from ratomega.results.averages import Average, AverageResult
+from ratomega.results.header import Header
 
 __all__ = ["average_body", "read_average"]
 

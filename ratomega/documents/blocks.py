@@ -5,7 +5,6 @@ from __future__ import annotations
 from collections.abc import Mapping
 from typing import Any
 
-from ratomega.block_results import BlockCoefficient, BlockResult, Dictionary, FieldEntry
 from ratomega.case.case import Case
 from ratomega.case.conformal import ConformalCase
 from ratomega.case.conformal_reading import conformal_from_mapping, conformal_to_mapping
@@ -26,6 +25,7 @@ from ratomega.documents.pieces import (
 )
 from ratomega.exact.quadratic import number_text
 from ratomega.exact.rational import exact_text
+from ratomega.results.blocks import BlockCoefficient, BlockResult, Dictionary, FieldEntry
 
 __all__ = ["block_document", "read_block"]
 

@@ -8,7 +8,7 @@ from typing import Any
 from ratomega.documents.pieces import Document, each, exact, flag, if_given, one_of, rational, whole, word
 from ratomega.exact.quadratic import number_text
 from ratomega.exact.rational import exact_text
-from ratomega.results import Header
+from ratomega.results.header import Header
 from ratomega.verify.comparing import CompareResult
 from ratomega.verify.explanation import KINDS, Explanation
 from ratomega.verify.quantities import NAMES

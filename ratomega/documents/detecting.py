@@ -8,15 +8,15 @@ from typing import Any
 from ratomega.case.case import Case
 from ratomega.diagrams.tuples import Configuration
 from ratomega.documents.pieces import Document, each, flag, if_given, whole, word
-from ratomega.results import (
+from ratomega.results.detections import (
     ChargeReport,
     ClusterReport,
     DetectResult,
     Exchange,
     FactorReport,
-    Header,
     SingularReport,
 )
+from ratomega.results.header import Header
 
 __all__ = ["detect_body", "read_detect"]
 

@@ -5,9 +5,9 @@ from __future__ import annotations
 from collections.abc import Mapping
 from typing import Any
 
+from ratomega.chain.explaining import Explanation, Paragraph
 from ratomega.documents.pieces import Document, listed, word
-from ratomega.explaining import Explanation, Paragraph
-from ratomega.results import Header
+from ratomega.results.header import Header
 
 __all__ = ["explanation_body", "read_explanation"]
 

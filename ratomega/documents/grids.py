@@ -14,8 +14,8 @@ from ratomega.documents.pieces import Document, Misfit, each, exact, if_given, l
 from ratomega.exact.decimals import Decimals, decimal_value
 from ratomega.exact.quadratic import Number, number_text
 from ratomega.exact.rational import exact_text
-from ratomega.grid_results import GridResult, GridRow
-from ratomega.results import Header
+from ratomega.results.grids import GridResult, GridRow
+from ratomega.results.header import Header
 
 __all__ = ["grid_body", "read_grid"]
 

@@ -9,7 +9,7 @@ from ratomega.case.reading import case_from_mapping, case_to_mapping
 from ratomega.documents.pieces import Document, Misfit, each, exact, flag, listed, whole, word
 from ratomega.exact.quadratic import number_text
 from ratomega.regulator.outcome import PathValue
-from ratomega.results import Header, PathRecord
+from ratomega.results.header import Header, PathRecord
 from ratomega.validator.verdict import Check, Kind, Verdict
 
 __all__ = ["check_document", "header_document", "path_value", "read_checks", "read_header", "read_path_values"]

@@ -10,7 +10,8 @@ from ratomega.documents.pieces import Document, each, exact, if_given, listed, t
 from ratomega.exact.function_text import function_text, parse_function
 from ratomega.exact.quadratic import Number, number_text
 from ratomega.exact.rational_function import RationalFunction
-from ratomega.results import Coefficient, Header, LimitResult, RouteRecord
+from ratomega.results.header import Header
+from ratomega.results.limits import Coefficient, LimitResult, RouteRecord
 
 __all__ = ["limit_body", "read_limit"]
 

@@ -12,9 +12,8 @@ from collections.abc import Callable, Mapping
 from dataclasses import dataclass
 from typing import Any
 
-from ratomega.average_results import AverageResult
-from ratomega.block_results import BlockResult
 from ratomega.case.wording import kind, quoted, shortened
+from ratomega.chain.explaining import Explanation
 from ratomega.detector.atlas import Atlas
 from ratomega.documents.approach import approach_body, read_approach
 from ratomega.documents.atlas import atlas_document, read_atlas
@@ -29,9 +28,13 @@ from ratomega.documents.limits import limit_body, read_limit
 from ratomega.documents.pieces import Document, Misfit, flag, one_of
 from ratomega.documents.validating import read_validate, validate_body
 from ratomega.errors import InputError, Problem
-from ratomega.explaining import Explanation
-from ratomega.grid_results import GridResult
-from ratomega.results import DetectResult, Header, LimitResult, ValidateResult
+from ratomega.results.averages import AverageResult
+from ratomega.results.blocks import BlockResult
+from ratomega.results.detections import DetectResult
+from ratomega.results.grids import GridResult
+from ratomega.results.header import Header
+from ratomega.results.limits import LimitResult
+from ratomega.results.validations import ValidateResult
 from ratomega.verify.approach import Approach
 from ratomega.verify.comparing import CompareResult
 

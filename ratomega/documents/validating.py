@@ -7,7 +7,8 @@ from typing import Any
 
 from ratomega.documents.header import check_document, read_checks
 from ratomega.documents.pieces import Document, Misfit
-from ratomega.results import Header, ValidateResult
+from ratomega.results.header import Header
+from ratomega.results.validations import ValidateResult
 from ratomega.validator.depth import depth_of
 
 __all__ = ["read_validate", "validate_body"]

@@ -2,7 +2,8 @@
 
     expression = term { ("+" | "-") term }
     term       = power { ("*" | "/") power }
-    power      = { "-" } ( integer | symbol | "(" expression ")" ) [ "**" integer ]
+    power      = { "-" } ( integer | symbol | root | "(" expression ")" ) [ "**" integer ]
+    root       = "sqrt" "(" [ "-" ] integer ")"                     a squarefree integer, one and the same
 
 Nothing is evaluated by Python. Nesting and degrees are bounded; only what contains a symbol has a power.
 """
@@ -15,10 +16,13 @@ from collections.abc import Sequence
 
 from flint import fmpq, fmpz
 
+from ratomega.errors import InputError
+from ratomega.exact.quadratic import LARGEST_RADICAND, square_root
 from ratomega.exact.rational_function import RationalFunction
 
 __all__ = ["function_text", "parse_function"]
 
+ROOT = "sqrt"
 DEEPEST_NESTING = 50
 HIGHEST_DEGREE = 4000
 MOST_TERMS = 200_000
@@ -51,6 +55,7 @@ class _Parser:
         self.tokens.append(("end", ""))
         self.place = 0
         self.depth = 0
+        self.radicand = 0
 
     def mistake(self) -> ValueError:
         return ValueError(f'"{self.shown}" is not a rational function of {", ".join(self.symbols)}')
@@ -81,7 +86,8 @@ class _Parser:
             other = self.power()
             if sign == "/" and other.is_zero():
                 raise self.mistake()
-            self.room(_degree(result) + _degree(other))
+            # One divides by a function of a quadratic field with its conjugate.
+            self.room(_degree(result) + _degree(other) * (2 if sign == "/" and other.radicand else 1))
             result = result * other if sign == "*" else result / other
         return result
 
@@ -108,6 +114,8 @@ class _Parser:
             return RationalFunction.constant(fmpq(fmpz(text)), self.symbols)
         if kind == "name" and text in self.symbols:
             return RationalFunction.symbol(text, self.symbols)
+        if kind == "name" and text == ROOT:
+            return self.root()
         if text != "(" or self.depth >= DEEPEST_NESTING:
             raise self.mistake()
         self.depth += 1
@@ -116,6 +124,23 @@ class _Parser:
             raise self.mistake()
         self.depth -= 1
         return result
+
+    def root(self) -> RationalFunction:
+        if not self.takes("("):
+            raise self.mistake()
+        sign = -1 if self.takes("-") else 1
+        kind, text = self.tokens[self.place]
+        self.place += 1
+        if kind != "integer" or len(text) > len(str(LARGEST_RADICAND)) or not self.takes(")"):
+            raise self.mistake()
+        try:
+            root = square_root(sign * int(text))
+        except InputError as error:
+            raise ValueError(f'"{self.shown}" is a rational function with a root that is none: {error}') from error
+        if self.radicand not in (0, root.d):
+            raise ValueError(f'"{self.shown}" is a rational function over two quadratic fields')
+        self.radicand = root.d
+        return RationalFunction.constant(root, self.symbols)
 
     def bounded(self, value: RationalFunction) -> RationalFunction:
         self.room(_degree(value))
@@ -130,8 +155,9 @@ class _Parser:
 
 def _bits(value: RationalFunction) -> int:
     """The length of the longest coefficient."""
-    return max((int(c).bit_length() for part in (value.numerator, value.denominator) for c in part.coeffs()), default=0)
+    return max((int(c).bit_length() for part in value.polynomials() for c in part.coeffs()), default=0)
 
 
 def _degree(value: RationalFunction) -> int:
-    return max(0, int(value.numerator.total_degree())) + int(value.denominator.total_degree())
+    top, bottom, second = value.polynomials()
+    return max(0, int(top.total_degree()), int(second.total_degree())) + int(bottom.total_degree())

@@ -12,7 +12,7 @@ from typing import Any
 from flint import fmpq_poly, fmpz, fmpz_mpoly, fmpz_poly
 
 from ratomega.exact.polynomials import evaluated
-from ratomega.exact.quadratic import Number, Quadratic, quadratic
+from ratomega.exact.quadratic import Number, Quadratic, quadratic, square_root
 from ratomega.exact.rational import Rational
 from ratomega.exact.rational_function import RationalFunction
 
@@ -22,7 +22,8 @@ UNDETERMINED = "0/0: the value depends on how the point is approached"
 
 
 class PointFunction:
-    """A rational function made ready. ``at`` takes a point, a number for each symbol in their order, all of one field.
+    """A rational function made ready. ``at`` takes a point, a number for each symbol in their order, all of one field,
+    that of the function where it has one.
 
     >>> a = RationalFunction.symbol("a", ("a",))
     >>> f = PointFunction(a / (a * a - 1) ** 2)
@@ -31,7 +32,8 @@ class PointFunction:
     """
 
     def __init__(self, function: RationalFunction) -> None:
-        parts = (function.numerator, function.denominator)
+        parts = function.polynomials() if function.radicand else function.polynomials()[:2]
+        self._function = function
         self._parts: tuple[Any, ...] = tuple(map(_dense, parts)) if len(function.symbols) == 1 else parts
 
     def at(self, point: Sequence[Number]) -> Number | str:
@@ -40,12 +42,19 @@ class PointFunction:
         A pole in one symbol comes with its order; in several, a point where numerator and denominator both vanish is
         told apart from a pole.
         """
-        top, bottom = (_value(part, point) for part in self._parts)
+        top, bottom = (_value(part, point) for part in self._parts[:2])
+        if self._function.radicand:
+            top = top + _value(self._parts[2], point) * square_root(self._function.radicand)
+            if bottom == 0:
+                # The denominator over the integers can vanish where that in lowest terms does not.
+                top, bottom = self._function.factored_at(point)
         if bottom != 0:
             value: Number = top / bottom
             return value
         if len(point) > 1:
             return UNDETERMINED if top == 0 else "pole"
+        if self._function.radicand:
+            return f"pole of order {-self._function.valuation(point[0])}"
         return f"pole of order {_multiplicity(self._parts[1], point[0])}"
 
 

@@ -2,14 +2,14 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Iterable, Mapping, Sequence
 from typing import Any
 
 from flint import Ordering, fmpq, fmpz, fmpz_mpoly, fmpz_mpoly_ctx
 
 from ratomega.exact.rational import ZERO
 
-__all__ = ["coefficients_in", "context_of", "evaluated", "poly_text", "power_text"]
+__all__ = ["coefficients_in", "context_of", "evaluated", "joined_terms", "monomial_text", "poly_text"]
 
 
 def context_of(symbols: Sequence[str]) -> fmpz_mpoly_ctx:
@@ -51,17 +51,16 @@ def poly_text(poly: fmpz_mpoly) -> str:
     '-3*a**2*m + m + 4'
     """
     names = poly.context().names()
-    terms = []
-    for powers, c in poly.terms():
-        pieces = [f"{name}**{e}" if e > 1 else name for name, e in zip(names, powers, strict=True) if e]
-        if abs(c) != 1 or not pieces:
-            pieces.insert(0, str(abs(c)))
-        terms.append(("-" if c < 0 else "+", "*".join(pieces)))
+    return joined_terms(("-" if c < 0 else "+", monomial_text(str(abs(c)), names, e)) for e, c in poly.terms())
+
+
+def monomial_text(size: str, names: Sequence[str], powers: Sequence[int]) -> str:
+    """``size``, the text of a factor, times the powers of the symbols."""
+    pieces = [f"{name}**{e}" if e > 1 else name for name, e in zip(names, powers, strict=True) if e]
+    return "*".join(pieces if pieces and size == "1" else [size, *pieces])
+
+
+def joined_terms(terms: Iterable[tuple[str, str]]) -> str:
+    """(sign, text) of every term as a sum; "0" where there is none."""
     text = "".join(f" {sign} {body}" for sign, body in terms)
     return text[3:] if text.startswith(" + ") else f"-{text[3:]}" if text else "0"
-
-
-def power_text(poly: fmpz_mpoly, exponent: int) -> str:
-    text = poly_text(poly)
-    base = text if len(poly.to_dict()) == 1 else f"({text})"
-    return f"{base}**{exponent}" if exponent > 1 else base

@@ -16,7 +16,16 @@ from typing import TypeGuard, overload
 from flint import fmpq, fmpz
 
 from ratomega.errors import InputError
-from ratomega.exact.rational import ONE, ZERO, Rational, as_rational, decimal_text, exact_text, from_exact_text
+from ratomega.exact.rational import (
+    LONGEST_TEXT,
+    ONE,
+    ZERO,
+    Rational,
+    as_rational,
+    decimal_text,
+    exact_text,
+    from_exact_text,
+)
 
 __all__ = [
     "LARGEST_RADICAND",
@@ -42,6 +51,12 @@ __all__ = [
 # Squarefreeness is found by factoring; up to here that costs microseconds.
 LARGEST_RADICAND = 10**12
 
+_TERM = re.compile(
+    r"""\s*(?P<sign>[+-]?)\s*(?=[0-9.is])
+    (?:(?P<number>[0-9.]+(?:\s*/\s*[0-9]+)?)(?:\s*\*\s*(?=[is])|(?!\s*[is*/0-9.])))?
+    (?P<root>i|sqrt\((?P<d>-?[0-9]{1,13})\))?(?:(?<=[i)])\s*/\s*(?P<below>[0-9]+))?\s*(?=[+-]|$)""",
+    re.VERBOSE | re.ASCII,
+)
 _TEXT = re.compile(r"(?:(?P<x>-?[0-9/]+) (?P<sign>[+-]) )?(?P<y>-?[0-9/]+)\*sqrt\((?P<d>-?[1-9][0-9]*)\)")
 
 
@@ -185,11 +200,11 @@ def square_root(d: int, where: str = "") -> Quadratic:
 
 
 def as_number(value: object, where: str = "") -> Number:
-    """Return ``value`` as an exact number: everything that ``as_rational`` accepts, ``Quadratic``, and exact sympy
-    numbers of a quadratic field. Raises ``InputError`` naming ``where``.
+    """Return ``value`` as an exact number: everything that ``as_rational`` accepts, ``Quadratic``, exact sympy numbers
+    of a quadratic field, and text such as "1 + i/2", "-2*sqrt(5)/3". Raises ``InputError`` naming ``where``.
 
     >>> import sympy
-    >>> str(as_number(sympy.sqrt(21) / 7)), str(as_number(1 - sympy.I / 2)), as_number("1/3")
+    >>> str(as_number(sympy.sqrt(21) / 7)), str(as_number("1 - i/2")), as_number("1/3")
     ('1/7*sqrt(21)', '1 - 1/2*sqrt(-1)', 1/3)
     """
     if isinstance(value, Quadratic):
@@ -197,14 +212,32 @@ def as_number(value: object, where: str = "") -> Number:
     if isinstance(value, complex):
         message = f'the complex {value!r} is not exact; write it as text, for example "1/3 + i/2"'
         raise InputError.single(message, where)
-    if isinstance(value, str) and "sqrt" in value:
-        try:
-            return from_number_text(value)
-        except ValueError as error:
-            raise InputError.single(str(error), where) from error
+    if isinstance(value, str) and ("sqrt" in value or "i" in value):
+        return _from_terms(value, where)
     if type(value).__module__.startswith("sympy.") and not getattr(value, "is_Rational", True):
         return _from_sympy(value, where)
     return as_rational(value, where)
+
+
+def _from_terms(text: str, where: str) -> Number:
+    """The sum of rational multiples of 1 and of one root, written as in a case."""
+    result: Number = ZERO
+    place = 0
+    while place < len(text):
+        match = _TERM.match(text, place) if len(text) <= LONGEST_TEXT else None
+        if match is None or (place > 0 and not match["sign"]):
+            message = f'"{text[:40]}" is not an exact number; write for example "1 + i/2" or "-2*sqrt(5)/3"'
+            raise InputError.single(message, where)
+        term: Number = as_rational(f"{match['sign'] or ''}{match['number'] or '1'}", where)
+        if match["root"]:
+            d = -1 if match["root"] == "i" else int(match["d"])
+            root = square_root(d, where)
+            if isinstance(result, Quadratic) and result.d != d:
+                raise InputError.single(two_fields(result.d, d), where)
+            term = root * term * as_rational(f"1/{match['below'] or '1'}", where)
+        result = result + term
+        place = match.end()
+    return result
 
 
 def _from_sympy(value: object, where: str) -> Number:

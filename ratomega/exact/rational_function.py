@@ -1,28 +1,43 @@
-"""Rational functions of free parameters with rational coefficients: what a coefficient with symbols is.
+"""Rational functions of free parameters, over Q or a quadratic field: what a coefficient with symbols is.
 
 A function is numerator/denominator, two integer polynomials (flint ``fmpz_mpoly``, lexicographic in the order of the
 symbols) without common factor, contents included, the leading coefficient of the denominator positive: equal functions
-have equal parts. ``str`` is the factored form in Python syntax; ``exact.function_text`` reads it back.
+have equal parts. Over Q(sqrt d) it is (numerator + irrational sqrt(d))/denominator, the denominator over the integers
+as before: every denominator has a multiple over the integers, its norm. Normal form as for numbers: ``irrational`` is
+never zero; without it, None, the function is one over Q.
+
+``str`` is the factored form in Python syntax, over the field in lowest terms; ``exact.function_text`` reads it back.
+Factors are found when they are asked for (``field_factors``); arithmetic needs none.
 """
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass
+from itertools import zip_longest
 from typing import Any
 
 from flint import acb, arb, ctx, fmpq, fmpz, fmpz_mpoly
 
 from ratomega.errors import InputError
-from ratomega.exact.polynomials import coefficients_in, context_of, evaluated, poly_text, power_text
-from ratomega.exact.quadratic import Number, Quadratic, as_number
-from ratomega.exact.rational import ONE, ZERO, Rational
+from ratomega.exact.factored_form import factored_sympy, factored_text
+from ratomega.exact.field_factors import Factors, field_factors
+from ratomega.exact.field_polynomials import Factor, FieldPoly, factor_text, factor_value
+from ratomega.exact.polynomials import coefficients_in, context_of, evaluated
+from ratomega.exact.quadratic import (
+    Number,
+    Quadratic,
+    as_number,
+    one_field,
+    quadratic,
+    rational_parts,
+    split_square,
+    square_root,
+)
+from ratomega.exact.rational import ZERO, Rational, common_denominator
+from ratomega.exact.values import Value, ball_value, exact_values, value_of
 
-__all__ = ["Pole", "RationalFunction", "Value", "function_of", "function_of_planes"]
-
-Value = Number | arb | acb | complex
-Factors = tuple[Rational, tuple[tuple[fmpz_mpoly, int], ...]]
-"""A constant and irreducible primitive polynomials with exponents, negative ones from the denominator."""
+__all__ = ["Pole", "RationalFunction", "function_of"]
 
 # A complex number is worked out with this many bits, doubled until both parts are good to a double.
 FIRST_BITS = 128
@@ -49,24 +64,42 @@ class RationalFunction:
 
     numerator: fmpz_mpoly
     denominator: fmpz_mpoly
+    irrational: fmpz_mpoly | None = None
+    radicand: int = 0
 
     # ---- construction ----
 
     @classmethod
-    def make(cls, numerator: fmpz_mpoly, denominator: fmpz_mpoly) -> RationalFunction:
+    def make(
+        cls,
+        numerator: fmpz_mpoly,
+        denominator: fmpz_mpoly,
+        irrational: fmpz_mpoly | None = None,
+        radicand: int = 0,
+    ) -> RationalFunction:
         """The checking constructor: lowest terms, positive lead. Raises ``ZeroDivisionError`` for denominator 0."""
         if denominator.is_zero():
             raise ZeroDivisionError("the denominator of a rational function is zero")
+        if irrational is not None and irrational.is_zero():
+            irrational = None
         common = numerator.gcd(denominator)
+        if irrational is not None and not common.is_one():
+            common = common.gcd(irrational)
+        if denominator.leading_coefficient() < 0:
+            common = -common
         if not common.is_one():
             numerator, denominator = numerator / common, denominator / common
-        if denominator.leading_coefficient() < 0:
-            numerator, denominator = -numerator, -denominator
-        return cls(numerator, denominator)
+            irrational = None if irrational is None else irrational / common
+        return cls(numerator, denominator, irrational, 0 if irrational is None else radicand)
 
     @classmethod
-    def constant(cls, value: Rational | int, symbols: Sequence[str]) -> RationalFunction:
-        value, context = fmpq(value), context_of(symbols)
+    def constant(cls, value: Number | int, symbols: Sequence[str]) -> RationalFunction:
+        context = context_of(symbols)
+        if isinstance(value, Quadratic):
+            scale = common_denominator(rational_parts(value))
+            x, y = (context.constant((part * scale).p) for part in rational_parts(value))
+            return cls(x, context.constant(scale), y, value.d)
+        value = fmpq(value)
         return cls(context.constant(value.p), context.constant(value.q))
 
     @classmethod
@@ -78,90 +111,119 @@ class RationalFunction:
     def symbols(self) -> tuple[str, ...]:
         return tuple(self.numerator.context().names())
 
+    def conjugate(self) -> RationalFunction:
+        """The function with -sqrt(d) in place of sqrt(d); a function over Q is its own."""
+        if self.irrational is None:
+            return self
+        return RationalFunction(self.numerator, self.denominator, -self.irrational, self.radicand)
+
     # ---- arithmetic ----
 
-    def _other(self, other: RationalFunction | Rational | int) -> RationalFunction:
-        if isinstance(other, RationalFunction):
-            if other.symbols != self.symbols:
-                raise ValueError(f"functions of {self.symbols} and of {other.symbols} are not mixed")
-            return other
-        return RationalFunction.constant(other, self.symbols)
+    def _other(self, other: RationalFunction | Number | int) -> RationalFunction:
+        if not isinstance(other, RationalFunction):
+            other = RationalFunction.constant(other, self.symbols)
+        if other.symbols != self.symbols:
+            raise ValueError(f"functions of {self.symbols} and of {other.symbols} are not mixed")
+        if 0 != self.radicand != other.radicand != 0:
+            raise ValueError(f"sqrt({self.radicand}) and sqrt({other.radicand}) do not lie in one quadratic field")
+        return other
 
-    def __add__(self, other: RationalFunction | Rational | int) -> RationalFunction:
+    def _second(self) -> fmpz_mpoly:
+        return self.numerator.context().constant(0) if self.irrational is None else self.irrational
+
+    def __add__(self, other: RationalFunction | Number | int) -> RationalFunction:
         other = self._other(other)
         if self.denominator == other.denominator:
-            return RationalFunction.make(self.numerator + other.numerator, self.denominator)
-        top = self.numerator * other.denominator + other.numerator * self.denominator
-        return RationalFunction.make(top, self.denominator * other.denominator)
+            left = right = self.numerator.context().constant(1)
+            below = self.denominator
+        else:
+            left, right, below = other.denominator, self.denominator, self.denominator * other.denominator
+        top = self.numerator * left + other.numerator * right
+        if self.irrational is None and other.irrational is None:
+            return RationalFunction.make(top, below)
+        second = self._second() * left + other._second() * right
+        return RationalFunction.make(top, below, second, self.radicand or other.radicand)
 
     def __neg__(self) -> RationalFunction:
-        return RationalFunction(-self.numerator, self.denominator)
+        second = None if self.irrational is None else -self.irrational
+        return RationalFunction(-self.numerator, self.denominator, second, self.radicand)
 
-    def __sub__(self, other: RationalFunction | Rational | int) -> RationalFunction:
+    def __sub__(self, other: RationalFunction | Number | int) -> RationalFunction:
         return self + (-self._other(other))
 
-    def __mul__(self, other: RationalFunction | Rational | int) -> RationalFunction:
+    def __mul__(self, other: RationalFunction | Number | int) -> RationalFunction:
         other = self._other(other)
-        return RationalFunction.make(self.numerator * other.numerator, self.denominator * other.denominator)
+        top, below = self.numerator * other.numerator, self.denominator * other.denominator
+        if self.irrational is None and other.irrational is None:
+            return RationalFunction.make(top, below)
+        one, two, d = self._second(), other._second(), self.radicand or other.radicand
+        return RationalFunction.make(
+            top + one * two * d, below, self.numerator * two + one * other.numerator, d
+        )
 
-    def __truediv__(self, other: RationalFunction | Rational | int) -> RationalFunction:
-        other = self._other(other)
-        return RationalFunction.make(self.numerator * other.denominator, self.denominator * other.numerator)
+    def __truediv__(self, other: RationalFunction | Number | int) -> RationalFunction:
+        return self * self._other(other)._inverse()
+
+    def _inverse(self) -> RationalFunction:
+        if self.irrational is None:
+            return RationalFunction.make(self.denominator, self.numerator)
+        norm = self.numerator**2 - self.irrational**2 * self.radicand
+        below = self.denominator
+        return RationalFunction.make(self.numerator * below, norm, -self.irrational * below, self.radicand)
 
     def __pow__(self, exponent: int) -> RationalFunction:
         if exponent < 0:
-            return RationalFunction.constant(1, self.symbols) / self**-exponent
-        return RationalFunction(self.numerator**exponent, self.denominator**exponent)
+            return self._inverse() ** -exponent
+        if self.irrational is None:
+            return RationalFunction(self.numerator**exponent, self.denominator**exponent)
+        result, base = RationalFunction.constant(1, self.symbols), self
+        while exponent:
+            if exponent % 2:
+                result = result * base
+            base, exponent = base * base if exponent > 1 else base, exponent // 2
+        return result
 
-    def __radd__(self, other: Rational | int) -> RationalFunction:
+    def __radd__(self, other: Number | int) -> RationalFunction:
         return self + other
 
-    def __rsub__(self, other: Rational | int) -> RationalFunction:
+    def __rsub__(self, other: Number | int) -> RationalFunction:
         return -self + other
 
-    def __rmul__(self, other: Rational | int) -> RationalFunction:
+    def __rmul__(self, other: Number | int) -> RationalFunction:
         return self * other
 
-    def __rtruediv__(self, other: Rational | int) -> RationalFunction:
+    def __rtruediv__(self, other: Number | int) -> RationalFunction:
         return self._other(other) / self
 
     def __eq__(self, other: object) -> bool:
-        if isinstance(other, (int, fmpq)):
+        if isinstance(other, (int, fmpq, Quadratic)):
             other = RationalFunction.constant(other, self.symbols)
         if not isinstance(other, RationalFunction):
             return NotImplemented
-        same = self.symbols == other.symbols
-        return same and bool(self.numerator == other.numerator and self.denominator == other.denominator)
+        if self.symbols != other.symbols or self.radicand != other.radicand:
+            return False
+        same = self.numerator == other.numerator and self.denominator == other.denominator
+        return bool(same and self.irrational == other.irrational)
 
     def __hash__(self) -> int:
-        return hash((self.symbols, str(self.numerator), str(self.denominator)))
+        return hash((self.symbols, str(self.numerator), str(self.denominator), str(self.irrational), self.radicand))
 
     def is_zero(self) -> bool:
-        return bool(self.numerator.is_zero())
+        return bool(self.numerator.is_zero() and self.irrational is None)
 
     # ---- structure ----
 
     def factors(self) -> Factors:
         """The constant and the irreducible factors; numerator first, each part ordered by degree, then by text."""
-        constant, found = ONE, []
-        for poly, sign in ((self.numerator, 1), (self.denominator, -1)):
-            if poly.is_zero():
-                return ZERO, ()
-            content, pairs = poly.factor()
-            constant = constant * fmpq(content) if sign > 0 else constant / fmpq(content)
-            part = []
-            for factor, exponent in pairs:
-                lead = factor.leading_coefficient()
-                if lead < 0:
-                    factor, constant = -factor, constant * (-1) ** int(exponent)
-                part.append((factor, sign * int(exponent)))
-            found += sorted(part, key=lambda pair: (pair[0].total_degree(), poly_text(pair[0])))
-        return constant, tuple(found)
+        if self.is_zero():
+            return ZERO, ()
+        return field_factors(self.numerator, self._second(), self.denominator, self.radicand)
 
     def degree(self, symbol: str) -> int:
         """The degree of the numerator less that of the denominator: the growth at infinity."""
         place = self._place(symbol)
-        return int(self.numerator.degrees()[place]) - int(self.denominator.degrees()[place])
+        top = max(int(part.degrees()[place]) for part in (self.numerator, self._second()))
+        return top - int(self.denominator.degrees()[place])
 
     def _place(self, symbol: str | None) -> int:
         if symbol is None:
@@ -177,20 +239,39 @@ class RationalFunction:
     def poles(self, symbol: str | None = None) -> tuple[Pole, ...]:
         """All poles in one symbol (which may be left out when there is one), with their orders.
 
-        Raises ``InputError`` when a factor of the denominator is not linear in the symbol.
+        Locations may lie in a quadratic field where the function does not. Raises ``InputError`` when a factor of the
+        denominator is neither linear in the symbol nor a quadratic polynomial in it with rational coefficients.
         """
         place = self._place(symbol)
         found = []
         for factor, exponent in self.factors()[1]:
-            parts = coefficients_in(factor, place)
-            if exponent > 0 or len(parts) == 1:
-                continue
-            if len(parts) > 2:
-                message = f"the factor {poly_text(factor)} of the denominator is not linear in {self.symbols[place]}"
-                raise InputError.single(message, "symbol")
-            location = -RationalFunction.make(parts[0], parts[1])
-            found.append(Pole(location._without(place), -exponent))
+            if exponent < 0:
+                found += [Pole(location, -exponent) for location in self._zeros(factor, place)]
         return tuple(sorted(found, key=_pole_order))
+
+    def _zeros(self, factor: Factor, place: int) -> list[Number | RationalFunction]:
+        parts = [part._without(place) for part in _coefficients(factor, place)]
+        if len(parts) <= 2:
+            return [-(parts[0] / parts[1])] if len(parts) == 2 else []
+        numbers = [part for part in parts if isinstance(part, fmpq)]
+        if len(numbers) == len(parts) == 3:
+            constant, linear, lead = numbers
+            square = linear * linear / 4 - constant * lead
+            root, d = split_square(int(square.p * square.q))
+            step = square_root(d) * (Rational(root) / (square.q * lead))
+            return [-linear / (2 * lead) - step, -linear / (2 * lead) + step]
+        message = f"the factor {factor_text(factor)} of the denominator is not linear in {self.symbols[place]}"
+        raise InputError.single(message, "symbol")
+
+    def valuation(self, location: object, symbol: str | None = None) -> int:
+        """The order of vanishing in one symbol, negative at a pole. The function is not zero.
+
+        >>> a = RationalFunction.symbol("a", ("a",))
+        >>> f = 1 / (a - square_root(-1))
+        >>> f.valuation("i"), f.valuation("-i")
+        (-1, 0)
+        """
+        return self._laurent(self._place(symbol), location, -1)[0]
 
     def residue(self, location: object, symbol: str | None = None) -> Number | RationalFunction:
         """The residue in one symbol at a number or at the location of a pole; zero where there is no pole."""
@@ -216,12 +297,9 @@ class RationalFunction:
         if isinstance(about, RationalFunction):
             centre = about._within(self.symbols)
         else:
-            number = as_number(about, self.symbols[place])
-            if isinstance(number, Quadratic):
-                message = f"{number} is not rational; an expansion is taken around a rational number"
-                raise InputError.single(message, self.symbols[place])
-            centre = RationalFunction.constant(number, self.symbols)
-        top, bottom = (_shifted(poly, place, centre) for poly in (self.numerator, self.denominator))
+            centre = RationalFunction.constant(as_number(about, self.symbols[place]), self.symbols)
+        self._checked_field([centre], self.symbols[place])
+        top, bottom = self._shifted(place, centre)
         low_top, low_bottom = (next(n for n, c in enumerate(part) if not c.is_zero()) for part in (top, bottom))
         valuation = low_top - low_bottom
         top, bottom = top[low_top:], bottom[low_bottom:]
@@ -233,22 +311,47 @@ class RationalFunction:
             terms.append(value / bottom[0])
         return valuation, tuple(term._without(place) for term in terms)
 
+    def _shifted(self, place: int, centre: RationalFunction) -> tuple[list[RationalFunction], list[RationalFunction]]:
+        """Numerator and denominator by powers of x after the symbol was replaced by centre + x."""
+        top: Factor = self.numerator
+        if self.irrational is not None:
+            top = FieldPoly(self.numerator, self.irrational, self.radicand)
+        return _moved(_coefficients(top, place), centre), _moved(_coefficients(self.denominator, place), centre)
+
+    def _checked_field(self, values: Iterable[Number | RationalFunction], where: str) -> None:
+        """Raises ``InputError`` when a value lies in another quadratic field than the function or a value before."""
+        known = [square_root(d) for d in (self.radicand, *(_radicand(x) for x in values)) if d]
+        try:
+            one_field(known)
+        except InputError as error:
+            raise InputError.single(error.problems[0].message, where) from error
+
+    def polynomials(self) -> tuple[fmpz_mpoly, fmpz_mpoly, fmpz_mpoly]:
+        """Numerator, denominator, and what stands with sqrt(d), zero over Q."""
+        return self.numerator, self.denominator, self._second()
+
     def _without(self, place: int) -> Number | RationalFunction:
         """The same function, which does not depend on the symbol at ``place``, of the other symbols."""
         rest = tuple(name for n, name in enumerate(self.symbols) if n != place)
         tables = []
-        for poly in (self.numerator, self.denominator):
+        for poly in self.polynomials():
             terms = {tuple(e for n, e in enumerate(powers) if n != place): c for powers, c in poly.to_dict().items()}
             tables.append(terms)
         if not rest:
-            return fmpq(*(terms.get((), fmpz(0)) for terms in tables))
-        return RationalFunction(*(context_of(rest).from_dict(terms) for terms in tables))
+            top, bottom, second = (fmpq(terms.get((), fmpz(0))) for terms in tables)
+            return quadratic(top / bottom, second / bottom, self.radicand)
+        return self._of_parts([context_of(rest).from_dict(terms) for terms in tables])
+
+    def _of_parts(self, parts: Sequence[fmpz_mpoly]) -> RationalFunction:
+        """The same function with its polynomials among other symbols."""
+        top, bottom, second = parts
+        return RationalFunction(top, bottom, second if self.radicand else None, self.radicand)
 
     def _within(self, symbols: Sequence[str]) -> RationalFunction:
         """The same function among more symbols."""
         context, places = context_of(symbols), [tuple(symbols).index(name) for name in self.symbols]
         parts = []
-        for poly in (self.numerator, self.denominator):
+        for poly in self.polynomials():
             terms = {}
             for powers, c in poly.to_dict().items():
                 key = [0] * len(symbols)
@@ -256,7 +359,7 @@ class RationalFunction:
                     key[place] = int(power)
                 terms[tuple(key)] = c
             parts.append(context.from_dict(terms))
-        return RationalFunction(*parts)
+        return self._of_parts(parts)
 
     # ---- values ----
 
@@ -264,48 +367,74 @@ class RationalFunction:
         """The value at exact numbers (as text, ``Fraction``, ... or of a quadratic field), balls or complex numbers.
 
         Symbols that are not given stay: the result is then a ``RationalFunction`` of them, and the given values are
-        rational. Balls are worked out with the precision of flint's context, complex numbers (and floats, taken as
-        what they are) until they are good to a double. Raises ``InputError`` at a pole and for an unknown symbol.
+        exact. Balls are worked out with the precision of flint's context, complex numbers (and floats, taken as
+        what they are) until they are good to a double. Raises ``InputError`` at a pole, for an unknown symbol and for
+        exact numbers of two quadratic fields.
         """
         for name in values:
             self._place(name)
-        given = {name: _value(value, name) for name, value in values.items()}
+        given = {name: value_of(value, name) for name, value in values.items()}
         if len(given) < len(self.symbols):
             return self._partial(given)
         if any(isinstance(value, complex) for value in given.values()):
             return self._complex(given)
         if any(isinstance(value, (arb, acb)) for value in given.values()):
-            balls = {name: _ball(value) for name, value in given.items()}
+            balls = {name: ball_value(value) for name, value in given.items()}
             return self._ball_value(balls)
-        exact: list[Any] = [given[name] for name in self.symbols]
-        top, bottom = (evaluated(poly, exact) for poly in (self.numerator, self.denominator))
+        self._checked_field(exact_values(given), ", ".join(given))
+        numbers: list[Any] = [given[name] for name in self.symbols]
+        top, bottom, second = (evaluated(poly, numbers) for poly in self.polynomials())
+        if self.radicand:
+            top = top + second * square_root(self.radicand)
+            if bottom == 0:
+                # The denominator over the integers can vanish where that in lowest terms does not.
+                top, bottom = self.factored_at(numbers)
         if bottom == 0:
             where = ", ".join(f"{name} = {value}" for name, value in given.items())
             raise InputError.single(f"{where} is a pole", ", ".join(given))
         return top / bottom
 
+    def factored_at(self, values: Sequence[Number]) -> tuple[Number, Number]:
+        """Numerator and denominator in lowest terms over the field, at exact numbers of that field."""
+        constant, factors = self.factors()
+        root = square_root(self.radicand) if self.radicand else None
+        top: Any = constant
+        bottom: Any = Rational(1)
+        for factor, exponent in factors:
+            value = factor_value(factor, values, root) ** abs(exponent)
+            top, bottom = (top * value, bottom) if exponent > 0 else (top, bottom * value)
+        return top, bottom
+
     def _partial(self, given: Mapping[str, Value]) -> RationalFunction:
+        self._checked_field(exact_values(given), ", ".join(given))
         result: Any = self
         for name, value in given.items():
-            if not isinstance(value, fmpq):
+            if not isinstance(value, (fmpq, Quadratic)):
                 rest = ", ".join(s for s in self.symbols if s not in given)
-                message = f"{value} is not rational; where {rest} stays free, the given values are rational"
+                message = f"{value} is not exact; where {rest} stays free, the given values are exact"
                 raise InputError.single(message, name)
             place = result._place(name)
             centre = RationalFunction.constant(value, result.symbols)
-            top, bottom = (_shifted(poly, place, centre)[0] for poly in (result.numerator, result.denominator))
-            if bottom.is_zero():
+            top, bottom = (parts[0] for parts in result._shifted(place, centre))
+            if not bottom.is_zero():
+                result = (top / bottom)._without(place)
+                continue
+            valuation, terms = result._laurent(place, centre, 0)
+            if valuation < 0:
                 raise InputError.single(f"{name} = {value} is a pole whatever the other symbols are", name)
-            result = (top / bottom)._without(place)
+            result = terms[0] if valuation == 0 else result * 0
+            if valuation > 0:
+                result = result._without(place)
         assert isinstance(result, RationalFunction)
         return result
 
     def _ball_value(self, balls: Mapping[str, arb | acb]) -> arb | acb:
         # Factor by factor: an expanded polynomial loses digits near its zeros.
         constant, factors = self.factors()
-        result: arb | acb = arb(constant)
+        root = ball_value(square_root(self.radicand)) if self.radicand else None
+        result: arb | acb = ball_value(constant)
         for factor, exponent in factors:
-            value: arb | acb = evaluated(factor, [balls[name] for name in self.symbols])
+            value: arb | acb = factor_value(factor, [balls[name] for name in self.symbols], root)
             result = result * value**exponent if exponent > 0 else result / value**-exponent
         return result
 
@@ -313,7 +442,7 @@ class RationalFunction:
         bits = FIRST_BITS
         while bits <= MOST_BITS:
             with ctx.workprec(bits):
-                value = acb(self._ball_value({name: _ball(x) for name, x in given.items()}))
+                value = acb(self._ball_value({name: ball_value(x) for name, x in given.items()}))
                 if value.rel_accuracy_bits() >= 60 or value == 0:
                     return complex(value)
             bits *= 2
@@ -322,38 +451,13 @@ class RationalFunction:
     # ---- how it is written ----
 
     def __str__(self) -> str:
-        constant, factors = self.factors()
-        above = [power_text(f, e) for f, e in factors if e > 0]
-        below = [power_text(f, -e) for f, e in factors if e < 0]
-        top, bottom = abs(constant.p), constant.q
-        if top != 1 or not above:
-            above.insert(0, str(top))
-        if bottom != 1:
-            below.insert(0, str(bottom))
-        text = "*".join(above)
-        if len(above) == 1 and len(below) == 0 and text.startswith("("):
-            text = text[1:-1] if text.endswith(")") and constant > 0 else text
-        if below:
-            text = f"{text}/{below[0]}" if len(below) == 1 else f"{text}/({'*'.join(below)})"
-        return f"-{text}" if constant < 0 else text
+        return factored_text(self.factors())
 
     __repr__ = __str__
 
     def sympy(self) -> Any:
         """The factored form as a sympy expression in ``sympy.Symbol``s of the same names."""
-        import sympy
-
-        names = [sympy.Symbol(name) for name in self.symbols]
-        constant, factors = self.factors()
-        parts = [sympy.Rational(int(constant.p), int(constant.q))] if constant != 1 or not factors else []
-        for factor, exponent in factors:
-            terms = (
-                sympy.Mul(sympy.Integer(int(c)), *(name ** int(e) for name, e in zip(names, powers, strict=True)))
-                for powers, c in factor.to_dict().items()
-            )
-            parts.append(sympy.Add(*terms) ** exponent)
-        # Evaluated, sympy would multiply the constant into a sum.
-        return sympy.Mul(*parts, evaluate=False)
+        return factored_sympy(self.symbols, self.factors())
 
     def latex(self) -> str:
         """The factored form in LaTeX."""
@@ -363,35 +467,31 @@ class RationalFunction:
 
 
 def function_of(
-    coefficients: Mapping[tuple[int, ...], Rational], denominator: fmpz_mpoly, symbols: Sequence[str]
+    coefficients: Mapping[tuple[int, ...], Number], denominator: fmpz_mpoly, symbols: Sequence[str]
 ) -> RationalFunction:
-    """The polynomial with the given rational coefficients over a denominator."""
-    scale = fmpz(1)
-    for value in coefficients.values():
-        scale = scale.lcm(value.q)
-    terms = {powers: (value * scale).p for powers, value in coefficients.items() if value != 0}
-    return RationalFunction.make(context_of(symbols).from_dict(terms), denominator * scale)
+    """The polynomial with the given coefficients, of one field, over a denominator."""
+    d = one_field(coefficients.values())
+    scale = fmpz(common_denominator(part for value in coefficients.values() for part in rational_parts(value)))
+    columns: tuple[dict[tuple[int, ...], fmpz], ...] = ({}, {})
+    for powers, value in coefficients.items():
+        for column, part in zip(columns, rational_parts(value), strict=False):
+            column[powers] = (part * scale).p
+    top, second = (context_of(symbols).from_dict(column) for column in columns)
+    return RationalFunction.make(top, denominator * scale, second, d)
 
 
-def function_of_planes(
-    coefficients: Mapping[tuple[int, ...], Rational],
-    planes: Sequence[tuple[Sequence[int], int]],
-    symbols: Sequence[str],
-) -> RationalFunction:
-    """The same over a product of linear forms (c_0, c_1, ...) with multiplicities."""
-    context = context_of(symbols)
-    denominator = context.constant(1)
-    for plane, times in planes:
-        units = (tuple(int(s == place) for s in range(len(symbols))) for place in range(len(symbols)))
-        terms = {(0,) * len(symbols): fmpz(plane[0]), **{u: fmpz(c) for u, c in zip(units, plane[1:], strict=True)}}
-        denominator *= context.from_dict(terms) ** times
-    return function_of(coefficients, denominator, symbols)
+def _coefficients(factor: Factor, place: int) -> list[RationalFunction]:
+    """The coefficients of the powers of one symbol, as functions of all symbols."""
+    polys = (factor.rational, factor.irrational) if isinstance(factor, FieldPoly) else (factor,)
+    columns = [coefficients_in(poly, place) for poly in polys]
+    one, zero = polys[0].context().constant(1), polys[0].context().constant(0)
+    d = factor.d if isinstance(factor, FieldPoly) else 0
+    rows = zip_longest(*columns, [zero], fillvalue=zero)
+    return [RationalFunction.make(row[0], one, row[1], d) for row in rows]
 
 
-def _shifted(poly: fmpz_mpoly, place: int, centre: RationalFunction) -> list[RationalFunction]:
-    """The coefficients of the powers of x after the symbol was replaced by centre + x: Horner's scheme."""
-    one = poly.context().constant(1)
-    parts = [RationalFunction(part, one) for part in coefficients_in(poly, place)]
+def _moved(parts: list[RationalFunction], centre: RationalFunction) -> list[RationalFunction]:
+    """The coefficients after the symbol was replaced by centre + x: Horner's scheme."""
     if centre.is_zero():
         return parts
     for start in range(len(parts) - 1):
@@ -400,26 +500,16 @@ def _shifted(poly: fmpz_mpoly, place: int, centre: RationalFunction) -> list[Rat
     return parts
 
 
-def _value(value: object, name: str) -> Value:
-    if isinstance(value, (arb, acb)):
-        return value
-    if isinstance(value, (complex, float)) and not isinstance(value, bool):
-        return complex(value)
-    return as_number(value, name)
+def _radicand(value: Number | RationalFunction) -> int:
+    if isinstance(value, RationalFunction):
+        return value.radicand
+    return value.d if isinstance(value, Quadratic) else 0
 
 
-def _ball(value: Value) -> arb | acb:
-    """A number as a ball of the current precision."""
-    if isinstance(value, (arb, acb)):
-        return value
-    if isinstance(value, complex):
-        return acb(value.real, value.imag) if value.imag else arb(value.real)
-    if isinstance(value, Quadratic):
-        root = arb(abs(value.d)).sqrt()
-        return arb(value.x) + arb(value.y) * root if value.d > 0 else acb(arb(value.x), arb(value.y) * root)
-    return arb(value)
-
-
-def _pole_order(pole: Pole) -> tuple[int, Any, str]:
+def _pole_order(pole: Pole) -> tuple[int, Any, Any, str]:
+    """Numbers first, by their parts."""
     where = pole.location
-    return (0, where, "") if isinstance(where, fmpq) else (1, ZERO, str(where))
+    if isinstance(where, RationalFunction):
+        return 1, ZERO, ZERO, str(where)
+    x, y = (*rational_parts(where), ZERO)[:2]
+    return 0, x, y, ""

@@ -16,8 +16,7 @@ from ratomega.case.setting import Setting, own_setting
 from ratomega.diagrams.tuples import Charge, count_all
 from ratomega.errors import InputError
 from ratomega.exact.batches import ResidueTask, Supplier, here
-from ratomega.exact.quadratic import Number, only_rational
-from ratomega.exact.rational import Rational
+from ratomega.exact.quadratic import Number
 from ratomega.regulator.direct import direct_total
 from ratomega.regulator.fast.setup import prepare
 from ratomega.regulator.fast.sums import applies as fast_applies
@@ -130,10 +129,10 @@ def residue_task(name: str, case: Case, charge: int) -> ResidueTask:
     raise ValueError(f"no short cut has a task {name!r}")
 
 
-def point_values(setting: Setting, highest: tuple[int, ...]) -> Callable[[Charge], Rational]:
+def point_values(setting: Setting, highest: tuple[int, ...]) -> Callable[[Charge], Number]:
     """The limit at every charge within the highest, for a setting without resonances: what interpolation asks for."""
     if len(highest) == 1 and worthwhile(setting, highest[0]):
         coefficients = fast_sum(setting, highest[0]).coefficients
-        return lambda wanted: only_rational(coefficients[wanted[0]])
+        return lambda wanted: coefficients[wanted[0]]
     weights = Weights(setting)
-    return lambda wanted: only_rational(direct_total(weights, wanted).coefficient(0))
+    return lambda wanted: direct_total(weights, wanted).coefficient(0)

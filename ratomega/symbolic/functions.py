@@ -7,7 +7,7 @@ component is compact, so that the limit is finite and the same on every path by 
 from __future__ import annotations
 
 import math
-from collections.abc import Callable
+from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass
 from itertools import product
 
@@ -16,9 +16,10 @@ from ratomega.case.setting import Setting, own_setting, resonances
 from ratomega.diagrams.tuples import Charge, count_configurations
 from ratomega.errors import InputError
 from ratomega.exact.interpolation import grid_polynomial
-from ratomega.exact.quadratic import only_rational
-from ratomega.exact.rational import Rational
-from ratomega.exact.rational_function import RationalFunction, function_of_planes
+from ratomega.exact.plane_function import function_of_planes
+from ratomega.exact.quadratic import Number, one_field, quadratic, rational_parts
+from ratomega.exact.rational import ZERO, Rational
+from ratomega.exact.rational_function import RationalFunction
 from ratomega.regulator.direct import direct_total
 from ratomega.regulator.limits import ChargeLimit
 from ratomega.symbolic.grid import Grid, Point, choose_grid, denominator_value
@@ -27,7 +28,7 @@ from ratomega.weights import Weights
 
 __all__ = ["Evaluator", "Functions", "SymbolicCharge", "SymbolicLimit", "direct_evaluator"]
 
-Values = Callable[[Charge], Rational]
+Values = Callable[[Charge], Number]
 Evaluator = Callable[[Setting, tuple[int, ...]], Values]
 """Takes a setting (one point) and the highest charge of every node, and gives the limit at any charge within.
 
@@ -38,7 +39,7 @@ Charges are asked for one by one; what is common to them may be done at the firs
 def direct_evaluator(setting: Setting, highest: tuple[int, ...]) -> Values:
     """The direct sum over diagrams: a charge costs what it costs alone, whatever the highest is."""
     weights = Weights(setting)
-    return lambda charge: only_rational(direct_total(weights, charge).coefficient(0))
+    return lambda charge: direct_total(weights, charge).coefficient(0)
 
 
 @dataclass(frozen=True, slots=True)
@@ -99,7 +100,7 @@ class Functions:
         """The first witness: a point without anything special."""
         return dict(zip(self.case.symbols, self.grid.witnesses[0], strict=True))
 
-    def value(self, charge: Charge, point: Point) -> Rational:
+    def value(self, charge: Charge, point: Point) -> Number:
         """The exact limit at one point."""
         known = self._known.get(point)
         if known is None:
@@ -122,7 +123,7 @@ class Functions:
         ]
         coefficients = {
             tuple(2 * e if even else e for e, even in zip(exponents, shape.even, strict=True)): value
-            for exponents, value in grid_polynomial(variables, values).items()
+            for exponents, value in _interpolated(variables, values).items()
         }
         function = function_of_planes(coefficients, shape.planes, self.case.symbols)
         agree: list[Point] = []
@@ -131,3 +132,16 @@ class Functions:
             expected = function.at(**dict(zip(self.case.symbols, witness, strict=True)))
             (agree if self.value(charge, witness) == expected else differ).append(witness)
         return SymbolicCharge(charge, function, len(values), tuple(agree), tuple(differ))
+
+
+def _interpolated(
+    axes: Sequence[Sequence[Rational]], values: Mapping[tuple[int, ...], Number]
+) -> dict[tuple[int, ...], Number]:
+    """The coefficients of the polynomial with these values, the two parts of every number on their own."""
+    d = one_field(values.values())
+    parts = {index: (*rational_parts(value), ZERO)[:2] for index, value in values.items()}
+    first = grid_polynomial(axes, {index: x for index, (x, _) in parts.items()})
+    if not d:
+        return dict(first)
+    second = grid_polynomial(axes, {index: y for index, (_, y) in parts.items()})
+    return {index: quadratic(x, second[index], d) for index, x in first.items()}

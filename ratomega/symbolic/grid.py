@@ -12,7 +12,8 @@ from dataclasses import dataclass
 from itertools import count, product
 
 from ratomega.errors import InputError
-from ratomega.exact.rational import ONE, ZERO, Rational
+from ratomega.exact.quadratic import Number
+from ratomega.exact.rational import ONE, Rational
 from ratomega.symbolic.structure import Plane, Structure
 
 __all__ = ["Grid", "Point", "choose_grid", "plane_value"]
@@ -34,8 +35,11 @@ class Grid:
     witnesses: tuple[Point, ...]
 
 
-def plane_value(plane: Plane, point: Sequence[Rational]) -> Rational:
-    return sum((c * x for c, x in zip(plane[1:], point, strict=True)), Rational(plane[0]))
+def plane_value(plane: Plane, point: Sequence[Rational]) -> Number:
+    value: Number = ONE * plane[0]
+    for c, x in zip(plane[1:], point, strict=True):
+        value = value + c * x
+    return value
 
 
 def choose_grid(structures: Sequence[Structure], avoid: int = 1) -> Grid:
@@ -69,9 +73,9 @@ def _values(prime: int, even: bool) -> Iterator[Rational]:
                 yield Rational(-j, prime)
 
 
-def denominator_value(planes: Sequence[tuple[Plane, int]], point: Sequence[Rational]) -> Rational:
+def denominator_value(planes: Sequence[tuple[Plane, int]], point: Sequence[Rational]) -> Number:
     """The product of all linear factors at a point; zero only on a pole."""
-    value = ONE
+    value: Number = ONE
     for plane, times in planes:
-        value *= plane_value(plane, point) ** times
-    return value if value != 0 else ZERO
+        value = value * plane_value(plane, point) ** times
+    return value

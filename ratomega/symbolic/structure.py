@@ -25,14 +25,18 @@ from ratomega.case.affine import Affine
 from ratomega.case.case import Case
 from ratomega.diagrams.tuples import Charge
 from ratomega.errors import InputError
+from ratomega.exact.factored import Whole
 from ratomega.exact.path import Linear
-from ratomega.exact.quadratic import only_rational
-from ratomega.exact.rational import ONE, Rational, common_denominator
+from ratomega.exact.quadratic import Number, Quadratic, as_integer, rational_parts
+from ratomega.exact.rational import ONE, ZERO, Rational, common_denominator
 
 __all__ = ["Plane", "Structure", "even_symbols", "primes_of", "structure"]
 
-Plane = tuple[int, ...]
-"""A linear form c_0 + c_1 s_1 + ...: coprime integers, the first of c_1, c_2, ... that is not 0 positive."""
+Plane = tuple[Whole, ...]
+"""A linear form c_0 + c_1 s_1 + ...: coprime integers, the first of c_1, c_2, ... that is not 0 positive.
+
+Over a quadratic field the others may have two integer parts; coprime are then all parts together.
+"""
 
 
 @dataclass(frozen=True, slots=True)
@@ -69,7 +73,11 @@ def structure(case: Case, charge: Charge) -> Structure:
     poles = [sum(times for plane, times in planes.items() if plane[1 + s]) for s in range(len(case.symbols))]
     growth = [_growth(case, charge, symbol) for symbol in case.symbols]
     degrees = tuple(max(0, p + g) for p, g in zip(poles, growth, strict=True))
-    return Structure(tuple(sorted(planes.items())), degrees, even_symbols(case))
+    return Structure(tuple(sorted(planes.items(), key=_by_parts)), degrees, even_symbols(case))
+
+
+def _by_parts(one: tuple[Plane, int]) -> list[tuple[Rational, Rational]]:
+    return [(c.x, c.y) if isinstance(c, Quadratic) else (Rational(c), ZERO) for c in one[0]]
 
 
 def _differences(case: Case) -> Iterator[tuple[str, tuple[int, Affine]]]:
@@ -88,15 +96,26 @@ def _steps(charge: int) -> Iterator[tuple[int, int]]:
 
 
 def _plane(case: Case, form: Affine) -> Plane:
-    """The form at the limit point as coprime integers."""
+    """The form at the limit point in the normal form of a ``Plane``."""
     at_limit = [Linear(x.constant) for x in (case.background.eps1, case.background.eps2)]
-    numbers = [only_rational(Affine(form.constant, form.eps1, form.eps2).on(*at_limit).constant)]
-    numbers += [only_rational(form.coefficient(name)) for name in case.symbols]
-    scale = Rational(common_denominator(numbers))
-    whole = [int((x * scale).p) for x in numbers]
-    lead = next((x for x in whole[1:] if x), 1)
-    divisor = (math.gcd(*whole) or 1) * (1 if lead > 0 else -1)
-    return tuple(x // divisor for x in whole)
+    numbers: list[Number] = [Affine(form.constant, form.eps1, form.eps2).on(*at_limit).constant]
+    numbers += [form.coefficient(name) for name in case.symbols]
+    lead = next((x for x in numbers[1:] if x != 0), ONE)
+    if isinstance(lead, Quadratic):
+        numbers = [x / lead for x in numbers]
+        lead = ONE
+    parts = [part for x in numbers for part in rational_parts(x)]
+    scale = common_denominator(parts)
+    divisor = math.gcd(*(int((part * scale).p) for part in parts)) or 1
+    return tuple(_whole(x * Rational(scale if lead > 0 else -scale, divisor)) for x in numbers)
+
+
+def _whole(value: Number) -> Whole:
+    if isinstance(value, Quadratic):
+        return value
+    whole = as_integer(value)
+    assert whole is not None
+    return whole
 
 
 def _growth(case: Case, charge: Charge, symbol: str) -> int:
@@ -133,10 +152,12 @@ def primes_of(case: Case) -> int:
     backgrounds = (x for form in (case.background.eps1, case.background.eps2) for x in (form.constant, form.slope))
     parameters = [parameter for _, parameter in case.theory.parameters()]
     for x in (*backgrounds, *(x for parameter in parameters for x in parameter.numbers())):
-        result = math.lcm(result, int(only_rational(x).q))
+        result = math.lcm(result, *(int(part.q) for part in rational_parts(x)))
     for parameter in parameters:
         for _, x in parameter.symbols:
-            result = math.lcm(result, abs(int(only_rational(x).p)))
+            # A prime that does not divide the norm of a coefficient stays in the denominator of its product with j/p.
+            size = x.norm() if isinstance(x, Quadratic) else x
+            result = math.lcm(result, abs(int(size.p)))
     return result
 
 

@@ -13,15 +13,15 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from math import ceil, isfinite, log2
 
+from ratomega.chain.job import MOST_CONFIGURATIONS, CaseSource, Job
 from ratomega.diagrams.tuples import Charge, configurations
 from ratomega.errors import InputError
 from ratomega.exact.balls import Ball, ball_of, ball_sum, extrapolated, irrational_offset
 from ratomega.exact.quadratic import Number
 from ratomega.exact.rational import ZERO, Rational, as_rational
-from ratomega.job import MOST_CONFIGURATIONS, CaseSource, Job
 from ratomega.regulator.limits import charge_limit
 from ratomega.regulator.outcome import FiniteLimit
-from ratomega.results import Header
+from ratomega.results.header import Header
 
 __all__ = ["Approach", "ApproachCharge", "ApproachPoint", "approach", "checked_digits", "checked_offsets"]
 

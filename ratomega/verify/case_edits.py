@@ -25,13 +25,13 @@ EPS = Affine(eps1=ONE, eps2=ONE)
 
 Change = Callable[[Affine], Affine]
 
-MASS_CHANGES: tuple[tuple[str, Change], ...] = (
-    ("eps1 + eps2 - m", lambda m: EPS - m),
-    ("m + (eps1 + eps2)/2", lambda m: m + EPS.times(HALF)),
-    ("m - (eps1 + eps2)/2", lambda m: m - EPS.times(HALF)),
-    ("m + eps1 + eps2", lambda m: m + EPS),
-    ("m - eps1 - eps2", lambda m: m - EPS),
-    ("-m", lambda m: -m),
+MASS_CHANGES: tuple[tuple[str, Callable[[Affine, Affine], Affine]], ...] = (
+    ("eps1 + eps2 - m", lambda m, eps: eps - m),
+    ("m + (eps1 + eps2)/2", lambda m, eps: m + eps.times(HALF)),
+    ("m - (eps1 + eps2)/2", lambda m, eps: m - eps.times(HALF)),
+    ("m + eps1 + eps2", lambda m, eps: m + eps),
+    ("m - eps1 - eps2", lambda m, eps: m - eps),
+    ("-m", lambda m, _: -m),
 )
 COULOMB_CHANGES: tuple[tuple[str, Change], ...] = (
     ("2*a", lambda a: a.times(Rational(2))),
@@ -43,11 +43,16 @@ FLAVOURS = ("antifundamental", "fundamental")
 
 @dataclass(frozen=True, slots=True)
 class CaseEdit:
-    """One change in words, what it touches, and the change itself."""
+    """One change in words, what it touches, and the change itself.
+
+    ``typed`` is the same at the limit point with eps1 + eps2 as a number, which stays where it is at an offset; None
+    where there is no difference.
+    """
 
     words: str
     places: frozenset[str]
     apply: Callable[[Case], Case]
+    typed: Callable[[Case], Case] | None = None
 
 
 def case_edits(case: Case) -> Iterator[CaseEdit]:
@@ -55,29 +60,35 @@ def case_edits(case: Case) -> Iterator[CaseEdit]:
     masses = {where: value for where, value in case.theory.parameters() if ".coulomb" not in where}
     for text, change in MASS_CHANGES:
         for where in masses:
-            yield _edit(f"{_label(where, case)} m -> {text}{_other_name(where, text)}", {where}, change)
+            yield _mass_edit(case, f"{_label(where, case)} m -> {text}{_other_name(where, text)}", {where}, change)
     for text, change in MASS_CHANGES:
         for kind in (*FLAVOURS, "adjoint", "mass"):
             places = {where for where in masses if f".{kind}" in where}
             if len(places) > 1:
                 name = "bifundamental" if kind == "mass" else kind
-                yield _edit(f"every {name} mass m -> {text}", places, change)
+                yield _mass_edit(case, f"every {name} mass m -> {text}", places, change)
         flavours = {where for where in masses if any(f".{kind}" in where for kind in FLAVOURS)}
         if len({where.split(".")[1].split("[")[0] for where in flavours}) > 1:
-            yield _edit(f"every flavour mass m -> {text}", flavours, change)
-    for text, change in COULOMB_CHANGES:
+            yield _mass_edit(case, f"every flavour mass m -> {text}", flavours, change)
+    for text, scaled in COULOMB_CHANGES:
         places = {where for where, _ in case.theory.parameters() if ".coulomb" in where}
-        yield _edit(f"every Coulomb parameter a -> {text}", places, change)
+        yield _edit(f"every Coulomb parameter a -> {text}", places, scaled)
     yield CaseEdit("eps1, eps2 -> -eps1, -eps2", frozenset({"background"}), _negated)
     for number in range(len(case.theory.edges)):
         yield _reversed(case, number)
 
 
-def _edit(words: str, places: set[str], change: Change) -> CaseEdit:
-    def apply(case: Case) -> Case:
-        return replace(case, theory=_changed(case.theory, places, change))
+def _edit(words: str, places: set[str], change: Change, typed: Change | None = None) -> CaseEdit:
+    def by(change: Change) -> Callable[[Case], Case]:
+        return lambda case: replace(case, theory=_changed(case.theory, places, change))
 
-    return CaseEdit(words, frozenset(places), apply)
+    return CaseEdit(words, frozenset(places), by(change), None if typed is None else by(typed))
+
+
+def _mass_edit(case: Case, words: str, places: set[str], change: Callable[[Affine, Affine], Affine]) -> CaseEdit:
+    number = Affine(constant=case.background.eps1.constant + case.background.eps2.constant)
+    typed: Change | None = None if change(EPS, EPS) == change(EPS, number) else lambda m: change(m, number)
+    return _edit(words, places, lambda m: change(m, EPS), typed)
 
 
 def _label(where: str, case: Case) -> str:

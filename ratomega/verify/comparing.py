@@ -6,14 +6,14 @@ from dataclasses import dataclass, replace
 
 from ratomega.case.case import Case
 from ratomega.case.reading import CaseSource, load_case
+from ratomega.chain.job import MOST_CONFIGURATIONS, Job
+from ratomega.chain.pipeline import limit_result
 from ratomega.diagrams.tuples import Charge, configurations, count_all, count_configurations
 from ratomega.errors import InputError, Problem
 from ratomega.exact.quadratic import Number
 from ratomega.exact.rational import Rational
 from ratomega.exact.rational_function import RationalFunction
-from ratomega.job import MOST_CONFIGURATIONS, Job
-from ratomega.pipeline import limit_result
-from ratomega.results import Header
+from ratomega.results.header import Header
 from ratomega.verify.diagnosis import diagnose
 from ratomega.verify.explanation import Explanation
 from ratomega.verify.given import Given

@@ -19,6 +19,7 @@ from ratomega.verify.case_edits import CaseEdit, case_edits, changed_lines, theo
 from ratomega.verify.dropped_singular import omissions
 from ratomega.verify.explanation import Explanation, enough_evidence
 from ratomega.verify.fitting import fitted_number, number_words
+from ratomega.verify.offset import Direction, directions
 from ratomega.verify.question import Question
 from ratomega.verify.series import Series
 from ratomega.verify.series_edits import Family, SeriesEdit, families, fixed_edits, named_exponents
@@ -33,13 +34,18 @@ MOST_FIRST_CONFIGURATIONS = 30_000
 
 @dataclass(frozen=True, slots=True)
 class Variant:
-    """The case after some edits, with Z of its own; ``words`` has one entry an edit, ``others`` its other names."""
+    """The case after some edits, with Z of its own; ``words`` has one entry an edit, ``others`` its other names.
+
+    ``typed`` is the case with eps1 + eps2 in its edit as a number, where that is another one.
+    """
 
     words: tuple[str, ...]
     others: tuple[tuple[str, ...], ...]
     case: Case
     setting: Setting
     source: Source
+    omitted: bool = False
+    typed: Case | None = None
 
 
 class Variants:
@@ -52,6 +58,9 @@ class Variants:
         self._known: dict[tuple[object, ...], int] = {theory_key(question.setting): -1}
         self._singles: list[Variant] | None = None
         self._pairs: list[Variant] | None = None
+        self._twins: list[Variant] = []
+        # By identity: variants are kept as long as this is.
+        self._ways: dict[int, list[tuple[Case, list[Direction]]]] = {}
         # A row above charge 0 that costs least decides how many pairs can be afforded.
         first = next((row for row in question.rows if any(row.charge)), question.rows[0])
         configurations = count_configurations(question.setting.ranks, first.charge)
@@ -68,6 +77,11 @@ class Variants:
             self._singles = self._made([(edit,) for edit in self._edits])
         return self._singles
 
+    def twins(self) -> list[Variant]:
+        """Edits that are symmetries of the case, with eps1 + eps2 typed as a number: another theory at an offset."""
+        self.singles()
+        return self._twins
+
     def pairs(self) -> list[Variant]:
         """Two edits that touch different places."""
         if self._pairs is None:
@@ -82,6 +96,17 @@ class Variants:
             self._pairs = self._made(chosen[: self._most])
         return self._pairs
 
+    def ways(self, of: Variant) -> list[tuple[Case, list[Direction]]]:
+        """The directions of an offset, whose sums all questions share, for the case and for the typed one."""
+        if id(of) not in self._ways:
+            self._ways[id(of)] = []
+            for case in (of.case, *([] if of.typed is None else [of.typed])):
+                try:
+                    self._ways[id(of)].append((case, list(directions(case, own_setting(case)))))
+                except PathError:
+                    continue
+        return self._ways[id(of)]
+
     def _made(self, chosen: Sequence[tuple[CaseEdit, ...]]) -> list[Variant]:
         found: list[Variant] = []
         for edits in chosen:
@@ -95,15 +120,16 @@ class Variants:
             key = theory_key(setting)
             words = tuple(edit.words for edit in edits)
             place = self._known.get(key)
+            typed = edits[0].typed(self.case) if len(edits) == 1 and edits[0].typed else None
+            if place == -1 and typed is not None:
+                self._twins.append(Variant(words, (), typed, own_setting(typed), self._own.source))
             if place is None:
                 self._known[key] = len(found)
-                found.append(Variant(words, (), edited, setting, Source(setting)))
+                found.append(Variant(words, (), edited, setting, Source(setting), typed=typed))
             elif 0 <= place < len(found) and len(found[place].words) == len(words):
                 same = found[place]
                 if theory_key(same.setting) == key:
-                    found[place] = Variant(
-                        same.words, (*same.others, words), same.case, same.setting, same.source
-                    )
+                    found[place] = replace(same, others=(*same.others, words))
         return found
 
 
@@ -133,6 +159,11 @@ def pairs(question: Question, variants: Variants) -> Iterator[Explanation]:
             predicted = question.fit(variant.source.z, variant.setting)
             if predicted is not None:
                 yield _of_case(question, variant, predicted)
+        for variant in variants.singles():
+            for omitted in _omitted(variant):
+                predicted = question.fit(omitted.source.z, omitted.setting)
+                if predicted is not None:
+                    yield _of_case(question, omitted, predicted)
         for variant in [*variants.singles(), *_omitted(variants.own)]:
             for edit in fixed:
                 predicted = _fit_edits(question, variant, [edit])
@@ -149,9 +180,13 @@ def pairs(question: Question, variants: Variants) -> Iterator[Explanation]:
         yield from _fitted(question, variants.own, [edit], tried)
 
 
-def _omitted(own: Variant) -> list[Variant]:
+def _omitted(of: Variant) -> list[Variant]:
+    """The same with terms left out."""
     return [
-        Variant((omission.words,), (), own.case, own.setting, Source(own.setting, left_out=omission.left_out))
+        Variant(
+            (omission.words, *of.words), tuple((omission.words, *other) for other in of.others),
+            of.case, of.setting, Source(of.setting, left_out=omission.left_out), omitted=True,
+        )
         for omission in omissions()
     ]
 
@@ -169,9 +204,8 @@ def _fit_edits(question: Question, variant: Variant, edits: list[SeriesEdit]) ->
 def _fitted(question: Question, variant: Variant, edits: list[SeriesEdit], tried: int) -> Iterator[Explanation]:
     """Changes with one free number on top of others."""
     digits = question.digits
-    if len(digits) < 2:
-        # One number can always be fitted to one row.
-        return
+    # One number can always be fitted to one row, unless it is one that has a meaning.
+    alone = len(digits) < 2
     rows = {row.charge: row for row in question.rows}
     named = named_exponents(question.setting)
     z = _edited(variant.source.z, variant.setting, edits)
@@ -194,6 +228,8 @@ def _fitted(question: Question, variant: Variant, edits: list[SeriesEdit], tried
             continue
         if fit is None or (fit.value == -ONE and not family.factor and family.pivot is not None):
             # q -> -q has a name of its own.
+            continue
+        if alone and not fit.name:
             continue
         if fit.free and not enough_evidence(digits, fitted=1, tried=tried):
             continue
@@ -235,12 +271,15 @@ def _explanation(
 ) -> Explanation:
     tail = words[len(variant.words) :]
     equal = tuple((*other, *tail) for other in variant.others)
-    sentence = (
-        f"The numbers belong to another convention: {' and '.join(words)}; "
-        f"this gives all {len(question.rows)} rows, of which {len(question.deviating)} deviate without it."
-    )
+    if variant.omitted:
+        said = f"In the numbers {words[0]}, and they belong to another convention: {' and '.join(words[1:])}"
+    else:
+        said = f"The numbers belong to another convention: {' and '.join(words)}"
+    rows, deviate = len(question.rows), len(question.deviating)
+    sentence = f"{said}; this gives all {rows} rows, of which {deviate} deviate without it."
+    kind = "dropped-singular" if variant.omitted else "convention"
     return Explanation(
-        "convention", question.quantity.name, sentence,
+        kind, question.quantity.name, sentence,
         changes=words, edits=(*changed_lines(question.case, variant.case), *advice), equal=equal,
         charges=question.charges, length=len(words), predicted=predicted,
     )

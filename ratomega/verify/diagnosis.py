@@ -1,8 +1,9 @@
 """The diagnosis: hypotheses in the order of their simplicity, for every quantity that the numbers may be.
 
 First one change (an offset, terms left out, one change of convention), then one wrong entry or lost precision, then two
-changes. The first of these stages that explains the rows ends the search; everything that it found is given, what fits
-without a fitted number first. Explanations that predict the same numbers in every row are one, under several names.
+changes, last precision lost on top of another change. The first of these stages that explains the rows ends the search;
+everything that it found is given, what fits without a fitted number first. Explanations that predict the same numbers
+in every row are one, under several names.
 """
 
 from __future__ import annotations
@@ -11,13 +12,13 @@ from collections.abc import Iterable, Iterator, Sequence
 from dataclasses import replace
 
 from ratomega.exact.rational import Rational
+from ratomega.verify.combined import noisy_pairs, offset_pairs
 from ratomega.verify.convention import Variants, pairs, singles
 from ratomega.verify.dropped_singular import dropped
 from ratomega.verify.explanation import Explanation
 from ratomega.verify.offset import offsets
 from ratomega.verify.precision_loss import precision_loss
 from ratomega.verify.question import Question
-from ratomega.verify.series_edits import fixed_edits
 from ratomega.verify.single_entry import single_entry
 
 __all__ = ["diagnose"]
@@ -28,12 +29,12 @@ MOST_EXPLANATIONS = 8
 def diagnose(questions: Sequence[Question]) -> tuple[Explanation, ...]:
     """The explanations, the simplest first; the questions differ in the quantity alone. Never empty."""
     variants = Variants(questions[0])
-    for stage in (_one_change, _one_entry, _lost_precision, _two_changes):
-        found = _sorted(
-            (explanation for question in questions for explanation in stage(question, variants)), questions
-        )
-        if found:
-            return found
+    found: list[Explanation] = []
+    for stage in (_one_change, _one_entry, _lost_precision, pairs, offset_pairs, noisy_pairs):
+        found += [explanation for question in questions for explanation in stage(question, variants)]
+        # Two changes of convention with a number that was found may as well be an offset and one change.
+        if found and (stage is not pairs or any(not explanation.parameters for explanation in found)):
+            return _sorted(found, questions)
     return (_unexplained(questions[0], variants),)
 
 
@@ -51,13 +52,6 @@ def _one_entry(question: Question, _: Variants) -> Iterator[Explanation]:
 
 def _lost_precision(question: Question, _: Variants) -> Iterator[Explanation]:
     yield from precision_loss(question)
-
-
-def _two_changes(question: Question, variants: Variants) -> Iterator[Explanation]:
-    yield from pairs(question, variants)
-    for edit in fixed_edits(question.setting):
-        if edit.words.endswith("-> -q"):
-            yield from offsets(question, change=edit.apply, words=edit.words, tried=10)
 
 
 def _sorted(found: Iterable[Explanation], questions: Sequence[Question]) -> tuple[Explanation, ...]:

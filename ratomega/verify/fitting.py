@@ -41,8 +41,12 @@ def fitted_number(
     *,
     neutral: Rational,
     named: Mapping[Rational, str],
+    extra: Sequence[Rational] | None = None,
 ) -> Fit | None:
-    """The number with which ``build`` predicts all rows, None when there is none. ``pivot`` fixes it."""
+    """The number with which ``build`` predicts all rows, None when there is none. ``pivot`` fixes it.
+
+    ``extra`` is added to the tolerances: what another fitted number leaves open.
+    """
 
     def at(s: Rational) -> Rational | None:
         z, setting = build(s)
@@ -57,16 +61,19 @@ def fitted_number(
     low, high = value - uncertainty, value + uncertainty
     for known, name in named.items():
         if low <= known <= high:
-            predicted = question.fit(*build(known))
+            predicted = question.fit(*build(known), extra=extra)
             if predicted is not None:
                 return Fit(known, ZERO, name, False, 1.0, predicted)
     simple = simplest_between(low, high)
     resolved = _resolved(value, uncertainty) if uncertainty != 0 else 30
     if size(simple) + SHORTER_BY <= resolved:
-        predicted = question.fit(*build(simple))
+        predicted = question.fit(*build(simple), extra=extra)
         if predicted is not None:
             return Fit(simple, ZERO, "", False, size(simple), predicted)
-    predicted = question.fit(*build(value), extra=_sensitivity(question, build, value, uncertainty))
+    open_ = _sensitivity(question, build, value, uncertainty)
+    if extra is not None:
+        open_ = [a + b for a, b in zip(open_, extra, strict=True)]
+    predicted = question.fit(*build(value), extra=open_)
     return None if predicted is None else Fit(value, uncertainty, "", True, 0.0, predicted)
 
 

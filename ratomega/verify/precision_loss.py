@@ -9,26 +9,29 @@ over and over) most of it cancels again, down to u/delta. The most is added up f
 
 and the least is B_k delta^n. The working precision is that of a usual format. The offset comes from rows without
 singular weights where it shows, else from the growth of the error.
+
+On top of another change the rows must also gain, against the exact values, more digits than the choice among so many
+changes is worth.
 """
 
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from itertools import pairwise
 from math import floor, log10, sqrt
 
 from ratomega.diagrams.tuples import Charge, configurations
 from ratomega.exact.quadratic import only_rational
-from ratomega.exact.rational import ZERO, Rational, as_fraction, decimal_text
-from ratomega.verify.explanation import Explanation
+from ratomega.exact.rational import ONE, ZERO, Rational, as_fraction, decimal_text
+from ratomega.verify.explanation import LEAST_EVIDENCE, Explanation, evidence
 from ratomega.verify.given import Given
-from ratomega.verify.offset import Direction, directions, solved
+from ratomega.verify.offset import Change, Direction, directions, offset_at, short_decimals, solved
 from ratomega.verify.quantities import Quantity, noise_weights
 from ratomega.verify.question import Question
 from ratomega.verify.rows import real_value
-from ratomega.verify.series import below, minus
-from ratomega.verify.source import Source, moved
+from ratomega.verify.series import Series, below, minus
+from ratomega.verify.source import Source
 
 __all__ = ["Noise", "noise_profile", "precision_loss", "rounding", "singular_orders"]
 
@@ -57,6 +60,7 @@ class Noise:
     shows: tuple[Given, ...]
     misfit: float
     name: str = "double"
+    gained: float = 0.0
 
 
 @dataclass(frozen=True, slots=True)
@@ -115,12 +119,17 @@ def rounding(source: Source, quantity: Quantity, charge: Charge) -> float:
     return CLEAN * PRECISIONS["double"] * _typical(source, quantity, charge, {})
 
 
-def _typical(source: Source, quantity: Quantity, charge: Charge, known: dict[Charge, float]) -> float:
+def _typical(
+    source: Source, quantity: Quantity, charge: Charge, known: dict[Charge, float], change: Change | None = None
+) -> float:
     """The typical error of a coefficient of the quantity, in units of the working precision."""
-    reach = noise_weights(quantity, source.z, source.setting)
+    z: Series = source.z
+    reach = noise_weights(quantity, z if change is None else change(z, source.setting), source.setting)
     total = 0.0
     for j in below(charge):
         factor = real_value(reach(minus(charge, j)))
+        if change is not None:
+            factor = _through(change, reach, source, j, charge)
         if factor is None or factor == 0:
             continue
         if j not in known:
@@ -129,34 +138,61 @@ def _typical(source: Source, quantity: Quantity, charge: Charge, known: dict[Cha
     return total
 
 
-def precision_loss(question: Question) -> Iterator[Explanation]:
+def _through(change: Change, reach: Series, source: Source, j: Charge, charge: Charge) -> Rational | None:
+    """How an error of Z at charge j reaches the quantity through a change, which is linear in Z."""
+    response = change(lambda k: ONE if k == j else ZERO, source.setting)
+    return real_value(sum((response(i) * reach(minus(charge, i)) for i in below(charge)), start=ZERO))
+
+
+def precision_loss(
+    question: Question,
+    *,
+    change: Change | None = None,
+    words: tuple[str, ...] = (),
+    tried: int = 0,
+    way: Direction | None = None,
+) -> Iterator[Explanation]:
     """The best noise that explains all rows, if any does. Only rational cases are asked.
 
-    Where nothing cancels, noise of double precision on top of an offset makes it an offset.
+    Where nothing cancels, noise of double precision on top of an offset makes it an offset. On top of another change
+    there are ``words`` for it; ``change`` is what it does to Z, a change of the case is in the question. ``way`` is the
+    direction of the offset, the first one of the case by default.
     """
     if question.source.weights.radicand or len(question.deviating) < 2:
         return
     orders = singular_orders(question)
-    direction = next(directions(question))
+    direction = next(directions(question.case, question.setting)) if way is None else way
     found: list[Noise] = []
-    for delta, uncertainty in _deltas(question, direction, orders):
-        noise = _noise(question, direction, delta, uncertainty, orders)
-        if noise is not None:
+    for delta, uncertainty in _deltas(question, direction, orders, change, shortened=bool(words)):
+        noise = _noise(question, direction, delta, uncertainty, orders, change)
+        if noise is not None and (not words or noise.gained >= LEAST_EVIDENCE + log10(tried)):
             found.append(noise)
             if noise.shows:
                 break
     if found:
-        yield _explanation(question, direction, min(found, key=lambda one: one.misfit), orders)
+        yield _explanation(question, direction, min(found, key=lambda one: one.misfit), orders, words)
 
 
 def _deltas(
-    question: Question, direction: Direction, orders: dict[Charge, int]
+    question: Question,
+    direction: Direction,
+    orders: dict[Charge, int],
+    change: Change | None,
+    *,
+    shortened: bool,
 ) -> Iterator[tuple[Rational, Rational]]:
-    """Offsets from the rows without singular weights, lowest charges first; else a grid of powers of ten."""
+    """Offsets from the rows without singular weights, lowest charges first; else a grid of powers of ten.
+
+    ``shortened``: a decimal of one digit or two that a row allows comes before what it says, as exactly known.
+    """
     clean = [row for row in question.deviating if orders[row.charge] == 0]
     for row in sorted(clean, key=lambda one: sum(one.charge))[:MOST_PIVOTS]:
-        solution = solved(question, direction, row)
+        solution = solved(question, direction, row, change)
         if solution is not None:
+            if shortened:
+                # Rounding moves a row by more than its last digits say.
+                near = short_decimals(solution[0], solution[1] * int(CLEAN))
+                yield from ((short, ZERO) for _, short in near)
             yield solution
     if not clean:
         for delta in GRID:
@@ -164,11 +200,17 @@ def _deltas(
 
 
 def _noise(
-    question: Question, direction: Direction, delta: Rational, uncertainty: Rational, orders: dict[Charge, int]
+    question: Question,
+    direction: Direction,
+    delta: Rational,
+    uncertainty: Rational,
+    orders: dict[Charge, int],
+    change: Change | None,
 ) -> Noise | None:
     """Do all rows agree with the sum at this offset and noise of one precision? None when they do not."""
-    source = Source(moved(direction.setting, delta))
-    near = question.quantity.of(source.z, source.setting)
+    source = direction.at(delta)
+    near = question.quantity.of(*offset_at(direction, delta, change))
+    rests: list[float] = []
     profile: dict[Charge, float] = {}
     noisy: list[_Noisy] = []
     quiet: list[tuple[Given, float]] = []
@@ -178,20 +220,33 @@ def _noise(
         if value is None:
             return None
         rest, order = abs(row.value - value), orders[row.charge]
+        rests.append(_float(max(rest, row.tolerance)))
         if order == 0:
             allowed = _float(row.tolerance)
             if _float(rest) > allowed and row.digits is not None and row.digits >= LEAST_DIGITS:
-                allowed += CLEAN * PRECISIONS["double"] * _typical(source, question.quantity, row.charge, profile)
+                typical = _typical(source, question.quantity, row.charge, profile, change)
+                allowed += CLEAN * PRECISIONS["double"] * typical
             if _float(rest) > allowed:
                 return None
             clean.append(row)
             continue
-        most = _typical(source, question.quantity, row.charge, profile)
+        most = _typical(source, question.quantity, row.charge, profile, change)
         if rest > row.tolerance:
             noisy.append(_Noisy(row, _float(rest), most, most * abs(_float(delta)) ** order, order))
         else:
             quiet.append((row, most * abs(_float(delta)) ** order))
-    return _judged(question, delta, uncertainty, noisy, quiet, clean)
+    noise = _judged(question, delta, uncertainty, noisy, quiet, clean)
+    return noise and replace(noise, gained=_gained(question, rests, fitted=int(uncertainty != 0)))
+
+
+def _gained(question: Question, rests: list[float], *, fitted: int) -> float:
+    """By how many digits the rows are nearer to the prediction than to the exact values, the best row where delta was
+    fitted to it left out."""
+    digits = sorted(
+        log10(max(_float(abs(row.value - exact)), rest) / max(rest, 1e-300))
+        for row, exact, rest in zip(question.rows, question.exact, rests, strict=True)
+    )
+    return sum(digits[: len(digits) - fitted])
 
 
 def _judged(
@@ -215,7 +270,7 @@ def _judged(
         top = max(tops)
         low = sum(1 for one in noisy if log10(one.rest / one.least) < level - LEAST_SPREAD)
         lucky = sum(1 for row, least in quiet if least * u > 10**SPREAD * max(_float(row.tolerance), 1e-300))
-        if top - level > SPREAD or low + lucky > 1:
+        if top - level > SPREAD or low + lucky > 1 or any(_too_good(row, u) for row in clean):
             continue
         # Without a row that shows the offset itself, or with an unusual precision, the growth must be clear.
         plain = visible and name == "double" and _clearly(question, visible)
@@ -225,10 +280,15 @@ def _judged(
     return None
 
 
+def _too_good(row: Given, u: float) -> bool:
+    """Is a row that has to agree given to more digits than this precision has?"""
+    return any(row.charge) and bool(row.value != 0) and _float(row.tolerance) < u / 10 * _float(abs(row.value))
+
+
 def _clearly(question: Question, rows: tuple[Given, ...]) -> bool:
-    """Does one of these rows deviate by a digit more than what was given allows?"""
+    """Do these rows together deviate by a digit more than what was given allows?"""
     exact = {row.charge: value for row, value in zip(question.rows, question.exact, strict=True)}
-    return any(abs(row.value - exact[row.charge]) >= 10 * row.tolerance for row in rows)
+    return sum(evidence(rows, [exact[row.charge] for row in rows])) >= LEAST_EVIDENCE
 
 
 def _grows(question: Question, noisy: list[_Noisy]) -> bool:
@@ -244,20 +304,21 @@ def _grows(question: Question, noisy: list[_Noisy]) -> bool:
 
 
 def _explanation(
-    question: Question, direction: Direction, noise: Noise, orders: dict[Charge, int]
+    question: Question, direction: Direction, noise: Noise, orders: dict[Charge, int], words: tuple[str, ...]
 ) -> Explanation:
     digits = floor(-log10(noise.precision) + 0.5)
     about = "about " if noise.uncertainty == 0 else ""
     change = direction.words.format(f"{about}{decimal_text(noise.delta, 3)}")
     parameters = (("offset", decimal_text(noise.delta, 6)), ("digits", str(digits)))
+    also = f", and {' and '.join(words)}" if words else ""
     if not noise.noisy:
         sentence = (
-            f"The numbers were taken at an offset: {change}; the exact sum there gives all {len(question.rows)} rows "
-            "but for the rounding of double precision."
+            f"The numbers were taken at an offset: {change}{also}; the exact sum there gives all {len(question.rows)} "
+            "rows but for the rounding of double precision."
         )
         return Explanation(
-            "offset", question.quantity.name, sentence, changes=(change,), parameters=parameters,
-            charges=question.charges, fitted=1,
+            "offset", question.quantity.name, sentence, changes=(change, *words), parameters=parameters,
+            charges=question.charges, length=1 + len(words), fitted=1,
         )
     losses = ", ".join(
         f"{orders[row.charge]} at charge {','.join(str(k) for k in row.charge)}" for row in noise.noisy
@@ -270,7 +331,9 @@ def _explanation(
     if shown:
         rows = "the row without singular weights shows" if shown == 1 else f"{shown} rows without singular weights show"
         sentence += f"; {rows} the offset itself"
+    if words:
+        sentence += f"; on top of it {' and '.join(words)}"
     return Explanation(
-        "precision-loss", question.quantity.name, f"{sentence}.", changes=(change,), parameters=parameters,
-        charges=question.charges, fitted=1,
+        "precision-loss", question.quantity.name, f"{sentence}.", changes=(change, *words), parameters=parameters,
+        charges=question.charges, length=1 + len(words), fitted=1,
     )

@@ -64,6 +64,16 @@ def test_a_report_opens_at_every_width_and_in_every_light(chromium, page, width,
     assert (ink > paper + 300) if dark else (paper > ink + 300)
 
 
+@pytest.mark.parametrize("width", WIDTHS)
+def test_no_table_is_wider_than_the_column_it_stands_in(chromium, page, width):
+    chromium.view(width)
+    chromium.open(page.as_uri())
+    wide = "return [...document.querySelectorAll('main table')].filter(e => !e.closest('.sheet') && {}).length"
+    assert chromium.run(wide.format("true")) >= 1
+    edge = "e.getBoundingClientRect().right > e.parentElement.getBoundingClientRect().right + 1"
+    assert chromium.run(wide.format(edge)) == 0
+
+
 def test_marked_boxes_are_filled(chromium, page):
     chromium.view(1400)
     chromium.open(page.as_uri())

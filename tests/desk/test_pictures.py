@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import re
+from itertools import pairwise
 
 import plain
 import pytest
@@ -116,6 +117,43 @@ def test_an_approach_takes_numbers_of_any_size():
     for bad in (([], [], []), (["1e-2"], ["x"], [0]), ([0], [1], [1]), (["1e-2"], ["nan"], [0]), ([1, 2], [1], [1])):
         with pytest.raises(ratomega.InputError):
             ApproachCurve.make("x", *bad)
+
+
+def keys_and_dashes(tree):
+    """The names of the curves, and how each of them is drawn."""
+    samples = [(e.get("stroke"), e.get("stroke-dasharray")) for e in tree.iter() if "sample" in e.get("class", "")]
+    return [e.text for e in tree.iter() if e.get("class") == "key"], samples
+
+
+def test_five_curves_are_told_apart_and_their_names_stand_above_all_points():
+    rows = ["1e-2", "1e-8"], ["3e-2", "1e7"], ["1e-30", "1e5"]
+    tree = well_formed(approach_chart([ApproachCurve.make(f"charge {n}", *rows) for n in range(5)]).svg().text)
+    names, samples = keys_and_dashes(tree)
+    assert names == [f"charge {n}" for n in range(5)]
+    assert len(set(samples)) == 5
+    dots = [float(e.get("cy") or e.get("y")) for e in tree.iter() if e.get("class", "").endswith(" dot")]
+    keys = [float(e.get("y")) for e in tree.iter() if e.get("class") == "key"]
+    # Five dots belong to the names.
+    assert max(keys) < sorted(dots)[5]
+
+
+def test_the_ratios_of_an_atlas_are_written_below_it_and_do_not_run_into_each_other():
+    for case, wanted in (({"ranks": 2, "charge": 4}, {"1/3", "1/2", "1", "2", "3"}), ("u2-pure", {"1/7", "7", "3/2"}),
+                         ({"ranks": 1, "charge": 30}, {"1"}), ("u2-ratio-two-thirds", {"2/3"})):
+        found = ratomega.atlas(case) if isinstance(case, str) else ratomega.atlas(**case)
+        tree = well_formed(atlas_chart(stems_of(found)).svg().text)
+        below = [e for e in tree.iter() if e.get("class") == "tick" and e.get("text-anchor") == "middle"]
+        assert wanted <= {e.text for e in below}
+        spans = sorted((float(e.get("x")), len(e.text) * 0.6 * float(e.get("font-size"))) for e in below)
+        assert all(x + wide / 2 <= y - other / 2 for (x, wide), (y, other) in pairwise(spans))
+
+
+def test_letters_in_a_cluster_are_large_enough_to_be_read():
+    cluster = ratomega.detect("three-nodes")[(0, 2, 0)].clusters[0]
+    sizes = [float(e.get("font-size")) for e in well_formed(cluster_picture(cluster).svg().text).iter() if
+             e.get("class") in ("colour", "name", "number")]
+    assert len(sizes) > 8
+    assert min(sizes) >= 10
 
 
 def test_draw_takes_configurations_and_says_what_is_none():

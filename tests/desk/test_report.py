@@ -107,7 +107,10 @@ def test_every_kind_of_case_has_a_page(name):
         shown = c.value if c.value is not None else c.leading if c.leading is not None else c.values[0].value
         assert str(shown) in page.text
         assert all(number_text(v.value) in page.text for v in c.values)
-    assert bool(made.notes) == (name == "vacuum-degenerate")
+    # No section is missing without a word.
+    said = {"vacuum-degenerate": ["singular configurations, clusters, pole orders", "approach"],
+            "free-momentum": ["approach"]}
+    assert [note.split(":")[0] for note in made.notes] == said.get(name, [])
     assert all(note in page.text for note in made.notes)
 
 
@@ -161,7 +164,7 @@ def test_the_command_writes_the_page_and_names_itself(tmp_path, monkeypatch, cap
     assert run("report", "vacuum-degenerate", "--charge", "1", "-o", "v.html", "--json") == 0
     document = json.loads(capsys.readouterr().out)
     assert document["file"] == "v.html"
-    assert len(document["left_out"]) == 1
+    assert len(document["left_out"]) == 2
 
 
 def test_what_cannot_be_written_or_read_is_said(tmp_path, monkeypatch, capsys):
@@ -172,3 +175,19 @@ def test_what_cannot_be_written_or_read_is_said(tmp_path, monkeypatch, capsys):
         ratomega.report("no-such-case")
     with pytest.raises(ratomega.InputError, match="is not a depth"):
         ratomega.report("u1-pure", depth="deep")
+
+
+def test_a_value_that_a_decimal_holds_is_not_called_near():
+    """Z = exp(-q/4): -1/4 is -0.25, 1/32 is 0.03125, and -1/384 has no end."""
+    case = {"charge": 3, "background": {"eps1": 2, "eps2": -2}, "node": [{"coulomb": ["0"]}]}
+    text = check_page(ratomega.report(case).html).text
+    assert "= -0.25" in text
+    assert "= 0.03125" in text
+    assert "≈ -0.0026041" in text
+
+
+def test_empty_diagrams_are_not_a_minus_sign():
+    text = check_page(ratomega.report("surviving-pole").html).text
+    assert "∅ (1): order 1" in text
+    assert "- (1): order 1" not in text
+    assert "pole t⁻¹" in text

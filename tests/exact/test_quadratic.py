@@ -52,6 +52,26 @@ def test_the_four_operations_against_sympy(both):
         assert sympy.expand(sym(a / b) * sym(b) - sym(a)) == 0
 
 
+@pytest.mark.parametrize(
+    "text",
+    ["i", "-i", "i/2", "-2*i/3", "1+2*i/3", "1 - sqrt(21)/7", "-3/2*sqrt(-3)/5", "1.5*i + 2", "i - 1/3", " 2 * i / 3 "],
+)
+def test_numbers_as_text(text):
+    assert sympy.expand(sym(as_number(text)) - sympy.sympify(text.replace("i", "I"), rational=True)) == 0
+
+
+@pytest.mark.parametrize(
+    "text",
+    ["1i", "i i", "i*2", "ii", "hi", "i/2/3", "1 +", "-+i", "3 4*i", "i/0", "1/i", "2*3 + i", "1e3*i", "sqrt(2) + i",
+     "sqrt(8)", "sqrt(1)", "sqrt()", "sqrt(-1", "\u0663*i", "1" * 3000 + "*i", "sqrt(99999999999999)"],
+)  # fmt: skip
+def test_what_is_no_number(text):
+    with pytest.raises(InputError) as caught:
+        as_number(text, "a")
+    assert caught.value.problems[0].where == "a"
+    assert len(caught.value.problems[0].message) < 200
+
+
 @settings(**TIMES)
 @given(pairs(), small, st.integers(-5, 5))
 def test_rationals_and_integers_on_either_side(both, x, n):

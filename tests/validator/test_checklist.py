@@ -8,8 +8,8 @@ import pytest
 from building import make_case
 
 import ratomega
-from ratomega.job import Job
-from ratomega.pipeline import validate_checks
+from ratomega.chain.job import Job
+from ratomega.chain.pipeline import validate_checks
 from ratomega.validator import checklist
 from ratomega.validator.depth import DEPTHS, FULL, Depth, depth_of
 from ratomega.validator.finiteness import CANCELLATION, FORESIGHT, ORDERS, PATHS

@@ -12,8 +12,8 @@ import pytest
 from building import make_case
 
 import ratomega
-from ratomega import job
 from ratomega.case.setting import own_setting, probe_setting
+from ratomega.chain import job
 from ratomega.conformal import dressing as gram_dressing
 from ratomega.regulator import limits, routes
 from ratomega.regulator.poles import dressing as pole_dressing

@@ -20,11 +20,11 @@ from irreducible import block
 
 import ratomega.weights
 from ratomega.case.setting import NodeSetting, Setting, own_setting
+from ratomega.chain.job import Job
 from ratomega.conformal.minimal import MinimalModel, minimal_point
 from ratomega.detector.zeros import scan
 from ratomega.exact.path import Linear
 from ratomega.exact.rational import Rational, as_fraction
-from ratomega.job import Job
 from ratomega.regulator.direct import direct_total
 from ratomega.regulator.outcome import FiniteLimit, Independence
 from ratomega.validator.burge import check_burge_pairs, check_burge_sum, expected_counts, is_burge_pair

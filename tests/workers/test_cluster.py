@@ -7,9 +7,9 @@ import pytest
 from building import make_case
 
 import ratomega
+from ratomega.chain.job import Job
+from ratomega.chain.pipeline import limit_result
 from ratomega.errors import InputError
-from ratomega.job import Job
-from ratomega.pipeline import limit_result
 from ratomega.regulator import routes
 from ratomega.workers import charges, primes
 from ratomega.workers.cluster import cluster_hands

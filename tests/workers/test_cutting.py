@@ -14,10 +14,10 @@ from building import make_case
 from census import census
 
 import ratomega
+from ratomega.chain.job import Job
 from ratomega.diagrams.tuples import count_configurations
 from ratomega.errors import InputError, PathError, Problem, WorkerError
 from ratomega.exact.laurent import Laurent
-from ratomega.job import Job
 from ratomega.regulator.direct import ChargeSum, ClusterSum, direct_sum, merged
 from ratomega.weights import Weights
 from ratomega.workers import charges

@@ -19,11 +19,11 @@ from flint import fmpq
 
 import ratomega
 from ratomega.case.setting import own_setting
+from ratomega.chain.job import Job
+from ratomega.chain.pipeline import limit_result
 from ratomega.errors import RatomegaError, WorkerError
 from ratomega.exact.batches import Batch, ResidueStream, computed, here
 from ratomega.exact.residues import Moduli, PrimeSource, residues_of
-from ratomega.job import Job
-from ratomega.pipeline import limit_result
 from ratomega.regulator import routes
 from ratomega.regulator.fast.sums import fast_sum, prepare
 from ratomega.regulator.poles.problem import case_problem

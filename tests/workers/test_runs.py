@@ -18,10 +18,10 @@ from building import make_case
 
 import ratomega
 from ratomega.case.reading import case_to_mapping
+from ratomega.chain.job import Job
+from ratomega.chain.pipeline import limit_result
 from ratomega.cli.main import main
 from ratomega.desk.text import limit_text
-from ratomega.job import Job
-from ratomega.pipeline import limit_result
 from ratomega.workers import charges
 
 CASE = make_case("1", "1", [{"coulomb": ["1", "-1"], "antifundamental": ["1/2"]}], charge=5)

@@ -14,9 +14,9 @@ import pytest
 from building import make_case
 
 import ratomega
+from ratomega.chain.job import Job
+from ratomega.chain.pipeline import limit_result
 from ratomega.cli.main import main
-from ratomega.job import Job
-from ratomega.pipeline import limit_result
 from ratomega.regulator import routes
 from ratomega.workers import primes
 

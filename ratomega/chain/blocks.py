@@ -9,11 +9,11 @@ import os
 from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass
 
-from ratomega.block_results import BlockCoefficient, BlockResult, Dictionary, FieldEntry
 from ratomega.case.case import Case
 from ratomega.case.conformal import HIGHEST_ORDER, PLACES, ConformalCase, checked_order, gauge_case
 from ratomega.case.reading import load_case_as_written
 from ratomega.case.setting import own_setting, probe_setting
+from ratomega.chain.pipeline import limit
 from ratomega.conformal.correlator import (
     Correlator,
     further_correlator,
@@ -30,8 +30,8 @@ from ratomega.errors import InputError
 from ratomega.exact.laurent import Laurent
 from ratomega.exact.quadratic import Number, is_quadratic, number_text, one_field, only_rational, rational_parts
 from ratomega.exact.rational import ONE, ZERO
-from ratomega.pipeline import limit
 from ratomega.regulator.outcome import FiniteLimit, Outcome, PathDependent, Pole, judge, leading
+from ratomega.results.blocks import BlockCoefficient, BlockResult, Dictionary, FieldEntry
 from ratomega.validator.blocks import (
     GRAM,
     RECURSION,

@@ -13,6 +13,7 @@ from ratomega.case.affine import Affine
 from ratomega.case.case import Case
 from ratomega.case.expression import INNER
 from ratomega.case.setting import own_setting
+from ratomega.chain.job import check_count
 from ratomega.conformal.dictionary import gauge_path, why_not_covered
 from ratomega.conformal.gauge_sum import gauge_coefficients
 from ratomega.detector.accidents import check_path, dead_colours
@@ -20,13 +21,13 @@ from ratomega.errors import InputError, PathError
 from ratomega.exact.path import SMALL_PARAMETERS
 from ratomega.exact.quadratic import Number, number_text, only_rational
 from ratomega.exact.rational import ZERO, Rational
-from ratomega.job import check_count
 from ratomega.regulator.limits import charge_limit
 from ratomega.regulator.nested import BELOW, NestedLimit, NestedLimits, nested_limits
 from ratomega.regulator.outcome import Independence
 from ratomega.regulator.poles.problem import applies, case_problem
 from ratomega.regulator.poles.recursion import pole_coefficients
-from ratomega.results import Coefficient, Header, LimitResult, PathRecord, RouteRecord
+from ratomega.results.header import Header, PathRecord
+from ratomega.results.limits import Coefficient, LimitResult, RouteRecord
 from ratomega.validator.finiteness import CANCELLATION, charge_text, reach_text
 from ratomega.validator.verdict import Check, Kind, Verdict
 from ratomega.validator.virasoro import GRAM_NAME, GRAM_SOURCE, MOST_LEVEL, deepest_level

@@ -16,6 +16,7 @@ from ratomega.case.affine import Affine
 from ratomega.case.case import Case
 from ratomega.case.reading import load_case
 from ratomega.case.setting import MOST_PROBES, Setting, own_setting, probe_setting
+from ratomega.chain.reports import charge_report
 from ratomega.detector.accidents import check_path, dead_colours, frozen_number_warnings
 from ratomega.detector.geometry import compact_by_parameters
 from ratomega.diagrams.tuples import Charge, count_all
@@ -26,8 +27,8 @@ from ratomega.exact.quadratic import Number
 from ratomega.exact.rational import ZERO
 from ratomega.regulator.limits import ChargeLimit, charge_limit
 from ratomega.regulator.routes import ShortCut, Way, choose, point_values, short_cut
-from ratomega.reports import charge_report
-from ratomega.results import ChargeReport, Header, PathRecord
+from ratomega.results.detections import ChargeReport
+from ratomega.results.header import Header, PathRecord
 from ratomega.symbolic.functions import Functions, SymbolicLimit
 from ratomega.version import VERSION
 from ratomega.weights import Weights

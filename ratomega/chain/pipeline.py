@@ -14,24 +14,19 @@ from typing import TYPE_CHECKING
 
 from ratomega.case.case import Case
 from ratomega.case.reading import load_case
+from ratomega.chain.job import MOST_CONFIGURATIONS, CaseSource, Found, Job, ShortLimit
+from ratomega.chain.nesting import nested_checks, nested_result, refuse_other_ways
 from ratomega.detector.clusters import cluster_graph, find_clusters
 from ratomega.detector.zeros import scan
 from ratomega.diagrams.tuples import Charge
 from ratomega.exact.quadratic import Number
 from ratomega.exact.rational_function import RationalFunction
-from ratomega.job import MOST_CONFIGURATIONS, CaseSource, Found, Job, ShortLimit
-from ratomega.nesting import nested_checks, nested_result, refuse_other_ways
 from ratomega.regulator.limits import ChargeLimit
 from ratomega.regulator.outcome import FiniteLimit, Independence, PathDependent, Pole
 from ratomega.regulator.routes import Way
-from ratomega.results import (
-    ChargeReport,
-    Coefficient,
-    DetectResult,
-    LimitResult,
-    RouteRecord,
-    ValidateResult,
-)
+from ratomega.results.detections import ChargeReport, DetectResult
+from ratomega.results.limits import Coefficient, LimitResult, RouteRecord
+from ratomega.results.validations import ValidateResult
 from ratomega.symbolic.certificate import check_functions
 from ratomega.symbolic.functions import SymbolicLimit
 from ratomega.validator.checklist import Depth, depth_of, first_checks, outside_checks

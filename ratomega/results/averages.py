@@ -7,7 +7,7 @@ from dataclasses import dataclass
 
 from ratomega.averages.limits import AverageLimit
 from ratomega.diagrams.tuples import Charge
-from ratomega.results import Header
+from ratomega.results.header import Header
 
 __all__ = ["Average", "AverageResult"]
 

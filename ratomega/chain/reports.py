@@ -6,7 +6,7 @@ from ratomega.detector.clusters import Cluster, cluster_graph, find_clusters, ta
 from ratomega.detector.poincare import poincare_polynomial
 from ratomega.detector.zeros import Zeros, guilty_factors, scan
 from ratomega.diagrams.tuples import Charge, Configuration
-from ratomega.results import ChargeReport, ClusterReport, Exchange, FactorReport, SingularReport
+from ratomega.results.detections import ChargeReport, ClusterReport, Exchange, FactorReport, SingularReport
 from ratomega.weights import Factor, Weights
 
 __all__ = ["charge_report"]

@@ -8,14 +8,14 @@ from __future__ import annotations
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 
-from ratomega.average_results import Average, AverageResult
 from ratomega.averages.limits import KINDS, AverageLimit, Wanted, average_limits, behaviour
 from ratomega.case.wording import quoted
+from ratomega.chain.job import MOST_CONFIGURATIONS, CaseSource, Job
+from ratomega.chain.pipeline import DEFAULT_PROBES, Watcher
 from ratomega.detector.geometry import compact_by_parameters
 from ratomega.diagrams.tuples import Charge
 from ratomega.errors import InputError
-from ratomega.job import MOST_CONFIGURATIONS, CaseSource, Job
-from ratomega.pipeline import DEFAULT_PROBES, Watcher
+from ratomega.results.averages import Average, AverageResult
 
 __all__ = ["DEFAULT_POWERS", "MOST_POWERS", "ChargeAverages", "average", "average_result", "averages_of", "wanted_of"]
 

@@ -16,6 +16,8 @@ from ratomega.case.case import Case
 from ratomega.case.progression import Axes, Counting, points_of, read_axes, read_counting
 from ratomega.case.reading import load_case
 from ratomega.case.setting import Setting, own_setting, resonances
+from ratomega.chain.job import MOST_CONFIGURATIONS, CaseSource, check_count, symbolic_path
+from ratomega.chain.pipeline import limit
 from ratomega.conformal.correlator import why_no_fields
 from ratomega.conformal.nome import nome_matrix, nome_variable
 from ratomega.diagrams.tuples import Charge, count_all
@@ -34,12 +36,10 @@ from ratomega.exact.point_function import PointFunction
 from ratomega.exact.quadratic import Number, is_quadratic, one_field, rational_parts
 from ratomega.exact.rational import ONE, ZERO, Rational
 from ratomega.exact.rational_function import RationalFunction
-from ratomega.grid_results import GridResult, GridRow
-from ratomega.job import MOST_CONFIGURATIONS, CaseSource, check_count, symbolic_path
-from ratomega.pipeline import limit
 from ratomega.regulator.poles.problem import applies as poles_apply
 from ratomega.regulator.routes import CLUSTERWISE, HIGHEST_POLE_CHARGE
-from ratomega.results import Header
+from ratomega.results.grids import GridResult, GridRow
+from ratomega.results.header import Header
 from ratomega.symbolic.grid import choose_grid
 from ratomega.symbolic.structure import Structure, primes_of, structure
 from ratomega.validator.verdict import Check, Kind, Verdict
@@ -126,7 +126,8 @@ def grid(
         check_count(case, most_configurations)
     shapes = tuple(structure(case, charge) for charge in _highest(case))
     _check_digits(case, axes, shapes, digits, counting)
-    points = tuple(points_of(axes, case.symbols))
+    numbers = [x for _, parameter in case.theory.parameters() for x in parameter.numbers()]
+    points = tuple(points_of(axes, case.symbols, numbers))
     asked = _Asked(case, points, shapes, nome, digits, counting, allow_tilt, most_configurations)
     setting = own_setting(asked.at(asked.generic), allow_tilt=allow_tilt)
     reason = why_no_fields(setting) if nome else ""

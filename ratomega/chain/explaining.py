@@ -10,12 +10,13 @@ from dataclasses import dataclass
 
 from ratomega.case.case import Case
 from ratomega.case.setting import resonances
+from ratomega.chain.job import MOST_CONFIGURATIONS, CaseSource, Job
 from ratomega.detector.accidents import dead_colours, frozen_number_warnings
 from ratomega.detector.geometry import resonance_text
 from ratomega.detector.poincare import polynomial_text
 from ratomega.diagrams.tuples import Charge, Configuration, count_all
-from ratomega.job import MOST_CONFIGURATIONS, CaseSource, Job
-from ratomega.results import ChargeReport, ClusterReport, Header
+from ratomega.results.detections import ChargeReport, ClusterReport
+from ratomega.results.header import Header
 
 __all__ = ["Explanation", "Paragraph", "explain"]
 

@@ -9,7 +9,7 @@ from ratomega.case.progression import Axes, Counting
 from ratomega.diagrams.tuples import Charge
 from ratomega.exact.decimals import Decimals, decimals
 from ratomega.exact.quadratic import Number
-from ratomega.results import Header
+from ratomega.results.header import Header
 from ratomega.validator.verdict import Check, Verdict
 
 __all__ = ["GridResult", "GridRow"]
