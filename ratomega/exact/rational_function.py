@@ -220,10 +220,15 @@ class RationalFunction:
         return field_factors(self.numerator, self._second(), self.denominator, self.radicand)
 
     def degree(self, symbol: str) -> int:
-        """The degree of the numerator less that of the denominator: the growth at infinity."""
+        """The degree of the numerator less that of the denominator: the growth at infinity; -1 for the zero function.
+        """
         place = self._place(symbol)
         top = max(int(part.degrees()[place]) for part in (self.numerator, self._second()))
         return top - int(self.denominator.degrees()[place])
+
+    def is_polynomial(self) -> bool:
+        """No symbol is left in the denominator."""
+        return bool(self.denominator.is_constant())
 
     def _place(self, symbol: str | None) -> int:
         if symbol is None:
