@@ -328,7 +328,7 @@ def test_where_symbols_may_stand(change, said):
 def test_what_has_no_limit_as_a_function_is_refused():
     case = u2(coulomb=("a + 2", "a"))
     assert any("whatever the symbols are" in message for _, message in problems(lambda: ratomega.limit(case)))
-    large = u2(antifundamental=FLAVOURS, charge=6)
+    large = u2(coulomb=("a", "1/5"), antifundamental=FLAVOURS, charge=6)
     found = problems(lambda: ratomega.limit(large, most_configurations=500))
     assert any("configurations times points" in message for _, message in found)
     assert any("no symbol" in message for _, message in problems(lambda: u2().at(b=1)))
