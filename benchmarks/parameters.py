@@ -10,6 +10,9 @@ from typing import Any
 
 import ratomega
 from benchmarks.measure import Pace, Report, Row, in_turn
+from ratomega.regulator.routes import point_values
+from ratomega.symbolic.by_poles import pole_way
+from ratomega.symbolic.functions import Functions
 
 QUESTION = "coefficients as functions of free parameters, against numbers at one point"
 POINT = {"a": "3/11", "m": "2/7"}
@@ -52,6 +55,25 @@ def ask(pace: Pace, report: Report) -> None:
             headline=True,
         )
         report.row(row)
+        if pole_way(functions) is not None:
+            ways(report, functions, f"{name}, ratio {ratio}", bound)
+
+
+def ways(report: Report, case: ratomega.Case, name: str, charge: int) -> None:
+    """The two ways to the functions, each with its two limits that confirm them."""
+    recursion, interpolation = (partial(_functions, case, interpolate) for interpolate in (False, True))
+    found = in_turn({"recursion": recursion, "interpolation": interpolation})
+    if recursion() != interpolation():
+        raise RuntimeError("the pole recursion and interpolation give different functions")
+    row = Row(
+        f"{name}, way", charge, "pole recursion", found["recursion"], "interpolation", found["interpolation"]
+    )
+    report.row(row)
+
+
+def _functions(case: ratomega.Case, interpolate: bool) -> list[object]:
+    functions = Functions(case, most_configurations=10**8, evaluator=point_values, interpolate=interpolate)
+    return [functions.at(charge).function for charge in case.charges]
 
 
 def check(functions: ratomega.Case, numbers: ratomega.Case, symbols: list[str]) -> None:

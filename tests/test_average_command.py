@@ -7,6 +7,7 @@ import io
 import json
 
 import pytest
+import sympy
 
 import ratomega
 from ratomega.chain import averaging
@@ -138,12 +139,21 @@ def test_damaged_documents_are_refused(change, what):
     assert what in str(caught.value)
 
 
-def test_a_function_beyond_the_rationals_travels_in_two_parts():
+def test_a_function_beyond_the_rationals_travels_as_text_that_sympy_reads():
+    """<Y(x)> at one box by hand, u = x - a: each box multiplies Y by (u - e1)(u - e2)/(u (u - e))."""
     result = ratomega.average(small("imaginary-momenta"))
-    value = average_body(result)["averages"][0]["coefficients"][1]["value"]
-    assert set(value) == {"rational", "irrational", "radicand"}
+    text = average_body(result)["averages"][0]["coefficients"][1]["value"]
+    assert "sqrt(-1)" in text
+    x, a = sympy.Symbol("x"), 2 * sympy.I / 5
+    masses = [1 + sympy.I / n for n in (3, -3, 4)] + [1 + 3 * sympy.I / 4]
+    expected = 0
+    for here, there in ((a, -a), (-a, a)):
+        weight = sympy.prod(here + m for m in masses) / ((there - here) * (2 - there + here))
+        change = (x - here - 1) ** 2 / ((x - here) * (x - here - 2)) - 1
+        expected += weight * change * (x - a) * (x + a)
+    assert sympy.simplify(sympy.sympify(text) - expected) == 0
     document = json.loads(ratomega.to_json(result))
-    document["averages"][0]["coefficients"][1]["value"]["radicand"] = 4
+    document["averages"][0]["coefficients"][1]["value"] = text.replace("sqrt(-1)", "sqrt(4)")
     with pytest.raises(ratomega.InputError, match="not a result of ratomega"):
         ratomega.load_result(json.dumps(document))
 

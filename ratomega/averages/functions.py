@@ -14,9 +14,9 @@ from ratomega.averages.observables import Corners, Term, growth
 from ratomega.averages.series import AverageSeries, minus
 from ratomega.diagrams.tuples import Charge, configurations
 from ratomega.exact.laurent import Laurent
-from ratomega.exact.line_function import LineFunction
 from ratomega.exact.line_series import LineSeries, expand_roots, line_total
 from ratomega.exact.rational import Rational
+from ratomega.exact.rational_function import RationalFunction
 from ratomega.weights import Weights
 
 __all__ = ["SYMBOL", "FunctionSeries", "XAverages"]
@@ -31,14 +31,14 @@ class FunctionSeries:
     ``functions[n]`` belongs to t^(n - order).
     """
 
-    functions: tuple[LineFunction, ...]
+    functions: tuple[RationalFunction, ...]
 
     @property
     def order(self) -> int:
         return len(self.functions) - 1
 
     @property
-    def leading(self) -> LineFunction:
+    def leading(self) -> RationalFunction:
         """The coefficient of t^-order: the limit itself when the order is 0."""
         return self.functions[0]
 
@@ -77,12 +77,9 @@ class XAverages:
     def at(self, charge: Charge) -> FunctionSeries:
         """The average at one charge, all powers of t up to t^0 as functions of x."""
         (series,) = self._averages.at(charge)
-        scale, radicand = self.weights.scale, self.weights.radicand
-        lowest = min(0, series.valuation)
+        scale, lowest = self.weights.scale, min(0, series.valuation)
         return FunctionSeries(
-            tuple(
-                series.function(power, scale=scale, symbol=SYMBOL, radicand=radicand) for power in range(lowest, 1)
-            )
+            tuple(series.function(power, scale=scale, symbol=SYMBOL) for power in range(lowest, 1))
         )
 
 

@@ -18,7 +18,6 @@ from ratomega.case.setting import Setting
 from ratomega.detector.geometry import compact_by_parameters
 from ratomega.diagrams.tuples import Charge, Configuration
 from ratomega.exact.laurent import Laurent
-from ratomega.exact.line_function import LineFunction
 from ratomega.exact.path import Linear
 from ratomega.exact.quadratic import Number
 from ratomega.exact.rational import ONE, ZERO
@@ -41,7 +40,7 @@ __all__ = [
 FUNCTIONS = ("Y(x)", "1/Y(x)")
 KINDS = (*FUNCTIONS, "trace-powers", "size")
 
-AverageValue = Number | RationalFunction | LineFunction
+AverageValue = Number | RationalFunction
 
 
 @dataclass(frozen=True, slots=True)
@@ -109,7 +108,7 @@ def behaviour(weights: Weights, wanted: Wanted) -> Behaviour:
 
         def functions(charge: Charge) -> list[AveragePath]:
             found = [one.at(charge) for one in averages]
-            return [AveragePath(path, _plain_function(one.leading), one.order) for one in found]
+            return [AveragePath(path, one.leading, one.order) for one in found]
 
         return functions
     sums = size_sums(weights, wanted) if wanted.kind == "size" else trace_sums(weights, wanted)
@@ -123,10 +122,6 @@ def behaviour(weights: Weights, wanted: Wanted) -> Behaviour:
         return found
 
     return numbers
-
-
-def _plain_function(value: LineFunction) -> RationalFunction | LineFunction:
-    return value.rational if value.irrational.is_zero() else value
 
 
 def trace_sums(weights: Weights, wanted: Wanted) -> Callable[[Charge, int], Sequence[Laurent]]:

@@ -236,7 +236,7 @@ def _way(asked: _Asked) -> tuple[str, str]:
     weight = number + (BEYOND_Q - 1) * beyond_q
     told = f"{number} point{'s' if number > 1 else ''}" + (f", counted as {weight}" if weight != number else "")
     if weight > needed:
-        return "functions", f"{told}, more than the {needed} limits from which functions are interpolated"
+        return "functions", f"{told}, more than the {needed} limits from which functions would be interpolated"
     if _limit_work(asked, beyond_q) > asked.most_configurations:
         return "functions", f"limits at {told} would take the work of more than {asked.most_configurations} weights"
     for point in asked.points:

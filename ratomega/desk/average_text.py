@@ -5,7 +5,6 @@ from __future__ import annotations
 from ratomega.averages.limits import AverageLimit, AverageValue
 from ratomega.desk.text import charge_word, heading, table
 from ratomega.exact.function_text import function_text
-from ratomega.exact.line_function import LineFunction
 from ratomega.exact.quadratic import approximate_text, number_text
 from ratomega.exact.rational_function import RationalFunction
 from ratomega.results.averages import Average, AverageResult
@@ -29,7 +28,7 @@ def average_text(result: AverageResult) -> str:
 
 
 def _table(average: Average) -> list[str]:
-    numbers = not any(isinstance(_shown(c), (RationalFunction, LineFunction)) for c in average)
+    numbers = not any(isinstance(_shown(c), RationalFunction) for c in average)
     head = ["charge", "status", "independence", *(["approx."] if numbers else []), "exact"]
     lines = table(head, [_row(c, numbers) for c in average], left=range(1, len(head)))
     for c in average:
@@ -50,12 +49,10 @@ def _row(c: AverageLimit, numbers: bool) -> list[str]:
     status = f"pole t^-{c.order}" if c.status == "pole" else c.status
     value = _shown(c)
     row = [charge_word(c.charge), status, c.independence or "paths differ"]
-    if numbers and not isinstance(value, (RationalFunction, LineFunction)):
+    if numbers and not isinstance(value, RationalFunction):
         row.append(f"~{approximate_text(value)}")
     return [*row, _text(value)]
 
 
 def _text(value: AverageValue) -> str:
-    if isinstance(value, RationalFunction):
-        return function_text(value)
-    return str(value) if isinstance(value, LineFunction) else number_text(value)
+    return function_text(value) if isinstance(value, RationalFunction) else number_text(value)

@@ -1,7 +1,6 @@
 """The part of a JSON document that belongs to averages; header and errors are those of every document.
 
-Numbers travel as everywhere, functions of x in Python syntax. A function with numbers of a quadratic field is an object
-with its two parts: {"rational": ..., "irrational": ..., "radicand": d} stands for rational + irrational * sqrt(d).
+Numbers and functions of x travel as everywhere: functions in Python syntax, a root of a quadratic field as sqrt(d).
 """
 
 from __future__ import annotations
@@ -13,8 +12,7 @@ from ratomega.averages.functions import SYMBOL
 from ratomega.averages.limits import FUNCTIONS, KINDS, AverageLimit, AveragePath, AverageValue
 from ratomega.documents.pieces import Document, each, exact, if_given, listed, one_of, together, whole, word
 from ratomega.exact.function_text import function_text, parse_function
-from ratomega.exact.line_function import LineFunction
-from ratomega.exact.quadratic import number_text, square_root
+from ratomega.exact.quadratic import number_text
 from ratomega.exact.rational_function import RationalFunction
 from ratomega.results.averages import Average, AverageResult
 from ratomega.results.header import Header
@@ -65,19 +63,9 @@ def _read_limit(d: Mapping[str, Any], function: bool) -> AverageLimit:
     )
 
 
-def _value(value: AverageValue) -> str | Document:
-    if isinstance(value, RationalFunction):
-        return function_text(value)
-    if isinstance(value, LineFunction):
-        parts = {"rational": function_text(value.rational), "irrational": function_text(value.irrational)}
-        return {**parts, "radicand": value.radicand}
-    return number_text(value)
+def _value(value: AverageValue) -> str:
+    return function_text(value) if isinstance(value, RationalFunction) else number_text(value)
 
 
 def _read_value(value: object, function: bool) -> AverageValue:
-    if not function:
-        return exact(value)
-    if isinstance(value, dict):
-        rational, irrational = (parse_function(word(value[key]), (SYMBOL,)) for key in ("rational", "irrational"))
-        return LineFunction(rational, irrational, square_root(whole(value["radicand"])).d)
-    return parse_function(word(value), (SYMBOL,))
+    return parse_function(word(value), (SYMBOL,)) if function else exact(value)

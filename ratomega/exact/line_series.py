@@ -20,10 +20,11 @@ from flint import fmpq_poly
 from ratomega.errors import PrecisionError
 from ratomega.exact.factored import Form, Whole
 from ratomega.exact.laurent import Laurent
-from ratomega.exact.line_function import LineFunction, root_power, scaled, times
+from ratomega.exact.plane_function import function_of_planes
 from ratomega.exact.quadratic import Number
-from ratomega.exact.quadratic_poly import Poly, poly_of
-from ratomega.exact.rational import ONE, ZERO
+from ratomega.exact.quadratic_poly import Poly, poly_of, root_power, scaled, times
+from ratomega.exact.rational import ONE, ZERO, Rational
+from ratomega.exact.rational_function import RationalFunction
 
 __all__ = ["LineSeries", "expand_roots", "line_total"]
 
@@ -66,9 +67,14 @@ class LineSeries:
         place = power - self.valuation
         return self.numerators[place] if 0 <= place < len(self.numerators) else fmpq_poly()
 
-    def function(self, power: int, *, scale: int, symbol: str, radicand: int = 0) -> LineFunction:
+    def function(self, power: int, *, scale: int, symbol: str) -> RationalFunction:
         """The coefficient of t^power as a function of x = X/scale, in lowest terms."""
-        return LineFunction.make(self.numerator(power), self.poles, scale=scale, symbol=symbol, radicand=radicand)
+        coefficients = enumerate(self.numerator(power).coeffs())
+        return function_of_planes(
+            {(n,): c * Rational(scale) ** n for n, c in coefficients},
+            [((-c, scale), order) for c, order in self.poles.items()],
+            (symbol,),
+        )
 
     def times(self, series: Laurent) -> LineSeries:
         """The product with a series in t alone."""

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections import Counter
 from collections.abc import Mapping, Sequence
 
 from ratomega.exact.factored import Whole
@@ -27,13 +28,21 @@ def function_of_planes(
     '1/(2*(2*a - 1)*(a + 1))'
     """
     context = context_of(symbols)
-    denominator, beyond = context.constant(1), RationalFunction.constant(1, symbols)
+    denominator = context.constant(1)
+    beyond: Counter[RationalFunction] = Counter()
     powers = [(0,) * len(symbols), *(tuple(int(s == p) for s in range(len(symbols))) for p in range(len(symbols)))]
     for plane, times in planes:
         numbers: list[Number] = [c if isinstance(c, Quadratic) else Rational(c) for c in plane]
         form = function_of(dict(zip(powers, numbers, strict=True)), context.constant(1), symbols)
         if form.radicand:
-            beyond = beyond * form**times
+            beyond[form] += times
         else:
             denominator *= form.numerator**times
-    return function_of(coefficients, denominator, symbols) / beyond
+    rest = RationalFunction.constant(1, symbols)
+    for form, times in beyond.items():
+        # A form and its conjugate are one polynomial over the integers: what has no partner is divided by.
+        shared = min(times, beyond.get(form.conjugate(), 0))
+        if form.polynomials()[2].leading_coefficient() > 0:
+            denominator *= (form * form.conjugate()).numerator ** shared
+        rest = rest * form ** (times - shared)
+    return function_of(coefficients, denominator, symbols) / rest

@@ -15,7 +15,18 @@ from flint import fmpq, fmpq_poly, fmpz_poly
 
 from ratomega.exact.quadratic import Number, Quadratic, one_field, quadratic
 
-__all__ = ["IntegerPair", "Poly", "QuadraticPoly", "low_product", "pair_low_product", "pair_norm_quotient", "poly_of"]
+__all__ = [
+    "IntegerPair",
+    "Poly",
+    "QuadraticPoly",
+    "low_product",
+    "pair_low_product",
+    "pair_norm_quotient",
+    "poly_of",
+    "root_power",
+    "scaled",
+    "times",
+]
 
 IntegerPair = tuple[fmpz_poly, fmpz_poly]
 
@@ -91,6 +102,26 @@ def low_product(left: Poly, right: Poly, length: int) -> Poly:
     (a, b), (p, q) = _pair(left, d), _pair(right, d)
     real = a.mul_low(p, length) + b.mul_low(q, length) * d
     return QuadraticPoly.make(real, a.mul_low(q, length) + b.mul_low(p, length), d)
+
+
+def times(left: Poly, right: Poly) -> Poly:
+    """The whole product of two polynomials of one field."""
+    return low_product(left, right, left.length() + right.length())
+
+
+def scaled(poly: Poly, factor: Number) -> Poly:
+    """The polynomial times a number of its field."""
+    if isinstance(poly, fmpq_poly) and not isinstance(factor, Quadratic):
+        return poly * factor
+    return low_product(poly, poly_of([factor]), poly.length())
+
+
+def root_power(c: Number | int, exponent: int) -> Poly:
+    """(X - c)^exponent."""
+    result, base = poly_of([1]), poly_of([-c, 1])
+    for _ in range(exponent):
+        result = times(result, base)
+    return result
 
 
 def pair_product(left: IntegerPair, right: IntegerPair, d: int) -> IntegerPair:

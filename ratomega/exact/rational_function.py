@@ -1,10 +1,7 @@
 """Rational functions of free parameters, over Q or a quadratic field: what a coefficient with symbols is.
 
-A function is numerator/denominator, two integer polynomials (flint ``fmpz_mpoly``, lexicographic in the order of the
-symbols) without common factor, contents included, the leading coefficient of the denominator positive: equal functions
-have equal parts. Over Q(sqrt d) it is (numerator + irrational sqrt(d))/denominator, the denominator over the integers
-as before: every denominator has a multiple over the integers, its norm. Normal form as for numbers: ``irrational`` is
-never zero; without it, None, the function is one over Q.
+Normal form and arithmetic are those of ``function_arithmetic``; this is what a function is asked for: its factors and
+poles, expansions, values.
 
 ``str`` is the factored form in Python syntax, over the field in lowest terms; ``exact.function_text`` reads it back.
 Factors are found when they are asked for (``field_factors``); arithmetic needs none.
@@ -17,12 +14,14 @@ from dataclasses import dataclass
 from itertools import zip_longest
 from typing import Any
 
-from flint import acb, arb, ctx, fmpq, fmpz, fmpz_mpoly
+from flint import acb, arb, fmpq, fmpz, fmpz_mpoly
 
 from ratomega.errors import InputError
 from ratomega.exact.factored_form import factored_sympy, factored_text
 from ratomega.exact.field_factors import Factors, field_factors
-from ratomega.exact.field_polynomials import Factor, FieldPoly, factor_text, factor_value
+from ratomega.exact.field_polynomials import Factor, FieldPoly, factor_text
+from ratomega.exact.function_arithmetic import FunctionArithmetic
+from ratomega.exact.function_values import ball_of_factors, complex_of_factors, exact_of_factors
 from ratomega.exact.polynomials import coefficients_in, context_of, evaluated
 from ratomega.exact.quadratic import (
     Number,
@@ -39,10 +38,6 @@ from ratomega.exact.values import Value, ball_value, exact_values, value_of
 
 __all__ = ["Pole", "RationalFunction", "function_of"]
 
-# A complex number is worked out with this many bits, doubled until both parts are good to a double.
-FIRST_BITS = 128
-MOST_BITS = 1 << 16
-
 
 @dataclass(frozen=True, slots=True)
 class Pole:
@@ -52,8 +47,8 @@ class Pole:
     order: int
 
 
-@dataclass(frozen=True, slots=True, eq=False)
-class RationalFunction:
+@dataclass(frozen=True, slots=True, eq=False, repr=False)
+class RationalFunction(FunctionArithmetic):
     """An exact rational function. Build it with ``function_of``, ``RationalFunction.make`` or by arithmetic.
 
     >>> a = RationalFunction.symbol("a", ("a",))
@@ -61,155 +56,6 @@ class RationalFunction:
     >>> str(f), str(f.at(a="1/2")), [(str(p.location), p.order) for p in f.poles()]
     ('2/((a + 1)*(a - 1)**2)', '16/3', [('-1', 1), ('1', 2)])
     """
-
-    numerator: fmpz_mpoly
-    denominator: fmpz_mpoly
-    irrational: fmpz_mpoly | None = None
-    radicand: int = 0
-
-    # ---- construction ----
-
-    @classmethod
-    def make(
-        cls,
-        numerator: fmpz_mpoly,
-        denominator: fmpz_mpoly,
-        irrational: fmpz_mpoly | None = None,
-        radicand: int = 0,
-    ) -> RationalFunction:
-        """The checking constructor: lowest terms, positive lead. Raises ``ZeroDivisionError`` for denominator 0."""
-        if denominator.is_zero():
-            raise ZeroDivisionError("the denominator of a rational function is zero")
-        if irrational is not None and irrational.is_zero():
-            irrational = None
-        common = numerator.gcd(denominator)
-        if irrational is not None and not common.is_one():
-            common = common.gcd(irrational)
-        if denominator.leading_coefficient() < 0:
-            common = -common
-        if not common.is_one():
-            numerator, denominator = numerator / common, denominator / common
-            irrational = None if irrational is None else irrational / common
-        return cls(numerator, denominator, irrational, 0 if irrational is None else radicand)
-
-    @classmethod
-    def constant(cls, value: Number | int, symbols: Sequence[str]) -> RationalFunction:
-        context = context_of(symbols)
-        if isinstance(value, Quadratic):
-            scale = common_denominator(rational_parts(value))
-            x, y = (context.constant((part * scale).p) for part in rational_parts(value))
-            return cls(x, context.constant(scale), y, value.d)
-        value = fmpq(value)
-        return cls(context.constant(value.p), context.constant(value.q))
-
-    @classmethod
-    def symbol(cls, name: str, symbols: Sequence[str]) -> RationalFunction:
-        context = context_of(symbols)
-        return cls(context.gen(tuple(symbols).index(name)), context.constant(1))
-
-    @property
-    def symbols(self) -> tuple[str, ...]:
-        return tuple(self.numerator.context().names())
-
-    def conjugate(self) -> RationalFunction:
-        """The function with -sqrt(d) in place of sqrt(d); a function over Q is its own."""
-        if self.irrational is None:
-            return self
-        return RationalFunction(self.numerator, self.denominator, -self.irrational, self.radicand)
-
-    # ---- arithmetic ----
-
-    def _other(self, other: RationalFunction | Number | int) -> RationalFunction:
-        if not isinstance(other, RationalFunction):
-            other = RationalFunction.constant(other, self.symbols)
-        if other.symbols != self.symbols:
-            raise ValueError(f"functions of {self.symbols} and of {other.symbols} are not mixed")
-        if 0 != self.radicand != other.radicand != 0:
-            raise ValueError(f"sqrt({self.radicand}) and sqrt({other.radicand}) do not lie in one quadratic field")
-        return other
-
-    def _second(self) -> fmpz_mpoly:
-        return self.numerator.context().constant(0) if self.irrational is None else self.irrational
-
-    def __add__(self, other: RationalFunction | Number | int) -> RationalFunction:
-        other = self._other(other)
-        if self.denominator == other.denominator:
-            left = right = self.numerator.context().constant(1)
-            below = self.denominator
-        else:
-            left, right, below = other.denominator, self.denominator, self.denominator * other.denominator
-        top = self.numerator * left + other.numerator * right
-        if self.irrational is None and other.irrational is None:
-            return RationalFunction.make(top, below)
-        second = self._second() * left + other._second() * right
-        return RationalFunction.make(top, below, second, self.radicand or other.radicand)
-
-    def __neg__(self) -> RationalFunction:
-        second = None if self.irrational is None else -self.irrational
-        return RationalFunction(-self.numerator, self.denominator, second, self.radicand)
-
-    def __sub__(self, other: RationalFunction | Number | int) -> RationalFunction:
-        return self + (-self._other(other))
-
-    def __mul__(self, other: RationalFunction | Number | int) -> RationalFunction:
-        other = self._other(other)
-        top, below = self.numerator * other.numerator, self.denominator * other.denominator
-        if self.irrational is None and other.irrational is None:
-            return RationalFunction.make(top, below)
-        one, two, d = self._second(), other._second(), self.radicand or other.radicand
-        return RationalFunction.make(
-            top + one * two * d, below, self.numerator * two + one * other.numerator, d
-        )
-
-    def __truediv__(self, other: RationalFunction | Number | int) -> RationalFunction:
-        return self * self._other(other)._inverse()
-
-    def _inverse(self) -> RationalFunction:
-        if self.irrational is None:
-            return RationalFunction.make(self.denominator, self.numerator)
-        norm = self.numerator**2 - self.irrational**2 * self.radicand
-        below = self.denominator
-        return RationalFunction.make(self.numerator * below, norm, -self.irrational * below, self.radicand)
-
-    def __pow__(self, exponent: int) -> RationalFunction:
-        if exponent < 0:
-            return self._inverse() ** -exponent
-        if self.irrational is None:
-            return RationalFunction(self.numerator**exponent, self.denominator**exponent)
-        result, base = RationalFunction.constant(1, self.symbols), self
-        while exponent:
-            if exponent % 2:
-                result = result * base
-            base, exponent = base * base if exponent > 1 else base, exponent // 2
-        return result
-
-    def __radd__(self, other: Number | int) -> RationalFunction:
-        return self + other
-
-    def __rsub__(self, other: Number | int) -> RationalFunction:
-        return -self + other
-
-    def __rmul__(self, other: Number | int) -> RationalFunction:
-        return self * other
-
-    def __rtruediv__(self, other: Number | int) -> RationalFunction:
-        return self._other(other) / self
-
-    def __eq__(self, other: object) -> bool:
-        if isinstance(other, (int, fmpq, Quadratic)):
-            other = RationalFunction.constant(other, self.symbols)
-        if not isinstance(other, RationalFunction):
-            return NotImplemented
-        if self.symbols != other.symbols or self.radicand != other.radicand:
-            return False
-        same = self.numerator == other.numerator and self.denominator == other.denominator
-        return bool(same and self.irrational == other.irrational)
-
-    def __hash__(self) -> int:
-        return hash((self.symbols, str(self.numerator), str(self.denominator), str(self.irrational), self.radicand))
-
-    def is_zero(self) -> bool:
-        return bool(self.numerator.is_zero() and self.irrational is None)
 
     # ---- structure ----
 
@@ -220,10 +66,15 @@ class RationalFunction:
         return field_factors(self.numerator, self._second(), self.denominator, self.radicand)
 
     def degree(self, symbol: str) -> int:
-        """The degree of the numerator less that of the denominator: the growth at infinity."""
+        """The degree of the numerator less that of the denominator: the growth at infinity; -1 for the zero function.
+        """
         place = self._place(symbol)
         top = max(int(part.degrees()[place]) for part in (self.numerator, self._second()))
         return top - int(self.denominator.degrees()[place])
+
+    def is_polynomial(self) -> bool:
+        """No symbol is left in the denominator."""
+        return bool(self.denominator.is_constant())
 
     def _place(self, symbol: str | None) -> int:
         if symbol is None:
@@ -326,10 +177,6 @@ class RationalFunction:
         except InputError as error:
             raise InputError.single(error.problems[0].message, where) from error
 
-    def polynomials(self) -> tuple[fmpz_mpoly, fmpz_mpoly, fmpz_mpoly]:
-        """Numerator, denominator, and what stands with sqrt(d), zero over Q."""
-        return self.numerator, self.denominator, self._second()
-
     def _without(self, place: int) -> Number | RationalFunction:
         """The same function, which does not depend on the symbol at ``place``, of the other symbols."""
         rest = tuple(name for n, name in enumerate(self.symbols) if n != place)
@@ -377,10 +224,11 @@ class RationalFunction:
         if len(given) < len(self.symbols):
             return self._partial(given)
         if any(isinstance(value, complex) for value in given.values()):
-            return self._complex(given)
+            ordered = [given[name] for name in self.symbols]
+            return complex_of_factors(self.factors(), self.radicand, ordered, ", ".join(given))
         if any(isinstance(value, (arb, acb)) for value in given.values()):
-            balls = {name: ball_value(value) for name, value in given.items()}
-            return self._ball_value(balls)
+            balls = [ball_value(given[name]) for name in self.symbols]
+            return ball_of_factors(self.factors(), self.radicand, balls)
         self._checked_field(exact_values(given), ", ".join(given))
         numbers: list[Any] = [given[name] for name in self.symbols]
         top, bottom, second = (evaluated(poly, numbers) for poly in self.polynomials())
@@ -396,14 +244,7 @@ class RationalFunction:
 
     def factored_at(self, values: Sequence[Number]) -> tuple[Number, Number]:
         """Numerator and denominator in lowest terms over the field, at exact numbers of that field."""
-        constant, factors = self.factors()
-        root = square_root(self.radicand) if self.radicand else None
-        top: Any = constant
-        bottom: Any = Rational(1)
-        for factor, exponent in factors:
-            value = factor_value(factor, values, root) ** abs(exponent)
-            top, bottom = (top * value, bottom) if exponent > 0 else (top, bottom * value)
-        return top, bottom
+        return exact_of_factors(self.factors(), self.radicand, values)
 
     def _partial(self, given: Mapping[str, Value]) -> RationalFunction:
         self._checked_field(exact_values(given), ", ".join(given))
@@ -427,26 +268,6 @@ class RationalFunction:
                 result = result._without(place)
         assert isinstance(result, RationalFunction)
         return result
-
-    def _ball_value(self, balls: Mapping[str, arb | acb]) -> arb | acb:
-        # Factor by factor: an expanded polynomial loses digits near its zeros.
-        constant, factors = self.factors()
-        root = ball_value(square_root(self.radicand)) if self.radicand else None
-        result: arb | acb = ball_value(constant)
-        for factor, exponent in factors:
-            value: arb | acb = factor_value(factor, [balls[name] for name in self.symbols], root)
-            result = result * value**exponent if exponent > 0 else result / value**-exponent
-        return result
-
-    def _complex(self, given: Mapping[str, Value]) -> complex:
-        bits = FIRST_BITS
-        while bits <= MOST_BITS:
-            with ctx.workprec(bits):
-                value = acb(self._ball_value({name: ball_value(x) for name, x in given.items()}))
-                if value.rel_accuracy_bits() >= 60 or value == 0:
-                    return complex(value)
-            bits *= 2
-        raise InputError.single("the value is a pole, or too close to one to be told from it", ", ".join(given))
 
     # ---- how it is written ----
 

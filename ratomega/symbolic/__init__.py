@@ -1,1 +1,1 @@
-"""Free parameters: coefficients as exact rational functions, by interpolation between exact limits."""
+"""Free parameters: coefficients as exact rational functions, from the pole recursion or interpolated between limits."""

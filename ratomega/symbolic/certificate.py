@@ -17,6 +17,11 @@ _SOURCE = (
     "values: the same limits at further points"
 )
 
+_POLE_SOURCE = (
+    "pole recursion: Al. Zamolodchikov 1984, 1987; R. Poghossian, arXiv 0909.3412; values: the limits of the sum over "
+    "diagrams"
+)
+
 
 def point_text(symbols: Sequence[str], point: Point) -> str:
     return ", ".join(f"{name} = {value}" for name, value in zip(symbols, point, strict=True))
@@ -32,9 +37,15 @@ def check_functions(symbols: Sequence[str], found: Sequence[SymbolicCharge]) -> 
             )
             return Check(_NAME, Verdict.REFUTED, Kind.CONSISTENCY, evidence, _SOURCE)
     most = max((one.points for one in found), default=0)
-    beside = "; ".join(point_text(symbols, point) for point in (found[0].confirmed if found else ()))
-    evidence = (
+    primes = max((one.primes for one in found), default=0)
+    way = (
         f"interpolated from at most {most} exact limits at points where every component is compact, with the "
-        f"denominators and degrees that theory gives; equal to the limits at points not used: {beside}"
+        "denominators and degrees that theory gives"
+        if most
+        else "from the partial fractions of the pole recursion in (a1 - a2)^2, "
+        + (f"found modulo {primes} primes" if primes else "found in exact series")
+        + "; no limit was taken for that"
     )
-    return Check(_NAME, Verdict.AGREES, Kind.CONSISTENCY, evidence, _SOURCE)
+    beside = "; ".join(point_text(symbols, point) for point in (found[0].confirmed if found else ()))
+    evidence = f"{way}; equal to limits of the sum over diagrams at points not used: {beside}"
+    return Check(_NAME, Verdict.AGREES, Kind.CONSISTENCY, evidence, _SOURCE if most else _POLE_SOURCE)

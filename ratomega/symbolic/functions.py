@@ -1,7 +1,8 @@
-"""One coefficient as a rational function: exact limits on the grid, interpolation, confirmation beside it.
+"""One coefficient as a rational function, and its confirmation by limits at points that were not used to find it.
 
-No second engine: every value comes from an evaluator, by default the direct sum over diagrams, at a point where every
-component is compact, so that the limit is finite and the same on every path by theorem.
+A fixed rule, ``by_poles.pole_way``, says where the pole recursion gives the function; for everything else exact limits
+on the grid are interpolated. Every limit comes from an evaluator, by default the direct sum over diagrams, at a point
+where every component is compact, so that it is finite and the same on every path by theorem.
 """
 
 from __future__ import annotations
@@ -22,7 +23,8 @@ from ratomega.exact.rational import ZERO, Rational
 from ratomega.exact.rational_function import RationalFunction
 from ratomega.regulator.direct import direct_total
 from ratomega.regulator.limits import ChargeLimit
-from ratomega.symbolic.grid import Grid, Point, choose_grid, denominator_value
+from ratomega.symbolic.by_poles import pole_way
+from ratomega.symbolic.grid import WITNESSES, Grid, Point, choose_grid, denominator_value
 from ratomega.symbolic.structure import Structure, primes_of, structure
 from ratomega.weights import Weights
 
@@ -46,7 +48,9 @@ def direct_evaluator(setting: Setting, highest: tuple[int, ...]) -> Values:
 class SymbolicCharge:
     """A coefficient as a function, the number of limits it was interpolated from, and the points that confirm it.
 
-    ``refuted`` are points beside the grid where function and limit differ: there should be none.
+    ``points`` is 0 where the pole recursion gave the function; ``primes`` is then the number of primes modulo which it
+    ran, 0 for exact series. ``refuted`` are points beside the grid where function and limit differ: there should be
+    none.
     """
 
     charge: Charge
@@ -54,6 +58,7 @@ class SymbolicCharge:
     points: int
     confirmed: tuple[Point, ...]
     refuted: tuple[Point, ...]
+    primes: int = 0
 
 
 @dataclass(frozen=True, slots=True)
@@ -71,18 +76,26 @@ class SymbolicLimit:
 class Functions:
     """All coefficients of a case with symbols, charge by charge; points are evaluated when a charge needs them.
 
+    ``interpolate`` does so even where the pole recursion gives the functions, to compare the two.
     Raises ``InputError`` when the case has no limit as a function of its symbols, or needs more work than
     ``most_configurations`` weights.
     """
 
     def __init__(
-        self, case: Case, *, most_configurations: int, evaluator: Evaluator = direct_evaluator
+        self,
+        case: Case,
+        *,
+        most_configurations: int,
+        evaluator: Evaluator = direct_evaluator,
+        interpolate: bool = False,
     ) -> None:
         self.case = case
         self.evaluator = evaluator
         self.structures: dict[Charge, Structure] = {charge: structure(case, charge) for charge in case.charges}
+        self._poles = None if interpolate else pole_way(case)
         work = sum(
-            count_configurations(case.theory.ranks, charge) * (math.prod(s.nodes) + 1)
+            count_configurations(case.theory.ranks, charge)
+            * (WITNESSES if self._poles is not None else math.prod(s.nodes) + 1)
             for charge, s in self.structures.items()
         )
         if work > most_configurations:
@@ -112,6 +125,20 @@ class Functions:
 
     def at(self, charge: Charge) -> SymbolicCharge:
         """The function at one charge."""
+        if self._poles is not None:
+            function, points = self._poles.function(charge[0]), 0
+        else:
+            function, points = self._interpolated(charge)
+        agree: list[Point] = []
+        differ: list[Point] = []
+        for witness in self.grid.witnesses:
+            expected = function.at(**dict(zip(self.case.symbols, witness, strict=True)))
+            (agree if self.value(charge, witness) == expected else differ).append(witness)
+        primes = 0 if self._poles is None else self._poles.primes
+        return SymbolicCharge(charge, function, points, tuple(agree), tuple(differ), primes)
+
+    def _interpolated(self, charge: Charge) -> tuple[RationalFunction, int]:
+        """The function from limits on the grid, and their number."""
         shape = self.structures[charge]
         axes = [axis[:size] for axis, size in zip(self.grid.axes, shape.nodes, strict=True)]
         values = {}
@@ -125,13 +152,7 @@ class Functions:
             tuple(2 * e if even else e for e, even in zip(exponents, shape.even, strict=True)): value
             for exponents, value in _interpolated(variables, values).items()
         }
-        function = function_of_planes(coefficients, shape.planes, self.case.symbols)
-        agree: list[Point] = []
-        differ: list[Point] = []
-        for witness in self.grid.witnesses:
-            expected = function.at(**dict(zip(self.case.symbols, witness, strict=True)))
-            (agree if self.value(charge, witness) == expected else differ).append(witness)
-        return SymbolicCharge(charge, function, len(values), tuple(agree), tuple(differ))
+        return function_of_planes(coefficients, shape.planes, self.case.symbols), len(values)
 
 
 def _interpolated(

@@ -19,7 +19,7 @@ from itertools import combinations
 from math import prod
 
 from ratomega.averages.characters import character_terms, is_linear
-from ratomega.averages.functions import FunctionSeries, XAverages
+from ratomega.averages.functions import SYMBOL, FunctionSeries, XAverages
 from ratomega.averages.limits import Wanted, size_sums, trace_sums
 from ratomega.averages.observables import Corners, Term, tail
 from ratomega.averages.series import Sums, minus, number_averages, sums_of
@@ -27,10 +27,10 @@ from ratomega.case.setting import Setting
 from ratomega.detector.geometry import compact_by_parameters
 from ratomega.diagrams.tuples import Charge, Configuration, count_configurations
 from ratomega.exact.laurent import Laurent
-from ratomega.exact.line_function import LineFunction
 from ratomega.exact.path import Linear
 from ratomega.exact.quadratic import Number, number_text
 from ratomega.exact.rational import ONE, ZERO, Rational
+from ratomega.exact.rational_function import RationalFunction
 from ratomega.validator.depth import FULL, beyond, too_costly
 from ratomega.validator.finiteness import charge_text, reach_text
 from ratomega.validator.verdict import Check, Kind, Verdict
@@ -116,7 +116,7 @@ def check_regularity(regular: Regular) -> Check | None:
     for charge in regular.reach:
         series = regular.at(charge)
         for power, function in enumerate(series.functions, -series.order):
-            if not function.is_polynomial() or function.degree() > highest:
+            if not function.is_polynomial() or function.degree(SYMBOL) > highest:
                 what = "has poles in x" if not function.is_polynomial() else f"has a degree above {highest}"
                 return _check(name, Verdict.REFUTED, f"{_where(charge, power)}: T(x) {what}: {_short(function)}")
         times = f"t^-{series.order} times " if series.order else ""
@@ -153,7 +153,7 @@ def check_regular_coefficients(regular: Regular) -> Check | None:
         if not function.is_polynomial():
             return _check(name, Verdict.REFUTED, f"{charge_text(charge)}: T(x) has poles in x")
         for x in points:
-            expected, value = _closed_value(setting, x, charge[0], known), function.at(x)
+            expected, value = _closed_value(setting, x, charge[0], known), function.at(**{SYMBOL: x})
             if expected != value:
                 evidence = f"{charge_text(charge)}: T({x}) is {number_text(value)}, not {number_text(expected)}"
                 return _check(name, Verdict.REFUTED, evidence)
@@ -330,7 +330,7 @@ def _extent(reach: Sequence[Charge], charges: Sequence[Charge], most: int, unit:
     return f"{reach_text(reach)}{cut}"
 
 
-def _short(function: LineFunction) -> str:
+def _short(function: RationalFunction) -> str:
     text = str(function)
     return text if len(text) <= LONGEST_TEXT else f"a function of {len(text)} characters"
 

@@ -12,7 +12,6 @@ from on_path import theory_on
 
 import ratomega
 from ratomega.case.setting import own_setting
-from ratomega.exact.line_function import LineFunction
 from ratomega.exact.rational import as_fraction
 
 GENERIC, SINGULAR = ("7/5", "1"), [("1", "1"), ("2", "1"), ("1", "-1"), ("2", "-3")]
@@ -35,11 +34,6 @@ POINTS = [F(29, 3), F(-31, 5)]
 def case_of(name, eps):
     nodes, edges, charge = THEORIES[name]
     return make_case(*eps, nodes, edges=edges, charge=charge)
-
-
-def at(function, x):
-    exact = fmpq(x.numerator, x.denominator)
-    return function.at(exact) if isinstance(function, LineFunction) else function.at(x=exact)
 
 
 def check(case, *, of, points=POINTS, powers=5):
@@ -66,7 +60,7 @@ def check(case, *, of, points=POINTS, powers=5):
                         theory, lambda c, v=v, x=exact, sign=sign: reference.y_factors(theory, c, v, x, sign)
                     )
                     expected = reference.value(reference.average(theory, charge, sums))
-                    assert plain_number(at(result[f"{prefix}{of}"][charge].value, x)) == expected, (charge, x)
+                    assert plain_number(result[f"{prefix}{of}"][charge].value.at(x=exact)) == expected, (charge, x)
 
 
 @pytest.mark.parametrize("of", ["Y(x)", "1/Y(x)", "trace-powers", "size"])

@@ -198,7 +198,10 @@ def test_when_a_function_is_even(coulomb, matter, even):
 
 
 def test_symmetry_saves_half_of_the_points():
-    even, odd = (Functions(u2(coulomb=c), most_configurations=10**6) for c in (("a", "-a"), ("a + 1", "-a - 1")))
+    even, odd = (
+        Functions(u2(coulomb=c), most_configurations=10**6, interpolate=True)
+        for c in (("a", "-a"), ("a + 1", "-a - 1"))
+    )
     assert even.at((2,)).points == 2
     assert odd.at((2,)).points == 3
     assert same(odd.at((2,)).function, even.at((2,)).function.sympy().subs(A, A + 1))
@@ -214,7 +217,7 @@ def test_another_evaluator():
         asked.append(setting)
         return values
 
-    found = Functions(u2(charge=2), most_configurations=10**6, evaluator=recording)
+    found = Functions(u2(charge=2), most_configurations=10**6, evaluator=recording, interpolate=True)
     assert found.at((2,)).function == ratomega.limit(u2(charge=2))[2].value
     assert len(asked) == 2 + 2
 
@@ -227,7 +230,7 @@ def test_a_wrong_limit_is_found_out():
         spoilt = setting.nodes[0].coulomb[0].constant == Rational(1, 3)
         return lambda charge: values(charge) + (Rational(1, 10**6) if spoilt else 0)
 
-    found = Functions(u2(charge=2), most_configurations=10**6, evaluator=wrong).at((2,))
+    found = Functions(u2(charge=2), most_configurations=10**6, evaluator=wrong, interpolate=True).at((2,))
     assert len(found.refuted) == 2
     assert not found.confirmed
 
@@ -240,7 +243,7 @@ def test_a_missing_pole_is_found_out(monkeypatch):
         return type(found)(found.planes[1:-1], found.degrees, found.even)
 
     monkeypatch.setattr(functions_module, "structure", poorer)
-    job = Job.prepare(u2(charge=2))
+    job = Job.prepare(u2(coulomb=("a", "1/5"), charge=2))
     result = limit_result(job, list(job.limits(probes=0)))
     assert {c.name: c.verdict.value for c in result.checks}["functions of the symbols"] == "refuted"
     assert result.exit_status == 1
@@ -325,7 +328,7 @@ def test_where_symbols_may_stand(change, said):
 def test_what_has_no_limit_as_a_function_is_refused():
     case = u2(coulomb=("a + 2", "a"))
     assert any("whatever the symbols are" in message for _, message in problems(lambda: ratomega.limit(case)))
-    large = u2(antifundamental=FLAVOURS, charge=6)
+    large = u2(coulomb=("a", "1/5"), antifundamental=FLAVOURS, charge=6)
     found = problems(lambda: ratomega.limit(large, most_configurations=500))
     assert any("configurations times points" in message for _, message in found)
     assert any("no symbol" in message for _, message in problems(lambda: u2().at(b=1)))

@@ -32,6 +32,7 @@ __all__ = [
     "RouteAnswer",
     "applies",
     "case_problem",
+    "covers",
     "four_point_problem",
     "gauge_problem",
     "mixed_problem",
@@ -305,6 +306,11 @@ def _momenta(case: Case) -> _Momenta | None:
     if len(rational) != len(numbers) + len(adjoint):
         return None
     return _Momenta(rational[0], tuple(rational[1 : len(numbers)]), rational[-1] if adjoint else None)
+
+
+def covers(case: Case) -> bool:
+    """Does the pole recursion cover the theory of this case, wherever a1 - a2 sits? Then ``case_problem`` gives it."""
+    return not _structure(case)
 
 
 def applies(case: Case) -> RouteAnswer:

@@ -24,7 +24,15 @@ from ratomega.regulator.poles.problem import PoleProblem, pole_sentence
 from ratomega.regulator.poles.recovery import Evidence, Recovery
 from ratomega.regulator.poles.series import regular_functions
 
-__all__ = ["Evidence", "PoleFunctions", "PoleResult", "by_series", "pole_coefficients", "pole_functions"]
+__all__ = [
+    "Evidence",
+    "PoleFunctions",
+    "PoleResult",
+    "by_series",
+    "pole_coefficients",
+    "pole_functions",
+    "within_reach",
+]
 
 # Up to this charge the exact series take a few hundredths of a second and leave nothing to confirm.
 LAST_EXACT_CHARGE = 8
@@ -135,8 +143,17 @@ def _check(problem: PoleProblem, charge: int) -> None:
         raise InputError.single(f"a charge is zero or more, not {charge}", "charge")
 
 
+def within_reach(problem: PoleProblem, charge: int) -> bool:
+    """Does the rule have a way to this charge? Residues do not take a ratio of very long numbers."""
+    return by_series(charge) or _fits(problem, charge)
+
+
+def _fits(problem: PoleProblem, charge: int) -> bool:
+    return 2 * charge * (problem.steps[0] + abs(problem.steps[1])) < WIDEST_FORM
+
+
 def _recovery(problem: PoleProblem, charge: int, supplier: Supplier) -> Recovery:
-    if 2 * charge * (problem.steps[0] + abs(problem.steps[1])) >= WIDEST_FORM:
+    if not _fits(problem, charge):
         raise InputError.single(
             f"eps2/eps1 = {problem.steps[1]}/{problem.steps[0]} has too long a numerator or denominator for residues "
             f"at charge {charge}; exact series still take it",
