@@ -85,7 +85,7 @@ def test_a_product_has_the_last_symbol_fastest():
         ([], f"between 1 and {MOST_VALUES}"),
         ([0.5], "the float 0.5 is not exact"),
         ([1j], "is not exact"),
-        ([None], "NoneType"),
+        ([None], "exact number, not null"),
         (3, "text or a list"),
         (b"12", "text or a list"),
         ({"x": 1}, "text or a list"),
