@@ -76,8 +76,9 @@ def _ways(setting: Setting) -> list[int]:
     return [n for n, dealing in enumerate(dealings(gauge.flavours)) if dealing.left and dealing.right]
 
 
+@lru_cache(maxsize=256)
 def _inverse_factor(setting: Setting, dealing: int) -> Series:
-    """1 / the U(1) factor."""
+    """1 / the U(1) factor; a diagnosis asks for that of one setting thousands of times."""
     gauge = gauge_path(setting)
     chosen = None if gauge.adjoint is not None else list(dealings(gauge.flavours))[dealing]
     dressing = conformal_block(gauge, precision=1, dealing=chosen).dressing

@@ -46,7 +46,8 @@ def test_bundled_cases_have_their_routes_to_their_own_charge(name):
 
 
 def check_case(case, *, probes):
-    result = ratomega.validate(case, probes=probes)
+    # A limit inside the limit has no further paths to ask for.
+    result = ratomega.validate(case) if case.nested else ratomega.validate(case, probes=probes)
     assert len(result.routes) >= routes_wanted(case)
     for check in result.routes:
         assert (check.kind, check.verdict, check.complete) == (Kind.INDEPENDENT, Verdict.AGREES, True)
