@@ -312,7 +312,7 @@ def test_the_rule_of_the_way():
 
 
 def test_where_functions_are_too_much_limits_at_points_still_go():
-    mapping = u2("1/2", "1/3", charge=24)
+    mapping = u2("1/2", "1/3", charge=25)
     with pytest.raises(InputError, match="the functions of a need"):
         ratomega.grid(mapping, {"a": "1/3 to 2/3 in 100"})
     (row,) = ratomega.grid(mapping, {"a": "1/3"})[24]
