@@ -443,7 +443,7 @@ def test_a_damaged_document_is_refused(damage):
         (["vacuum-degenerate", "--at", "a = 1/3"], "this case has none"),
         (["free-momentum", "--at", "a = 0 to 1 in 20000", "--charge", "20"], "420000 values"),
         (["free-momentum", "--at", "a = 1/3", "--charge", "400"], "configurations"),
-        (["free-momentum", "--at", "a = 1/3 to 1 in 500", "--charge", "20"], "need"),
+        (["free-momentum", "--at", "a = 1/3 to 1 in 500", "--charge", "25"], "need"),
         (["free-momentum", "--at", "a = 0 to 1 in 20000", "--digits", "1000"], "digits in all"),
         (["free-momentum", "--at", "a = 0 to 1/" + 190 * "7" + " in 19000", "--charge", "8"], "ask for digits"),
     ],
