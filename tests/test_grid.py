@@ -312,7 +312,7 @@ def test_the_rule_of_the_way():
 
 
 def test_where_functions_are_too_much_limits_at_points_still_go():
-    mapping = u2("1/2", "1/3", charge=24)
+    mapping = u2("1/2", "1/3", charge=25)
     with pytest.raises(InputError, match="the functions of a need"):
         ratomega.grid(mapping, {"a": "1/3 to 2/3 in 100"})
     (row,) = ratomega.grid(mapping, {"a": "1/3"})[24]
@@ -443,7 +443,7 @@ def test_a_damaged_document_is_refused(damage):
         (["vacuum-degenerate", "--at", "a = 1/3"], "this case has none"),
         (["free-momentum", "--at", "a = 0 to 1 in 20000", "--charge", "20"], "420000 values"),
         (["free-momentum", "--at", "a = 1/3", "--charge", "400"], "configurations"),
-        (["free-momentum", "--at", "a = 1/3 to 1 in 500", "--charge", "20"], "need"),
+        (["free-momentum", "--at", "a = 1/3 to 1 in 500", "--charge", "25"], "need"),
         (["free-momentum", "--at", "a = 0 to 1 in 20000", "--digits", "1000"], "digits in all"),
         (["free-momentum", "--at", "a = 0 to 1/" + 190 * "7" + " in 19000", "--charge", "8"], "ask for digits"),
     ],

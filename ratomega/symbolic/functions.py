@@ -95,7 +95,7 @@ class Functions:
         self._poles = None if interpolate else pole_way(case)
         work = sum(
             count_configurations(case.theory.ranks, charge)
-            * (WITNESSES if self._poles is not None else math.prod(s.nodes) + 1)
+            * ((WITNESSES if self._poles is not None else math.prod(s.nodes)) + 1)
             for charge, s in self.structures.items()
         )
         if work > most_configurations:

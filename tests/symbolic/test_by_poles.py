@@ -145,10 +145,10 @@ def test_a_wrong_power_of_the_nome_is_found_out(monkeypatch):
     assert len(found.refuted) == 2
 
 
-def test_the_work_is_that_of_two_limits():
+def test_the_work_is_that_of_two_limits_and_the_generic_point():
     """So charges are within the limit on work that interpolation could not reach."""
     case = u2(charge=6)
-    needed = 2 * sum((1, 2, 5, 10, 20, 36, 65))
+    needed = 3 * sum((1, 2, 5, 10, 20, 36, 65))
     Functions(case, most_configurations=needed)
     with pytest.raises(ratomega.InputError, match=f"need {needed} weights"):
         Functions(case, most_configurations=needed - 1)
