@@ -339,3 +339,26 @@ def test_names_that_are_no_text(tmp_path):
     done = subprocess.run([*command, *words], capture_output=True, cwd=tmp_path, env=environment, check=False)
     assert done.returncode == 2
     assert 'not to "caf\udce9.gif"' in json.loads(done.stdout)["error"]["message"]
+
+
+def test_without_a_command_there_is_help():
+    assert run().stdout == run("--help").stdout
+
+
+@pytest.mark.parametrize(
+    ("words", "said"),
+    [
+        (["limi", "x"], 'ratomega: there is no command "limi"; the nearest known one is "limit"\n'),
+        (["xyzzy"], 'ratomega: there is no command "xyzzy"\n'),
+        (["--nope"], "ratomega: No such option '--nope'.\n"),
+    ],
+)
+def test_what_is_no_command_is_one_sentence(words, said):
+    done = run(*words)
+    assert (done.returncode, done.stdout, done.stderr) == (2, "", said)
+
+
+def test_a_pole_is_shown_with_its_power():
+    """U(2) at 2:1 with a1 - a2 = eps1 + eps2: 7/15 is the leading coefficient, not a value."""
+    (line,) = [one for one in run("limit", "surviving-pole", "--charge", "1").stdout.splitlines() if "pole t^-1" in one]
+    assert line.endswith("~0.466666666667 t^-1  7/15 t^-1")

@@ -90,3 +90,12 @@ def test_the_command_writes_a_file_once(tmp_path):
 def test_options_that_do_not_go_together(words, said):
     with pytest.raises(InputError, match=said):
         CliRunner().invoke(cli, ["new", *words], standalone_mode=False, catch_exceptions=False)
+
+
+@pytest.mark.parametrize(("internal", "noted"), [("1,1", False), ("3,1", False), ("2,5", False), ("2,1", True)])
+def test_a_channel_that_the_fusion_rules_forbid_is_noted(internal, noted, tmp_path):
+    """In M(5,6) the product (2,1) x (2,1) holds (1,1) and (3,1), which is (2,5) (Belavin, Polyakov, Zamolodchikov)."""
+    words = ["new", "--minimal", "5,6", *["--external", "2,1"] * 4, "--internal", internal]
+    done = CliRunner().invoke(cli, [*words, "-o", str(tmp_path / "case.toml")], standalone_mode=False)
+    assert done.return_value == 0
+    assert ("do not fuse" in done.stderr) == noted

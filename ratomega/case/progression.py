@@ -118,6 +118,9 @@ def read_counting(given: object, nodes: int, background: Background) -> tuple[Co
 
 
 def _counting(given: object, background: Background) -> Counting:
+    if isinstance(given, str) and "+-" in "".join(given.split()):
+        message = f'{quoted(given)} has the signs + and - side by side; a radius is written "+/-"'
+        raise InputError.single(message, "q")
     if not isinstance(given, str) or "+/-" not in given:
         return Counting(read_number(given, "q", background))
     # A real ball as flint prints it has brackets around it, and no middle where no digit of it is known.

@@ -112,7 +112,8 @@ class Job:
             warnings.insert(
                 0,
                 f"the Coulomb parameters of {names} were tilted, because a difference is an integer combination of "
-                f"eps1 and eps2 all along the path: {setting.text()}",
+                f"eps1 and eps2 all along the path: {setting.text()}; a tilt that is typed with u, such as 1 + u, goes "
+                "to 0 first, before the background moves",
             )
         path = path_record(setting)
         if functions is not None:

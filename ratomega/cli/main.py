@@ -16,7 +16,7 @@ from typing import NoReturn
 
 import click
 
-from ratomega.case.wording import shortened
+from ratomega.case.wording import nearest, quoted, shortened
 from ratomega.documents.failing import error_document
 from ratomega.errors import INTERRUPTED, InputError, RatomegaError, WorkerError
 from ratomega.version import VERSION
@@ -46,6 +46,13 @@ COMMANDS = (
 class _Commands(click.Group):
     def list_commands(self, ctx: click.Context) -> list[str]:
         return list(COMMANDS)
+
+    def resolve_command(
+        self, ctx: click.Context, args: list[str]
+    ) -> tuple[str | None, click.Command | None, list[str]]:
+        if args[0] not in COMMANDS and not args[0].startswith("-"):
+            raise InputError.single(f"there is no command {quoted(args[0])}{nearest(args[0], COMMANDS)}")
+        return super().resolve_command(ctx, args)
 
     def get_command(self, ctx: click.Context, cmd_name: str) -> click.Command | None:
         if cmd_name not in COMMANDS:
@@ -80,13 +87,13 @@ def main(arguments: Sequence[str] | None = None) -> NoReturn:
     words = list(sys.argv[1:] if arguments is None else arguments)
     as_json = "--json" in words
     try:
-        status = cli.main(args=words, prog_name="ratomega", standalone_mode=False)
+        status = cli.main(args=words or ["--help"], prog_name="ratomega", standalone_mode=False)
         sys.stdout.flush()
     except (InputError, WorkerError) as error:
         status = _fail(error, as_json)
     except click.ClickException as error:
         where = error.ctx.command_path if isinstance(error, click.UsageError) and error.ctx is not None else ""
-        status = _fail(InputError.single(error.format_message(), where.removeprefix("ratomega ")), as_json)
+        status = _fail(InputError.single(error.format_message(), where.removeprefix("ratomega").strip()), as_json)
     except click.Abort:
         click.echo("interrupted before the first charge was finished", err=True)
         status = INTERRUPTED

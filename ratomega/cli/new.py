@@ -4,12 +4,14 @@ from __future__ import annotations
 
 import re
 import sys
+from collections.abc import Sequence
 from pathlib import Path
 
 import click
 
 from ratomega.case.drafting import draft, draft_minimal
 from ratomega.cli.completion import FILE
+from ratomega.conformal.minimal import Label, MinimalModel
 from ratomega.errors import InputError
 
 __all__ = ["new"]
@@ -56,6 +58,7 @@ def new(
         labels = [_pair(label, "--external") for label in external]
         model, between = _pair(minimal, "--minimal"), _pair(internal, "--internal")
         text = draft_minimal(model=model, external=labels, internal=between, order=charge)
+        _note_fusion(MinimalModel.make(*model), labels, between)
     else:
         if external or internal is not None:
             raise InputError.single("--external and --internal belong to --minimal P,Q", "--external")
@@ -79,6 +82,18 @@ def new(
         raise InputError.single(f"the file cannot be written: {error.strerror}", output) from error
     click.echo(f"wrote {output}; now try: ratomega {'block' if minimal else 'explain'} {output}", err=True)
     return 0
+
+
+def _note_fusion(model: MinimalModel, fields: Sequence[Label], internal: Label) -> None:
+    """Say where a product of two fields does not hold the internal one."""
+    wrong = [pair for pair in (fields[:2], fields[2:]) if model.canonical(internal) not in model.fuse(*pair)]
+    if wrong:
+        (r, s), (u, v) = wrong[0]
+        click.echo(
+            f"note: in {model} the fields ({r},{s}) and ({u},{v}) do not fuse to ({internal[0]},{internal[1]}): "
+            "the model has no such block, and a pole may survive",
+            err=True,
+        )
 
 
 def _pair(text: str, where: str) -> tuple[int, int]:

@@ -112,7 +112,9 @@ def collect(
             crew.close()
             kept = f"; {crew.kept_text()}"
         line.clear()
-        click.echo(f"interrupted: {len(found)} of {total} charges were finished and are printed{kept}", err=True)
+        printed = f"{len(found)} of {total} charges were finished and are printed"
+        so_far = printed if found else f"none of {total} charges was finished"
+        click.echo(f"interrupted: {so_far}{kept}", err=True)
         return found, True
     line.clear()
     return found, False

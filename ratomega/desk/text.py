@@ -98,6 +98,8 @@ def limit_text(result: LimitResult) -> str:
     nested = len(result.header.path.parameters) > 1
     rows = [_limit_row(c, nested=nested) for c in result.coefficients]
     lines = [*heading(result.header, result.partial)[:-1], _route_line(result.route), ""]
+    if not rows:
+        return "\n".join(lines[:-1]) + "\n"
     lines += table(head, rows, left=[5, 6, 7, 8])
     for c in result.coefficients:
         if c.values:
@@ -133,14 +135,16 @@ def _limit_row(c: Coefficient, *, nested: bool) -> list[str]:
     if isinstance(c.value, RationalFunction):
         function = c.value
         return [charge_word(c.charge), *counts, status, c.independence or "", "function", function_text(function)]
+    power = ""
     if c.value is not None:
         shown = c.value
     elif c.leading is not None:
-        shown = c.leading
+        shown, power = c.leading, " at that order" if nested else f" t^-{c.order}"
     else:
         shown = c.values[0].value
     independence = c.independence or ("paths differ" if c.values else "-")
-    return [charge_word(c.charge), *counts, status, independence, f"~{approximate_text(shown)}", number_text(shown)]
+    numbers = [f"~{approximate_text(shown)}{power}", f"{number_text(shown)}{power}"]
+    return [charge_word(c.charge), *counts, status, independence, *numbers]
 
 
 def validate_text(result: ValidateResult) -> str:

@@ -7,6 +7,7 @@ arithmetic never passes through here. Two different fields are never mixed: that
 
 from __future__ import annotations
 
+import cmath
 import math
 import re
 from collections.abc import Iterable, Sequence
@@ -21,6 +22,7 @@ from ratomega.exact.rational import (
     ONE,
     ZERO,
     Rational,
+    as_fraction,
     as_rational,
     decimal_text,
     exact_text,
@@ -65,8 +67,8 @@ class Quadratic:
     """The exact number x + y sqrt(d) with y != 0. Build it with ``quadratic`` or by arithmetic from ``square_root``.
 
     >>> i = square_root(-1)
-    >>> (1 + i) * (1 - i), str(ONE / (2 + i)), str((1 + i) ** 3)
-    (2, '2/5 - 1/5*sqrt(-1)', '-2 + 2*sqrt(-1)')
+    >>> (1 + i) * (1 - i), str(ONE / (2 + i)), str((1 + i) ** 3), complex(ONE / (2 + i))
+    (2, '2/5 - 1/5*sqrt(-1)', '-2 + 2*sqrt(-1)', (0.4-0.2j))
     """
 
     x: Rational
@@ -140,6 +142,9 @@ class Quadratic:
         for _ in range(abs(exponent)):
             result = result * self
         return result if exponent >= 0 else ONE / result
+
+    def __complex__(self) -> complex:
+        return float(as_fraction(self.x)) + float(as_fraction(self.y)) * cmath.sqrt(self.d)
 
     def __str__(self) -> str:
         root = f"{abs(self.y)}*sqrt({self.d})"

@@ -153,6 +153,7 @@ def test_counting_parameters(given, nodes, expected):
         ("x", "unknown name"),
         ("1 +/- x", "not an exact number"),
         ("1 +/- -1", "below zero"),
+        ("1 +- 1/10", "side by side"),
         ("1 +/- 1 +/- 1", "not an exact number"),
         (0.5, "is not exact"),
         (True, "truth value"),
