@@ -47,6 +47,7 @@ border-color:var(--guilty)}
 .rz summary{cursor:pointer;color:var(--keen);width:fit-content;max-width:100%}
 .rz :focus-visible{outline:2px solid var(--keen);outline-offset:2px}
 .rz .note{border-left:3px solid var(--guilty);padding:.2rem .8rem;margin:.6rem 0;max-width:46rem}
+.rz .note ul{margin:.2rem 0;padding-left:1.2rem}
 .rz .gallery{display:grid;grid-template-columns:repeat(auto-fill,minmax(min(100%,9rem),1fr));gap:1.1rem 1.4rem;
 align-items:start;margin:.6rem 0}
 .rz .gallery.large{grid-template-columns:repeat(auto-fill,minmax(min(100%,17rem),1fr))}
@@ -65,6 +66,7 @@ align-items:start;margin:.6rem 0}
 .rz .picture .card{fill:var(--paper)}
 .rz .picture .empty,.rz .picture .number{opacity:.65}
 .rz math{font-size:1.1em}
+.rz .series{line-height:2.4}
 """
 
 PAGE = """
@@ -92,6 +94,8 @@ body{margin:0}
 .rz dd{margin-bottom:.4rem}
 .rz th,.rz td{padding-right:.55rem}
 .rz .tag{white-space:normal}
+.rz .counts thead th{writing-mode:vertical-rl;text-align:right;padding:0 .75rem .3rem 0}
+.rz .counts td,.rz .counts th{padding-right:.75rem}
 }
 @media (prefers-color-scheme:dark){
 .rz.page{--paper:#14181e;--leaf:#1d232b;--ink:#e7e4da;--faint:#a2a9b4;--rule:#39414c;--keen:#76cdc5;--guilty:#ff8f66;

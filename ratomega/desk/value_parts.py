@@ -79,7 +79,7 @@ def coefficient_table(coefficients: Sequence[Coefficient]) -> Markup:
             )
         )
     head = element("tr", *(element("th", name, scope="col") for name in ("charge", "coefficient of Z", "limit")))
-    said = "exact coefficients; below the status, how it is known that every path gives the same value"
+    said = "exact coefficients; below the status, where every path gives the same value: how that is known"
     caption = element("caption", said)
     rest = None
     if len(coefficients) > MOST_ROWS:
@@ -110,7 +110,8 @@ def values_by_path(coefficients: Iterable[Coefficient]) -> Markup:
                     element("td", element("code", v.path)))
             for v in c.values
         ]
-        head = element("tr", *(element("th", n, scope="col") for n in ("pole order", "value", "path")))
+        value = "leading coefficient" if any(v.order > 0 for v in c.values) else "value"
+        head = element("tr", *(element("th", n, scope="col") for n in ("pole order", value, "path")))
         caption = element("caption", f"charge {charge_word(c.charge)}, path by path, the case's own path first")
         parts.append(
             sheet(f"paths at charge {charge_word(c.charge)}",

@@ -74,6 +74,18 @@ def test_no_table_is_wider_than_the_column_it_stands_in(chromium, page, width):
     assert chromium.run(wide.format(edge)) == 0
 
 
+def test_no_count_is_cut_on_a_phone_and_the_first_terms_wrap(chromium, tmp_path):
+    file = tmp_path / "report.html"
+    ratomega.report("linear-quiver").save(file)
+    look(chromium, file, 360)
+    frames = "return [...document.querySelectorAll('.sheet[aria-label=counts]')].map(e => [e.scrollWidth, {}])"
+    (whole, seen), = chromium.run(frames.format("e.clientWidth"))
+    assert whole <= seen
+    lines = chromium.run("return new Set([...document.querySelectorAll('.series math')].map("
+                         "e => Math.round(e.getBoundingClientRect().bottom / 20))).size")
+    assert lines > 1
+
+
 def test_marked_boxes_are_filled(chromium, page):
     chromium.view(1400)
     chromium.open(page.as_uri())
