@@ -53,6 +53,7 @@ align-items:start;margin:.6rem 0}
 .rz .gallery.large{grid-template-columns:repeat(auto-fill,minmax(min(100%,17rem),1fr))}
 .rz figure{margin:0;max-width:100%}
 .rz figcaption{font-size:.86rem;color:var(--faint);margin-top:.3rem}
+.rz figcaption ul{margin:.2rem 0;padding-left:1rem}
 .rz .picture{display:block;max-width:100%;height:auto;color:var(--ink)}
 .rz .chart .picture{width:34rem}
 .rz .picture .guilty{fill:var(--guilty)}
@@ -102,12 +103,13 @@ body{margin:0}
 --mark:#14181e}
 }
 @media print{
+html{font-size:80%}
 .rz.page{display:block;--paper:#ffffff;--leaf:#ffffff;--ink:#000000;--faint:#333333;--rule:#999999;--keen:#00504c;
 --guilty:#9c2f0e;--mark:#ffffff;padding:0}
-.page nav,.skip{display:none}
+.page nav,.skip,.rz .copy{display:none}
 .rz details::details-content{content-visibility:visible;block-size:auto}
 .rz figure,.rz tr,.rz .checks li{break-inside:avoid}
-.page h2,.rz h3{break-after:avoid}
+.page h2,.rz h3,.rz summary{break-after:avoid}
 .rz .sheet{overflow:visible}
 }
 """

@@ -96,7 +96,8 @@ def copy_box(coefficients: Sequence[Coefficient]) -> Markup:
             lines.append(f"{charge_word(c.charge)}; {text}")
     box = element("textarea", "\n" + "\n".join(lines), readonly=True, rows=min(10, len(lines) + 1),
                   aria_label="charge; exact coefficient", spellcheck="false")
-    return element("details", element("summary", "all finite coefficients as lines to copy"), box)
+    # Of no use on paper, where the table above has the same values: the style sheet leaves it out there.
+    return element("details", element("summary", "all finite coefficients as lines to copy"), box, class_="copy")
 
 
 def values_by_path(coefficients: Iterable[Coefficient]) -> Markup:

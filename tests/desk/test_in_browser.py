@@ -110,11 +110,13 @@ def test_the_keyboard_reaches_what_can_be_opened_and_scrolled(chromium, page):
 def test_paper_shows_what_is_folded(chromium, page):
     look(chromium, page, 794, paper=True)
     heights = chromium.run(
-        "return [...document.querySelectorAll('details:not([open]) > :not(summary)')].map("
+        "return [...document.querySelectorAll('details:not([open]):not(.copy) > :not(summary)')].map("
         "e => e.getBoundingClientRect().height)"
     )
     assert heights
     assert min(heights) > 0
+    # Nothing that scrolls is left: what to copy stands in the table too.
+    assert chromium.run("return [...document.querySelectorAll('textarea')].map(e => e.offsetHeight)") == [0]
 
 
 def test_hostile_names_do_nothing(chromium, tmp_path):
