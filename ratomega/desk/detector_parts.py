@@ -50,7 +50,8 @@ def singular_figure(s: SingularReport, case: Case | None = None) -> Markup:
     if len(factors) > MOST_FACTORS:
         listed.append(element("li", f"and {len(factors) - MOST_FACTORS} more"))
     number = f"{len(factors)} vanishing factor{'s' if len(factors) != 1 else ''}"
-    dead = ", zero all along the path" if s.dead else ""
+    # The order counts what vanishes in the limit; of a weight that is zero before it says nothing.
+    grows = "zero all along the path" if s.dead else element("span", f"order {s.order}", class_="together")
     return element(
         "figure",
         singular_picture(s, names_of(case)).svg(),
@@ -58,8 +59,7 @@ def singular_figure(s: SingularReport, case: Case | None = None) -> Markup:
             "figcaption",
             _diagrams(s, case),
             ": " if case is not None else None,
-            element("span", f"order {s.order}", class_="together"),
-            dead,
+            grows,
             joined(", ", element("span", f"cluster {s.cluster}", class_="together")) if s.cluster is not None else None,
             element("details", element("summary", number), element("ul", *listed)),
         ),
@@ -106,7 +106,7 @@ def counts_table(charges: Sequence[ChargeReport]) -> Markup:
     head = element("tr", *(element("th", name, scope="col", class_="n") for name in names))
     caption = element("caption", "single weights and clusters of each charge")
     return sheet(
-        "counts", element("table", caption, element("thead", head), element("tbody", *rows))
+        "counts", element("table", caption, element("thead", head), element("tbody", *rows), class_="counts")
     )
 
 
@@ -159,7 +159,8 @@ def _charge(head: str, what: str, figures: Sequence[Markup], number: int, opened
     rest = number - len(figures)
     note = None
     if rest:
-        text = f"{rest} more {what} of this charge are not drawn; ratomega detect --json lists all."
+        more = f"{rest} more {what} of this charge are" if rest > 1 else f"1 more {what[:-1]} of this charge is"
+        text = f"{more} not drawn; ratomega detect --json lists all."
         note = element("p", text, class_="note")
     gallery = element("div", *figures, class_="gallery large" if what == "clusters" else "gallery")
     return element("details", element("summary", head), gallery, note, open=opened)

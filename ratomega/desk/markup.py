@@ -15,7 +15,7 @@ from dataclasses import dataclass
 __all__ = ["Child", "Markup", "element", "joined", "verbatim"]
 
 # Elements of HTML without content, which have no end tag.
-VOID = frozenset({"br", "col", "hr", "img", "input", "link", "meta"})
+VOID = frozenset({"br", "col", "hr", "img", "input", "link", "meta", "wbr"})
 
 
 @dataclass(frozen=True, slots=True)

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 
-from ratomega.desk.markup import Child, Markup, element
+from ratomega.desk.markup import Child, Markup, element, joined
 from ratomega.exact.rational import Rational
 
 __all__ = ["formula", "fraction", "polynomial", "ratio", "series"]
@@ -14,8 +14,9 @@ LONGEST_TERM, LONGEST_SERIES = 20, 60
 MOST_TERMS = 6
 
 
-def formula(*children: Child, block: bool = False) -> Markup:
-    return element("math", element("mrow", *children), display="block" if block else "inline")
+def formula(*children: Child, large: bool = False) -> Markup:
+    """A formula in a line of text; ``large`` is with fractions of full size."""
+    return element("math", element("mrow", *children), display="inline", displaystyle="true" if large else None)
 
 
 def _name(letter: str, below: str = "") -> Markup:
@@ -25,6 +26,11 @@ def _name(letter: str, below: str = "") -> Markup:
 
 def _sign(text: str) -> Markup:
     return element("mo", text)
+
+
+def _joint(text: str) -> Markup:
+    """A sign at the beginning of a formula that goes on from the one before it: not the sign of what follows."""
+    return element("mo", text, form="infix")
 
 
 def fraction(value: Rational) -> Markup:
@@ -63,8 +69,11 @@ def polynomial(coefficients: Sequence[int]) -> Markup:
 
 
 def series(values: Sequence[tuple[tuple[int, ...], Rational]]) -> Markup:
-    """Z = the first terms that are short, and an ellipsis. ``values`` are (charge, coefficient) in their order."""
-    parts: list[Child] = [_name("Z"), _sign("=")]
+    """Z = the first terms that are short, and an ellipsis. ``values`` are (charge, coefficient) in their order.
+
+    A paragraph with a formula for every term: browsers break lines between formulas, never inside one.
+    """
+    terms = [formula(_name("Z"), _joint("="))]
     shown = length = 0
     for charge, value in values:
         length += len(str(value))
@@ -72,14 +81,16 @@ def series(values: Sequence[tuple[tuple[int, ...], Rational]]) -> Markup:
             break
         if value == 0:
             continue
+        parts: list[Child] = []
         if shown or value < 0:
-            parts.append(_sign("−" if value < 0 else "+"))
+            parts.append(_joint("−" if value < 0 else "+") if shown else _sign("−"))
         several = len(charge) > 1
         powers = [
             _power(_name("q", str(n) if several else ""), k) for n, k in enumerate(charge, 1) if k
         ]
         if abs(value) != 1 or not powers:
             parts.append(fraction(abs(value)))
-        parts += powers
+        terms.append(formula(*parts, *powers, large=True))
         shown += 1
-    return formula(*parts, _sign("+"), element("mi", "⋯"), block=True)
+    terms.append(formula(_joint("+"), element("mi", "⋯")))
+    return element("p", *(joined(term, element("wbr")) for term in terms), class_="series")

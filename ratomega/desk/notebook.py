@@ -66,7 +66,7 @@ def _limit(result: LimitResult) -> tuple[Child, ...]:
     return (
         element("strong", result.header.case.title or "limit"),
         element("p", summary_line(result.coefficients)),
-        sheet("first terms", formula) if formula is not None else None,
+        formula,
         coefficient_table(result.coefficients),
         values_by_path(result.coefficients),
         element("details", element("summary", "the case, and its path"), case_facts(result.header)),

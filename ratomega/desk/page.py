@@ -123,7 +123,7 @@ def _coefficients(findings: Findings) -> Markup:
     if route.spare_bits is not None:
         how += f" From residues modulo {route.primes} primes, confirmed by {route.spare_bits} spare bits at least."
     return joined(
-        sheet("first terms", formula) if formula is not None else None,
+        formula,
         coefficient_table(limit.coefficients),
         copy_box(limit.coefficients),
         values_by_path(limit.coefficients),
@@ -135,14 +135,19 @@ def _orders(findings: Findings) -> Markup:
     assert findings.detect is not None
     orders = orders_of(findings.detect)
     generic = generic_orders(findings.atlas, len(orders.worst))
-    said = (
-        "Bars: the order n to which the worst single weight diverges, like 1/tⁿ, with the number of singular weights "
-        "above. "
-        "Dashes: the worst order at generic Coulomb parameters and masses. The sum of all weights has the limits above."
-    )
     counts = counts_table(findings.detect.charges)
+    none = "No single weight diverges at any of these charges."
     if not any((*orders.worst, *generic)):
-        return joined(element("p", "No single weight diverges at any of these charges."), counts)
+        return joined(element("p", none), counts)
+    bars = (
+        "Bars: the order n to which the worst single weight diverges, like 1/tⁿ, with the number of singular weights "
+        "above."
+    )
+    said = (
+        f"{bars if any(orders.worst) else none} Dashes: the worst order at generic Coulomb parameters and masses, as "
+        "far as the singular ratios below go. What the sum of all weights does stands above, with the exact "
+        "coefficients."
+    )
     figure = element("figure", orders_chart(orders, generic).svg(), class_="chart")
     return joined(element("p", said, class_="faint small"), figure, counts)
 

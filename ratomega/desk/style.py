@@ -47,11 +47,13 @@ border-color:var(--guilty)}
 .rz summary{cursor:pointer;color:var(--keen);width:fit-content;max-width:100%}
 .rz :focus-visible{outline:2px solid var(--keen);outline-offset:2px}
 .rz .note{border-left:3px solid var(--guilty);padding:.2rem .8rem;margin:.6rem 0;max-width:46rem}
+.rz .note ul{margin:.2rem 0;padding-left:1.2rem}
 .rz .gallery{display:grid;grid-template-columns:repeat(auto-fill,minmax(min(100%,9rem),1fr));gap:1.1rem 1.4rem;
 align-items:start;margin:.6rem 0}
 .rz .gallery.large{grid-template-columns:repeat(auto-fill,minmax(min(100%,17rem),1fr))}
 .rz figure{margin:0;max-width:100%}
 .rz figcaption{font-size:.86rem;color:var(--faint);margin-top:.3rem}
+.rz figcaption ul{margin:.2rem 0;padding-left:1rem}
 .rz .picture{display:block;max-width:100%;height:auto;color:var(--ink)}
 .rz .chart .picture{width:34rem}
 .rz .picture .guilty{fill:var(--guilty)}
@@ -65,6 +67,7 @@ align-items:start;margin:.6rem 0}
 .rz .picture .card{fill:var(--paper)}
 .rz .picture .empty,.rz .picture .number{opacity:.65}
 .rz math{font-size:1.1em}
+.rz .series{line-height:2.4}
 """
 
 PAGE = """
@@ -92,18 +95,21 @@ body{margin:0}
 .rz dd{margin-bottom:.4rem}
 .rz th,.rz td{padding-right:.55rem}
 .rz .tag{white-space:normal}
+.rz .counts thead th{writing-mode:vertical-rl;text-align:right;padding:0 .75rem .3rem 0}
+.rz .counts td,.rz .counts th{padding-right:.75rem}
 }
 @media (prefers-color-scheme:dark){
 .rz.page{--paper:#14181e;--leaf:#1d232b;--ink:#e7e4da;--faint:#a2a9b4;--rule:#39414c;--keen:#76cdc5;--guilty:#ff8f66;
 --mark:#14181e}
 }
 @media print{
+html{font-size:80%}
 .rz.page{display:block;--paper:#ffffff;--leaf:#ffffff;--ink:#000000;--faint:#333333;--rule:#999999;--keen:#00504c;
 --guilty:#9c2f0e;--mark:#ffffff;padding:0}
-.page nav,.skip{display:none}
+.page nav,.skip,.rz .copy{display:none}
 .rz details::details-content{content-visibility:visible;block-size:auto}
 .rz figure,.rz tr,.rz .checks li{break-inside:avoid}
-.page h2,.rz h3{break-after:avoid}
+.page h2,.rz h3,.rz summary{break-after:avoid}
 .rz .sheet{overflow:visible}
 }
 """

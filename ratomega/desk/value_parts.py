@@ -79,7 +79,7 @@ def coefficient_table(coefficients: Sequence[Coefficient]) -> Markup:
             )
         )
     head = element("tr", *(element("th", name, scope="col") for name in ("charge", "coefficient of Z", "limit")))
-    said = "exact coefficients; below the status, how it is known that every path gives the same value"
+    said = "exact coefficients; below the status, where every path gives the same value: how that is known"
     caption = element("caption", said)
     rest = None
     if len(coefficients) > MOST_ROWS:
@@ -96,7 +96,8 @@ def copy_box(coefficients: Sequence[Coefficient]) -> Markup:
             lines.append(f"{charge_word(c.charge)}; {text}")
     box = element("textarea", "\n" + "\n".join(lines), readonly=True, rows=min(10, len(lines) + 1),
                   aria_label="charge; exact coefficient", spellcheck="false")
-    return element("details", element("summary", "all finite coefficients as lines to copy"), box)
+    # Of no use on paper, where the table above has the same values: the style sheet leaves it out there.
+    return element("details", element("summary", "all finite coefficients as lines to copy"), box, class_="copy")
 
 
 def values_by_path(coefficients: Iterable[Coefficient]) -> Markup:
@@ -110,7 +111,8 @@ def values_by_path(coefficients: Iterable[Coefficient]) -> Markup:
                     element("td", element("code", v.path)))
             for v in c.values
         ]
-        head = element("tr", *(element("th", n, scope="col") for n in ("pole order", "value", "path")))
+        value = "leading coefficient" if any(v.order > 0 for v in c.values) else "value"
+        head = element("tr", *(element("th", n, scope="col") for n in ("pole order", value, "path")))
         caption = element("caption", f"charge {charge_word(c.charge)}, path by path, the case's own path first")
         parts.append(
             sheet(f"paths at charge {charge_word(c.charge)}",

@@ -12,6 +12,7 @@ from dataclasses import dataclass
 
 from ratomega.case.affine import Affine
 from ratomega.case.case import Case
+from ratomega.case.expression import INNER
 from ratomega.exact.path import Linear
 from ratomega.exact.quadratic import number_text
 from ratomega.exact.rational import Rational
@@ -75,7 +76,7 @@ def coulomb_poles(eps1: Rational, eps2: Rational, charge: int) -> tuple[CoulombP
 def own_poles(case: Case, eps1: Rational, eps2: Rational) -> tuple[str, ...]:
     """The Coulomb differences of a case that sit on a pole within its charge, as sentences.
 
-    A difference that contains a symbol is free, and sits on none.
+    A difference that contains a symbol is free, and sits on none; u is none, it goes to 0 as t does.
     """
     found = []
     for node, bound in zip(case.theory.nodes, case.bounds, strict=True):
@@ -92,6 +93,7 @@ def own_poles(case: Case, eps1: Rational, eps2: Rational) -> tuple[str, ...]:
 def _on(
     places: dict[Rational, CoulombPole], difference: Affine, eps1: Rational, eps2: Rational
 ) -> CoulombPole | None:
+    difference = difference.at({INNER: Affine()})
     if difference.symbols:
         return None
     value = difference.on(Linear(eps1), Linear(eps2)).constant

@@ -74,6 +74,18 @@ def test_no_table_is_wider_than_the_column_it_stands_in(chromium, page, width):
     assert chromium.run(wide.format(edge)) == 0
 
 
+def test_no_count_is_cut_on_a_phone_and_the_first_terms_wrap(chromium, tmp_path):
+    file = tmp_path / "report.html"
+    ratomega.report("linear-quiver").save(file)
+    look(chromium, file, 360)
+    frames = "return [...document.querySelectorAll('.sheet[aria-label=counts]')].map(e => [e.scrollWidth, {}])"
+    (whole, seen), = chromium.run(frames.format("e.clientWidth"))
+    assert whole <= seen
+    lines = chromium.run("return new Set([...document.querySelectorAll('.series math')].map("
+                         "e => Math.round(e.getBoundingClientRect().bottom / 20))).size")
+    assert lines > 1
+
+
 def test_marked_boxes_are_filled(chromium, page):
     chromium.view(1400)
     chromium.open(page.as_uri())
@@ -98,11 +110,13 @@ def test_the_keyboard_reaches_what_can_be_opened_and_scrolled(chromium, page):
 def test_paper_shows_what_is_folded(chromium, page):
     look(chromium, page, 794, paper=True)
     heights = chromium.run(
-        "return [...document.querySelectorAll('details:not([open]) > :not(summary)')].map("
+        "return [...document.querySelectorAll('details:not([open]):not(.copy) > :not(summary)')].map("
         "e => e.getBoundingClientRect().height)"
     )
     assert heights
     assert min(heights) > 0
+    # Nothing that scrolls is left: what to copy stands in the table too.
+    assert chromium.run("return [...document.querySelectorAll('textarea')].map(e => e.offsetHeight)") == [0]
 
 
 def test_hostile_names_do_nothing(chromium, tmp_path):

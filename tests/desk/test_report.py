@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import base64
 import hashlib
+import html
 import json
 import re
 import subprocess
@@ -16,8 +17,10 @@ from page_reading import check_page
 import ratomega
 from ratomega.case.reading import case_from_text
 from ratomega.cli.main import main
+from ratomega.desk import mathml
 from ratomega.desk.case_toml import case_toml
 from ratomega.exact.quadratic import number_text
+from ratomega.exact.rational import as_rational
 
 
 @pytest.fixture(scope="module")
@@ -191,3 +194,28 @@ def test_empty_diagrams_are_not_a_minus_sign():
     assert "∅ (1): order 1" in text
     assert "- (1): order 1" not in text
     assert "pole t⁻¹" in text
+
+
+def test_words_fit_what_is_there():
+    """Bars are spoken of where there are some; an order is not told of a weight that is zero all along the path."""
+    page = ratomega.report("adjoint-on-the-path").html
+    assert "No single weight diverges at any of these charges. Dashes:" in page
+    assert "Bars:" not in page
+    page = ratomega.report("hypergeometric").html
+    assert ": zero all along the path" in page
+    assert "zero all along the path, " not in page
+    assert re.search(r"order -?\d+</span>, zero", page) is None
+    page = ratomega.report("u2-ratio-two").html
+    assert "1 more cluster of this charge is not drawn" in page
+    assert "2 more configurations of this charge are not drawn" in page
+    page = ratomega.report("surviving-pole").html
+    assert ">leading coefficient</th>" in page
+
+
+def test_the_first_terms_are_a_formula_each():
+    """-1/2 and 3 q with signs of their own: the first is a sign of the number, the others join two terms."""
+    said = str(mathml.series([((0,), as_rational("-1/2")), ((1,), as_rational(3)), ((2,), as_rational(-1))]))
+    terms = re.findall(r"<math.*?</math>", said)
+    assert [html.unescape(re.sub(r"<[^>]*>", "", term)) for term in terms] == ["Z=", "−12", "+3q", "−q2", "+⋯"]
+    assert ["infix" in term for term in terms] == [True, False, True, True, True]
+    assert said.count("<wbr>") == len(terms)

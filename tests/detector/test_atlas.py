@@ -152,6 +152,8 @@ def test_the_case_says_which_pole_it_sits_on():
         "n1: a1 - a2 = ±3, from charge 2 on",
         "n2: a1 - a2 = ±2, from charge 1 on",
     )
+    # u goes to 0 before t does: eps1 + eps2 + 2u/3 ends at the pole eps1 + eps2 = 0, where a symbol would be free.
+    assert ratomega.atlas("vacuum-degenerate").poles.met == ("gauge: a1 - a2 = 0, from charge 1 on",)
 
 
 # ---- documents, command line, mistakes

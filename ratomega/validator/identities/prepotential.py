@@ -221,8 +221,9 @@ def check_one_instanton(case: Case, evaluate: Evaluate, *, most: int = MOST_WORK
     for x in differences:
         leading = leading / x**2
     expected = one_instanton(colours, flavours)
-    own = ", the case's own among them" if ONE in scales else ""
-    return identity.judged([("F_1", leading, expected)], f"equal, from limits at {len(scales)} scales{own}")
+    number = f"{len(scales)} scales" if len(scales) > 1 else "one scale"
+    own = "" if ONE not in scales else ", the case's own among them" if len(scales) > 1 else ", the case's own"
+    return identity.judged([("F_1", leading, expected)], f"equal, from limits at {number}{own}")
 
 
 def one_instanton(coulomb: Sequence[Number], flavours: Sequence[Number]) -> Number:
