@@ -26,7 +26,8 @@ RATIOS = {
     "-2/3": (3, -2),
 }
 
-TOP_CHARGE = {1: 10, 2: 6, 3: 4}
+TOP_CHARGE = {1: 10, 2: 6, 3: 3}
+"""The long run adds charge 4 of three colours (``further``)."""
 
 # The difference 2 is a typed number: at eps1 = 1 or 2 it stays on the lattice of eps1 and eps2 all along the path
 # eps2 + t, elsewhere it meets the lattice at the limit point alone, or not at all.
@@ -64,10 +65,11 @@ class Entry:
     ratio: str
     coulomb: str
     matter: str
+    further: int = 0
 
     @property
     def top(self) -> int:
-        return TOP_CHARGE[self.rank]
+        return TOP_CHARGE[self.rank] + self.further
 
     @property
     def steps(self) -> tuple[int, int]:
@@ -107,10 +109,10 @@ class Entry:
         return f"U({self.rank}) at {self.ratio}, {self.coulomb}, {self.matter}"
 
 
-def census(*, ranks=(1, 2, 3), coulomb=None, matter=None) -> list[Entry]:
+def census(*, ranks=(1, 2, 3), coulomb=None, matter=None, further=0) -> list[Entry]:
     """The entries, filtered by kind of Coulomb parameters and of matter."""
     return [
-        Entry(rank, ratio, kind, multiplets)
+        Entry(rank, ratio, kind, multiplets, further)
         for rank in ranks
         for ratio in RATIOS
         for kind in COULOMB[rank]

@@ -174,6 +174,12 @@ def test_bookkeeping_and_clusters(entry: Entry) -> None:
         check_scan(one, expected[one.charge[0]])
 
 
+@pytest.mark.long
+@pytest.mark.parametrize("entry", census(ranks=(3,), further=1), ids=str)
+def test_bookkeeping_and_clusters_of_three_colours_further(entry: Entry) -> None:
+    test_bookkeeping_and_clusters(entry)
+
+
 def test_the_census_meets_what_it_is_for() -> None:
     """Dead members beside living ones, indeterminate weights, non-compact clusters: all occur, on every rank > 1."""
     for rank in (2, 3):

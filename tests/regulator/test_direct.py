@@ -48,7 +48,7 @@ def test_laurent_expansions_on_the_census(entry: Entry) -> None:
 
 
 @pytest.mark.long
-@pytest.mark.parametrize("entry", census(), ids=str)
+@pytest.mark.parametrize("entry", [*census(ranks=(1, 2)), *census(ranks=(3,), further=1)], ids=str)
 def test_laurent_expansions_on_the_whole_census(entry: Entry) -> None:
     check_against_plain(entry.setting, [(k,) for k in range(entry.top + 1)], last=4)
 
@@ -90,6 +90,8 @@ def test_the_path_may_move_everything() -> None:
 
 # ---- clusters alone
 
+ADJOINTS = ["adjoint", "soft adjoint"]
+
 
 @pytest.mark.parametrize("entry", census(matter=["none", "flavours", "cutting"]), ids=str)
 def test_compact_clusters_are_finite_and_independent_of_the_path(entry: Entry) -> None:
@@ -97,8 +99,8 @@ def test_compact_clusters_are_finite_and_independent_of_the_path(entry: Entry) -
 
 
 @pytest.mark.long
-@pytest.mark.parametrize("entry", census(matter=["adjoint", "soft adjoint"]), ids=str)
-def test_compact_clusters_with_adjoints(entry: Entry) -> None:
+@pytest.mark.parametrize("entry", [*census(ranks=(1, 2), matter=ADJOINTS), *census(ranks=(3,), further=1)], ids=str)
+def test_more_compact_clusters(entry: Entry) -> None:
     check_compact_clusters(entry)
 
 
