@@ -11,6 +11,7 @@ from __future__ import annotations
 from collections.abc import Iterable, Iterator, Sequence
 from dataclasses import replace
 
+from ratomega.diagrams.tuples import count_configurations
 from ratomega.verify.combined import noisy_pairs, offset_pairs
 from ratomega.verify.convention import Variants, pairs, singles
 from ratomega.verify.dropped_singular import dropped
@@ -23,6 +24,9 @@ from ratomega.verify.single_entry import single_entry
 __all__ = ["diagnose"]
 
 MOST_EXPLANATIONS = 8
+# Noise is added up from single weights and two changes make thousands of hypotheses: both are tried where the two
+# cheapest rows have no more configurations than this.
+MOST_FOR_ALL = 200
 
 _Found = tuple[Question, Explanation]
 """An explanation, and the question that it answers."""
@@ -40,14 +44,22 @@ def diagnose(questions: Sequence[Question], whole: Sequence[Question]) -> tuple[
     variants = Variants(asked[0])
     full = {question.quantity: question for question in whole}
     found: list[_Found] = []
-    for stage in (_one_change, _one_entry, _lost_precision, pairs, offset_pairs, noisy_pairs):
+    affordable = _first_cost(asked[0]) <= MOST_FOR_ALL
+    further = (_lost_precision, pairs, offset_pairs, noisy_pairs) if affordable else ()
+    for stage in (_one_change, _one_entry, *further):
         for question in asked:
             rows = full[question.quantity] if stage is _one_entry else question
             found += [(question, explanation) for explanation in stage(rows, variants)]
         # Two changes of convention with a number that was found may as well be an offset and one change.
         if found and (stage is not pairs or any(not explanation.parameters for _, explanation in found)):
             return _sorted(found, asked)
-    return (_unexplained(asked[0], variants),)
+    return (_unexplained(asked[0], variants, affordable=affordable),)
+
+
+def _first_cost(question: Question) -> int:
+    """The configurations of the two cheapest rows above charge 0: with them nearly every hypothesis stands or falls."""
+    rows = [row for row in question.rows if any(row.charge)][:2]
+    return sum(count_configurations(question.setting.ranks, row.charge) for row in rows)
 
 
 def _one_change(question: Question, variants: Variants) -> Iterator[Explanation]:
@@ -95,12 +107,18 @@ def _too_high(question: Question, whole: Question) -> Explanation:
     return Explanation("unexplained", whole.quantity.name, sentence, charges=whole.charges)
 
 
-def _unexplained(question: Question, variants: Variants) -> Explanation:
+def _unexplained(question: Question, variants: Variants, *, affordable: bool) -> Explanation:
     rows = len(question.deviating)
     cut = f"; {variants.left_out} pairs of changes were too many to try" if variants.left_out else ""
+    tried = "no change of convention or two of them, no loss of precision, no single wrong entry"
+    if not affordable:
+        tried = "no change of convention, no single wrong entry"
+        cut = (
+            "; a loss of precision and two changes at once were not looked for, because even the cheapest rows cost "
+            "too much for that"
+        )
     sentence = (
         f"Nothing that was tried explains the {'row that deviates' if rows == 1 else f'{rows} rows that deviate'}: no "
-        "offset, no terms left out, no change of convention or two of them, no loss of precision, no single wrong "
-        f"entry{cut}."
+        f"offset, no terms left out, {tried}{cut}."
     )
     return Explanation("unexplained", question.quantity.name, sentence, charges=question.charges)

@@ -123,6 +123,13 @@ def test_one_high_charge_takes_no_diagnosis_of_its_own():
     assert "charges too high for a diagnosis" in alone.diagnosis[0].sentence
 
 
+def test_costly_rows_alone_are_asked_for_one_change_and_it_is_said():
+    """Several hundred configurations at the least: pairs of changes and noise would take minutes."""
+    result = ratomega.compare(THREE, {11: "1.234e-3", 9: "1.234e-3"}, as_="z")
+    assert (kinds(result), result.used) == (["unexplained"], 2)
+    assert "two changes at once were not looked for" in result.diagnosis[0].sentence
+
+
 def test_factors_of_blocks_that_are_dealt_in_other_ways_are_not_the_same_change():
     result = ratomega.compare(THREE, {1: "-0.60625", 2: "0.1756574675"}, as_="block")
     assert kinds(result) == ["convention"]
