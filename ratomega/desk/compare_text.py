@@ -21,12 +21,13 @@ def compare_text(result: CompareResult) -> str:
     head = ["charge", "given", "digits", "verdict", "approx.", "exact"]
     lines += table(head, [_cells(row) for row in result.rows], left=[1, 3, 4, 5])
     if result.agree:
-        lines += ["", f"all {len(result.rows)} rows agree"]
+        lines += ["", "the one row agrees" if len(result.rows) == 1 else f"all {len(result.rows)} rows agree"]
         return "\n".join(lines) + "\n"
     deviate = sum(1 for row in result.rows if not row.agrees)
-    lines += ["", f"{deviate} of {len(result.rows)} rows deviate"]
+    lines += ["", "the one row deviates" if len(result.rows) == 1 else f"{deviate} of {len(result.rows)} rows deviate"]
     if result.used not in (0, len(result.rows)):
-        lines.append(f"the diagnosis is made from the {result.used} cheapest rows")
+        rows = "row" if result.used == 1 else f"{result.used} rows"
+        lines.append(f"the diagnosis is made from the cheapest {rows}; further ones would cost too much")
     lines += ["", "diagnosis" if len(result.diagnosis) == 1 else "diagnosis, the simplest first"]
     for number, one in enumerate(result.diagnosis, 1):
         lines += _explanation(number, one, result.quantity)

@@ -11,7 +11,7 @@ from collections.abc import Iterator, Sequence
 from dataclasses import dataclass, replace
 
 from ratomega.case.setting import Setting
-from ratomega.exact.rational import ONE, Rational, decimal_text, exact_text
+from ratomega.exact.rational import Rational, decimal_text, exact_text
 from ratomega.verify.case_edits import changed_lines
 from ratomega.verify.convention import Variant, Variants
 from ratomega.verify.dropped_singular import omissions
@@ -22,7 +22,14 @@ from ratomega.verify.offset import Change, Direction, directions, offset_at, off
 from ratomega.verify.precision_loss import precision_loss
 from ratomega.verify.question import Question
 from ratomega.verify.series import Series
-from ratomega.verify.series_edits import Family, SeriesEdit, families, fixed_edits, named_exponents
+from ratomega.verify.series_edits import (
+    Family,
+    SeriesEdit,
+    families,
+    fixed_edits,
+    has_another_name,
+    named_exponents,
+)
 
 __all__ = ["noisy_pairs", "offset_pairs"]
 
@@ -30,6 +37,8 @@ __all__ = ["noisy_pairs", "offset_pairs"]
 MANY = 30
 # Noise is looked for where the cheapest row is as near as this: offsets in floating point are small.
 NEAR = Rational(1, 100)
+# A number fitted together with another one is less certain than the rows say by themselves.
+CARRIED = 1000
 
 
 def offset_pairs(question: Question, variants: Variants) -> Iterator[Explanation]:
@@ -139,8 +148,11 @@ def _with_number(question: Question, direction: Direction, family: Family, tried
             continue
         for delta, free, cost in _candidates(*solution):
             fit = _fitted(question, direction, family, fixing, delta, free)
-            if fit is None or (fit.value == -ONE and not family.factor):
+            if fit is None:
                 continue
+            if has_another_name(family, direction.setting, fit.value, fit.uncertainty * CARRIED):
+                # The fixed change was tried as well.
+                return
             fitted = int(free) + int(fit.free)
             if enough_evidence(question.digits, fitted=fitted, tried=tried * 10 ** (cost + fit.cost)):
                 yield _explanation(question, direction, family, fit, delta, fitted)
@@ -150,7 +162,7 @@ def _with_number(question: Question, direction: Direction, family: Family, tried
 def _candidates(delta: Rational, uncertainty: Rational) -> Iterator[tuple[Rational, bool, float]]:
     """Offsets to try: a short decimal, with what it costs to have chosen it; the fitted one, which counts as fitted."""
     # The number that was eliminated carries the rounding of its row into delta.
-    for digits, short in short_decimals(delta, uncertainty * 1000):
+    for digits, short in short_decimals(delta, uncertainty * CARRIED):
         yield short, False, digits + 1
     yield delta, True, 0.0
 

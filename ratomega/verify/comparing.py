@@ -9,7 +9,7 @@ from ratomega.case.reading import CaseSource, load_case
 from ratomega.chain.job import MOST_CONFIGURATIONS, Job
 from ratomega.chain.pipeline import limit_result
 from ratomega.diagrams.tuples import Charge, configurations, count_all, count_configurations
-from ratomega.errors import InputError, Problem
+from ratomega.errors import InputError, Problem, RatomegaError
 from ratomega.exact.quadratic import Number
 from ratomega.exact.rational import Rational
 from ratomega.exact.rational_function import RationalFunction
@@ -29,7 +29,13 @@ __all__ = ["CompareResult", "compare"]
 
 # The diagnosis sums the configurations of a row many times over; rows beyond this are compared and not diagnosed from.
 MOST_DIAGNOSED = 2000
+# Rounding errors are added up from every weight at and below a charge; beyond so many a row stands as it was given.
+MOST_ROUNDED = 20_000
 ROUNDING_AT_MOST = Rational(1, 10**8)
+
+
+class _NotRealError(RatomegaError):
+    """An exact value is not real by this reading."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -63,10 +69,12 @@ def compare(
 
     ``numbers`` is a CSV or JSON file, a JSON text, a mapping from charges to values or a list of rows (``verify.table``
     says how they look). ``as_`` says what they are: "z", "log", "prepotential" (-eps1 eps2 log Z) or "block"; without
-    it each is tried, and the first that all rows agree with is taken.
+    it each that is real is tried, and the first that all rows agree with is taken, or else the one that most rows
+    agree with, where half of them do.
 
-    Raises ``InputError`` for a bad table (row and column named), a case with symbols or with u, and a row whose charge
-    has no finite limit. Cost: the exact limits, and where rows deviate some thousand sums at low charges.
+    Raises ``InputError`` for a bad table (row and column named), a case with symbols or with u, a row whose charge
+    has no finite limit, and exact values that are not real. Cost: the exact limits, and where rows deviate some
+    thousand sums at low charges.
 
     >>> case = {"charge": 1, "background": {"eps1": 1, "eps2": 1}, "node": [{"coulomb": [0]}]}
     >>> compare(case, {1: "1.00", 2: "0.50", 3: "0.17"}).agree            # exp(q)
@@ -84,15 +92,45 @@ def compare(
     result = limit_result(job, list(job.limits(probes=1)))
     z = _exact_series(result.coefficients, table)
     source = Source(job.setting)
-    found = {one: _rows(table, one, one.of(z, job.setting), source) for one in chosen}
+    found = _readings(table, chosen, z, source)
     for quantity, rows in found.items():
         if all(row.agrees for row in rows):
             return CompareResult(result.header, quantity.name, rows, (), 0)
+    likely = _likely(found, table)
     used = _affordable(table, job.setting.ranks)
-    explanations = _diagnosis(job, source, table, used, found)
+    explanations = _diagnosis(job, source, table, used, likely)
     best = explanations[0].quantity
-    shown = next(rows for one, rows in found.items() if one.name == best)
+    shown = next(rows for one, rows in likely.items() if one.name == best)
     return CompareResult(result.header, best, shown, explanations, len(used))
+
+
+def _readings(
+    table: tuple[Given, ...], chosen: tuple[Quantity, ...], z: Series, source: Source
+) -> dict[Quantity, tuple[Row, ...]]:
+    """The rows by every reading that is real. Raises ``InputError`` where none is: tables hold real numbers."""
+    found = {}
+    refused = []
+    for one in chosen:
+        try:
+            found[one] = _rows(table, one, one.of(z, source.setting), source)
+        except _NotRealError as error:
+            refused.append(error)
+    if not found:
+        raise InputError.single(str(refused[0]), "case")
+    return found
+
+
+def _likely(found: dict[Quantity, tuple[Row, ...]], table: tuple[Given, ...]) -> dict[Quantity, tuple[Row, ...]]:
+    """What the numbers are, where the rows say it: the readings that most rows agree with, half of them at least.
+
+    A zero says nothing: log Z of a short series and Z with most terms left out have many. Otherwise every reading.
+    """
+    telling = [n for n, given in enumerate(table) if given.value != 0]
+    count = {one: sum(1 for n in telling if rows[n].agrees) for one, rows in found.items()}
+    most = max(count.values())
+    if 2 * most < len(telling):
+        return found
+    return {one: rows for one, rows in found.items() if count[one] == most}
 
 
 def _covering(case: Case, table: tuple[Given, ...]) -> Case:
@@ -128,7 +166,7 @@ def _exact_series(coefficients: object, table: tuple[Given, ...]) -> Series:
 
 
 def _rows(table: tuple[Given, ...], quantity: Quantity, series: Series, source: Source) -> tuple[Row, ...]:
-    """Raises ``InputError`` where an exact value is not real: tables hold real numbers."""
+    """Raises ``_NotRealError`` where an exact value is not real."""
     rows = []
     for given in table:
         exact = series(given.charge)
@@ -136,7 +174,7 @@ def _rows(table: tuple[Given, ...], quantity: Quantity, series: Series, source: 
         if real is None:
             shown = ",".join(str(k) for k in given.charge)
             message = f"the exact value at charge {shown} is not real, and a table holds real numbers"
-            raise InputError.single(message, "case")
+            raise _NotRealError(message)
         row = compared(given, exact, real)
         if not row.agrees and given.double and _may_be_rounding(given, real):
             row = compared(_with_rounding(given, quantity, source), exact, real)
@@ -152,6 +190,8 @@ def _may_be_rounding(given: Given, real: Rational) -> bool:
 def _with_rounding(given: Given, quantity: Quantity, source: Source) -> Given:
     """The number with the rounding errors of a sum in double precision allowed, where nothing is singular."""
     ranks = source.setting.ranks
+    if count_all(ranks, given.charge) > MOST_ROUNDED:
+        return given
     regular = all(
         source.weights.weight(c).vanishing_denominators == 0
         for j in below(given.charge)
@@ -171,7 +211,7 @@ def _affordable(table: tuple[Given, ...], ranks: tuple[int, ...]) -> tuple[Given
     total = 0
     for row in rows:
         total += costs[row.charge]
-        if total > MOST_DIAGNOSED and len(kept) > 1:
+        if total > MOST_DIAGNOSED:
             break
         kept.append(row)
     return tuple(kept)
@@ -185,20 +225,27 @@ def _diagnosis(
     found: dict[Quantity, tuple[Row, ...]],
 ) -> tuple[Explanation, ...]:
     questions: list[Question] = []
+    whole: list[Question] = []
     for quantity, rows in found.items():
         tolerances = {row.charge: row.tolerance for row in rows}
-        allowed = tuple(replace(row, tolerance=tolerances[row.charge]) for row in used)
         exact: dict[Charge, Rational] = {}
         for row in rows:
             real = real_value(row.exact)
             assert real is not None
             exact[row.charge] = real
-        values = tuple(exact[row.charge] for row in used)
-        question = Question(job.case, job.setting, source, quantity, allowed, values)
-        if question.deviating and all(values != other.exact for other in questions):
+
+        def ask(
+            chosen: tuple[Given, ...],
+            quantity: Quantity = quantity,
+            tolerances: dict[Charge, Rational] = tolerances,
+            exact: dict[Charge, Rational] = exact,
+        ) -> Question:
+            allowed = tuple(replace(row, tolerance=tolerances[row.charge]) for row in chosen)
+            values = tuple(exact[row.charge] for row in chosen)
+            return Question(job.case, job.setting, source, quantity, allowed, values)
+
+        question = ask(used)
+        if all(question.exact != other.exact for other in questions):
             questions.append(question)
-    if not questions:
-        charges = tuple(row.charge for row in table if row not in used)
-        sentence = "The rows that deviate are at charges too high for a diagnosis; those at lower charges agree."
-        return (Explanation("unexplained", next(iter(found)).name, sentence, charges=charges),)
-    return diagnose(questions)
+            whole.append(ask(table))
+    return diagnose(questions, whole)

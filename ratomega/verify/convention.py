@@ -14,7 +14,7 @@ from ratomega.case.case import Case
 from ratomega.case.setting import Setting, own_setting
 from ratomega.diagrams.tuples import count_configurations
 from ratomega.errors import PathError
-from ratomega.exact.rational import ONE, Rational, exact_text
+from ratomega.exact.rational import Rational, exact_text
 from ratomega.verify.case_edits import CaseEdit, case_edits, changed_lines, theory_key
 from ratomega.verify.dropped_singular import omissions
 from ratomega.verify.explanation import Explanation, enough_evidence
@@ -22,7 +22,14 @@ from ratomega.verify.fitting import fitted_number, number_words
 from ratomega.verify.offset import Direction, directions
 from ratomega.verify.question import Question
 from ratomega.verify.series import Series
-from ratomega.verify.series_edits import Family, SeriesEdit, families, fixed_edits, named_exponents
+from ratomega.verify.series_edits import (
+    Family,
+    SeriesEdit,
+    families,
+    fixed_edits,
+    has_another_name,
+    named_exponents,
+)
 from ratomega.verify.source import NoLimitError, Source
 
 __all__ = ["Variant", "Variants", "pairs", "singles"]
@@ -226,8 +233,7 @@ def _fitted(question: Question, variant: Variant, edits: list[SeriesEdit], tried
             fit = fitted_number(question, build, pivot, neutral=family.neutral, named=named if family.factor else {})
         except NoLimitError:
             continue
-        if fit is None or (fit.value == -ONE and not family.factor and family.pivot is not None):
-            # q -> -q has a name of its own.
+        if fit is None or has_another_name(family, variant.setting, fit.value, fit.uncertainty):
             continue
         if alone and not fit.name:
             continue

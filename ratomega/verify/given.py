@@ -24,6 +24,8 @@ DOUBLE = Rational(1, 2**48)
 # Less than one unit of the last digit.
 UNIT_SHARE = Rational(1023, 1024)
 ALLOWED_UNCERTAINTIES = 3
+# What typesetting makes of a minus.
+MINUS = "\u2212"
 
 _INTEGER = re.compile(r"[+-]?\d+")
 _DECIMAL = re.compile(r"[+-]?(?P<whole>\d*)\.?(?P<decimals>\d*)(?:[eE](?P<exponent>[+-]?\d+))?")
@@ -66,13 +68,14 @@ def read_number(value: object, where: str) -> tuple[str, Rational]:
     if isinstance(value, bool) or not isinstance(value, (int, float, str, Fraction, Decimal)):
         raise InputError.single(f"a number is decimal text or an exact fraction, not {kind(value)}", where)
     # repr of a subclass of float need not be a number.
-    text = (repr(float(value)) if isinstance(value, float) else str(value)).strip()
+    text = (repr(float(value)) if isinstance(value, float) else str(value)).strip().replace(MINUS, "-")
     try:
         return text, as_rational(text, where)
     except InputError as error:
         if "divides by zero" in str(error) or "exponent" in str(error) or "characters" in str(error):
             raise
-        message = f'{quoted(text)} is not a number; write decimal text or a fraction, such as "0.5625" or "9/16"'
+        hint = "; a decimal has a point, not a comma" if "," in text else ""
+        message = f'{quoted(text)} is not a number; write decimal text or a fraction, such as "0.5625" or "9/16"{hint}'
         raise InputError.single(message, where) from error
 
 

@@ -275,4 +275,4 @@ def _orders(question: Question, direction: Direction, delta: Rational) -> str:
         value = question.value(near, row)
         if value is not None and not row.agrees(exact + (value - exact) / STEP * delta):
             second += 1
-    return f", {second} of them only with the next order in the offset" if second else ""
+    return f" (the first derivative alone would miss {second} of them)" if second else ""

@@ -43,6 +43,7 @@ LEAST_DIGITS = 14
 SPREAD = 2.0
 LEAST_SPREAD = 3.5
 LEAST_GROWTH = 1.0
+LEAST_NOISY = 3
 COMMON = ("double", "single")
 MOST_PIVOTS = 4
 GRID = [Rational(1, 10**n) for n in range(2, 13)]
@@ -194,7 +195,8 @@ def _deltas(
                 near = short_decimals(solution[0], solution[1] * int(CLEAN))
                 yield from ((short, ZERO) for _, short in near)
             yield solution
-    if not clean:
+    # Without a row that shows the offset the growth has to: in fewer rows than that nothing can be found.
+    if not clean and sum(1 for row in question.rows if orders[row.charge] > 0) >= LEAST_NOISY:
         for delta in GRID:
             yield delta, ZERO
 
@@ -300,7 +302,7 @@ def _grows(question: Question, noisy: list[_Noisy]) -> bool:
         worst[one.order] = max(worst.get(one.order, 0.0), one.rest / size)
     errors = [worst[order] for order in sorted(worst)]
     steps = pairwise(errors)
-    return len(noisy) >= 3 and len(errors) >= 2 and all(b >= a * 10**LEAST_GROWTH for a, b in steps)
+    return len(noisy) >= LEAST_NOISY and len(errors) >= 2 and all(b >= a * 10**LEAST_GROWTH for a, b in steps)
 
 
 def _explanation(

@@ -12,7 +12,7 @@ from ratomega.exact.rational import Rational
 from ratomega.verify.explanation import evidence
 from ratomega.verify.given import Given
 from ratomega.verify.quantities import Quantity
-from ratomega.verify.rows import real_value
+from ratomega.verify.rows import agreeing_digits, real_value
 from ratomega.verify.series import Series
 from ratomega.verify.source import NoLimitError, Source
 
@@ -43,6 +43,12 @@ class Question:
     def digits(self) -> list[float]:
         """What the deviating rows prove, most first."""
         return evidence(self.rows, self.exact)
+
+    @property
+    def nearness(self) -> int:
+        """In how many digits the rows agree with the exact values, all together."""
+        pairs = zip(self.rows, self.exact, strict=True)
+        return sum(agreeing_digits(row.value, exact) for row, exact in pairs)
 
     def values(self, series: Series) -> tuple[Rational, ...] | None:
         """The values of all rows by a series of the quantity; None where one is not real or has no limit."""

@@ -5,7 +5,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterator
+from collections.abc import Callable, Iterable, Iterator
 from dataclasses import dataclass
 
 from ratomega.case.setting import Setting
@@ -15,7 +15,7 @@ from ratomega.exact.quadratic import Number, is_quadratic, only_rational
 from ratomega.exact.rational import ONE, ZERO, Rational
 from ratomega.verify.series import Series, remembered, rescaled, scaled, times
 
-__all__ = ["Family", "SeriesEdit", "families", "fixed_edits", "named_exponents"]
+__all__ = ["Family", "SeriesEdit", "families", "fixed_edits", "has_another_name", "named_exponents"]
 
 Build = Callable[[Series, Setting], Series]
 
@@ -35,27 +35,48 @@ def fixed_edits(setting: Setting) -> Iterator[SeriesEdit]:
     names = ["q"] if count == 1 else [f"q of {node.name}" for node in setting.nodes]
     for v, name in enumerate(names):
         signs = tuple(-ONE if u == v else ONE for u in range(count))
-        yield _rescaling(f"{name} -> -{name}", signs)
+        yield _rescaling(setting, f"{name} -> -{name}", signs)
     if count > 1:
-        yield _rescaling("every q -> -q", (-ONE,) * count)
+        yield _rescaling(setting, "every q -> -q", (-ONE,) * count)
     most = max(2, *setting.ranks)
     every = "q" if count == 1 else "every q"
+    of_charge, whole = _charge_words(setting, range(count))
     for power in range(1, most + 1):
         for sign in (1, -1):
             exponent = sign * power
             yield SeriesEdit(
                 f"{every} -> q*(eps1*eps2)^{exponent}" if exponent != 1 else f"{every} -> q*eps1*eps2",
-                f"multiply the coefficient of charge k by (eps1*eps2)^({exponent}*k)",
+                f"multiply the coefficient of charge {of_charge} by (eps1*eps2)^({exponent}*{whole})",
                 lambda z, s, n=exponent: rescaled(z, (_area(s) ** n,) * count),  # type: ignore[misc]
             )
+
+
+def has_another_name(family: Family, setting: Setting, s: Rational, uncertainty: Rational) -> bool:
+    """Is a number that was fitted to a scale of q one of ``fixed_edits``, as far as it is known?"""
+    if family.factor or family.pivot is None:
+        return False
+    area, most = _area(setting), max(2, *setting.ranks)
+    known = [-ONE, *(area**n for n in range(-most, most + 1) if not is_quadratic(area))]
+    return any(abs(only_rational(one) - s) <= uncertainty for one in known)
 
 
 def _area(setting: Setting) -> Number:
     return setting.eps1.constant * setting.eps2.constant
 
 
-def _rescaling(words: str, factors: tuple[Number, ...]) -> SeriesEdit:
-    return SeriesEdit(words, "multiply the coefficient of charge k by (-1)^k", lambda z, _: rescaled(z, factors))
+def _rescaling(setting: Setting, words: str, factors: tuple[Number, ...]) -> SeriesEdit:
+    of_charge, exponent = _charge_words(setting, [v for v, factor in enumerate(factors) if factor != 1])
+    advice = f"multiply the coefficient of charge {of_charge} by (-1)^{exponent}"
+    return SeriesEdit(words, advice, lambda z, _: rescaled(z, factors))
+
+
+def _charge_words(setting: Setting, nodes: Iterable[int]) -> tuple[str, str]:
+    """The charge by its nodes, and the sum of it over some of them: k, or (k_left, k_right) and k_right."""
+    if len(setting.nodes) == 1:
+        return "k", "k"
+    names = [f"k_{node.name}" for node in setting.nodes]
+    chosen = [names[v] for v in nodes]
+    return f"({', '.join(names)})", chosen[0] if len(chosen) == 1 else f"({' + '.join(chosen)})"
 
 
 @dataclass(frozen=True, slots=True)

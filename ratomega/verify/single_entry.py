@@ -9,6 +9,7 @@ from ratomega.verify.question import Question
 
 __all__ = ["misprint", "single_entry"]
 
+LEAST_DIGITS = 2
 # With a digit too few or too many the last place stands for another power of ten.
 SHIFTS = (Rational(1, 10), Rational(10))
 
@@ -45,10 +46,15 @@ def right_text(row: Given, exact: Rational) -> str:
 def misprint(row: Given, exact: Rational) -> str:
     """What was miswritten: the sign, a power of ten, neighbouring digits exchanged, one digit; empty when it is none.
 
+    It has to turn the given number into the right one to the digits given, and those must be two at least: one digit
+    is turned into any other by one digit.
+
     >>> from ratomega.verify.table import read_table
     >>> [misprint(read_table({1: text}, ["g"])[0], Rational(5678, 10000)) for text in ("0.5768", "-0.5678", "0.5675")]
     ['neighbouring digits exchanged', 'the sign', 'one digit']
     """
+    if sum(c.isdigit() for c in row.text.lower().partition("e")[0].lstrip("+-0.")) < LEAST_DIGITS:
+        return ""
     if row.agrees(-exact) or row.value == -exact:
         return "the sign"
     if exact != 0:
@@ -57,6 +63,9 @@ def misprint(row: Given, exact: Rational) -> str:
             if abs(row.value / scale - exact) <= row.tolerance / scale:
                 return f"a factor {exact_text(scale)}"
     given, right = _digits(row, exact)
+    if row.digits is not None and len(right.lstrip("0")) < LEAST_DIGITS:
+        # Too small to show at the last place given.
+        return ""
     if len(given) != len(right):
         return "one digit left out or added" if _one_more(given, right) else ""
     differ = [n for n, (a, b) in enumerate(zip(given, right, strict=True)) if a != b]

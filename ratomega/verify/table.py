@@ -35,6 +35,7 @@ MOST_PROBLEMS = 100
 LONGEST_FIELD = 2000
 MANY_DIGITS = 7
 
+SEPARATORS = (";", ",", "\t")
 VALUE, UNCERTAINTY = "value", "uncertainty"
 _CHARGE = re.compile(r"\+?\d{1,6}")
 _NUMBERLIKE = re.compile(r"\s*[+-]?\.?\d")
@@ -218,11 +219,12 @@ def _charges(value: object) -> Sequence[object]:
     return value if isinstance(value, Sequence) and not isinstance(value, str) else [value]
 
 
-def _cells(cells: Sequence[object], number: int, where: str, nodes: Sequence[str]) -> _Raw:
+def _cells(cells: Sequence[object], number: int, where: str, nodes: Sequence[str], hint: str = "") -> _Raw:
     n = len(nodes)
     if not n + 1 <= len(cells) <= n + 2:
         charges = "the charge" if n == 1 else f"{n} charges"
-        message = f"{len(cells)} columns; expected are {charges}, the value and perhaps an uncertainty"
+        columns = "1 column" if len(cells) == 1 else f"{len(cells)} columns"
+        message = f"{columns}; expected are {charges}, the value and perhaps an uncertainty{hint}"
         raise InputError.single(message, f"{where}, column {min(len(cells), n + 2) + 1}")
     return _Raw(number, cells[:n], cells[n], cells[n + 1] if len(cells) > n + 1 else None)
 
@@ -243,13 +245,21 @@ def _from_csv(text: str, label: str, nodes: Sequence[str]) -> Iterator[_Raw]:
         if seen > MOST_ROWS:
             raise InputError.single(f"a table has at most {MOST_ROWS} rows", label)
         if order and len(cells) != len(order):
-            message = f"{len(cells)} columns where the header has {len(order)}"
+            message = f"{len(cells)} columns where the header has {len(order)}{_hint(line)}"
             raise InputError.single(message, f"{where}, column {min(len(cells), len(order)) + 1}")
-        yield _cells([cells[n] for n in order] if order else cells, number, where, nodes)
+        yield _cells([cells[n] for n in order] if order else cells, number, where, nodes, _hint(line))
+
+
+def _hint(line: str) -> str:
+    """What to say where the columns do not come out: are there blanks between them?"""
+    if not any(separator in line for separator in SEPARATORS) and len(line.split()) > 1:
+        return "; columns are separated by commas, not by blanks"
+    return ""
 
 
 def _split(line: str, where: str) -> list[str]:
-    separator = next((s for s in (",", ";", "\t") if s in line), ",")
+    # Commas beside semicolons are decimal ones, which are refused as numbers.
+    separator = next((s for s in SEPARATORS if s in line), ",")
     try:
         cells = next(csv.reader([line], delimiter=separator, strict=True))
     except csv.Error as error:

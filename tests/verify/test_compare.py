@@ -12,7 +12,11 @@ from faulty_tables import decimal, exact_limits, table
 from flint import fmpq
 
 import ratomega
+from ratomega.desk.compare_text import compare_text
 from ratomega.errors import InputError
+from ratomega.exact.rational import as_rational
+from ratomega.verify.single_entry import misprint
+from ratomega.verify.table import read_table
 
 U2 = {
     "charge": 2,
@@ -25,6 +29,22 @@ FOUR = {
     "node": [
         {"coulomb": ["2/7", "-2/7"], "antifundamental": ["1/2", "1/5", "2/7", "7/9"], "fundamental": [], "adjoint": []}
     ],
+}
+# Fields of Liouville theory: Z has a complex U(1) factor, the block is real.
+LIOUVILLE = {
+    "charge": 2,
+    "background": {"eps1": "1", "eps2": "1"},
+    "node": [
+        {
+            "coulomb": ["i/2", "-i/2"],
+            "antifundamental": ["1 + i/4 + i/3", "1 + i/4 - i/3", "1 + i/5 + i/6", "1 + i/5 - i/6"],
+        }
+    ],
+}
+THREE = {
+    "charge": 2,
+    "background": {"eps1": "1", "eps2": "1"},
+    "node": [{"coulomb": ["1/3", "-1/3"], "antifundamental": ["1/2", "1/4"], "fundamental": ["1/5"]}],
 }
 QUIVER = {
     "charge": 2,
@@ -76,6 +96,53 @@ def test_a_block_taken_for_z_is_a_factor():
     first = ratomega.compare(U2, table(values), as_="z").diagnosis[0]
     assert first.kind == "convention"
     assert first.parameters == (("s", "3/7"),)
+
+
+def test_what_most_rows_agree_with_is_what_the_numbers_are():
+    """Read as a block the two low rows would fit as well, with a U(1) factor of its own."""
+    result = ratomega.compare(THREE, {1: "-0.60625", 2: "0.1756574675", 14: "1e-20"})
+    assert (result.quantity, [row.agrees for row in result.rows]) == ("z", [True, True, False])
+    assert [(one.kind, one.charges) for one in result.diagnosis] == [("single-entry", ((14,),))]
+
+
+def test_a_row_that_is_too_costly_for_the_diagnosis_counts_in_it():
+    """One wrong entry is not two: the other one is at a charge from which nothing is diagnosed."""
+    rows = {1: "-0.60625", 2: "0.1756574675", 3: "-0.03205464"}
+    one = ratomega.compare(THREE, {**rows, 2: "0.1856574675"})
+    assert kinds(one) == ["single-entry"]
+    two = ratomega.compare(THREE, {**rows, 2: "0.1856574675", 15: "1e-12", 16: "1e-3"}, as_="z")
+    assert (kinds(two), two.used) == (["unexplained"], 3)
+
+
+def test_one_high_charge_takes_no_diagnosis_of_its_own():
+    """Forty thousand configurations: with the diagnosis made from them this would not come to an end."""
+    result = ratomega.compare(THREE, {1: "-0.60625", 22: "1e-20"})
+    assert (kinds(result), result.used) == (["single-entry"], 1)
+    alone = ratomega.compare(THREE, {22: "1e-20"})
+    assert (kinds(alone), alone.used) == (["unexplained"], 0)
+    assert "charges too high for a diagnosis" in alone.diagnosis[0].sentence
+
+
+def test_costly_rows_alone_are_asked_for_one_change_and_it_is_said():
+    """Several hundred configurations at the least: pairs of changes and noise would take minutes."""
+    result = ratomega.compare(THREE, {11: "1.234e-3", 9: "1.234e-3"}, as_="z")
+    assert (kinds(result), result.used) == (["unexplained"], 2)
+    assert "two changes at once were not looked for" in result.diagnosis[0].sentence
+
+
+def test_factors_of_blocks_that_are_dealt_in_other_ways_are_not_the_same_change():
+    result = ratomega.compare(THREE, {1: "-0.60625", 2: "0.1756574675"}, as_="block")
+    assert kinds(result) == ["convention"]
+    assert result.diagnosis[0].equal == ()
+
+
+def test_readings_that_are_not_real_are_passed_over():
+    # The block of these weights from the recursion of Al. Zamolodchikov, Theor. Math. Phys. 73 (1987), in ``block``.
+    block = {n: str(one.block) for n, one in enumerate(ratomega.block(LIOUVILLE, order=3).coefficients) if n}
+    result = ratomega.compare(LIOUVILLE, block)
+    assert (result.quantity, result.agree) == ("block", True)
+    block[3] = "1/2"
+    assert kinds(ratomega.compare(LIOUVILLE, block)) == ["single-entry"]
 
 
 # ---- rows ----
@@ -169,6 +236,50 @@ def test_how_an_entry_was_miswritten(change, how):
     assert dict(only.parameters).get("misprint", "") == how
 
 
+@pytest.mark.parametrize(
+    ("given", "value", "how"),
+    [
+        # One digit, or none that shows at the last place given: any digit is another one, and anything a power of ten.
+        ("1e-20", "3e-26", ""),
+        ("0.3", "0.7", ""),
+        ("-0.3", "0.3", ""),
+        ("1.0e-20", "5.1e-27", ""),
+        ("0.10", "0.00321", ""),
+        ("1.7e-20", "2.2e-23", ""),
+        ("1.7e-20", "1.7e-23", "a factor 1000"),
+        ("1.7e-20", "2.7e-20", "one digit"),
+        ("1.7e-20", "7.1e-20", "neighbouring digits exchanged"),
+        ("-1.7e-20", "1.7e-20", "the sign"),
+    ],
+)
+def test_no_story_is_told_about_few_digits(given, value, how):
+    (row,) = read_table({1: given}, ["gauge"])
+    assert misprint(row, as_rational(value)) == how
+
+
+def test_the_edit_of_a_quiver_names_its_nodes():
+    z = {c.charge: c.value for c in ratomega.limit({**QUIVER, "charge": [2, 2]})}
+    turned = {(a, b): decimal(value * (-1) ** b, 12) for (a, b), value in z.items()}
+    advice = {one.changes: one.edits for one in ratomega.compare(QUIVER, turned).diagnosis}
+    edit = "multiply the coefficient of charge (k_left, k_right) by (-1)^k_right"
+    assert advice[("q of right -> -q of right",)] == (edit,)
+    turned = {(a, b): decimal(value * (-1) ** (a + b), 12) for (a, b), value in z.items()}
+    advice = {one.changes: one.edits for one in ratomega.compare(QUIVER, turned).diagnosis}
+    edit = "multiply the coefficient of charge (k_left, k_right) by (-1)^(k_left + k_right)"
+    assert advice[("every q -> -q",)] == (edit,)
+
+
+def test_the_next_orders_of_an_offset_are_said_plainly():
+    first = ratomega.compare(U2, table(faulty_tables.at_offset(U2, fmpq(1, 1000)))).diagnosis[0]
+    assert first.sentence.endswith("gives all 5 rows (the first derivative alone would miss 4 of them).")
+
+
+def test_one_row_is_not_all_rows():
+    text = compare_text(ratomega.compare(U2, {0: "1"}))
+    assert text.endswith("\nthe one row agrees\n")
+    assert "\nthe one row deviates\n" in compare_text(ratomega.compare("u2-pure", {1: "0.6625"}))
+
+
 def test_quivers_too():
     z = {c.charge: c.value for c in ratomega.limit({**QUIVER, "charge": [2, 2]})}
     good = {charge: decimal(value, 12) for charge, value in z.items()}
@@ -188,7 +299,10 @@ def test_cases_that_have_no_numbers_are_refused():
     with pytest.raises(InputError, match="pole survives"):
         ratomega.compare("surviving-pole", {1: "1"})
     with pytest.raises(InputError, match="not real"):
-        ratomega.compare("imaginary-momenta", {1: "1"})
+        ratomega.compare("imaginary-momenta", {1: "1"}, as_="z")
+    # The adjoint mass makes the block complex as well.
+    with pytest.raises(InputError, match="not real"):
+        ratomega.compare({**LIOUVILLE, "node": [{"coulomb": ["i/2", "-i/2"], "adjoint": ["i/3"]}]}, {1: "1"})
     with pytest.raises(InputError, match="choose one of"):
         ratomega.compare("u2-pure", {1: "1"}, as_="y")
     with pytest.raises(InputError, match="no conformal block"):

@@ -49,6 +49,11 @@ def test_json_and_python_values():
     assert summary(rows) == [((1,), "1/2", 16), ((2,), "1/3", None), ((3,), "1/4", 3), ((4,), "2", 1)]
 
 
+def test_a_typeset_minus_is_a_minus(tmp_path):
+    rows = read_table(written(tmp_path, "1,\u22120.5,1e\u22123\n2,\u22123/4,\n"), ONE)
+    assert summary(rows) == [((1,), "-1/2", 1), ((2,), "-3/4", None)]
+
+
 def test_rounding_and_cutting_off_pass_and_a_unit_more_does_not():
     (row,) = read_table({1: "0.667"}, ONE)
     exact = row.value.__class__(2, 3)
@@ -73,6 +78,8 @@ def test_rounding_and_cutting_off_pass_and_a_unit_more_does_not():
         ("charge,value\n1\n", "row 2, column 2", "columns"),
         ("charge,value\n1,2,3,4\n", "row 2, column 3", "columns"),
         ("1,0.5,-1\n", "row 1, column uncertainty", "zero or more"),
+        ("charge value\n1 0.5\n", "row 2, column 2", "separated by commas, not by blanks"),
+        ("charge;value\n1;0,5\n", "row 2, column value", "a point, not a comma"),
         ('1,"0.5\n', "row 1", "no row of a CSV table"),
         ("", "table.csv", "no row"),
         ("charge,value\n", "table.csv", "no row"),

@@ -69,6 +69,19 @@ def test_an_offset_and_a_factor(ratio):
     assert (multiplied.kind, dict(multiplied.parameters)) == ("offset", {"offset": "0.001", "s": "3/7"})
 
 
+def test_a_number_that_was_fitted_to_a_sign_is_the_sign():
+    """q -> -q at an offset is listed once, and not as q -> s*q with s = -1 again."""
+    mapping = {**FLAVOURS, "node": [{"coulomb": ["2/7", "-2/7"], "antifundamental": ["1/2", "1/5", "1/3"]}]}
+    found = ratomega.compare(mapping, table(turned(at_offset(mapping, fmpq(1, 10**5))), 12), as_="z").diagnosis
+    assert [one.changes[1] for one in found] == ["q -> -q"]
+
+
+def test_lost_precision_is_one_answer_whatever_the_numbers_are_read_as():
+    mapping = {**FLAVOURS, "node": [{"coulomb": ["2/7", "-2/7"], "antifundamental": ["1/2", "1/5", "1/3"]}]}
+    rows = faulty_tables.float_table(in_floats(mapping, fmpq(1, 10**7)))[1:]
+    assert [(one.kind, one.quantity) for one in ratomega.compare(mapping, rows).diagnosis] == [("precision-loss", "z")]
+
+
 def test_an_offset_and_log_z():
     found = first(FLAVOURS, table(faulty_tables.logarithm(at_offset(FLAVOURS, SMALL))), as_=None)
     assert (found.kind, found.quantity, dict(found.parameters)["offset"]) == ("offset", "log", "0.001")
