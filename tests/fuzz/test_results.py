@@ -107,7 +107,11 @@ def changed(draw):
         case "other":
             other = data
             for step in draw(st.sampled_from(where)):
-                other = other[step] if isinstance(other, dict) or step < len(other) else other
+                # An earlier change may have taken away what the way leads through.
+                if (isinstance(other, dict) and step in other) or (
+                    isinstance(other, list) and isinstance(step, int) and step < len(other)
+                ):
+                    other = other[step]
             inner[last] = copy.deepcopy(other)
         case "out":
             del inner[last]
