@@ -9,7 +9,7 @@ import ratomega
 from ratomega.case.setting import Setting
 
 
-def make_case(eps1, eps2, nodes, *, charge=2, edges=()):
+def make_case(eps1, eps2, nodes, *, charge=2, edges=(), symbols=()):
     """A case from text expressions: ``nodes`` are mappings with coulomb, ...; edges are (from, to, mass), from 1."""
     mapping = {
         "charge": charge,
@@ -17,7 +17,20 @@ def make_case(eps1, eps2, nodes, *, charge=2, edges=()):
         "node": [{"name": f"n{v}", **node} for v, node in enumerate(nodes, 1)],
         "edge": [{"from": f"n{a}", "to": f"n{b}", "mass": mass} for a, b, mass in edges],
     }
+    if symbols:
+        mapping["symbols"] = list(symbols)
     return ratomega.load_case(mapping)
+
+
+def symbolic(nodes, *, symbols=("a",), eps1="1", eps2="1", **options):
+    """A case with free parameters."""
+    return make_case(eps1, eps2, nodes, symbols=symbols, **options)
+
+
+def symbolic_u2(*, coulomb=("a", "-a"), **options):
+    """U(2) with free parameters; matter stands among the options."""
+    matter = {key: options.pop(key) for key in ("antifundamental", "fundamental", "adjoint") if key in options}
+    return symbolic([{"coulomb": list(coulomb), **matter}], **options)
 
 
 def plain_number(value):

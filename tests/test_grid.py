@@ -418,6 +418,14 @@ def test_a_damaged_document_is_refused(damage):
         ratomega.load_result(json.dumps(document))
 
 
+def test_a_document_whose_axis_has_a_value_twice_is_refused():
+    """As a grid that is asked for; rows name their points by places, which two equal values would share."""
+    document = json.loads(ratomega.to_json(ratomega.grid(PURE, {"a": "1/3, 1/2"})))
+    document["at"]["a"] = ["1/3", "1/3"]
+    with pytest.raises(InputError, match='"at" lists a value twice'):
+        ratomega.load_result(json.dumps(document))
+
+
 # ---- bad input ----
 
 

@@ -11,7 +11,7 @@ from typing import Any
 from ratomega.case.wording import quoted, shortened
 from ratomega.errors import InputError
 
-__all__ = ["LARGEST_FILE", "file_label", "text_of_file", "toml_tables"]
+__all__ = ["LARGEST_FILE", "bounded_text", "file_label", "file_name", "text_of_file", "toml_tables"]
 
 LARGEST_FILE = 256 * 1024
 MOST_KEY_PARTS = 16
@@ -66,6 +66,33 @@ def text_of_file(path: str) -> str:
     except UnicodeDecodeError as error:
         line = data.count(b"\n", 0, error.start) + 1
         raise InputError.single("the file is not UTF-8 text", f"{where}: line {line}") from None
+
+
+def bounded_text(source: str | os.PathLike[str], most: int, what: str) -> str:
+    """The text of a file of at most ``most`` bytes that is given by hand: unlike a case it may come through a pipe.
+
+    ``what`` is what messages call it. Raises ``InputError`` naming the file.
+    """
+    where = file_name(source)
+    try:
+        with open(source, "rb") as stream:
+            # Bounded whatever the file is: a device has no size and no end.
+            data = stream.read(most + 1)
+    except OSError as error:
+        raise InputError.single(f"the {what} cannot be read: {error.strerror}", where) from error
+    except ValueError:
+        raise InputError.single(f"the {what} cannot be read: this is not the name of a file", where) from None
+    if len(data) > most:
+        raise InputError.single(f"the {what} is larger than {most} bytes", where)
+    try:
+        return data.decode("utf-8-sig")
+    except UnicodeDecodeError:
+        raise InputError.single(f"the {what} is not UTF-8 text", where) from None
+
+
+def file_name(source: str | os.PathLike[str]) -> str:
+    """How messages name a file that was given by hand: as it was typed."""
+    return shortened(os.fspath(source), 200)
 
 
 def toml_tables(text: str, where: str) -> dict[str, Any]:

@@ -61,6 +61,8 @@ def read_grid(document: Mapping[str, Any], header: Header, partial: bool) -> Gri
     if tuple(at) != header.case.symbols:
         raise Misfit(f'"at" has values of {", ".join(at)}, not of {", ".join(header.case.symbols)}')
     axes = tuple(each(exact, axis) for axis in at.values())
+    if any(len(set(axis)) < len(axis) for axis in axes):
+        raise Misfit('"at" lists a value twice')
     digits = if_given(whole, document["digits"])
     counting = None if document["q"] is None else each(_read_counting, document["q"])
     charges: tuple[Charge | None, ...] = header.case.charges if counting is None else (None,)

@@ -12,6 +12,7 @@ from collections.abc import Callable, Mapping
 from dataclasses import dataclass
 from typing import Any
 
+from ratomega.case.tables import bounded_text, file_name
 from ratomega.case.wording import kind, quoted, shortened
 from ratomega.chain.explaining import Explanation
 from ratomega.detector.atlas import Atlas
@@ -126,20 +127,7 @@ def load_result(source: str | os.PathLike[str]) -> Result:
 def _text_of(source: str | os.PathLike[str]) -> tuple[str, str]:
     if isinstance(source, str) and source.lstrip()[:1] == "{":
         return source, "document"
-    where = shortened(os.fspath(source), 200)
-    try:
-        with open(source, "rb") as stream:
-            # Bounded whatever the file is: a device has no size and no end.
-            data = stream.read(LARGEST_DOCUMENT + 1)
-        if len(data) > LARGEST_DOCUMENT:
-            raise InputError.single(f"the file is larger than {LARGEST_DOCUMENT} bytes", where)
-        return data.decode("utf-8"), where
-    except UnicodeDecodeError:
-        raise InputError.single("the file is not UTF-8 text", where) from None
-    except OSError as error:
-        raise InputError.single(f"the file cannot be read: {error.strerror}", where) from error
-    except ValueError:
-        raise InputError.single("this is not the name of a file", where) from None
+    return bounded_text(source, LARGEST_DOCUMENT, "file"), file_name(source)
 
 
 def _from_document(document: Document) -> Result:

@@ -19,6 +19,7 @@ from dataclasses import dataclass
 from typing import Any
 
 from ratomega.case.case import HIGHEST_CHARGE
+from ratomega.case.tables import bounded_text, file_name
 from ratomega.case.wording import kind, quoted, shortened
 from ratomega.diagrams.tuples import Charge
 from ratomega.errors import InputError, Problem
@@ -162,19 +163,7 @@ def _text_of(source: str | os.PathLike[str]) -> tuple[str, str]:
         if len(source) > LARGEST_FILE:
             raise InputError.single(f"the text is longer than {LARGEST_FILE} characters", "numbers")
         return source, "numbers"
-    label = shortened(os.fspath(source), 200)
-    try:
-        with open(source, "rb") as stream:
-            # Bounded whatever the file is: a device has no size and no end.
-            data = stream.read(LARGEST_FILE + 1)
-        if len(data) > LARGEST_FILE:
-            raise InputError.single(f"the table is larger than {LARGEST_FILE} bytes", label)
-        return data.decode("utf-8-sig"), label
-    except UnicodeDecodeError as error:
-        raise InputError.single("the table is not UTF-8 text", label) from error
-    except (OSError, ValueError) as error:
-        reason = error.strerror if isinstance(error, OSError) and error.strerror else str(error)
-        raise InputError.single(f"the table cannot be read: {reason}", label) from error
+    return bounded_text(source, LARGEST_FILE, "table"), file_name(source)
 
 
 def _parsed(text: str, label: str) -> object:

@@ -5,13 +5,14 @@ from __future__ import annotations
 import csv
 import io
 import json
-from itertools import combinations
 
 import plain
 import pytest
 import sympy
-from building import plain_number, plain_theory
+from building import plain_number, plain_theory, symbolic
+from building import symbolic_u2 as u2
 from click.testing import CliRunner
+from published import charge_one_with_flavours
 
 import ratomega
 from ratomega.case.setting import own_setting
@@ -21,23 +22,6 @@ from ratomega.symbolic.functions import Functions, direct_evaluator
 from ratomega.symbolic.structure import structure
 
 A, M = sympy.symbols("a m")
-
-
-def symbolic(nodes, *, symbols=("a",), charge=2, eps1="1", eps2="1", edges=()):
-    return ratomega.load_case(
-        {
-            "charge": charge,
-            "symbols": list(symbols),
-            "background": {"eps1": eps1, "eps2": eps2},
-            "node": [{"name": f"n{v}", **node} for v, node in enumerate(nodes, 1)],
-            "edge": [{"from": f"n{a}", "to": f"n{b}", "mass": mass} for a, b, mass in edges],
-        }
-    )
-
-
-def u2(*, coulomb=("a", "-a"), **options):
-    matter = {key: options.pop(key) for key in ("antifundamental", "fundamental", "adjoint") if key in options}
-    return symbolic([{"coulomb": list(coulomb), **matter}], **options)
 
 
 def equal(one, two):
@@ -70,18 +54,9 @@ def test_charge_one_with_flavours_as_published(flavours, root, ratio):
         texts = [f"m - {root}/2"]
     masses = [sympy.sympify(x.replace("i", "I") if root == "i" else x, locals={"m": M}) for x in texts]
     case = u2(antifundamental=texts, symbols=("a", "m"), charge=1, eps2=ratio)
-    s = [sum(sympy.prod(c) for c in combinations(masses, n)) for n in range(flavours + 1)] + [0] * 4
-    y = sympy.Rational(ratio)
-    e = 1 + y
-    above = {
-        1: -2 * s[1] + e,
-        2: -2 * (s[2] + A**2) + e * s[1],
-        3: -2 * (s[3] + s[1] * A**2) + e * (s[2] + A**2),
-        4: -2 * (s[4] + s[2] * A**2 + A**4) + e * (s[3] + s[1] * A**2),
-    }[flavours]
     function = values_of(case)[1]
     assert function.radicand
-    assert equal(function.sympy(), above / (y * (4 * A**2 - e**2)))
+    assert equal(function.sympy(), charge_one_with_flavours(masses, sympy.Rational(ratio)))
 
 
 @pytest.mark.parametrize(("e1", "e2"), [("1", "1"), ("1", "2"), ("2", "-3")])

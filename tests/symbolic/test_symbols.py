@@ -3,13 +3,14 @@
 from __future__ import annotations
 
 import json
-from itertools import combinations
 
 import plain
 import pytest
 import sympy
-from building import make_case, plain_theory
+from building import make_case, plain_theory, symbolic
+from building import symbolic_u2 as u2
 from click.testing import CliRunner
+from published import charge_one_with_flavours
 
 import ratomega
 from ratomega.case.setting import own_setting
@@ -24,23 +25,6 @@ from ratomega.symbolic.structure import even_symbols, structure
 
 A, M = sympy.symbols("a m")
 FLAVOURS = ["1/2", "1/4", "1/5", "1/7"]
-
-
-def symbolic(nodes, *, symbols=("a",), charge=2, eps1="1", eps2="1", edges=()):
-    return ratomega.load_case(
-        {
-            "charge": charge,
-            "symbols": list(symbols),
-            "background": {"eps1": eps1, "eps2": eps2},
-            "node": [{"name": f"n{v}", **node} for v, node in enumerate(nodes, 1)],
-            "edge": [{"from": f"n{a}", "to": f"n{b}", "mass": mass} for a, b, mass in edges],
-        }
-    )
-
-
-def u2(*, coulomb=("a", "-a"), **options):
-    matter = {key: options.pop(key) for key in ("antifundamental", "fundamental", "adjoint") if key in options}
-    return symbolic([{"coulomb": list(coulomb), **matter}], **options)
 
 
 def same(function, expression):
@@ -65,17 +49,7 @@ def test_charge_one_with_flavours_as_published(flavours, ratio):
     hep-th/9609041 for the leading part; the charge-one sum), in a and one mass together."""
     masses = [M, *(sympy.Rational(x) for x in FLAVOURS[1:flavours])]
     case = u2(antifundamental=["m", *FLAVOURS[1:flavours]], symbols=("a", "m"), charge=1, eps2=ratio)
-    s = [sum(sympy.prod(c) for c in combinations(masses, n)) for n in range(flavours + 1)]
-    s += [0] * (5 - len(s))
-    y = sympy.Rational(ratio)
-    e = 1 + y
-    above = {
-        1: -2 * s[1] + e,
-        2: -2 * (s[2] + A**2) + e * s[1],
-        3: -2 * (s[3] + s[1] * A**2) + e * (s[2] + A**2),
-        4: -2 * (s[4] + s[2] * A**2 + A**4) + e * (s[3] + s[1] * A**2),
-    }[flavours]
-    assert same(ratomega.limit(case)[1].value, above / (y * (4 * A**2 - e**2)))
+    assert same(ratomega.limit(case)[1].value, charge_one_with_flavours(masses, sympy.Rational(ratio)))
 
 
 def test_adjoint_as_published():
