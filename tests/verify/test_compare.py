@@ -5,9 +5,11 @@ from __future__ import annotations
 import json
 import subprocess
 import sys
+from fractions import Fraction
 
 import faulty_tables
 import pytest
+from building import make_case
 from faulty_tables import decimal, exact_limits, table
 from flint import fmpq
 
@@ -343,3 +345,21 @@ def test_exit_statuses(tmp_path):
     assert refused.returncode == 2
     assert "row 2, column value" in refused.stderr
     assert "error" in json.loads(refused.stdout)
+
+
+@pytest.mark.parametrize("ends", [((0, 1), (2, 3)), ((0, 2), (1, 3)), ((0, 3), (1, 2))])
+def test_a_block_is_known_by_each_way_of_dealing_four_flavours(ends):
+    """Z = (1 - q)^s times the block, s = (m_a + m_b)(m_c + m_d)/(2 eps1 eps2) for the masses at the two ends (Alday,
+    Gaiotto, Tachikawa 0906.3219): three factors, three series."""
+    masses = ["1/3", "1/7", "2/5", "3/11"]
+    case = make_case("1", "1", [{"coulomb": ["1/3", "-1/3"], "antifundamental": masses}], charge=3)
+    (a, b), (c, d) = ([Fraction(masses[n]) for n in end] for end in ends)
+    s = (a + b) * (c + d) / 2
+    z = [Fraction(str(one.value)) for one in ratomega.limit(case)]
+    # (1 - q)^(-s)
+    factor = [Fraction(1)]
+    for k in range(1, 4):
+        factor.append(factor[-1] * (s + k - 1) / k)
+    block = {k: str(sum(factor[k - j] * z[j] for j in range(k + 1))) for k in range(1, 4)}
+    found = ratomega.compare(case, block)
+    assert (found.agree, found.quantity) == (True, "block")
